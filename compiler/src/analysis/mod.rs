@@ -1,0 +1,1 @@
+//! Facts beside the model: exact laws, commutativity, moments.

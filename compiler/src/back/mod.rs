@@ -1,0 +1,1 @@
+//! Back ends of the step program: Rust source and the interpreter.

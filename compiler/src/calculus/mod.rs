@@ -1,0 +1,1 @@
+//! Ito's rule, Stratonovich conversion, claims.

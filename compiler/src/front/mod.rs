@@ -1,0 +1,1 @@
+//! From a TOML file to the typed model: spanned tree, formulas, names.

@@ -1,0 +1,1 @@
+//! The typed model: what the author declared, resolved.

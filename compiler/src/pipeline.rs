@@ -1,0 +1,1 @@
+//! Every pass in order, with what holds after each.

@@ -1,0 +1,1 @@
+//! The step program: SSA over lanes, in sections by rate of change.

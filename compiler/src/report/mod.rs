@@ -1,0 +1,1 @@
+//! What a reviewer reads: the dossier, written as text, Markdown or JSON.

@@ -1,0 +1,1 @@
+//! How each state is stepped, why, and what was rejected.

@@ -1,0 +1,1 @@
+//! Model files and byte spans in them.

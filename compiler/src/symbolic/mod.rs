@@ -1,0 +1,1 @@
+//! Formulas: hash-consed, exact rationals, normal form, derivatives, printing.
