@@ -1,0 +1,20 @@
+//! Small dense linear algebra behind the coefficients of Gaussian steps.
+//!
+//! Matrices are row-major slices. Everything here runs while a run is prepared, in
+//! unfused arithmetic on one thread, so its results are the same bits everywhere.
+
+mod cholesky;
+mod transition;
+
+pub use cholesky::cholesky;
+pub use transition::linear_transition;
+
+/// `out = left * right` for square matrices.
+fn multiply(dim: usize, left: &[f64], right: &[f64], out: &mut [f64]) {
+    for i in 0..dim {
+        for j in 0..dim {
+            let terms = (0..dim).map(|k| left[i * dim + k] * right[k * dim + j]);
+            out[i * dim + j] = terms.sum();
+        }
+    }
+}
