@@ -1,1 +1,41 @@
-//! Formulas: hash-consed, exact rationals, normal form, derivatives, printing.
+//! Formulas: hash-consed expressions with exact rational numbers, and the algebra on them.
+//!
+//! A [`Pool`] holds every formula of one model. Two formulas with the same structure are the same
+//! [`Expr`], so work on a shared sub-formula is done once. The constructors of [`Pool`] fold exact
+//! numbers and collect equal terms and factors; they never expand products. What costs more has a
+//! name of its own: [`Pool::simplify`], [`Pool::expand`], [`Pool::is_zero`].
+//!
+//! Nothing here is approximate: a decision that rests on algebra is a proof, one that rests on a
+//! high-precision evaluation is a refutation with a witness, and everything else is
+//! [`Truth::CannotTell`].
+
+mod big;
+mod big_normal;
+mod build;
+mod calls;
+mod derivative;
+mod evaluate;
+mod expand;
+mod facts;
+mod function;
+mod node;
+mod order;
+mod pool;
+mod print;
+mod print_number;
+mod query;
+mod sample;
+mod sign;
+mod simplify;
+mod substitute;
+#[cfg(test)]
+mod tests;
+pub mod trace;
+mod zero;
+
+pub use big::Big;
+pub use facts::{Bound, Interval, Sign};
+pub use function::Function;
+pub use node::{Expr, Node, Rational, Symbol, SymbolKind};
+pub use pool::Pool;
+pub use zero::{Truth, Witness};

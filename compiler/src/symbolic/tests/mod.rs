@@ -1,0 +1,3 @@
+//! Tests of the formula algebra.
+
+mod basics;

@@ -1,0 +1,106 @@
+//! The zero test: yes by algebra, no by a witness, or cannot tell.
+
+use dashu_base::Abs;
+
+use super::big::{self, Big, PRECISION};
+use super::node::{Expr, Symbol};
+use super::pool::Pool;
+use super::sample::Sampler;
+
+/// Points tried before the answer is "cannot tell".
+const ATTEMPTS: usize = 24;
+
+/// A point at which two formulas differ.
+#[derive(Clone, PartialEq, Debug)]
+pub struct Witness {
+    /// The values of the symbols.
+    pub point: Vec<(Symbol, f64)>,
+    /// The value of the first formula there.
+    pub left: f64,
+    /// The value of the second formula there.
+    pub right: f64,
+}
+
+/// The answer to a question about all values of the symbols in their ranges.
+#[derive(Clone, PartialEq, Debug)]
+pub enum Truth {
+    /// Proved by algebra.
+    Yes,
+    /// Refuted at a point.
+    No(Witness),
+    /// Neither proved nor refuted.
+    CannotTell,
+}
+
+impl Truth {
+    /// Whether it is proved.
+    pub fn is_yes(&self) -> bool {
+        matches!(self, Truth::Yes)
+    }
+
+    /// Whether it is refuted.
+    pub fn is_no(&self) -> bool {
+        matches!(self, Truth::No(_))
+    }
+}
+
+impl Pool {
+    /// Whether the formula is 0 wherever it has a value.
+    pub fn is_zero(&self, e: Expr) -> Truth {
+        self.equal(e, self.zero())
+    }
+
+    /// Whether two formulas agree wherever both have a value.
+    pub fn equal(&self, a: Expr, b: Expr) -> Truth {
+        if a == b || self.is_zero_literal(self.expand(self.sub(a, b))) {
+            return Truth::Yes;
+        }
+        self.refute(a, b).map_or(Truth::CannotTell, Truth::No)
+    }
+
+    /// A point inside the ranges at which the two differ for certain: the difference comes out the
+    /// same at 256 and at 384 bits, so it is not rounding, and is not small beside the two sides.
+    fn refute(&self, a: Expr, b: Expr) -> Option<Witness> {
+        let difference = self.sub(a, b);
+        let symbols = self.symbol_set(difference);
+        let mut sampler = Sampler::new(self);
+        for _ in 0..ATTEMPTS {
+            let Some(point) = sampler.point(&symbols) else {
+                continue;
+            };
+            let Some(rough) = self.eval_precise(difference, &point, PRECISION) else {
+                continue;
+            };
+            let Some(fine) = self.eval_precise(difference, &point, PRECISION + 128) else {
+                continue;
+            };
+            let sides = (
+                self.eval_precise(a, &point, PRECISION),
+                self.eval_precise(b, &point, PRECISION),
+            );
+            let (Some(left), Some(right)) = sides else {
+                continue;
+            };
+            let size = fine.clone().abs();
+            let error = (rough - fine).abs();
+            let scale = left.clone().abs() + right.clone().abs();
+            if error * tolerance(10) < size && scale < size * tolerance(30) {
+                let point = symbols
+                    .iter()
+                    .map(|&s| (s, big::to_f64(&point[&s])))
+                    .collect();
+                return Some(Witness {
+                    point,
+                    left: big::to_f64(&left),
+                    right: big::to_f64(&right),
+                });
+            }
+        }
+        None
+    }
+}
+
+/// `10^decimals`.
+fn tolerance(decimals: usize) -> Big {
+    big::whole(10, PRECISION).powi(decimals.into())
+}
