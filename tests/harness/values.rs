@@ -51,7 +51,7 @@ pub fn number(value: &toml::Value) -> f64 {
     match value {
         toml::Value::Float(x) => *x,
         toml::Value::Integer(i) => *i as f64,
-        other => panic!("{other} is no number"),
+        other => panic!("{other:?} is no number"),
     }
 }
 
