@@ -1,0 +1,206 @@
+//! Characters to tokens.
+
+use super::number::{NumberError, decimal};
+use crate::diagnostic::{Code, Diagnostic};
+use crate::front::text::MappedText;
+use crate::source::Span;
+use crate::symbolic::Rational;
+
+/// A token and its place in the file.
+#[derive(Clone, Debug)]
+pub(super) struct Token {
+    pub(super) kind: Kind,
+    pub(super) span: Span,
+}
+
+/// The kinds of tokens.
+#[derive(Clone, Debug, PartialEq)]
+pub(super) enum Kind {
+    Number(Rational),
+    Name(String),
+    /// `+ - * / ^ ( ) , [ ] < <= > >=`
+    Sign(&'static str),
+    End,
+}
+
+const SIGNS: [&str; 14] = [
+    "<=", ">=", "+", "-", "*", "/", "^", "(", ")", ",", "[", "]", "<", ">",
+];
+
+/// Cuts a text into tokens, the last of which is [`Kind::End`].
+///
+/// # Errors
+/// One diagnostic a bad character or number, at most [`MAX_ERRORS`].
+pub(super) fn tokens(text: &MappedText) -> Result<Vec<Token>, Vec<Diagnostic>> {
+    let mut lexer = Lexer {
+        text,
+        at: 0,
+        tokens: Vec::new(),
+        errors: Vec::new(),
+    };
+    while lexer.errors.len() < MAX_ERRORS && lexer.next() {}
+    if lexer.errors.is_empty() {
+        Ok(lexer.tokens)
+    } else {
+        Err(lexer.errors)
+    }
+}
+
+/// Bad characters reported in one formula.
+const MAX_ERRORS: usize = 3;
+
+struct Lexer<'a> {
+    text: &'a MappedText,
+    at: usize,
+    tokens: Vec<Token>,
+    errors: Vec<Diagnostic>,
+}
+
+impl<'a> Lexer<'a> {
+    fn rest(&self) -> &'a str {
+        &self.text.text()[self.at..]
+    }
+
+    /// Takes one token; false at the end.
+    fn next(&mut self) -> bool {
+        let rest = self.rest();
+        self.at += rest.len() - rest.trim_start().len();
+        let rest = self.rest();
+        let Some(first) = rest.chars().next() else {
+            self.push(0, Kind::End);
+            return false;
+        };
+        if first.is_ascii_digit() || first == '.' {
+            self.number(rest);
+        } else if is_letter(first) {
+            let name = name_at(rest);
+            self.push(name.len(), Kind::Name(name.to_owned()));
+        } else if let Some(sign) = SIGNS.into_iter().find(|sign| rest.starts_with(sign)) {
+            self.push(sign.len(), Kind::Sign(sign));
+        } else {
+            self.unknown(first);
+        }
+        true
+    }
+
+    fn push(&mut self, length: usize, kind: Kind) {
+        let span = self.take(length);
+        self.tokens.push(Token { kind, span });
+    }
+
+    fn take(&mut self, length: usize) -> Span {
+        let start = self.at;
+        self.at += length;
+        self.text.place(start..self.at)
+    }
+
+    fn number(&mut self, rest: &str) {
+        let text = number_at(rest);
+        match decimal(text) {
+            Ok(value) => self.push(text.len(), Kind::Number(value)),
+            Err(error) => {
+                let span = self.take(text.len());
+                self.errors.push(number_error(error, text, span));
+            }
+        }
+    }
+
+    fn unknown(&mut self, c: char) {
+        let span = self.take(c.len_utf8());
+        let shown = if c.is_control() {
+            c.escape_default().to_string()
+        } else {
+            c.to_string()
+        };
+        let message = format!("`{shown}` is not used in formulas");
+        let diagnostic = Diagnostic::error(Code::UnknownCharacter, span, message);
+        self.errors.push(diagnostic.maybe_hint(replacement(c)));
+    }
+}
+
+/// What the author of an unusual character may have meant.
+fn replacement(c: char) -> Option<String> {
+    let text = match c {
+        '²' => "write `^2`",
+        '³' => "write `^3`",
+        '·' | '×' | '⋅' | '∙' | '∗' => "write `*` for a product",
+        '−' | '–' | '—' => "write `-` for a minus sign",
+        '÷' | '∕' => "write `/` for a quotient",
+        '√' => "write `sqrt(...)`",
+        '∞' => "write `inf`, in a range or a domain",
+        '≤' => "write `<=`",
+        '≥' => "write `>=`",
+        '{' | '}' => "only round parentheses group",
+        '\'' | '"' => "a formula holds no quotes of its own",
+        '=' => "a formula is only the right side, without `=`",
+        '_' => "names start with a letter",
+        _ => return None,
+    };
+    Some(text.to_owned())
+}
+
+fn number_error(error: NumberError, text: &str, span: Span) -> Diagnostic {
+    let (message, hint) = match error {
+        NumberError::Malformed if text.starts_with('.') => (
+            format!("`{text}` is not a number"),
+            format!("write `0{text}`"),
+        ),
+        NumberError::Malformed => (
+            format!("`{text}` is not a number"),
+            "numbers are written 12, 0.5, 1e-3".to_owned(),
+        ),
+        NumberError::TooLong => (
+            format!(
+                "the number has {} characters, the limit is 1000 digits",
+                text.len()
+            ),
+            "a double precision number holds 17".to_owned(),
+        ),
+        NumberError::OutOfRange => (
+            format!("`{text}` does not fit a double precision number"),
+            "change the unit".to_owned(),
+        ),
+    };
+    Diagnostic::error(Code::BadNumber, span, message).hint(hint)
+}
+
+/// The longest prefix that looks like a number, well-formed or not. An exponent needs its digits, so
+/// that in `2exp(x)` the number is `2`.
+fn number_at(rest: &str) -> &str {
+    let run = |from: usize| {
+        let digit = |c: char| c.is_ascii_digit() || c == '.' || c == '_';
+        from + rest[from..]
+            .find(|c| !digit(c))
+            .unwrap_or(rest.len() - from)
+    };
+    let end = run(0);
+    let exponent = rest[end..].strip_prefix(['e', 'E']);
+    let Some(after) = exponent else {
+        return &rest[..end];
+    };
+    let digits = after.strip_prefix(['+', '-']).unwrap_or(after);
+    let sign = after.len() - digits.len();
+    if digits.starts_with(|c: char| c.is_ascii_digit()) {
+        &rest[..run(end + 1 + sign)]
+    } else if digits.starts_with(is_letter) {
+        &rest[..end]
+    } else {
+        &rest[..end + 1 + sign]
+    }
+}
+
+/// Whether names may start with it.
+pub(crate) fn is_letter(c: char) -> bool {
+    c.is_alphabetic()
+}
+
+/// The longest name at the start of `rest`.
+fn name_at(rest: &str) -> &str {
+    let part = |c: char| is_letter(c) || c.is_ascii_digit() || c == '_';
+    &rest[..rest.find(|c| !part(c)).unwrap_or(rest.len())]
+}
+
+/// Whether the whole text is one name.
+pub(crate) fn is_name(text: &str) -> bool {
+    text.starts_with(is_letter) && name_at(text).len() == text.len()
+}

@@ -1,0 +1,62 @@
+//! "Did you mean": the nearest of the names that exist.
+
+/// A hint that names the nearest of `known`, if one is near enough to be meant.
+pub(super) fn did_you_mean<'a>(
+    name: &str,
+    known: impl IntoIterator<Item = &'a str>,
+) -> Option<String> {
+    nearest(name, known).map(|best| format!("did you mean `{best}`?"))
+}
+
+/// The nearest of `known`: a third of the letters may differ, one of a short name; case counts little.
+pub(super) fn nearest<'a>(name: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
+    let folded = name.to_lowercase();
+    let limit = (name.chars().count() / 3).max(1);
+    let mut best: Option<(usize, &str)> = None;
+    for candidate in known {
+        let other = candidate.to_lowercase();
+        let distance = strsim::damerau_levenshtein(&folded, &other);
+        // A name of one or two letters is near to too many others, unless only the case differs.
+        let near = distance <= limit && (distance == 0 || distance < folded.chars().count().max(2));
+        let short = folded.chars().count() < 2 && other.chars().count() > 2;
+        if near && !short && best.is_none_or(|(least, _)| distance < least) {
+            best = Some((distance, candidate));
+        }
+    }
+    best.map(|(_, candidate)| candidate)
+}
+
+/// The list of choices as people write it: `a`, `b` or `c`.
+pub(super) fn one_of<'a>(choices: impl IntoIterator<Item = &'a str>) -> String {
+    let quoted: Vec<String> = choices.into_iter().map(|c| format!("`{c}`")).collect();
+    match quoted.split_last() {
+        Some((last, rest)) if !rest.is_empty() => format!("{} or {last}", rest.join(", ")),
+        Some((last, _)) => last.clone(),
+        None => "nothing".to_owned(),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::{nearest, one_of};
+
+    #[test]
+    fn near_names_are_found_and_far_ones_are_not() {
+        let known = ["mu", "sigma", "kappa", "theta"];
+        for (name, expected) in [
+            ("sgima", Some("sigma")),
+            ("Mu", Some("mu")),
+            ("kapa", Some("kappa")),
+            ("rho", None),
+            ("m", Some("mu")),
+        ] {
+            assert_eq!(nearest(name, known), expected, "{name}");
+        }
+    }
+
+    #[test]
+    fn choices_read_as_a_list() {
+        assert_eq!(one_of(["a", "b", "c"]), "`a`, `b` or `c`");
+        assert_eq!(one_of(["a"]), "`a`");
+    }
+}
