@@ -1,0 +1,328 @@
+//! What the planner hands on: coordinates, groups of states stepped together, and the noise of a step.
+//!
+//! The program is lowered from a [`Plan`] and the reports print it; neither looks at the analysis again.
+
+use std::fmt;
+
+use super::SchemeName;
+use crate::calculus::Process;
+use crate::symbolic::trace::Trace;
+use crate::symbolic::{Expr, Symbol};
+
+/// How a whole model is stepped.
+#[derive(Clone, Debug)]
+pub struct Plan {
+    /// One coordinate per state, in model order: what the simulator stores and steps.
+    pub coordinates: Vec<Coordinate>,
+    /// States stepped together. Every state is in exactly one group; groups stand in the order of
+    /// their first state.
+    pub groups: Vec<Group>,
+    /// The Gaussian vector drawn each step, shared by all groups.
+    pub noise: NoisePlan,
+}
+
+impl Plan {
+    /// The group a state is stepped in, by its index.
+    ///
+    /// # Panics
+    /// When `state` is not a state of the planned model.
+    pub fn group_of(&self, state: usize) -> usize {
+        self.groups
+            .iter()
+            .position(|g| g.states.contains(&state))
+            .expect("every state of the model is in a group")
+    }
+}
+
+/// What is stored for a state: `u = forward(x, t)`, and back `x = inverse(u, t)`.
+///
+/// Where a square-root-like state is stepped by full truncation the stored value may lie beyond the
+/// closed end of the domain; then `forward` is the state itself and `inverse` is `max(u, end)` (or
+/// `min`, or both), so that whoever reads the state reads the projected value.
+#[derive(Clone, Debug)]
+pub struct Coordinate {
+    /// The state, by its index in the model.
+    pub state: usize,
+    /// The symbol of u: the state's own where the coordinate is the state, else an auxiliary one.
+    pub symbol: Symbol,
+    /// u in the state's symbol, time and parameters.
+    pub forward: Expr,
+    /// The state in u, time and parameters.
+    pub inverse: Expr,
+    /// Whether both maps are the identity.
+    pub identity: bool,
+    /// Drift and diffusion of u by Ito's rule, in the states.
+    pub process: Process,
+}
+
+/// States that are stepped together.
+#[derive(Clone, Debug)]
+pub struct Group {
+    /// The states, by their indices, ascending.
+    pub states: Vec<usize>,
+    /// Whether the step draws from the law itself.
+    pub kind: Kind,
+    /// The law of the states after a step, given the values before, where it is known.
+    pub law: Option<Law>,
+    /// What the coordinates follow, where that has a name.
+    pub becomes: Option<Becomes>,
+    /// The scheme.
+    pub scheme: SchemeName,
+    /// Strong order of convergence; none for an exact scheme and where none is known.
+    pub strong_order: Option<Order>,
+    /// Weak order of convergence; likewise.
+    pub weak_order: Option<Order>,
+    /// Whether every step stays in the domain.
+    pub preserves_domain: bool,
+    /// Why this scheme, sentence by sentence.
+    pub reasons: Vec<String>,
+    /// What was considered and why it was not taken.
+    pub rejected: Vec<(SchemeName, String)>,
+    /// The working behind the choice.
+    pub trace: Trace,
+    /// What is computed in a step.
+    pub method: Method,
+}
+
+impl Group {
+    /// Whether the group is stepped by its exact law.
+    pub fn is_exact(&self) -> bool {
+        self.kind == Kind::Exact
+    }
+}
+
+/// Exact or approximate, as the reports say.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Kind {
+    /// No discretisation error at the points of the grid.
+    Exact,
+    /// Converges as the step goes to zero.
+    Approximate,
+}
+
+impl Kind {
+    /// The name in JSON.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Exact => "exact",
+            Self::Approximate => "approximate",
+        }
+    }
+}
+
+/// The law of a group's states after a step.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Law {
+    /// One normal state.
+    Normal,
+    /// One positive state whose logarithm is normal.
+    Lognormal,
+    /// Several states, jointly normal.
+    JointNormal,
+    /// Monotone images of (jointly) normal coordinates.
+    TransformedNormal,
+    /// No randomness.
+    Deterministic,
+}
+
+impl Law {
+    /// The name in JSON and in claims.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Normal => "normal",
+            Self::Lognormal => "lognormal",
+            Self::JointNormal => "joint_normal",
+            Self::TransformedNormal => "transformed_normal",
+            Self::Deterministic => "deterministic",
+        }
+    }
+}
+
+/// What a group's coordinates follow.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Becomes {
+    /// du = alpha dt + c dW.
+    ArithmeticBrownianMotion,
+    /// du = (alpha + a u) dt + c dW with one coordinate.
+    OrnsteinUhlenbeck,
+    /// du = (A u + alpha) dt + C dW.
+    LinearGaussianSystem,
+    /// A linear differential equation without noise.
+    Deterministic,
+}
+
+impl Becomes {
+    /// The name in JSON.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::ArithmeticBrownianMotion => "arithmetic_brownian_motion",
+            Self::OrnsteinUhlenbeck => "ornstein_uhlenbeck",
+            Self::LinearGaussianSystem => "linear_gaussian_system",
+            Self::Deterministic => "deterministic",
+        }
+    }
+}
+
+/// An order of convergence, as a fraction in lowest terms.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Order {
+    /// Numerator.
+    pub numerator: u32,
+    /// Denominator.
+    pub denominator: u32,
+}
+
+impl Order {
+    /// Order one half.
+    pub const HALF: Self = Self {
+        numerator: 1,
+        denominator: 2,
+    };
+    /// Order one.
+    pub const ONE: Self = Self {
+        numerator: 1,
+        denominator: 1,
+    };
+    /// Order four.
+    pub const FOUR: Self = Self {
+        numerator: 4,
+        denominator: 1,
+    };
+
+    /// As a number.
+    pub fn value(self) -> f64 {
+        f64::from(self.numerator) / f64::from(self.denominator)
+    }
+}
+
+impl fmt::Display for Order {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self.denominator {
+            1 => write!(f, "{}", self.numerator),
+            d => write!(f, "{}/{d}", self.numerator),
+        }
+    }
+}
+
+/// What a step of a group computes.
+#[derive(Clone, Debug)]
+pub enum Method {
+    /// The exact transition of a linear Gaussian system.
+    LinearGaussian(LinearGaussian),
+    /// A one-step scheme that reads increments of the drivers: Euler-Maruyama, Milstein, full truncation.
+    Step(Vec<StateStep>),
+    /// Classical Runge-Kutta over the step, all states of the group together: the drift of each
+    /// coordinate, in the coordinates' symbols, time and parameters.
+    RungeKutta4(Vec<(usize, Expr)>),
+}
+
+/// `du = (a u + alpha) dt + c dW` with `a`, `alpha`, `c` free of states and time.
+///
+/// Rows and columns of `a`, entries of `alpha` and rows of `c` follow [`Group::states`]; the columns of
+/// `c` are the model's drivers, in its order.
+#[derive(Clone, Debug)]
+pub struct LinearGaussian {
+    /// The drift matrix.
+    pub a: Vec<Vec<Expr>>,
+    /// The constant part of the drift.
+    pub alpha: Vec<Expr>,
+    /// The coefficients of the drivers' increments.
+    pub c: Vec<Vec<Expr>>,
+    /// Where the Gaussian part of each row comes from.
+    pub noise: Vec<RowNoise>,
+}
+
+/// Where the Gaussian part of a row of a linear Gaussian system comes from.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum RowNoise {
+    /// No driver reaches the row.
+    None,
+    /// The row of `a` is zero: the Gaussian part is `sum_j c_j (W_j(t+h) - W_j(t))`, out of the raw
+    /// increments.
+    Increments,
+    /// A component of its own, a [`Component::Convolution`].
+    Convolution,
+}
+
+/// One state of a one-step scheme.
+///
+/// All formulas are in the coordinates' symbols (those of other groups too), time and parameters, and
+/// are taken at the start of the step.
+#[derive(Clone, Debug)]
+pub struct StateStep {
+    /// The state, by its index in the model.
+    pub state: usize,
+    /// Drift of the coordinate.
+    pub drift: Expr,
+    /// Coefficients of the drivers' increments, one per driver.
+    pub diffusion: Vec<Expr>,
+    /// Milstein's terms: `(j, k, coefficient)` with `j <= k` adds
+    /// `coefficient * (dW_j dW_k - rho_jk h)`. Empty for the Euler schemes.
+    pub milstein: Vec<(usize, usize, Expr)>,
+    /// What is done at a closed lower end.
+    pub lower: Option<EdgeRule>,
+    /// What is done at a closed upper end.
+    pub upper: Option<EdgeRule>,
+}
+
+/// What a step does with a value at or beyond a closed end `e` of the domain; `u` is the stored value
+/// before the step, `v` the one the scheme computes.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum EdgeRule {
+    /// At a lower end: `e` if `u <= e` or `v <= e`, else `v`; mirrored at an upper end.
+    Absorb {
+        /// The end, in the parameters.
+        end: Expr,
+    },
+    /// At a lower end: `e + |v - e|`; at an upper end: `e - |e - v|`.
+    Reflect {
+        /// The end, in the parameters.
+        end: Expr,
+    },
+}
+
+/// The Gaussian vector of a step.
+#[derive(Clone, Debug, Default)]
+pub struct NoisePlan {
+    /// The components: raw increments first, in the drivers' order, then convolutions in the order of
+    /// the groups and their states. Their covariance over a step of length h follows from the
+    /// correlation R and the groups' `a`, `c`: a raw driver counts as a row with `a = 0`.
+    pub components: Vec<NoiseComponent>,
+}
+
+impl NoisePlan {
+    /// The place of a component, if some scheme needs it.
+    pub fn position(&self, component: Component) -> Option<usize> {
+        self.components
+            .iter()
+            .position(|c| c.component == component)
+    }
+}
+
+/// A component with the name its random numbers are addressed by.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct NoiseComponent {
+    /// What it is.
+    pub component: Component,
+    /// The source's name: the driver's, or `law:<state>` for the Gaussian part of an exact row that is
+    /// not the only one to use its driver.
+    pub source: String,
+}
+
+/// A component of the Gaussian vector of a step.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Component {
+    /// The increment of a driver over the step.
+    Increment {
+        /// The driver, by its index.
+        driver: usize,
+    },
+    /// The Gaussian part of the coordinate of a state of an exact group: its row of
+    /// `int_0^h exp(a (h - s)) c dW(s)`.
+    Convolution {
+        /// The group, by its index in [`Plan::groups`].
+        group: usize,
+        /// The state, by its index in the model.
+        state: usize,
+    },
+}
