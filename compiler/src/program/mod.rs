@@ -1,1 +1,174 @@
-//! The step program: SSA over lanes, in sections by rate of change.
+//! The step program: what a simulator computes, as single-assignment values sorted by how often they
+//! change.
+//!
+//! [`lower`] turns the planner's decisions into a [`Program`]; the back ends only spell it. Everything
+//! that decides a bit of the result is decided here: which operations, in which order, where a
+//! multiply-add is fused, what is moved out of the loops over paths and steps.
+
+mod builder;
+mod checks;
+mod display;
+mod formula;
+mod functions;
+mod lower;
+mod op;
+mod rate;
+mod sweep;
+mod verify;
+
+pub use checks::{Bound, Check, Range};
+pub use functions::{BinaryOp, UnaryOp};
+pub use lower::lower;
+pub use op::{Comparison, Number, Op, ValueId};
+pub use rate::Rate;
+pub use verify::Fault;
+
+/// A value: what computes it and how often it changes.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Value {
+    /// What computes it.
+    pub op: Op,
+    /// How often it changes.
+    pub rate: Rate,
+    /// A name for people: what the value means in the model.
+    pub hint: Option<String>,
+}
+
+/// A parameter of the simulator.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Parameter {
+    /// Its name.
+    pub name: String,
+    /// Its unit, as text.
+    pub unit: Option<String>,
+    /// What it is.
+    pub about: Option<String>,
+    /// Its value where the caller gives none.
+    pub value: Option<f64>,
+    /// The admissible values, as text.
+    pub range: String,
+}
+
+/// A number stored per path from step to step.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Slot {
+    /// The state it belongs to, or the name of a flag.
+    pub name: String,
+    /// What is stored, as a formula in the state.
+    pub coordinate: String,
+    /// Its value at time 0.
+    pub initial: ValueId,
+    /// Its value at the end of a step.
+    pub next: ValueId,
+}
+
+/// What kind of quantity an output is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum OutputKind {
+    /// A state.
+    State,
+    /// A derived quantity.
+    Derived,
+    /// A readout.
+    Readout,
+}
+
+/// An observed quantity.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Output {
+    /// Its name.
+    pub name: String,
+    /// What kind of quantity it is.
+    pub kind: OutputKind,
+    /// Its formula as the author wrote it; none for a state.
+    pub formula: Option<String>,
+    /// Its unit, as text.
+    pub unit: Option<String>,
+    /// What it is.
+    pub about: Option<String>,
+    /// Its value at an observation.
+    pub value: ValueId,
+}
+
+/// Where a value comes from.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Note {
+    /// The value.
+    pub value: ValueId,
+    /// The slot it moves; a note on a value that has no statement of its own stands there.
+    pub slot: usize,
+    /// A sentence.
+    pub text: String,
+}
+
+/// A model, lowered. Everything a back end needs, and nothing of the formulas it came from.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Program {
+    /// The model's name.
+    pub name: String,
+    /// One line for people.
+    pub title: Option<String>,
+    /// Longer text.
+    pub about: Option<String>,
+    /// Parameters, in file order.
+    pub parameters: Vec<Parameter>,
+    /// What must hold of the parameters, in the order in which it is checked.
+    pub checks: Vec<Check>,
+    /// The factor of the drivers' correlation matrix, which exists only where that is positive
+    /// semidefinite; none where it cannot fail.
+    pub correlation: Option<ValueId>,
+    /// Names of the sources of normal draws.
+    pub sources: Vec<String>,
+    /// The stored numbers: one per state in model order, then the flag if there is one.
+    pub slots: Vec<Slot>,
+    /// The observed quantities, in file order.
+    pub outputs: Vec<Output>,
+    /// All values; an operand stands before what reads it.
+    pub values: Vec<Value>,
+    /// Where values come from.
+    pub notes: Vec<Note>,
+    /// The step values that lanes read, in the order in which they are stored.
+    pub step_values: Vec<ValueId>,
+    /// The observation values that lanes read, likewise.
+    pub observation_values: Vec<ValueId>,
+    /// The slot that is 1 once a path has left its domain.
+    pub left_domain: Option<usize>,
+    /// Whether some scheme is approximate.
+    pub approximate: bool,
+}
+
+impl Program {
+    /// The value behind an id.
+    pub fn value(&self, id: ValueId) -> &Value {
+        &self.values[id.index()]
+    }
+
+    /// The ids of all values of a rate, operands first.
+    pub fn section(&self, rate: Rate) -> impl Iterator<Item = ValueId> + '_ {
+        self.ids().filter(move |&id| self.value(id).rate == rate)
+    }
+
+    /// All ids, operands first.
+    pub fn ids(&self) -> impl Iterator<Item = ValueId> + use<> {
+        (0..self.values.len() as u32).map(ValueId)
+    }
+
+    /// Whether a coefficient or an observation depends on time itself, not only on the length of a step.
+    pub fn time_dependent(&self) -> bool {
+        self.values.iter().any(|v| matches!(v.op, Op::Start | Op::Time))
+    }
+
+    /// The setup values the checks need; constructors compute them before anything that can fail.
+    pub fn check_values(&self) -> Vec<ValueId> {
+        let mut needed = vec![false; self.values.len()];
+        for id in self.checks.iter().flat_map(Check::operands) {
+            needed[id.index()] = true;
+        }
+        for id in self.ids().collect::<Vec<_>>().into_iter().rev().filter(|id| needed[id.index()]).collect::<Vec<_>>() {
+            for operand in self.value(id).op.operands() {
+                needed[operand.index()] = true;
+            }
+        }
+        self.section(Rate::Setup).filter(|id| needed[id.index()]).collect()
+    }
+}

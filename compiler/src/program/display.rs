@@ -1,0 +1,106 @@
+//! A listing of a step program, for people and golden tests.
+
+use std::fmt;
+
+use super::op::{Comparison, Op, ValueId};
+use super::rate::Rate;
+use super::{Check, Program};
+
+impl fmt::Display for Program {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        writeln!(f, "program {}", self.name)?;
+        for (index, source) in self.sources.iter().enumerate() {
+            writeln!(f, "source {index} {source}")?;
+        }
+        for rate in Rate::ALL {
+            writeln!(f, "{rate}:")?;
+            for id in self.section(rate) {
+                self.write_value(f, id)?;
+            }
+        }
+        for check in &self.checks {
+            writeln!(f, "check {}", describe(check, self))?;
+        }
+        for slot in &self.slots {
+            writeln!(f, "slot {} = {}: {} -> {}", slot.name, slot.coordinate, slot.initial, slot.next)?;
+        }
+        self.outputs.iter().try_for_each(|o| writeln!(f, "output {} = {}", o.name, o.value))
+    }
+}
+
+impl Program {
+    fn write_value(&self, f: &mut fmt::Formatter<'_>, id: ValueId) -> fmt::Result {
+        for note in self.notes.iter().filter(|n| n.value == id) {
+            writeln!(f, "  ; {}", note.text)?;
+        }
+        let value = self.value(id);
+        write!(f, "  {id} = {}", self.spell(&value.op))?;
+        match &value.hint {
+            Some(hint) => writeln!(f, "  ; {hint}"),
+            None => writeln!(f),
+        }
+    }
+
+    fn spell(&self, op: &Op) -> String {
+        match op {
+            Op::Const(number) => format!("{:?}", number.value()),
+            Op::Parameter(index) => format!("parameter {}", self.parameters[*index].name),
+            Op::Start => "start".to_owned(),
+            Op::Length => "length".to_owned(),
+            Op::Time => "time".to_owned(),
+            Op::State(slot) => format!("state {}", self.slots[*slot].name),
+            Op::Noise(source) => format!("noise {source}"),
+            Op::Unary(op, a) => format!("{} {a}", op.runtime_name().unwrap_or("neg")),
+            Op::Binary(op, a, b) => format!("{} {a} {b}", op.name()),
+            Op::MulAdd(a, b, c) => format!("mul_add {a} {b} {c}"),
+            Op::Select { compare, a, b, then, otherwise } => {
+                format!("select {a} {} {b} then {then} else {otherwise}", compare.sign())
+            }
+            Op::Cholesky { dim, covariance } => format!("cholesky {dim} {}", list(covariance)),
+            Op::Transition { dim, a, alpha, q, length } => format!(
+                "transition {dim} a {} alpha {} q {} length {length}",
+                list(a),
+                list(alpha),
+                list(q)
+            ),
+            Op::Extract(of, index) => format!("extract {of} {index}"),
+        }
+    }
+}
+
+impl Comparison {
+    /// The sign of the comparison, in Rust too.
+    pub fn sign(self) -> &'static str {
+        match self {
+            Self::Less => "<",
+            Self::LessEqual => "<=",
+        }
+    }
+}
+
+fn list(ids: &[ValueId]) -> String {
+    let ids: Vec<String> = ids.iter().map(ToString::to_string).collect();
+    format!("[{}]", ids.join(" "))
+}
+
+fn describe(check: &Check, program: &Program) -> String {
+    match check {
+        Check::Range { parameter, range } => {
+            let parameter = &program.parameters[*parameter];
+            format!("range {} in {} {}", parameter.name, parameter.range, ends(range))
+        }
+        Check::Assumption { name, compare, left, right, .. } => {
+            format!("assumption {name}: {left} {} {right}", compare.sign())
+        }
+        Check::Initial { state, value, domain } => {
+            format!("initial {state} = {value} in {}", ends(domain))
+        }
+    }
+}
+
+fn ends(range: &super::Range) -> String {
+    let end = |bound: super::Bound| bound.value().map_or("inf".to_owned(), |id| id.to_string());
+    let open = if range.lower.is_closed() { '[' } else { '(' };
+    let close = if range.upper.is_closed() { ']' } else { ')' };
+    format!("{open}{}, {}{close}", end(range.lower), end(range.upper))
+}

@@ -1,0 +1,146 @@
+//! The operations of the step program.
+
+use std::fmt;
+
+use super::functions::{BinaryOp, UnaryOp};
+
+/// A value of a [`Program`](super::Program); values are in single-assignment form.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub struct ValueId(pub(super) u32);
+
+impl ValueId {
+    /// The place of the value in [`Program::values`](super::Program::values).
+    pub fn index(self) -> usize {
+        self.0 as usize
+    }
+}
+
+impl fmt::Display for ValueId {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "%{}", self.0)
+    }
+}
+
+/// A number of the program, equal to another when all its bits are.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub struct Number(u64);
+
+impl Number {
+    /// From its value.
+    pub fn new(value: f64) -> Self {
+        Self(value.to_bits())
+    }
+
+    /// Its value.
+    pub fn value(self) -> f64 {
+        f64::from_bits(self.0)
+    }
+}
+
+/// How a [`Op::Select`] compares; a comparison with NaN is false.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum Comparison {
+    /// `a < b`
+    Less,
+    /// `a <= b`
+    LessEqual,
+}
+
+/// What computes a value.
+#[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum Op {
+    /// A number.
+    Const(Number),
+    /// A parameter, by its index.
+    Parameter(usize),
+    /// Time at the start of the step.
+    Start,
+    /// Length of the step.
+    Length,
+    /// Time of the observation.
+    Time,
+    /// A state slot: at the start of the step, or at the observation.
+    State(usize),
+    /// A standard normal draw of the step, by the index of its source.
+    Noise(usize),
+    /// A function of one value.
+    Unary(UnaryOp, ValueId),
+    /// A function of two values.
+    Binary(BinaryOp, ValueId, ValueId),
+    /// `a * b + c`, rounded once or twice as the arithmetic class says.
+    MulAdd(ValueId, ValueId, ValueId),
+    /// `then` where the comparison of `a` with `b` holds, else `otherwise`.
+    Select {
+        /// The comparison.
+        compare: Comparison,
+        /// Its left side.
+        a: ValueId,
+        /// Its right side.
+        b: ValueId,
+        /// The result where it holds.
+        then: ValueId,
+        /// The result where it does not.
+        otherwise: ValueId,
+    },
+    /// The lower triangular factor of a covariance matrix, row by row: `dim * dim` numbers.
+    Cholesky {
+        /// Rows of the matrix.
+        dim: usize,
+        /// The matrix, row by row.
+        covariance: Box<[ValueId]>,
+    },
+    /// The exact transition of `du = (a u + alpha) dt + noise` of covariance rate `q`: `exp(a h)`
+    /// (`dim * dim` numbers), the shift (`dim`), the covariance (`dim * dim`).
+    Transition {
+        /// Coordinates.
+        dim: usize,
+        /// Drift matrix, row by row.
+        a: Box<[ValueId]>,
+        /// Constant drift.
+        alpha: Box<[ValueId]>,
+        /// Covariance rate, row by row.
+        q: Box<[ValueId]>,
+        /// Length of the step.
+        length: ValueId,
+    },
+    /// One number out of a [`Op::Cholesky`] or [`Op::Transition`].
+    Extract(ValueId, usize),
+}
+
+impl Op {
+    /// The operands, in order.
+    pub fn operands(&self) -> Vec<ValueId> {
+        match self {
+            Self::Const(_)
+            | Self::Parameter(_)
+            | Self::Start
+            | Self::Length
+            | Self::Time
+            | Self::State(_)
+            | Self::Noise(_) => Vec::new(),
+            Self::Unary(_, a) | Self::Extract(a, _) => vec![*a],
+            Self::Binary(_, a, b) => vec![*a, *b],
+            Self::MulAdd(a, b, c) => vec![*a, *b, *c],
+            Self::Select { a, b, then, otherwise, .. } => vec![*a, *b, *then, *otherwise],
+            Self::Cholesky { covariance, .. } => covariance.to_vec(),
+            Self::Transition { a, alpha, q, length, .. } => {
+                let matrices = a.iter().chain(alpha).chain(q).copied();
+                matrices.chain([*length]).collect()
+            }
+        }
+    }
+
+    /// The numbers the operation yields: 1, or more where only [`Op::Extract`] may read it.
+    pub fn width(&self) -> usize {
+        match self {
+            Self::Cholesky { dim, .. } => dim * dim,
+            Self::Transition { dim, .. } => 2 * dim * dim + dim,
+            _ => 1,
+        }
+    }
+
+    /// Whether the result is a whole matrix, which only [`Op::Extract`] may read.
+    pub fn is_aggregate(&self) -> bool {
+        matches!(self, Self::Cholesky { .. } | Self::Transition { .. })
+    }
+}

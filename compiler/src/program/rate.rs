@@ -1,0 +1,63 @@
+//! How often a value of the step program changes.
+
+use std::fmt;
+
+/// How often a value changes. A value is computed as seldom as its operands allow, which is what
+/// moves work out of the loops over paths and steps.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum Rate {
+    /// Known when the model is compiled.
+    Constant,
+    /// Once per parameter set.
+    Setup,
+    /// Once per step of the time grid, the same on every path.
+    Step,
+    /// Once per observation time, the same on every path.
+    Observation,
+    /// In every step on every path.
+    StepLane,
+    /// At every observation on every path.
+    ObservationLane,
+}
+
+impl Rate {
+    /// Every rate, from the slowest to the fastest.
+    pub const ALL: [Self; 6] = [
+        Self::Constant,
+        Self::Setup,
+        Self::Step,
+        Self::Observation,
+        Self::StepLane,
+        Self::ObservationLane,
+    ];
+
+    /// Whether there is one value per path.
+    pub fn is_lane(self) -> bool {
+        matches!(self, Self::StepLane | Self::ObservationLane)
+    }
+
+    /// Whether a value of this rate may read one of rate `operand`.
+    pub fn may_read(self, operand: Self) -> bool {
+        match self {
+            Self::Constant | Self::Setup => operand <= self,
+            Self::Step | Self::Observation => operand <= Self::Setup || operand == self,
+            Self::StepLane => operand <= Self::Step || operand == self,
+            Self::ObservationLane => {
+                operand <= Self::Setup || operand == Self::Observation || operand == self
+            }
+        }
+    }
+}
+
+impl fmt::Display for Rate {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::Constant => "constant",
+            Self::Setup => "setup",
+            Self::Step => "step",
+            Self::Observation => "observation",
+            Self::StepLane => "step lane",
+            Self::ObservationLane => "observation lane",
+        })
+    }
+}

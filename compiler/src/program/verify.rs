@@ -1,0 +1,117 @@
+//! The verifier: what every back end relies on.
+
+use std::fmt;
+
+use super::op::{Op, ValueId};
+use super::rate::Rate;
+use super::{Check, Program};
+
+/// A fault in a program; it is the compiler's, never the author's.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Fault {
+    /// Where.
+    pub value: Option<ValueId>,
+    /// What.
+    pub text: String,
+}
+
+impl fmt::Display for Fault {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self.value {
+            Some(id) => write!(f, "{id}: {}", self.text),
+            None => f.write_str(&self.text),
+        }
+    }
+}
+
+impl Program {
+    /// Checks single assignment (operands stand before what reads them), rates, indices, matrix shapes
+    /// and that matrices are only read entry by entry.
+    ///
+    /// # Errors
+    /// The first fault.
+    pub fn verify(&self) -> Result<(), Fault> {
+        for id in self.ids() {
+            self.verify_value(id).map_err(|text| Fault { value: Some(id), text })?;
+        }
+        self.verify_results().map_err(|text| Fault { value: None, text })
+    }
+
+    fn verify_value(&self, id: ValueId) -> Result<(), String> {
+        let value = self.value(id);
+        for operand in value.op.operands() {
+            if operand >= id {
+                return Err(format!("reads {operand}, which stands after it"));
+            }
+            let read = self.value(operand);
+            if !value.rate.may_read(read.rate) {
+                return Err(format!("of rate {} reads {operand} of rate {}", value.rate, read.rate));
+            }
+            if read.op.is_aggregate() && !matches!(value.op, Op::Extract(..)) {
+                return Err(format!("reads the matrix {operand} as a number"));
+            }
+        }
+        self.verify_leaf(&value.op, value.rate)?;
+        self.verify_matrix(&value.op, value.rate)
+    }
+
+    fn verify_leaf(&self, op: &Op, rate: Rate) -> Result<(), String> {
+        let (index, end) = match *op {
+            Op::Parameter(i) => (i, self.parameters.len()),
+            Op::State(i) => (i, self.slots.len()),
+            Op::Noise(i) => (i, self.sources.len()),
+            _ => (0, 1),
+        };
+        if index >= end {
+            return Err(format!("index {index} where there are {end}"));
+        }
+        let right = match op {
+            Op::Const(_) => rate == Rate::Constant,
+            Op::Parameter(_) => rate == Rate::Setup,
+            Op::Start | Op::Length => rate == Rate::Step,
+            Op::Time => rate == Rate::Observation,
+            Op::State(_) => rate.is_lane(),
+            Op::Noise(_) => rate == Rate::StepLane,
+            _ => true,
+        };
+        if right { Ok(()) } else { Err(format!("a leaf of rate {rate}")) }
+    }
+
+    fn verify_matrix(&self, op: &Op, rate: Rate) -> Result<(), String> {
+        let sound = match op {
+            Op::Cholesky { dim, covariance } => covariance.len() == dim * dim && !rate.is_lane(),
+            Op::Transition { dim, a, alpha, q, .. } => {
+                a.len() == dim * dim && alpha.len() == *dim && q.len() == dim * dim && !rate.is_lane()
+            }
+            Op::Extract(of, index) => {
+                let matrix = &self.value(*of).op;
+                matrix.is_aggregate() && *index < matrix.width()
+            }
+            _ => true,
+        };
+        if sound { Ok(()) } else { Err("a matrix of another shape, or on lanes".to_owned()) }
+    }
+
+    fn verify_results(&self) -> Result<(), String> {
+        let rate = |id: ValueId| self.value(id).rate;
+        for id in self.checks.iter().flat_map(Check::operands).chain(self.correlation) {
+            if rate(id) > Rate::Setup {
+                return Err(format!("a check reads {id} of rate {}", rate(id)));
+            }
+        }
+        for slot in &self.slots {
+            if rate(slot.initial) > Rate::Setup || !Rate::StepLane.may_read(rate(slot.next)) {
+                return Err(format!("slot `{}` has a value of the wrong rate", slot.name));
+            }
+        }
+        for output in &self.outputs {
+            if !Rate::ObservationLane.may_read(rate(output.value)) {
+                return Err(format!("output `{}` has a value of the wrong rate", output.name));
+            }
+        }
+        match self.left_domain {
+            Some(slot) if slot >= self.slots.len() => Err("the flag has no slot".to_owned()),
+            _ => Ok(()),
+        }
+    }
+}
