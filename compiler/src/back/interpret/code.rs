@@ -1,0 +1,151 @@
+//! Lane sections as straight code: operands resolved, registers assigned.
+
+use std::collections::BTreeMap;
+
+use super::uniform::Uniform;
+use crate::program::{BinaryOp, Comparison, Op, Program, Rate, UnaryOp, ValueId};
+
+/// Where an instruction finds an operand.
+#[derive(Clone, Copy, Debug)]
+pub(super) enum Operand {
+    /// A number, the same on all lanes.
+    Number(f64),
+    /// A value of the step or observation, the same on all lanes.
+    Value(usize),
+    /// A state slot.
+    State(usize),
+    /// A lane of draws.
+    Noise(usize),
+    /// A scratch register.
+    Register(usize),
+}
+
+/// What an instruction does with its operands.
+#[derive(Clone, Copy, Debug)]
+pub(super) enum Action {
+    Unary(UnaryOp, Operand),
+    Binary(BinaryOp, Operand, Operand),
+    MulAdd(Operand, Operand, Operand),
+    Select(Comparison, [Operand; 4]),
+}
+
+/// An action and the register its result goes to, which none of its operands is.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Instruction {
+    pub(super) action: Action,
+    pub(super) target: usize,
+}
+
+/// A lane section.
+#[derive(Clone, Debug)]
+pub(super) struct Code {
+    pub(super) instructions: Vec<Instruction>,
+    pub(super) results: Vec<Operand>,
+    /// Scratch lanes needed.
+    pub(super) registers: usize,
+}
+
+impl Code {
+    /// The lanes of a step; the results are the new states.
+    pub(super) fn step(program: &Program, setup: &Uniform) -> Self {
+        let results: Vec<ValueId> = program.slots.iter().map(|s| s.next).collect();
+        Assembler::new(program, setup, Rate::StepLane, &results).assemble(&results)
+    }
+
+    /// The lanes of an observation; the results are the outputs.
+    pub(super) fn observation(program: &Program, setup: &Uniform) -> Self {
+        let results: Vec<ValueId> = program.outputs.iter().map(|o| o.value).collect();
+        Assembler::new(program, setup, Rate::ObservationLane, &results).assemble(&results)
+    }
+}
+
+struct Assembler<'a> {
+    program: &'a Program,
+    setup: &'a Uniform,
+    rate: Rate,
+    values: BTreeMap<ValueId, usize>,
+    last_use: BTreeMap<ValueId, usize>,
+    registers: BTreeMap<ValueId, usize>,
+    free: Vec<usize>,
+    count: usize,
+}
+
+impl<'a> Assembler<'a> {
+    fn new(program: &'a Program, setup: &'a Uniform, rate: Rate, results: &[ValueId]) -> Self {
+        let mut last_use = BTreeMap::new();
+        for id in program.section(rate) {
+            for operand in program.value(id).op.operands() {
+                last_use.insert(operand, id.index());
+            }
+        }
+        for &id in results {
+            last_use.insert(id, usize::MAX);
+        }
+        let stored = match rate {
+            Rate::StepLane => &program.step_values,
+            _ => &program.observation_values,
+        };
+        let values = stored.iter().enumerate().map(|(place, &id)| (id, place)).collect();
+        let registers = BTreeMap::new();
+        Self { program, setup, rate, values, last_use, registers, free: Vec::new(), count: 0 }
+    }
+
+    fn assemble(mut self, results: &[ValueId]) -> Code {
+        let program = self.program;
+        let mut instructions = Vec::new();
+        for id in program.section(self.rate) {
+            let op = &program.value(id).op;
+            if let Some(action) = self.action(op) {
+                // Taken before the operands are released: a target is never an operand.
+                let target = self.take();
+                self.registers.insert(id, target);
+                instructions.push(Instruction { action, target });
+                self.release(op, id);
+            }
+        }
+        let results = results.iter().map(|&id| self.operand(id)).collect();
+        Code { instructions, results, registers: self.count }
+    }
+
+    fn take(&mut self) -> usize {
+        self.free.pop().unwrap_or_else(|| {
+            self.count += 1;
+            self.count - 1
+        })
+    }
+
+    fn release(&mut self, op: &Op, at: ValueId) {
+        let mut operands = op.operands();
+        operands.sort_unstable();
+        operands.dedup();
+        for operand in operands {
+            if self.last_use.get(&operand) == Some(&at.index()) {
+                self.free.extend(self.registers.get(&operand));
+            }
+        }
+    }
+
+    fn action(&self, op: &Op) -> Option<Action> {
+        let operand = |id: ValueId| self.operand(id);
+        match *op {
+            Op::Unary(op, a) => Some(Action::Unary(op, operand(a))),
+            Op::Binary(op, a, b) => Some(Action::Binary(op, operand(a), operand(b))),
+            Op::MulAdd(a, b, c) => Some(Action::MulAdd(operand(a), operand(b), operand(c))),
+            Op::Select { compare, a, b, then, otherwise } => {
+                Some(Action::Select(compare, [a, b, then, otherwise].map(operand)))
+            }
+            _ => None,
+        }
+    }
+
+    fn operand(&self, id: ValueId) -> Operand {
+        let value = self.program.value(id);
+        match value.op {
+            Op::State(slot) => Operand::State(slot),
+            Op::Noise(source) => Operand::Noise(source),
+            _ if value.rate <= Rate::Setup => Operand::Number(self.setup.get(id)),
+            _ if value.rate.is_lane() => Operand::Register(self.registers[&id]),
+            _ => Operand::Value(self.values[&id]),
+        }
+    }
+}

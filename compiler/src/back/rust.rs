@@ -1,0 +1,1 @@
+//! Rust source of a step program.

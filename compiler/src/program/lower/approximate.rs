@@ -1,0 +1,177 @@
+//! One-step schemes on the drivers' increments, the closed ends of domains, and the flag of paths that
+//! have left theirs.
+
+use super::noise::Noise;
+use super::Lowering;
+use crate::program::builder::Phase;
+use crate::program::functions::UnaryOp;
+use crate::program::op::{Comparison, ValueId};
+use crate::program::Slot;
+use crate::scheme::{Component, EdgeRule, StateStep};
+use crate::symbolic::{Bound, Expr};
+
+impl Lowering<'_> {
+    /// `u + a h + sum b_j dW_j + sum c_jk (dW_j dW_k - rho_jk h)`, kept at its closed ends.
+    pub(super) fn approximate_state(&mut self, step: &StateStep, noise: &Noise) -> ValueId {
+        let pool = self.model.pool.clone();
+        let coordinate = &self.plan.coordinates[step.state];
+        let drift = pool.mul(step.drift, self.length());
+        let mut value = self.in_step(pool.add(pool.var(coordinate.symbol), drift));
+        let text = format!(
+            "Drift of {}, {}, over a step.",
+            self.coordinate_text(step.state),
+            pool.format(step.drift)
+        );
+        self.note(step.state, value, text);
+        value = self.diffusion_terms(step, noise, value);
+        value = self.milstein_terms(step, noise, value);
+        let scheme = self.plan.groups[self.plan.group_of(step.state)].scheme.name();
+        let text = self.equation_text(step.state, &format!("stepped by {scheme}"));
+        value = self.at_edges(step, value);
+        self.note(step.state, value, text);
+        value
+    }
+
+    /// The drivers' increments with the same coefficient on every path are mixed before the paths are
+    /// looked at; the others are multiplied on each path.
+    fn diffusion_terms(&mut self, step: &StateStep, noise: &Noise, value: ValueId) -> ValueId {
+        let mut uniform = Vec::new();
+        let mut varying = Vec::new();
+        for (driver, &coefficient) in step.diffusion.iter().enumerate() {
+            if self.model.pool.is_zero_literal(coefficient) {
+                continue;
+            }
+            let id = self.in_step(coefficient);
+            if self.builder.is_lane(id) {
+                varying.push((driver, id));
+            } else {
+                uniform.push((self.component(driver), id));
+            }
+        }
+        let mixture = noise.combine(self, &uniform);
+        let mut value = self.gaussian_part(Some(value), &mixture).expect("starts from a value");
+        for (driver, coefficient) in varying {
+            let increment = self.increment(driver, noise);
+            value = self.builder.mul_add(coefficient, increment, value);
+            let text = format!(
+                "Diffusion of {} by {}: {}.",
+                self.coordinate_text(step.state),
+                self.model.drivers[driver].name,
+                self.model.pool.format(step.diffusion[driver])
+            );
+            self.note(step.state, value, text);
+        }
+        value
+    }
+
+    fn milstein_terms(&mut self, step: &StateStep, noise: &Noise, mut value: ValueId) -> ValueId {
+        let pool = self.model.pool.clone();
+        for &(j, k, coefficient) in &step.milstein {
+            let expected = pool.mul(self.model.correlation[j][k], self.length());
+            let expected = self.in_step(pool.neg(expected));
+            let (first, second) = (self.increment(j, noise), self.increment(k, noise));
+            let deviation = self.builder.mul_add(first, second, expected);
+            let factor = self.in_step(coefficient);
+            value = self.builder.mul_add(factor, deviation, value);
+            let text = format!(
+                "Milstein's term of {} for {} and {}: {}.",
+                self.coordinate_text(step.state),
+                self.model.drivers[j].name,
+                self.model.drivers[k].name,
+                pool.format(coefficient)
+            );
+            self.note(step.state, value, text);
+        }
+        value
+    }
+
+    fn component(&self, driver: usize) -> usize {
+        self.plan
+            .noise
+            .position(Component::Increment { driver })
+            .expect("the plan lists every increment it uses")
+    }
+
+    /// The increment of a driver over the step, on each path.
+    fn increment(&mut self, driver: usize, noise: &Noise) -> ValueId {
+        let component = self.component(driver);
+        let mixture = noise.mixture(component).clone();
+        let increment = self.gaussian_part(None, &mixture).expect("an increment has a source");
+        self.builder.hint(increment, format!("increment_{}", self.model.drivers[driver].name));
+        increment
+    }
+
+    fn at_edges(&mut self, step: &StateStep, mut value: ValueId) -> ValueId {
+        let current = self.current(step.state);
+        for (rule, upper) in [(step.lower, false), (step.upper, true)] {
+            value = match rule {
+                None => value,
+                Some(EdgeRule::Absorb { end }) => {
+                    let end = self.in_step(end);
+                    let stopped = self.beyond(value, end, upper, (end, value));
+                    self.beyond(current, end, upper, (end, stopped))
+                }
+                Some(EdgeRule::Reflect { end }) => self.reflected(value, end, upper),
+            };
+        }
+        value
+    }
+
+    /// `then` where `value` is at or beyond `end`, else `otherwise`.
+    fn beyond(
+        &mut self,
+        value: ValueId,
+        end: ValueId,
+        upper: bool,
+        (then, otherwise): (ValueId, ValueId),
+    ) -> ValueId {
+        let sides = if upper { (end, value) } else { (value, end) };
+        self.builder.select(Comparison::LessEqual, sides, then, otherwise)
+    }
+
+    fn reflected(&mut self, value: ValueId, end: Expr, upper: bool) -> ValueId {
+        let end = self.in_step(end);
+        let inward = if upper { self.builder.sub(end, value) } else { self.builder.sub(value, end) };
+        let distance = self.builder.unary(UnaryOp::Abs, inward);
+        if upper { self.builder.sub(end, distance) } else { self.builder.add(end, distance) }
+    }
+
+    /// A slot that turns 1 when an approximate state leaves its domain, and stays so.
+    pub(super) fn domain_flag(&mut self, slots: &mut Vec<Slot>) -> Option<usize> {
+        let slot = slots.len();
+        let current = self.builder.state(slot, Phase::Step);
+        let mut flag = current;
+        for (state, next) in slots.iter().map(|s| s.next).enumerate() {
+            let group = &self.plan.groups[self.plan.group_of(state)];
+            if !group.is_exact() && !group.preserves_domain {
+                let range = self.model.pool.range(self.plan.coordinates[state].symbol);
+                flag = self.leaving(next, range.lower, false, flag);
+                flag = self.leaving(next, range.upper, true, flag);
+            }
+        }
+        if flag == current {
+            return None;
+        }
+        self.builder.hint(current, "left_domain");
+        let initial = self.builder.number(0.0);
+        slots.push(Slot {
+            name: "left domain".to_owned(),
+            coordinate: "1 once a state has left its domain".to_owned(),
+            initial,
+            next: flag,
+        });
+        Some(slot)
+    }
+
+    fn leaving(&mut self, value: ValueId, bound: Bound, upper: bool, flag: ValueId) -> ValueId {
+        let (end, compare) = match bound {
+            Bound::Infinite => return flag,
+            Bound::Open(end) => (end, Comparison::LessEqual),
+            Bound::Closed(end) => (end, Comparison::Less),
+        };
+        let end = self.in_step(end);
+        let one = self.builder.number(1.0);
+        let sides = if upper { (end, value) } else { (value, end) };
+        self.builder.select(compare, sides, one, flag)
+    }
+}

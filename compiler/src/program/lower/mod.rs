@@ -1,0 +1,194 @@
+//! From the planner's decisions to the step program.
+//!
+//! Formulas are lowered in one of three environments: the constructor (parameters), a step (time at its
+//! start, its length, the stored coordinates, the drivers' increments) and an observation (its time,
+//! the stored coordinates).
+
+mod approximate;
+mod constructor;
+mod exact;
+mod noise;
+mod observe;
+mod runge_kutta;
+
+use std::collections::BTreeMap;
+
+use self::noise::Noise;
+use super::builder::{Builder, Phase};
+use super::formula::{Environment, Formulas};
+use super::op::ValueId;
+use super::{Note, Program, Slot};
+use crate::model::Model;
+use crate::scheme::{Method, Plan};
+use crate::symbolic::{Expr, Symbol, SymbolKind};
+
+/// Lowers a model and its plan. The result has passed [`Program::verify`].
+///
+/// # Panics
+/// When the program does not pass the verifier, or a formula of the plan reads what its place in a step
+/// does not offer: faults of the compiler, not of the model.
+pub fn lower(model: &Model, plan: &Plan) -> Program {
+    let mut lowering = Lowering::new(model, plan);
+    let mut slots = lowering.slots();
+    let left_domain = lowering.domain_flag(&mut slots);
+    let outputs = lowering.outputs();
+    let checks = lowering.checks();
+    let correlation = lowering.correlation();
+    let program = Program {
+        name: model.name.clone(),
+        title: model.title.clone(),
+        about: model.about.clone(),
+        parameters: lowering.parameters(),
+        checks,
+        correlation,
+        sources: plan.noise.components.iter().map(|c| c.source.clone()).collect(),
+        slots,
+        outputs,
+        notes: std::mem::take(&mut lowering.notes),
+        values: lowering.builder.into_values(),
+        step_values: Vec::new(),
+        observation_values: Vec::new(),
+        left_domain,
+        approximate: plan.groups.iter().any(|g| !g.is_exact()),
+    };
+    let program = program.swept();
+    if let Err(fault) = program.verify() {
+        panic!("the step program of `{}` is faulty: {fault}", program.name);
+    }
+    program
+}
+
+/// Everything a pass over the plan shares.
+struct Lowering<'a> {
+    model: &'a Model,
+    plan: &'a Plan,
+    builder: Builder,
+    /// The symbol of the length of a step; no name a formula could contain.
+    length: Symbol,
+    /// What parameters stand for, everywhere.
+    parameters: BTreeMap<Symbol, ValueId>,
+    setup: Environment,
+    step: Environment,
+    observation: Environment,
+    notes: Vec<Note>,
+}
+
+impl<'a> Lowering<'a> {
+    fn new(model: &'a Model, plan: &'a Plan) -> Self {
+        let mut builder = Builder::default();
+        let mut parameters = BTreeMap::new();
+        for (index, parameter) in model.parameters.iter().enumerate() {
+            let id = builder.parameter(index);
+            builder.hint(id, &parameter.name);
+            parameters.insert(parameter.symbol, id);
+        }
+        let length = model.pool.symbol("step length", SymbolKind::Auxiliary);
+        let mut lowering = Self {
+            model,
+            plan,
+            builder,
+            length,
+            setup: Environment::new(parameters.clone()),
+            parameters,
+            step: Environment::default(),
+            observation: Environment::default(),
+            notes: Vec::new(),
+        };
+        let start = lowering.builder.start();
+        let coordinates = lowering.coordinates(Phase::Step);
+        lowering.step = lowering.step_environment(start, coordinates);
+        lowering.observation = lowering.observation_environment();
+        lowering
+    }
+
+    /// What the coordinates' symbols stand for in a phase.
+    fn coordinates(&mut self, phase: Phase) -> BTreeMap<Symbol, ValueId> {
+        let plan = self.plan;
+        let mut values = BTreeMap::new();
+        for coordinate in &plan.coordinates {
+            let id = self.builder.state(coordinate.state, phase);
+            self.builder.hint(id, &self.model.states[coordinate.state].name);
+            values.insert(coordinate.symbol, id);
+        }
+        values
+    }
+
+    /// An environment for formulas taken at `time` within a step.
+    fn step_environment(&mut self, time: ValueId, coordinates: BTreeMap<Symbol, ValueId>) -> Environment {
+        let mut bindings = self.parameters.clone();
+        bindings.extend(coordinates);
+        bindings.insert(self.model.time, time);
+        bindings.insert(self.length, self.builder.length());
+        Environment::new(bindings)
+    }
+
+    fn observation_environment(&mut self) -> Environment {
+        let mut bindings = self.parameters.clone();
+        bindings.extend(self.coordinates(Phase::Observation));
+        bindings.insert(self.model.time, self.builder.time());
+        Environment::new(bindings)
+    }
+
+    fn in_setup(&mut self, formula: Expr) -> ValueId {
+        let environment = &mut self.setup;
+        Formulas { pool: &self.model.pool, builder: &mut self.builder, environment }.lower(formula)
+    }
+
+    fn in_step(&mut self, formula: Expr) -> ValueId {
+        let environment = &mut self.step;
+        Formulas { pool: &self.model.pool, builder: &mut self.builder, environment }.lower(formula)
+    }
+
+    fn in_observation(&mut self, formula: Expr) -> ValueId {
+        let environment = &mut self.observation;
+        Formulas { pool: &self.model.pool, builder: &mut self.builder, environment }.lower(formula)
+    }
+
+    /// The length of a step as a formula.
+    fn length(&self) -> Expr {
+        self.model.pool.var(self.length)
+    }
+
+    fn note(&mut self, slot: usize, value: ValueId, text: String) {
+        self.notes.push(Note { value, slot, text });
+    }
+
+    /// The stored value of a state at the start of a step.
+    fn current(&mut self, state: usize) -> ValueId {
+        self.builder.state(state, Phase::Step)
+    }
+
+    /// The coordinate of a state as people write it: a formula in the state.
+    fn coordinate_text(&self, state: usize) -> String {
+        self.model.pool.format(self.plan.coordinates[state].forward)
+    }
+
+    /// One slot per state, each with its start and its step.
+    fn slots(&mut self) -> Vec<Slot> {
+        let noise = Noise::new(self);
+        let mut next = BTreeMap::new();
+        let plan = self.plan;
+        for (index, group) in plan.groups.iter().enumerate() {
+            match &group.method {
+                Method::LinearGaussian(system) => {
+                    self.exact_group(index, group, system, &noise, &mut next);
+                }
+                Method::Step(steps) => {
+                    for step in steps {
+                        let value = self.approximate_state(step, &noise);
+                        next.insert(step.state, value);
+                    }
+                }
+                Method::RungeKutta4(drifts) => next.extend(self.runge_kutta(drifts)),
+            }
+        }
+        (0..self.model.states.len())
+            .map(|state| Slot {
+                name: self.model.states[state].name.clone(),
+                coordinate: self.coordinate_text(state),
+                initial: self.initial(state),
+                next: next[&state],
+            })
+            .collect()
+    }
+}
