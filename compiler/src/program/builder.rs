@@ -14,8 +14,6 @@ use super::Value;
 /// observation.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub(super) enum Phase {
-    /// The constructor.
-    Setup,
     /// A step.
     Step,
     /// An observation.
@@ -94,7 +92,7 @@ impl Builder {
     pub(super) fn state(&mut self, slot: usize, phase: Phase) -> ValueId {
         let rate = match phase {
             Phase::Observation => Rate::ObservationLane,
-            Phase::Setup | Phase::Step => Rate::StepLane,
+            Phase::Step => Rate::StepLane,
         };
         self.intern(Op::State(slot), rate)
     }

@@ -1,1 +1,0 @@
-//! Rust source of a step program.

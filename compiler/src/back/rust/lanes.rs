@@ -1,0 +1,154 @@
+//! `step` and `observe`: one straight-line loop over the lanes each, which the compiler vectorises.
+
+use std::collections::BTreeSet;
+
+use proc_macro2::{Ident, Span, TokenStream};
+use quote::quote;
+
+use super::spell::Place;
+use super::Generator;
+use crate::program::{Op, Rate, ValueId};
+
+impl Generator<'_> {
+    pub(super) fn step(&self) -> TokenStream {
+        let program = self.program;
+        let results: Vec<ValueId> = program.slots.iter().map(|s| s.next).collect();
+        let bindings = self.lane_bindings(Rate::StepLane, &results);
+        let values = self.value_pattern(&program.step_values);
+        let states = pattern(&self.names.slots, "states", &self.read_or_written_slots());
+        let noise = pattern(&self.names.sources, "noise", &self.read_sources());
+        let statements = self.statements(program.section(Rate::StepLane), Place::Lanes);
+        let changed = program.slots.iter().enumerate().filter(|(slot, s)| !self.is_unchanged(*slot, s.next));
+        let writes = changed.map(|(slot, s)| {
+            let (lane, value) = (&self.names.slots[slot], self.read(s.next));
+            let markers = if self.has_lane_statement(s.next) { TokenStream::new() } else { self.markers(s.next) };
+            quote! { #markers #lane.0[lane] = #value; }
+        });
+        let names = [("values", &values), ("noise", &noise)].map(|(name, used)| argument(name, used));
+        let [values_name, noise_name] = names;
+        let states_name = argument("states", &states);
+        quote! {
+            #[inline(always)]
+            fn step<A: ::driftwright_runtime::Arith>(
+                &self,
+                #values_name: &[f64],
+                #states_name: &mut [::driftwright_runtime::Lane],
+                #noise_name: &[::driftwright_runtime::Lane],
+                _scratch: &mut [::driftwright_runtime::Lane],
+            ) {
+                #bindings
+                #values
+                #states
+                #noise
+                for lane in 0..::driftwright_runtime::LANES {
+                    #statements
+                    #(#writes)*
+                }
+            }
+        }
+    }
+
+    pub(super) fn observe(&self) -> TokenStream {
+        let program = self.program;
+        let results: Vec<ValueId> = program.outputs.iter().map(|o| o.value).collect();
+        let bindings = self.lane_bindings(Rate::ObservationLane, &results);
+        let values = self.value_pattern(&program.observation_values);
+        let states = pattern(&self.names.slots, "states", &self.read_slots(Rate::ObservationLane));
+        let all: BTreeSet<usize> = (0..program.outputs.len()).collect();
+        let outputs = pattern(&self.names.outputs, "outputs", &all);
+        let statements = self.statements(program.section(Rate::ObservationLane), Place::Lanes);
+        let writes = program.outputs.iter().zip(&self.names.outputs).map(|(output, lane)| {
+            let value = self.read(output.value);
+            quote! { #lane.0[lane] = #value; }
+        });
+        let (values_name, states_name) = (argument("values", &values), argument("states", &states));
+        let outputs_name = argument("outputs", &outputs);
+        quote! {
+            #[inline(always)]
+            fn observe<A: ::driftwright_runtime::Arith>(
+                &self,
+                #values_name: &[f64],
+                #states_name: &[::driftwright_runtime::Lane],
+                #outputs_name: &mut [::driftwright_runtime::Lane],
+                _scratch: &mut [::driftwright_runtime::Lane],
+            ) {
+                #bindings
+                #values
+                #states
+                #outputs
+                for lane in 0..::driftwright_runtime::LANES {
+                    #statements
+                    #(#writes)*
+                }
+            }
+        }
+    }
+
+    /// Locals for what lanes read of the simulator itself.
+    fn lane_bindings(&self, rate: Rate, results: &[ValueId]) -> TokenStream {
+        let operands = self.program.section(rate).flat_map(|id| self.program.value(id).op.operands());
+        self.bindings(operands.chain(results.iter().copied()))
+    }
+
+    /// The values of the step or observation by their names.
+    fn value_pattern(&self, stored: &[ValueId]) -> TokenStream {
+        if stored.is_empty() {
+            return TokenStream::new();
+        }
+        let names = stored.iter().map(|&id| self.read(id));
+        quote! {
+            let &[#(#names),*] = values else { unreachable!("the driver passes the values of the step") };
+        }
+    }
+
+    fn has_lane_statement(&self, id: ValueId) -> bool {
+        self.program.value(id).rate.is_lane()
+    }
+
+    fn is_unchanged(&self, slot: usize, next: ValueId) -> bool {
+        self.program.value(next).op == Op::State(slot)
+    }
+
+    fn read_slots(&self, rate: Rate) -> BTreeSet<usize> {
+        let slot = |id| match self.program.value(id).op {
+            Op::State(slot) => Some(slot),
+            _ => None,
+        };
+        self.program.section(rate).filter_map(slot).collect()
+    }
+
+    fn read_or_written_slots(&self) -> BTreeSet<usize> {
+        let slots = self.program.slots.iter().enumerate();
+        let written = slots.filter(|(slot, s)| !self.is_unchanged(*slot, s.next)).map(|(slot, _)| slot);
+        self.read_slots(Rate::StepLane).into_iter().chain(written).collect()
+    }
+
+    fn read_sources(&self) -> BTreeSet<usize> {
+        let source = |id| match self.program.value(id).op {
+            Op::Noise(source) => Some(source),
+            _ => None,
+        };
+        self.program.section(Rate::StepLane).filter_map(source).collect()
+    }
+}
+
+/// `let [a, _, c] = lanes else { .. };` with names for the lanes that are used.
+fn pattern(names: &[Ident], lanes: &str, used: &BTreeSet<usize>) -> TokenStream {
+    if used.is_empty() {
+        return TokenStream::new();
+    }
+    let lanes_name = Ident::new(lanes, Span::call_site());
+    let names = names.iter().enumerate().map(|(place, name)| {
+        if used.contains(&place) { quote! { #name } } else { quote! { _ } }
+    });
+    let message = format!("the driver passes as many {lanes} as the shape says");
+    quote! {
+        let [#(#names),*] = #lanes_name else { unreachable!(#message) };
+    }
+}
+
+/// An argument's name, with an underscore where its pattern is empty.
+fn argument(name: &str, pattern: &TokenStream) -> Ident {
+    let name = if pattern.is_empty() { format!("_{name}") } else { name.to_owned() };
+    Ident::new(&name, Span::call_site())
+}

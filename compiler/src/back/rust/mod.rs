@@ -1,0 +1,116 @@
+//! The Rust back end: the only place that spells Rust arithmetic.
+//!
+//! [`generate`] gives the tokens that the macro expands to; [`generate_source`] the same tokens checked,
+//! formatted, commented and framed, for build scripts and the command line.
+
+mod constructor;
+mod docs;
+mod frame;
+mod lanes;
+mod names;
+mod parameters;
+mod simulator;
+mod spell;
+
+use proc_macro2::TokenStream;
+use quote::quote;
+
+use self::names::Names;
+use crate::program::{Note, Program, ValueId};
+
+/// The version of the interface between generated code and runtime.
+const INTERFACE: (u32, u32) = (0, 1);
+
+/// The module of a model as tokens, without comments.
+pub fn generate(program: &Program) -> TokenStream {
+    Generator::new(program, false).module()
+}
+
+/// The module of a model as formatted source, each coefficient commented with where it comes from.
+///
+/// # Panics
+/// When the tokens are no Rust: a fault of this back end.
+pub fn generate_source(program: &Program) -> String {
+    let generator = Generator::new(program, true);
+    frame::source(program, generator.module())
+}
+
+/// What the parts of a module share.
+struct Generator<'a> {
+    program: &'a Program,
+    names: Names,
+    comments: bool,
+}
+
+impl<'a> Generator<'a> {
+    fn new(program: &'a Program, comments: bool) -> Self {
+        Self { program, names: Names::new(program), comments }
+    }
+
+    fn module(&self) -> TokenStream {
+        let name = names::identifier(&self.program.name);
+        let docs = docs::inner(&docs::module(self.program));
+        let (major, minor) = INTERFACE;
+        let quantities = self.quantities();
+        let parameters = self.parameters();
+        let constructor = self.constructor();
+        let simulator = self.simulator();
+        quote! {
+            #[forbid(unsafe_code)]
+            #[allow(
+                non_snake_case,
+                clippy::doc_markdown,
+                clippy::excessive_precision,
+                clippy::inline_always,
+                clippy::many_single_char_names,
+                clippy::needless_range_loop,
+                clippy::similar_names,
+                clippy::too_many_lines,
+                clippy::unreadable_literal
+            )]
+            pub mod #name {
+                #docs
+
+                const _: () = ::driftwright_runtime::require_version::<
+                    ::driftwright_runtime::Version<#major, #minor>,
+                >();
+
+                #quantities
+                #parameters
+                #constructor
+                #simulator
+            }
+        }
+    }
+
+    /// The places of the observed quantities, by name.
+    fn quantities(&self) -> TokenStream {
+        let constants = self.names.quantities.iter().enumerate().map(|(place, name)| {
+            let docs = docs::outer(&docs::output(&self.program.outputs[place]));
+            quote! { #docs pub const #name: usize = #place; }
+        });
+        quote! {
+            /// The places of the observed quantities among the outputs.
+            pub mod quantity {
+                #(#constants)*
+            }
+        }
+    }
+
+    /// Markers for the notes on a value, or on what moves its slot, replaced by comments once the source
+    /// has been formatted.
+    fn markers(&self, id: ValueId) -> TokenStream {
+        if !self.comments {
+            return TokenStream::new();
+        }
+        let indices = self.program.notes.iter().enumerate().filter(|(_, note)| self.stands_at(note) == id);
+        let markers = indices.map(|(index, _)| quote! { __note!(#index); });
+        quote! { #(#markers)* }
+    }
+
+    /// The value at whose statement a note stands: a value without one passes it on.
+    fn stands_at(&self, note: &Note) -> ValueId {
+        let op = &self.program.value(note.value).op;
+        if spell::has_statement(op) { note.value } else { self.program.slots[note.slot].next }
+    }
+}

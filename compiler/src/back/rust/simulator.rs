@@ -1,0 +1,130 @@
+//! The implementation of the runtime's contract: sizes and names, and what is the same on all lanes.
+
+use std::collections::BTreeSet;
+
+use proc_macro2::TokenStream;
+use quote::quote;
+
+use super::spell::Place;
+use super::Generator;
+use crate::program::{Rate, ValueId};
+
+impl Generator<'_> {
+    pub(super) fn simulator(&self) -> TokenStream {
+        let name = &self.names.simulator;
+        let shape = self.shape();
+        let start = self.start();
+        let step_values = self.uniform(Rate::Step);
+        let observation_values = self.uniform(Rate::Observation);
+        let step = self.step();
+        let observe = self.observe();
+        quote! {
+            impl ::driftwright_runtime::Simulator for #name {
+                #shape
+                #start
+                #step_values
+                #observation_values
+                #step
+                #observe
+            }
+        }
+    }
+
+    fn shape(&self) -> TokenStream {
+        let program = self.program;
+        let (sources, outputs) = (&program.sources, program.outputs.iter().map(|o| &o.name));
+        let (source_count, output_count) = (program.sources.len(), program.outputs.len());
+        let states = program.slots.len();
+        let step_values = program.step_values.len();
+        let observation_values = program.observation_values.len();
+        let left_domain = match program.left_domain {
+            Some(slot) => quote! { Some(#slot) },
+            None => quote! { None },
+        };
+        let (time_dependent, approximate) = (program.time_dependent(), program.approximate);
+        quote! {
+            fn shape(&self) -> ::driftwright_runtime::Shape<'_> {
+                static SOURCES: [::driftwright_runtime::Source; #source_count] =
+                    [#(::driftwright_runtime::Source::new(#sources)),*];
+                static OUTPUTS: [::std::borrow::Cow<'static, str>; #output_count] =
+                    [#(::std::borrow::Cow::Borrowed(#outputs)),*];
+                ::driftwright_runtime::Shape {
+                    states: #states,
+                    step_values: #step_values,
+                    step_scratch: 0,
+                    sources: &SOURCES,
+                    outputs: &OUTPUTS,
+                    observation_values: #observation_values,
+                    observation_scratch: 0,
+                    left_domain: #left_domain,
+                    time_dependent: #time_dependent,
+                    approximate: #approximate,
+                }
+            }
+        }
+    }
+
+    fn start(&self) -> TokenStream {
+        let initials: Vec<ValueId> = self.program.slots.iter().map(|s| s.initial).collect();
+        let bindings = self.bindings(initials.iter().copied());
+        let initials = initials.iter().map(|&id| self.read(id));
+        quote! {
+            fn start(&self, states: &mut [f64]) {
+                #bindings
+                states.copy_from_slice(&[#(#initials),*]);
+            }
+        }
+    }
+
+    /// `step_values` or `observation_values`.
+    fn uniform(&self, rate: Rate) -> TokenStream {
+        let program = self.program;
+        let read = program.section(rate).flat_map(|id| program.value(id).op.operands());
+        let bindings = self.bindings(read);
+        let statements = self.statements(program.section(rate), Place::Uniform);
+        let (stored, step) = match rate {
+            Rate::Step => (&program.step_values, true),
+            _ => (&program.observation_values, false),
+        };
+        let uses = |op: &crate::program::Op| program.values.iter().any(|v| v.op == *op);
+        let argument = |name: &str, used: bool| {
+            let name = if used { name.to_owned() } else { format!("_{name}") };
+            proc_macro2::Ident::new(&name, proc_macro2::Span::call_site())
+        };
+        let values = argument("values", !stored.is_empty());
+        let write = if stored.is_empty() {
+            TokenStream::new()
+        } else {
+            let stored = stored.iter().map(|&id| self.read(id));
+            quote! { values.copy_from_slice(&[#(#stored),*]); }
+        };
+        let signature = if step {
+            let start = argument("start", uses(&crate::program::Op::Start));
+            let length = argument("length", uses(&crate::program::Op::Length));
+            quote! { fn step_values(&self, #start: f64, #length: f64, #values: &mut [f64]) }
+        } else {
+            let time = argument("time", uses(&crate::program::Op::Time));
+            quote! { fn observation_values(&self, #time: f64, #values: &mut [f64]) }
+        };
+        quote! {
+            #signature -> Result<(), ::driftwright_runtime::StepError> {
+                #bindings
+                #statements
+                #write
+                Ok(())
+            }
+        }
+    }
+
+    /// Locals for the parameters and setup values among the operands.
+    pub(super) fn bindings(&self, operands: impl Iterator<Item = ValueId>) -> TokenStream {
+        let read: BTreeSet<ValueId> = operands.collect();
+        let parameters = self.bind_parameters(&read, &quote! { self.parameters });
+        let stored = self.fields_of_simulator();
+        let fields = read.iter().filter(|id| stored.contains(id)).map(|&id| {
+            let name = self.names.value(id);
+            quote! { let #name = self.#name; }
+        });
+        quote! { #parameters #(#fields)* }
+    }
+}

@@ -1,0 +1,199 @@
+//! How an operation is written in Rust.
+
+use proc_macro2::{Ident, Literal, Span, TokenStream};
+use quote::quote;
+
+use super::Generator;
+use crate::program::{BinaryOp, Comparison, Op, ValueId};
+
+/// Where an expression stands: lanes compute in the driver's arithmetic class, everything else unfused.
+#[derive(Clone, Copy, PartialEq, Eq)]
+pub(super) enum Place {
+    /// The constructor.
+    Setup,
+    /// The values of a step or an observation.
+    Uniform,
+    /// The loop over lanes.
+    Lanes,
+}
+
+/// Whether a value is computed by a statement of its own; constants are written where they are read.
+pub(super) fn has_statement(op: &Op) -> bool {
+    !matches!(op, Op::Const(_) | Op::Parameter(_) | Op::Start | Op::Length | Op::Time)
+}
+
+/// A number as a literal that reads back to the same bits.
+pub(super) fn number(value: f64) -> TokenStream {
+    if value.is_nan() {
+        return quote! { f64::NAN };
+    }
+    let size = if value.is_infinite() {
+        quote! { f64::INFINITY }
+    } else {
+        let text = format!("{:?}", value.abs());
+        let literal: Literal = text.parse().expect("a finite double prints as a literal");
+        quote! { #literal }
+    };
+    if value.is_sign_negative() { quote! { -#size } } else { size }
+}
+
+impl Generator<'_> {
+    /// A value where it is read.
+    pub(super) fn read(&self, id: ValueId) -> TokenStream {
+        match self.program.value(id).op {
+            Op::Const(value) => number(value.value()),
+            Op::Start => quote! { start },
+            Op::Length => quote! { length },
+            Op::Time => quote! { time },
+            _ => {
+                let name = self.names.value(id);
+                quote! { #name }
+            }
+        }
+    }
+
+    /// The statements that compute values, in order, each after its comments.
+    pub(super) fn statements(&self, ids: impl Iterator<Item = ValueId>, place: Place) -> TokenStream {
+        let statements = ids.filter(|&id| has_statement(&self.program.value(id).op)).map(|id| {
+            let (markers, statement) = (self.markers(id), self.statement(id, place));
+            quote! { #markers #statement }
+        });
+        quote! { #(#statements)* }
+    }
+
+    fn statement(&self, id: ValueId, place: Place) -> TokenStream {
+        let name = self.names.value(id);
+        match &self.program.value(id).op {
+            Op::Cholesky { dim, covariance } => self.cholesky(name, *dim, covariance, place),
+            Op::Transition { dim, a, alpha, q, length } => {
+                self.transition(name, *dim, [a, alpha, q], *length)
+            }
+            op => {
+                let expression = self.expression(op, place);
+                quote! { let #name = #expression; }
+            }
+        }
+    }
+
+    fn expression(&self, op: &Op, place: Place) -> TokenStream {
+        let class = if place == Place::Lanes {
+            quote! { A }
+        } else {
+            quote! { ::driftwright_runtime::Unfused }
+        };
+        match *op {
+            Op::Unary(op, a) => {
+                let a = self.read(a);
+                match op.runtime_name() {
+                    None => quote! { -#a },
+                    Some(name) => {
+                        let name = Ident::new(name, Span::call_site());
+                        quote! { ::driftwright_runtime::math::#name::<#class>(#a) }
+                    }
+                }
+            }
+            Op::Binary(op, a, b) => self.binary(op, a, b, &class),
+            Op::MulAdd(a, b, c) => {
+                let (a, b, c) = (self.read(a), self.read(b), self.read(c));
+                quote! { <#class as ::driftwright_runtime::Arith>::mul_add(#a, #b, #c) }
+            }
+            Op::Select { compare, a, b, then, otherwise } => {
+                let comparison = self.comparison(compare, a, b);
+                let (then, otherwise) = (self.read(then), self.read(otherwise));
+                quote! { if #comparison { #then } else { #otherwise } }
+            }
+            Op::Extract(of, index) => self.extract(of, index),
+            Op::State(slot) => {
+                let lane = &self.names.slots[slot];
+                quote! { #lane.0[lane] }
+            }
+            Op::Noise(source) => {
+                let lane = &self.names.sources[source];
+                quote! { #lane.0[lane] }
+            }
+            _ => unreachable!("written where it is read"),
+        }
+    }
+
+    fn binary(&self, op: BinaryOp, a: ValueId, b: ValueId, class: &TokenStream) -> TokenStream {
+        let (a, b) = (self.read(a), self.read(b));
+        match op {
+            BinaryOp::Add => quote! { #a + #b },
+            BinaryOp::Sub => quote! { #a - #b },
+            BinaryOp::Mul => quote! { #a * #b },
+            BinaryOp::Div => quote! { #a / #b },
+            BinaryOp::Pow | BinaryOp::Min | BinaryOp::Max => {
+                let name = Ident::new(op.name(), Span::call_site());
+                quote! { ::driftwright_runtime::math::#name::<#class>(#a, #b) }
+            }
+        }
+    }
+
+    pub(super) fn comparison(&self, compare: Comparison, a: ValueId, b: ValueId) -> TokenStream {
+        let (a, b) = (self.read(a), self.read(b));
+        match compare {
+            Comparison::Less => quote! { #a < #b },
+            Comparison::LessEqual => quote! { #a <= #b },
+        }
+    }
+
+    fn reads(&self, ids: &[ValueId]) -> Vec<TokenStream> {
+        ids.iter().map(|&id| self.read(id)).collect()
+    }
+
+    fn cholesky(&self, name: &Ident, dim: usize, covariance: &[ValueId], place: Place) -> TokenStream {
+        let size = dim * dim;
+        let covariance = self.reads(covariance);
+        let refused = if place == Place::Setup {
+            quote! { .map_err(|_| ::driftwright_runtime::ParameterError::CorrelationNotPositiveSemidefinite)? }
+        } else {
+            quote! { ? }
+        };
+        quote! {
+            let mut #name = [0.0; #size];
+            ::driftwright_runtime::gauss::cholesky(#dim, &[#(#covariance),*], &mut #name)#refused;
+        }
+    }
+
+    fn transition(
+        &self,
+        name: &Ident,
+        dim: usize,
+        [a, alpha, q]: [&[ValueId]; 3],
+        length: ValueId,
+    ) -> TokenStream {
+        let size = dim * dim;
+        let (a, alpha, q) = (self.reads(a), self.reads(alpha), self.reads(q));
+        let length = self.read(length);
+        quote! {
+            let mut #name = ([0.0; #size], [0.0; #dim], [0.0; #size]);
+            ::driftwright_runtime::gauss::linear_transition(
+                #dim,
+                &[#(#a),*],
+                &[#(#alpha),*],
+                &[#(#q),*],
+                #length,
+                &mut #name.0,
+                &mut #name.1,
+                &mut #name.2,
+            )?;
+        }
+    }
+
+    fn extract(&self, of: ValueId, index: usize) -> TokenStream {
+        let name = self.names.value(of);
+        let index_of = Literal::usize_unsuffixed;
+        let Op::Transition { dim, .. } = self.program.value(of).op else {
+            let index = index_of(index);
+            return quote! { #name[#index] };
+        };
+        let parts = [dim * dim, dim, dim * dim];
+        let (mut part, mut index) = (0, index);
+        while index >= parts[part] {
+            index -= parts[part];
+            part += 1;
+        }
+        let (part, index) = (index_of(part), index_of(index));
+        quote! { #name.#part[#index] }
+    }
+}
