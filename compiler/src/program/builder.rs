@@ -5,10 +5,10 @@ use std::collections::HashMap;
 
 use driftwright_runtime::Unfused;
 
+use super::Value;
 use super::functions::{BinaryOp, UnaryOp};
 use super::op::{Comparison, Number, Op, ValueId};
 use super::rate::Rate;
-use super::Value;
 
 /// What lanes are being built for: the same state slot is another value in a step and at an
 /// observation.
@@ -57,15 +57,26 @@ impl Builder {
         if let Some(&id) = self.index.get(&(op.clone(), rate)) {
             return id;
         }
-        let id = ValueId(u32::try_from(self.values.len()).expect("a program has fewer than 2^32 values"));
-        self.values.push(Value { op: op.clone(), rate, hint: None });
+        let id = ValueId(
+            u32::try_from(self.values.len()).expect("a program has fewer than 2^32 values"),
+        );
+        self.values.push(Value {
+            op: op.clone(),
+            rate,
+            hint: None,
+        });
         self.index.insert((op, rate), id);
         id
     }
 
     /// A value whose rate follows from its operands.
     fn computed(&mut self, op: Op) -> ValueId {
-        let rate = op.operands().into_iter().map(|id| self.rate(id)).max().unwrap_or(Rate::Constant);
+        let rate = op
+            .operands()
+            .into_iter()
+            .map(|id| self.rate(id))
+            .max()
+            .unwrap_or(Rate::Constant);
         self.intern(op, rate)
     }
 
@@ -119,7 +130,11 @@ impl Builder {
         if let (Some(x), Some(y)) = (self.constant_value(a), self.constant_value(b)) {
             return self.number(op.apply::<Unfused>(x, y));
         }
-        let (a, b) = if op.commutes() && b < a { (b, a) } else { (a, b) };
+        let (a, b) = if op.commutes() && b < a {
+            (b, a)
+        } else {
+            (a, b)
+        };
         self.computed(Op::Binary(op, a, b))
     }
 
@@ -164,7 +179,9 @@ impl Builder {
 
     /// `a * b + c`: fused where it is computed on lanes, else a product and a sum.
     pub(super) fn mul_add(&mut self, a: ValueId, b: ValueId, c: ValueId) -> ValueId {
-        let trivial = [a, b].iter().any(|&f| matches!(self.constant_value(f), Some(1.0 | -1.0)));
+        let trivial = [a, b]
+            .iter()
+            .any(|&f| matches!(self.constant_value(f), Some(1.0 | -1.0)));
         let uniform = !self.is_lane(a) && !self.is_lane(b);
         if trivial || uniform || self.constant_value(c) == Some(0.0) {
             let product = self.mul(a, b);
@@ -181,7 +198,13 @@ impl Builder {
         then: ValueId,
         otherwise: ValueId,
     ) -> ValueId {
-        self.computed(Op::Select { compare, a, b, then, otherwise })
+        self.computed(Op::Select {
+            compare,
+            a,
+            b,
+            then,
+            otherwise,
+        })
     }
 
     /// The square root.
@@ -191,12 +214,20 @@ impl Builder {
 
     /// The lower triangular factor of a matrix, row by row.
     pub(super) fn cholesky(&mut self, dim: usize, covariance: Vec<ValueId>) -> ValueId {
-        self.matrix(Op::Cholesky { dim, covariance: covariance.into() })
+        self.matrix(Op::Cholesky {
+            dim,
+            covariance: covariance.into(),
+        })
     }
 
     /// A matrix operation. Never folded, so that what can fail fails in the constructor at the earliest.
     pub(super) fn matrix(&mut self, op: Op) -> ValueId {
-        let rate = op.operands().into_iter().map(|id| self.rate(id)).max().unwrap_or(Rate::Setup);
+        let rate = op
+            .operands()
+            .into_iter()
+            .map(|id| self.rate(id))
+            .max()
+            .unwrap_or(Rate::Setup);
         self.intern(op, rate.max(Rate::Setup))
     }
 

@@ -74,11 +74,17 @@ pub enum Check {
 impl Check {
     /// The values the check reads.
     pub fn operands(&self) -> Vec<ValueId> {
-        let ends = |range: &Range| [range.lower, range.upper].into_iter().filter_map(Bound::value);
+        let ends = |range: &Range| {
+            [range.lower, range.upper]
+                .into_iter()
+                .filter_map(Bound::value)
+        };
         match self {
             Self::Range { range, .. } => ends(range).collect(),
             Self::Assumption { left, right, .. } => vec![*left, *right],
-            Self::Initial { value, domain, .. } => std::iter::once(*value).chain(ends(domain)).collect(),
+            Self::Initial { value, domain, .. } => {
+                std::iter::once(*value).chain(ends(domain)).collect()
+            }
         }
     }
 
@@ -89,15 +95,40 @@ impl Check {
             Bound::Open(id) => Bound::Open(f(id)),
             Bound::Closed(id) => Bound::Closed(f(id)),
         };
-        let range = |r: Range| Range { lower: bound(r.lower), upper: bound(r.upper) };
+        let range = |r: Range| Range {
+            lower: bound(r.lower),
+            upper: bound(r.upper),
+        };
         match self {
-            Self::Range { parameter, range: r } => Self::Range { parameter, range: range(r) },
-            Self::Assumption { name, text, compare, left, right } => {
-                Self::Assumption { name, text, compare, left: f(left), right: f(right) }
-            }
-            Self::Initial { state, value, domain } => {
-                Self::Initial { state, value: f(value), domain: range(domain) }
-            }
+            Self::Range {
+                parameter,
+                range: r,
+            } => Self::Range {
+                parameter,
+                range: range(r),
+            },
+            Self::Assumption {
+                name,
+                text,
+                compare,
+                left,
+                right,
+            } => Self::Assumption {
+                name,
+                text,
+                compare,
+                left: f(left),
+                right: f(right),
+            },
+            Self::Initial {
+                state,
+                value,
+                domain,
+            } => Self::Initial {
+                state,
+                value: f(value),
+                domain: range(domain),
+            },
         }
     }
 }

@@ -22,9 +22,15 @@ impl fmt::Display for Program {
             writeln!(f, "check {}", describe(check, self))?;
         }
         for slot in &self.slots {
-            writeln!(f, "slot {} = {}: {} -> {}", slot.name, slot.coordinate, slot.initial, slot.next)?;
+            writeln!(
+                f,
+                "slot {} = {}: {} -> {}",
+                slot.name, slot.coordinate, slot.initial, slot.next
+            )?;
         }
-        self.outputs.iter().try_for_each(|o| writeln!(f, "output {} = {}", o.name, o.value))
+        self.outputs
+            .iter()
+            .try_for_each(|o| writeln!(f, "output {} = {}", o.name, o.value))
     }
 }
 
@@ -53,11 +59,26 @@ impl Program {
             Op::Unary(op, a) => format!("{} {a}", op.runtime_name().unwrap_or("neg")),
             Op::Binary(op, a, b) => format!("{} {a} {b}", op.name()),
             Op::MulAdd(a, b, c) => format!("mul_add {a} {b} {c}"),
-            Op::Select { compare, a, b, then, otherwise } => {
-                format!("select {a} {} {b} then {then} else {otherwise}", compare.sign())
+            Op::Select {
+                compare,
+                a,
+                b,
+                then,
+                otherwise,
+            } => {
+                format!(
+                    "select {a} {} {b} then {then} else {otherwise}",
+                    compare.sign()
+                )
             }
             Op::Cholesky { dim, covariance } => format!("cholesky {dim} {}", list(covariance)),
-            Op::Transition { dim, a, alpha, q, length } => format!(
+            Op::Transition {
+                dim,
+                a,
+                alpha,
+                q,
+                length,
+            } => format!(
                 "transition {dim} a {} alpha {} q {} length {length}",
                 list(a),
                 list(alpha),
@@ -87,12 +108,27 @@ fn describe(check: &Check, program: &Program) -> String {
     match check {
         Check::Range { parameter, range } => {
             let parameter = &program.parameters[*parameter];
-            format!("range {} in {} {}", parameter.name, parameter.range, ends(range))
+            format!(
+                "range {} in {} {}",
+                parameter.name,
+                parameter.range,
+                ends(range)
+            )
         }
-        Check::Assumption { name, compare, left, right, .. } => {
+        Check::Assumption {
+            name,
+            compare,
+            left,
+            right,
+            ..
+        } => {
             format!("assumption {name}: {left} {} {right}", compare.sign())
         }
-        Check::Initial { state, value, domain } => {
+        Check::Initial {
+            state,
+            value,
+            domain,
+        } => {
             format!("initial {state} = {value} in {}", ends(domain))
         }
     }

@@ -21,7 +21,10 @@ pub(super) struct Environment {
 
 impl Environment {
     pub(super) fn new(bindings: BTreeMap<Symbol, ValueId>) -> Self {
-        Self { bindings, memo: HashMap::new() }
+        Self {
+            bindings,
+            memo: HashMap::new(),
+        }
     }
 }
 
@@ -54,7 +57,9 @@ impl Formulas<'_> {
         let mut stack = vec![formula];
         while let Some(expr) = stack.pop() {
             if !self.environment.memo.contains_key(&expr) && found.insert(expr) {
-                self.pool.node(expr).for_each_child(|child| stack.push(child));
+                self.pool
+                    .node(expr)
+                    .for_each_child(|child| stack.push(child));
             }
         }
         found
@@ -81,7 +86,10 @@ impl Formulas<'_> {
 
     fn symbol(&self, symbol: Symbol) -> ValueId {
         *self.environment.bindings.get(&symbol).unwrap_or_else(|| {
-            panic!("`{}` has no value in this part of the step program", self.pool.symbol_name(symbol))
+            panic!(
+                "`{}` has no value in this part of the step program",
+                self.pool.symbol_name(symbol)
+            )
         })
     }
 
@@ -116,7 +124,13 @@ impl Formulas<'_> {
 
     /// `base^number` for `number >= 0`: by multiplications where it is an integer, with a square root
     /// where it is half of one. `negated`: the exponent stood with a minus sign.
-    fn number_power(&mut self, base: Expr, number: &Rational, exponent: Expr, negated: bool) -> ValueId {
+    fn number_power(
+        &mut self,
+        base: Expr,
+        number: &Rational,
+        exponent: Expr,
+        negated: bool,
+    ) -> ValueId {
         let doubled = u32::try_from((number * Rational::from(2)).trunc());
         let halves = doubled.ok().filter(|&n| {
             Rational::from(n) == number * Rational::from(2) && n <= 2 * LARGEST_MULTIPLIED_POWER
@@ -124,7 +138,11 @@ impl Formulas<'_> {
         let base = self.known(base);
         let Some(halves) = halves else {
             let exponent = self.known(exponent);
-            let exponent = if negated { self.builder.neg(exponent) } else { exponent };
+            let exponent = if negated {
+                self.builder.neg(exponent)
+            } else {
+                exponent
+            };
             return self.builder.binary(BinaryOp::Pow, base, exponent);
         };
         if halves % 2 == 0 {
@@ -142,7 +160,10 @@ impl Formulas<'_> {
     fn term(&mut self, expr: Expr) -> Term {
         let node = self.pool.node(expr);
         let Node::Product(factors) = &*node else {
-            return Term { negative: false, factors: (self.known(expr), None) };
+            return Term {
+                negative: false,
+                factors: (self.known(expr), None),
+            };
         };
         let mut negative = false;
         let mut up: BTreeMap<Rate, Vec<ValueId>> = BTreeMap::new();
@@ -151,22 +172,37 @@ impl Formulas<'_> {
             let (id, side) = match &*self.pool.node(factor) {
                 Node::Number(value) => {
                     negative = *value < Rational::ZERO;
-                    let size = if negative { -value.clone() } else { value.clone() };
+                    let size = if negative {
+                        -value.clone()
+                    } else {
+                        value.clone()
+                    };
                     (self.builder.number(nearest(&size)), &mut up)
                 }
                 Node::Power(base, exponent) if self.is_negative(*exponent) => {
-                    let number = self.pool.as_number(*exponent).expect("the exponent is a number");
-                    (self.number_power(*base, &-number, *exponent, true), &mut down)
+                    let number = self
+                        .pool
+                        .as_number(*exponent)
+                        .expect("the exponent is a number");
+                    (
+                        self.number_power(*base, &-number, *exponent, true),
+                        &mut down,
+                    )
                 }
                 _ => (self.known(factor), &mut up),
             };
             side.entry(self.builder.rate(id)).or_default().push(id);
         }
-        Term { negative, factors: self.combine(&mut up, &mut down) }
+        Term {
+            negative,
+            factors: self.combine(&mut up, &mut down),
+        }
     }
 
     fn is_negative(&self, exponent: Expr) -> bool {
-        self.pool.as_number(exponent).is_some_and(|n| n < Rational::ZERO)
+        self.pool
+            .as_number(exponent)
+            .is_some_and(|n| n < Rational::ZERO)
     }
 
     /// The two factors of a product: what is the same on all lanes, and what is not; or the last factor
@@ -180,7 +216,10 @@ impl Formulas<'_> {
         for rate in Rate::ALL.into_iter().filter(|r| !r.is_lane()) {
             let above = up.remove(&rate).unwrap_or_default();
             let below = down.remove(&rate).unwrap_or_default();
-            let numerator = uniform.into_iter().chain(above).reduce(|a, b| self.builder.mul(a, b));
+            let numerator = uniform
+                .into_iter()
+                .chain(above)
+                .reduce(|a, b| self.builder.mul(a, b));
             let denominator = below.into_iter().reduce(|a, b| self.builder.mul(a, b));
             uniform = self.quotient(numerator, denominator);
         }
@@ -188,7 +227,11 @@ impl Formulas<'_> {
         let mut above: Vec<ValueId> = std::mem::take(up).into_values().flatten().collect();
         let below: Vec<ValueId> = std::mem::take(down).into_values().flatten().collect();
         if below.is_empty() {
-            let last = if uniform.is_none() && above.len() > 1 { above.pop() } else { None };
+            let last = if uniform.is_none() && above.len() > 1 {
+                above.pop()
+            } else {
+                None
+            };
             let lanes = above.into_iter().reduce(|a, b| self.builder.mul(a, b));
             return match (uniform, lanes) {
                 (Some(u), Some(lanes)) => (u, Some(lanes)),
@@ -197,14 +240,23 @@ impl Formulas<'_> {
                 (None, None) => (self.builder.number(1.0), None),
             };
         }
-        let numerator = uniform.into_iter().chain(above).reduce(|a, b| self.builder.mul(a, b));
+        let numerator = uniform
+            .into_iter()
+            .chain(above)
+            .reduce(|a, b| self.builder.mul(a, b));
         let denominator = below.into_iter().reduce(|a, b| self.builder.mul(a, b));
         let quotient = self.quotient(numerator, denominator);
         (quotient.expect("a product has a factor"), None)
     }
 
-    fn quotient(&mut self, numerator: Option<ValueId>, denominator: Option<ValueId>) -> Option<ValueId> {
-        let Some(denominator) = denominator else { return numerator };
+    fn quotient(
+        &mut self,
+        numerator: Option<ValueId>,
+        denominator: Option<ValueId>,
+    ) -> Option<ValueId> {
+        let Some(denominator) = denominator else {
+            return numerator;
+        };
         let numerator = numerator.unwrap_or_else(|| self.builder.number(1.0));
         Some(self.builder.div(numerator, denominator))
     }
@@ -230,9 +282,15 @@ impl Formulas<'_> {
         for &expr in terms {
             let term = self.term(expr);
             let (first, second) = term.factors;
-            let rate = second.map_or(Rate::Constant, |s| self.builder.rate(s)).max(self.builder.rate(first));
+            let rate = second
+                .map_or(Rate::Constant, |s| self.builder.rate(s))
+                .max(self.builder.rate(first));
             let (singles, products) = by_rate.entry(rate).or_default();
-            if second.is_some() { products.push(term) } else { singles.push(term) }
+            if second.is_some() {
+                products.push(term)
+            } else {
+                singles.push(term)
+            }
         }
         let mut total: Option<ValueId> = None;
         for (singles, products) in by_rate.into_values() {
@@ -244,13 +302,19 @@ impl Formulas<'_> {
     }
 
     fn accumulate(&mut self, total: Option<ValueId>, term: &Term) -> ValueId {
-        let Some(total) = total else { return self.value_of(term) };
+        let Some(total) = total else {
+            return self.value_of(term);
+        };
         let (first, second) = term.factors;
         match (second, term.negative) {
             (None, false) => self.builder.add(total, first),
             (None, true) => self.builder.sub(total, first),
             (Some(second), negative) => {
-                let first = if negative { self.builder.neg(first) } else { first };
+                let first = if negative {
+                    self.builder.neg(first)
+                } else {
+                    first
+                };
                 self.builder.mul_add(first, second, total)
             }
         }

@@ -155,7 +155,9 @@ impl Program {
 
     /// Whether a coefficient or an observation depends on time itself, not only on the length of a step.
     pub fn time_dependent(&self) -> bool {
-        self.values.iter().any(|v| matches!(v.op, Op::Start | Op::Time))
+        self.values
+            .iter()
+            .any(|v| matches!(v.op, Op::Start | Op::Time))
     }
 
     /// The setup values the checks need; constructors compute them before anything that can fail.
@@ -164,11 +166,20 @@ impl Program {
         for id in self.checks.iter().flat_map(Check::operands) {
             needed[id.index()] = true;
         }
-        for id in self.ids().collect::<Vec<_>>().into_iter().rev().filter(|id| needed[id.index()]).collect::<Vec<_>>() {
+        for id in self
+            .ids()
+            .collect::<Vec<_>>()
+            .into_iter()
+            .rev()
+            .filter(|id| needed[id.index()])
+            .collect::<Vec<_>>()
+        {
             for operand in self.value(id).op.operands() {
                 needed[operand.index()] = true;
             }
         }
-        self.section(Rate::Setup).filter(|id| needed[id.index()]).collect()
+        self.section(Rate::Setup)
+            .filter(|id| needed[id.index()])
+            .collect()
     }
 }

@@ -121,9 +121,21 @@ impl Op {
             Self::Unary(_, a) | Self::Extract(a, _) => vec![*a],
             Self::Binary(_, a, b) => vec![*a, *b],
             Self::MulAdd(a, b, c) => vec![*a, *b, *c],
-            Self::Select { a, b, then, otherwise, .. } => vec![*a, *b, *then, *otherwise],
+            Self::Select {
+                a,
+                b,
+                then,
+                otherwise,
+                ..
+            } => vec![*a, *b, *then, *otherwise],
             Self::Cholesky { covariance, .. } => covariance.to_vec(),
-            Self::Transition { a, alpha, q, length, .. } => {
+            Self::Transition {
+                a,
+                alpha,
+                q,
+                length,
+                ..
+            } => {
                 let matrices = a.iter().chain(alpha).chain(q).copied();
                 matrices.chain([*length]).collect()
             }

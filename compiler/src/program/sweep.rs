@@ -13,7 +13,11 @@ impl Program {
         let slots = self.slots.iter().flat_map(|s| [s.initial, s.next]);
         let outputs = self.outputs.iter().map(|o| o.value);
         let checks = self.checks.iter().flat_map(Check::operands);
-        slots.chain(outputs).chain(checks).chain(self.correlation).collect()
+        slots
+            .chain(outputs)
+            .chain(checks)
+            .chain(self.correlation)
+            .collect()
     }
 
     /// The program without the values nothing reads.
@@ -57,7 +61,10 @@ impl Program {
         }
         self.correlation = self.correlation.map(|id| renumbered(new_ids, id));
         let checks = std::mem::take(&mut self.checks);
-        self.checks = checks.into_iter().map(|c| c.map(|id| renumbered(new_ids, id))).collect();
+        self.checks = checks
+            .into_iter()
+            .map(|c| c.map(|id| renumbered(new_ids, id)))
+            .collect();
         let slots = &self.slots;
         for note in &mut self.notes {
             // What folded away is told where the slot moves.
@@ -67,13 +74,17 @@ impl Program {
 
     /// The values of rate `uniform` that lanes of rate `lane` read or that are themselves results.
     fn read_by_lanes(&self, uniform: Rate, lane: Rate) -> Vec<ValueId> {
-        let operands = self.section(lane).flat_map(|id| self.value(id).op.operands());
+        let operands = self
+            .section(lane)
+            .flat_map(|id| self.value(id).op.operands());
         let results: Vec<ValueId> = match lane {
             Rate::StepLane => self.slots.iter().map(|s| s.next).collect(),
             _ => self.outputs.iter().map(|o| o.value).collect(),
         };
-        let read: BTreeSet<ValueId> =
-            operands.chain(results).filter(|&id| self.value(id).rate == uniform).collect();
+        let read: BTreeSet<ValueId> = operands
+            .chain(results)
+            .filter(|&id| self.value(id).rate == uniform)
+            .collect();
         read.into_iter().collect()
     }
 }
@@ -90,13 +101,36 @@ impl Op {
             Self::Unary(op, a) => Self::Unary(op, f(a)),
             Self::Binary(op, a, b) => Self::Binary(op, f(a), f(b)),
             Self::MulAdd(a, b, c) => Self::MulAdd(f(a), f(b), f(c)),
-            Self::Select { compare, a, b, then, otherwise } => {
-                Self::Select { compare, a: f(a), b: f(b), then: f(then), otherwise: f(otherwise) }
-            }
-            Self::Cholesky { dim, covariance } => Self::Cholesky { dim, covariance: all(covariance) },
-            Self::Transition { dim, a, alpha, q, length } => {
-                Self::Transition { dim, a: all(a), alpha: all(alpha), q: all(q), length: f(length) }
-            }
+            Self::Select {
+                compare,
+                a,
+                b,
+                then,
+                otherwise,
+            } => Self::Select {
+                compare,
+                a: f(a),
+                b: f(b),
+                then: f(then),
+                otherwise: f(otherwise),
+            },
+            Self::Cholesky { dim, covariance } => Self::Cholesky {
+                dim,
+                covariance: all(covariance),
+            },
+            Self::Transition {
+                dim,
+                a,
+                alpha,
+                q,
+                length,
+            } => Self::Transition {
+                dim,
+                a: all(a),
+                alpha: all(alpha),
+                q: all(q),
+                length: f(length),
+            },
             Self::Extract(a, index) => Self::Extract(f(a), index),
             leaf => leaf,
         }

@@ -32,9 +32,13 @@ impl Program {
     /// The first fault.
     pub fn verify(&self) -> Result<(), Fault> {
         for id in self.ids() {
-            self.verify_value(id).map_err(|text| Fault { value: Some(id), text })?;
+            self.verify_value(id).map_err(|text| Fault {
+                value: Some(id),
+                text,
+            })?;
         }
-        self.verify_results().map_err(|text| Fault { value: None, text })
+        self.verify_results()
+            .map_err(|text| Fault { value: None, text })
     }
 
     fn verify_value(&self, id: ValueId) -> Result<(), String> {
@@ -45,7 +49,10 @@ impl Program {
             }
             let read = self.value(operand);
             if !value.rate.may_read(read.rate) {
-                return Err(format!("of rate {} reads {operand} of rate {}", value.rate, read.rate));
+                return Err(format!(
+                    "of rate {} reads {operand} of rate {}",
+                    value.rate, read.rate
+                ));
             }
             if read.op.is_aggregate() && !matches!(value.op, Op::Extract(..)) {
                 return Err(format!("reads the matrix {operand} as a number"));
@@ -74,14 +81,23 @@ impl Program {
             Op::Noise(_) => rate == Rate::StepLane,
             _ => true,
         };
-        if right { Ok(()) } else { Err(format!("a leaf of rate {rate}")) }
+        if right {
+            Ok(())
+        } else {
+            Err(format!("a leaf of rate {rate}"))
+        }
     }
 
     fn verify_matrix(&self, op: &Op, rate: Rate) -> Result<(), String> {
         let sound = match op {
             Op::Cholesky { dim, covariance } => covariance.len() == dim * dim && !rate.is_lane(),
-            Op::Transition { dim, a, alpha, q, .. } => {
-                a.len() == dim * dim && alpha.len() == *dim && q.len() == dim * dim && !rate.is_lane()
+            Op::Transition {
+                dim, a, alpha, q, ..
+            } => {
+                a.len() == dim * dim
+                    && alpha.len() == *dim
+                    && q.len() == dim * dim
+                    && !rate.is_lane()
             }
             Op::Extract(of, index) => {
                 let matrix = &self.value(*of).op;
@@ -89,24 +105,39 @@ impl Program {
             }
             _ => true,
         };
-        if sound { Ok(()) } else { Err("a matrix of another shape, or on lanes".to_owned()) }
+        if sound {
+            Ok(())
+        } else {
+            Err("a matrix of another shape, or on lanes".to_owned())
+        }
     }
 
     fn verify_results(&self) -> Result<(), String> {
         let rate = |id: ValueId| self.value(id).rate;
-        for id in self.checks.iter().flat_map(Check::operands).chain(self.correlation) {
+        for id in self
+            .checks
+            .iter()
+            .flat_map(Check::operands)
+            .chain(self.correlation)
+        {
             if rate(id) > Rate::Setup {
                 return Err(format!("a check reads {id} of rate {}", rate(id)));
             }
         }
         for slot in &self.slots {
             if rate(slot.initial) > Rate::Setup || !Rate::StepLane.may_read(rate(slot.next)) {
-                return Err(format!("slot `{}` has a value of the wrong rate", slot.name));
+                return Err(format!(
+                    "slot `{}` has a value of the wrong rate",
+                    slot.name
+                ));
             }
         }
         for output in &self.outputs {
             if !Rate::ObservationLane.may_read(rate(output.value)) {
-                return Err(format!("output `{}` has a value of the wrong rate", output.name));
+                return Err(format!(
+                    "output `{}` has a value of the wrong rate",
+                    output.name
+                ));
             }
         }
         match self.left_domain {

@@ -85,9 +85,22 @@ impl<'a> Assembler<'a> {
             Rate::StepLane => &program.step_values,
             _ => &program.observation_values,
         };
-        let values = stored.iter().enumerate().map(|(place, &id)| (id, place)).collect();
+        let values = stored
+            .iter()
+            .enumerate()
+            .map(|(place, &id)| (id, place))
+            .collect();
         let registers = BTreeMap::new();
-        Self { program, setup, rate, values, last_use, registers, free: Vec::new(), count: 0 }
+        Self {
+            program,
+            setup,
+            rate,
+            values,
+            last_use,
+            registers,
+            free: Vec::new(),
+            count: 0,
+        }
     }
 
     fn assemble(mut self, results: &[ValueId]) -> Code {
@@ -104,7 +117,11 @@ impl<'a> Assembler<'a> {
             }
         }
         let results = results.iter().map(|&id| self.operand(id)).collect();
-        Code { instructions, results, registers: self.count }
+        Code {
+            instructions,
+            results,
+            registers: self.count,
+        }
     }
 
     fn take(&mut self) -> usize {
@@ -131,9 +148,16 @@ impl<'a> Assembler<'a> {
             Op::Unary(op, a) => Some(Action::Unary(op, operand(a))),
             Op::Binary(op, a, b) => Some(Action::Binary(op, operand(a), operand(b))),
             Op::MulAdd(a, b, c) => Some(Action::MulAdd(operand(a), operand(b), operand(c))),
-            Op::Select { compare, a, b, then, otherwise } => {
-                Some(Action::Select(compare, [a, b, then, otherwise].map(operand)))
-            }
+            Op::Select {
+                compare,
+                a,
+                b,
+                then,
+                otherwise,
+            } => Some(Action::Select(
+                compare,
+                [a, b, then, otherwise].map(operand),
+            )),
             _ => None,
         }
     }

@@ -47,8 +47,20 @@ pub(super) fn run<A: Arith>(
 ) {
     for instruction in &code.instructions {
         let (below, rest) = scratch.split_at_mut(instruction.target);
-        let (target, above) = rest.split_first_mut().expect("the driver provides the scratch lanes");
-        execute::<A>(instruction, &Inputs { values, states, noise, below, above }, target);
+        let (target, above) = rest
+            .split_first_mut()
+            .expect("the driver provides the scratch lanes");
+        execute::<A>(
+            instruction,
+            &Inputs {
+                values,
+                states,
+                noise,
+                below,
+                above,
+            },
+            target,
+        );
     }
 }
 
@@ -87,7 +99,13 @@ fn execute<A: Arith>(instruction: &Instruction, inputs: &Inputs<'_>, out: &mut L
         },
         Action::Binary(op, a, b) => binary::<A>(op, inputs.read(a), inputs.read(b), out),
         Action::MulAdd(a, b, c) => {
-            map3(inputs.read(a), inputs.read(b), inputs.read(c), out, A::mul_add);
+            map3(
+                inputs.read(a),
+                inputs.read(b),
+                inputs.read(c),
+                out,
+                A::mul_add,
+            );
         }
         Action::Select(compare, operands) => {
             let [a, b, then, otherwise] = operands.map(|o| inputs.read(o));
@@ -117,7 +135,9 @@ fn map2(a: Read<'_>, b: Read<'_>, out: &mut Lane, f: impl Fn(f64, f64) -> f64) {
     let out = out.0.iter_mut();
     match (a, b) {
         (Read::Lane(a), Read::Lane(b)) => {
-            out.zip(&a.0).zip(&b.0).for_each(|((out, &a), &b)| *out = f(a, b));
+            out.zip(&a.0)
+                .zip(&b.0)
+                .for_each(|((out, &a), &b)| *out = f(a, b));
         }
         (Read::Same(a), Read::Lane(b)) => out.zip(&b.0).for_each(|(out, &b)| *out = f(a, b)),
         (Read::Lane(a), Read::Same(b)) => out.zip(&a.0).for_each(|(out, &a)| *out = f(a, b)),
@@ -157,6 +177,10 @@ fn select(operands: [Read<'_>; 4], out: &mut Lane, holds: impl Fn(f64, f64) -> b
     }
     let [a, b, then, otherwise] = lanes.map(|lane| &lane.0);
     for (i, out) in out.0.iter_mut().enumerate() {
-        *out = if holds(a[i], b[i]) { then[i] } else { otherwise[i] };
+        *out = if holds(a[i], b[i]) {
+            then[i]
+        } else {
+            otherwise[i]
+        };
     }
 }

@@ -45,7 +45,11 @@ impl Interpreter {
         let setup = uniform::construct(program, &parameters)?;
         Ok(Self {
             sources: program.sources.iter().cloned().map(Source::named).collect(),
-            outputs: program.outputs.iter().map(|o| Cow::Owned(o.name.clone())).collect(),
+            outputs: program
+                .outputs
+                .iter()
+                .map(|o| Cow::Owned(o.name.clone()))
+                .collect(),
             start: program.slots.iter().map(|s| setup.get(s.initial)).collect(),
             step: Code::step(program, &setup),
             observe: Code::observation(program, &setup),

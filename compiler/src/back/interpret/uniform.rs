@@ -19,12 +19,18 @@ pub(super) struct Uniform {
 pub(super) fn construct(program: &Program, parameters: &[f64]) -> Result<Uniform, ParameterError> {
     let mut uniform = Uniform::new(program, parameters);
     let refused = |_: StepError| ParameterError::CorrelationNotPositiveSemidefinite;
-    uniform.run(program, program.section(Rate::Constant), [0.0; 2]).map_err(refused)?;
-    uniform.run(program, program.check_values().into_iter(), [0.0; 2]).map_err(refused)?;
+    uniform
+        .run(program, program.section(Rate::Constant), [0.0; 2])
+        .map_err(refused)?;
+    uniform
+        .run(program, program.check_values().into_iter(), [0.0; 2])
+        .map_err(refused)?;
     for check in &program.checks {
         uniform.check(program, check)?;
     }
-    uniform.run(program, program.section(Rate::Setup), [0.0; 2]).map_err(refused)?;
+    uniform
+        .run(program, program.section(Rate::Setup), [0.0; 2])
+        .map_err(refused)?;
     Ok(uniform)
 }
 
@@ -36,7 +42,11 @@ impl Uniform {
             first.push(total);
             total += value.op.width();
         }
-        Self { parameters: parameters.to_vec(), first, numbers: vec![0.0; total] }
+        Self {
+            parameters: parameters.to_vec(),
+            first,
+            numbers: vec![0.0; total],
+        }
     }
 
     /// The number behind a value.
@@ -73,9 +83,17 @@ impl Uniform {
             Op::Unary(op, a) => op.apply::<Unfused>(self.get(a)),
             Op::Binary(op, a, b) => op.apply::<Unfused>(self.get(a), self.get(b)),
             Op::MulAdd(a, b, c) => Unfused::mul_add(self.get(a), self.get(b), self.get(c)),
-            Op::Select { compare, a, b, then, otherwise } => {
-                self.get(if compare.holds(self.get(a), self.get(b)) { then } else { otherwise })
-            }
+            Op::Select {
+                compare,
+                a,
+                b,
+                then,
+                otherwise,
+            } => self.get(if compare.holds(self.get(a), self.get(b)) {
+                then
+            } else {
+                otherwise
+            }),
             Op::Extract(of, index) => self.numbers[self.first[of.index()] + index],
             Op::State(_) | Op::Noise(_) | Op::Cholesky { .. } | Op::Transition { .. } => {
                 unreachable!("the verifier lets no lane and no matrix in here")
@@ -87,12 +105,29 @@ impl Uniform {
         let all = |ids: &[ValueId]| ids.iter().map(|&id| self.get(id)).collect::<Vec<f64>>();
         let mut result = vec![0.0; op.width()];
         match op {
-            Op::Cholesky { dim, covariance } => gauss::cholesky(*dim, &all(covariance), &mut result)?,
-            Op::Transition { dim, a, alpha, q, length } => {
+            Op::Cholesky { dim, covariance } => {
+                gauss::cholesky(*dim, &all(covariance), &mut result)?
+            }
+            Op::Transition {
+                dim,
+                a,
+                alpha,
+                q,
+                length,
+            } => {
                 let (e, rest) = result.split_at_mut(dim * dim);
                 let (shift, covariance) = rest.split_at_mut(*dim);
                 let length = self.get(*length);
-                gauss::linear_transition(*dim, &all(a), &all(alpha), &all(q), length, e, shift, covariance)?;
+                gauss::linear_transition(
+                    *dim,
+                    &all(a),
+                    &all(alpha),
+                    &all(q),
+                    length,
+                    e,
+                    shift,
+                    covariance,
+                )?;
             }
             _ => unreachable!("only matrix operations are matrices"),
         }
@@ -105,15 +140,26 @@ impl Uniform {
                 let name = program.parameters[*parameter].name.clone();
                 check_range(name, self.parameters[*parameter], self.interval(range))
             }
-            Check::Assumption { name, text, compare, left, right } => {
+            Check::Assumption {
+                name,
+                text,
+                compare,
+                left,
+                right,
+            } => {
                 if compare.holds(self.get(*left), self.get(*right)) {
                     return Ok(());
                 }
-                Err(ParameterError::Assumption { name: name.clone().into(), text: text.clone().into() })
+                Err(ParameterError::Assumption {
+                    name: name.clone().into(),
+                    text: text.clone().into(),
+                })
             }
-            Check::Initial { state, value, domain } => {
-                check_initial(state.clone(), self.get(*value), self.interval(domain))
-            }
+            Check::Initial {
+                state,
+                value,
+                domain,
+            } => check_initial(state.clone(), self.get(*value), self.interval(domain)),
         }
     }
 

@@ -5,15 +5,22 @@ use std::collections::BTreeSet;
 use proc_macro2::TokenStream;
 use quote::quote;
 
-use super::spell::{Place, has_statement, number};
 use super::Generator;
+use super::spell::{Place, has_statement, number};
 use crate::program::{Bound, Check, Op, Range, Rate, ValueId};
 
 impl Generator<'_> {
     pub(super) fn constructor(&self) -> TokenStream {
         let name = &self.names.simulator;
-        let fields: Vec<_> = self.fields_of_simulator().iter().map(|&id| self.names.value(id)).collect();
-        let docs = format!(" A simulator of `{}`: the model with its parameters.", self.program.name);
+        let fields: Vec<_> = self
+            .fields_of_simulator()
+            .iter()
+            .map(|&id| self.names.value(id))
+            .collect();
+        let docs = format!(
+            " A simulator of `{}`: the model with its parameters.",
+            self.program.name
+        );
         let (checked, rest) = self.setup_values();
         let unpacked = self.unpacked_parameters();
         let first = self.statements(checked.into_iter(), Place::Setup);
@@ -55,7 +62,9 @@ impl Generator<'_> {
     /// Setup values that other functions read: all but parameters, which are kept as they are.
     pub(super) fn fields_of_simulator(&self) -> BTreeSet<ValueId> {
         let program = self.program;
-        let later = program.ids().filter(|&id| program.value(id).rate > Rate::Setup);
+        let later = program
+            .ids()
+            .filter(|&id| program.value(id).rate > Rate::Setup);
         let read = later.flat_map(|id| program.value(id).op.operands());
         let results = program.slots.iter().flat_map(|s| [s.initial, s.next]);
         let outputs = program.outputs.iter().map(|o| o.value);
@@ -63,46 +72,70 @@ impl Generator<'_> {
             let value = program.value(*id);
             value.rate == Rate::Setup && has_statement(&value.op)
         };
-        read.chain(results).chain(outputs).filter(is_field).collect()
+        read.chain(results)
+            .chain(outputs)
+            .filter(is_field)
+            .collect()
     }
 
     /// Setup values in two parts: those the checks need, and the others.
     fn setup_values(&self) -> (Vec<ValueId>, Vec<ValueId>) {
         let checked = self.program.check_values();
-        let rest = self.program.section(Rate::Setup).filter(|id| !checked.contains(id)).collect();
+        let rest = self
+            .program
+            .section(Rate::Setup)
+            .filter(|id| !checked.contains(id))
+            .collect();
         (checked, rest)
     }
 
     /// The parameters the constructor reads, by their local names.
     fn unpacked_parameters(&self) -> TokenStream {
         let program = self.program;
-        let setup = program.section(Rate::Setup).flat_map(|id| program.value(id).op.operands());
-        let read: BTreeSet<ValueId> =
-            setup.chain(program.checks.iter().flat_map(Check::operands)).collect();
+        let setup = program
+            .section(Rate::Setup)
+            .flat_map(|id| program.value(id).op.operands());
+        let read: BTreeSet<ValueId> = setup
+            .chain(program.checks.iter().flat_map(Check::operands))
+            .collect();
         self.bind_parameters(&read, &quote! { parameters })
     }
 
     /// `let local = from.field;` for every parameter among the values.
-    pub(super) fn bind_parameters(&self, ids: &BTreeSet<ValueId>, from: &TokenStream) -> TokenStream {
-        let bindings = ids.iter().filter_map(|&id| match self.program.value(id).op {
-            Op::Parameter(index) => {
-                let (local, field) = (self.names.value(id), &self.names.parameters[index]);
-                Some(quote! { let #local = #from.#field; })
-            }
-            _ => None,
-        });
+    pub(super) fn bind_parameters(
+        &self,
+        ids: &BTreeSet<ValueId>,
+        from: &TokenStream,
+    ) -> TokenStream {
+        let bindings = ids
+            .iter()
+            .filter_map(|&id| match self.program.value(id).op {
+                Op::Parameter(index) => {
+                    let (local, field) = (self.names.value(id), &self.names.parameters[index]);
+                    Some(quote! { let #local = #from.#field; })
+                }
+                _ => None,
+            });
         quote! { #(#bindings)* }
     }
 
     fn check(&self, check: &Check) -> TokenStream {
         match check {
             Check::Range { parameter, range } => {
-                let (name, field) =
-                    (&self.program.parameters[*parameter].name, &self.names.parameters[*parameter]);
+                let (name, field) = (
+                    &self.program.parameters[*parameter].name,
+                    &self.names.parameters[*parameter],
+                );
                 let range = self.interval(range);
                 quote! { ::driftwright_runtime::check_range(#name, parameters.#field, #range)?; }
             }
-            Check::Assumption { name, text, compare, left, right } => {
+            Check::Assumption {
+                name,
+                text,
+                compare,
+                left,
+                right,
+            } => {
                 let comparison = self.comparison(*compare, *left, *right);
                 quote! {
                     let holds = #comparison;
@@ -114,7 +147,11 @@ impl Generator<'_> {
                     }
                 }
             }
-            Check::Initial { state, value, domain } => {
+            Check::Initial {
+                state,
+                value,
+                domain,
+            } => {
                 let (value, domain) = (self.read(*value), self.interval(domain));
                 quote! { ::driftwright_runtime::check_initial(#state, #value, #domain)?; }
             }

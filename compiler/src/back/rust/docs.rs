@@ -18,7 +18,11 @@ pub(super) fn inner(lines: &[String]) -> TokenStream {
 }
 
 fn spaced(line: &str) -> String {
-    if line.is_empty() { String::new() } else { format!(" {line}") }
+    if line.is_empty() {
+        String::new()
+    } else {
+        format!(" {line}")
+    }
 }
 
 /// The author's words, safe in Markdown: brackets and angles are no links and no tags.
@@ -56,7 +60,10 @@ pub(super) fn parameter(parameter: &Parameter, field: &str) -> Vec<String> {
     if parameter.name != field {
         text.push_str(&format!(", `{}` in the model", parameter.name));
     }
-    let default = parameter.value.map(|value| format!("; {value:?} where not given")).unwrap_or_default();
+    let default = parameter
+        .value
+        .map(|value| format!("; {value:?} where not given"))
+        .unwrap_or_default();
     vec![format!("{text}; in `{}`{default}.", parameter.range)]
 }
 
@@ -68,10 +75,16 @@ pub(super) fn output(output: &Output) -> Vec<String> {
     };
     let mut text = format!("{kind} `{}`", output.name);
     if let Some(about) = &output.about {
-        text.push_str(&format!(": {}", plain(&about.split_whitespace().collect::<Vec<_>>().join(" "))));
+        text.push_str(&format!(
+            ": {}",
+            plain(&about.split_whitespace().collect::<Vec<_>>().join(" "))
+        ));
     }
     if let Some(formula) = &output.formula {
-        text.push_str(&format!(", `{}`", formula.split_whitespace().collect::<Vec<_>>().join(" ")));
+        text.push_str(&format!(
+            ", `{}`",
+            formula.split_whitespace().collect::<Vec<_>>().join(" ")
+        ));
     }
     if let Some(unit) = &output.unit {
         text.push_str(&format!(", in `{unit}`"));

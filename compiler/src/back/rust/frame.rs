@@ -17,10 +17,14 @@ pub(super) fn source(program: &Program, tokens: TokenStream) -> String {
         .unwrap_or_else(|error| panic!("the module of `{}` is no Rust: {error}", program.name));
     let body = commented(program, &prettyplease::unparse(&file));
     let mut environment = Environment::new();
-    environment.add_template("module", TEMPLATE).expect("the template is sound");
-    let template = environment.get_template("module").expect("the template was added");
+    environment
+        .add_template("module", TEMPLATE)
+        .expect("the template is sound");
+    let template = environment
+        .get_template("module")
+        .expect("the template was added");
     template
-        .render(context! { name => program.name, version => env!("CARGO_PKG_VERSION"), body })
+        .render(context! { name => &program.name, version => env!("CARGO_PKG_VERSION"), body })
         .expect("the template reads what it is given")
 }
 
@@ -42,7 +46,10 @@ fn commented(program: &Program, source: &str) -> String {
 /// The indentation and the note of a line `__note!(17usize);`.
 fn marker(line: &str) -> Option<(&str, usize)> {
     let (indent, rest) = line.split_at(line.len() - line.trim_start().len());
-    let digits = rest.strip_prefix("__note!(")?.strip_suffix(");")?.trim_end_matches("usize");
+    let digits = rest
+        .strip_prefix("__note!(")?
+        .strip_suffix(");")?
+        .trim_end_matches("usize");
     Some((indent, digits.parse().ok()?))
 }
 

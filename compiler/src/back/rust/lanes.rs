@@ -5,8 +5,8 @@ use std::collections::BTreeSet;
 use proc_macro2::{Ident, Span, TokenStream};
 use quote::quote;
 
-use super::spell::Place;
 use super::Generator;
+use super::spell::Place;
 use crate::program::{Op, Rate, ValueId};
 
 impl Generator<'_> {
@@ -18,13 +18,22 @@ impl Generator<'_> {
         let states = pattern(&self.names.slots, "states", &self.read_or_written_slots());
         let noise = pattern(&self.names.sources, "noise", &self.read_sources());
         let statements = self.statements(program.section(Rate::StepLane), Place::Lanes);
-        let changed = program.slots.iter().enumerate().filter(|(slot, s)| !self.is_unchanged(*slot, s.next));
+        let changed = program
+            .slots
+            .iter()
+            .enumerate()
+            .filter(|(slot, s)| !self.is_unchanged(*slot, s.next));
         let writes = changed.map(|(slot, s)| {
             let (lane, value) = (&self.names.slots[slot], self.read(s.next));
-            let markers = if self.has_lane_statement(s.next) { TokenStream::new() } else { self.markers(s.next) };
+            let markers = if self.has_lane_statement(s.next) {
+                TokenStream::new()
+            } else {
+                self.markers(s.next)
+            };
             quote! { #markers #lane.0[lane] = #value; }
         });
-        let names = [("values", &values), ("noise", &noise)].map(|(name, used)| argument(name, used));
+        let names =
+            [("values", &values), ("noise", &noise)].map(|(name, used)| argument(name, used));
         let [values_name, noise_name] = names;
         let states_name = argument("states", &states);
         quote! {
@@ -53,14 +62,22 @@ impl Generator<'_> {
         let results: Vec<ValueId> = program.outputs.iter().map(|o| o.value).collect();
         let bindings = self.lane_bindings(Rate::ObservationLane, &results);
         let values = self.value_pattern(&program.observation_values);
-        let states = pattern(&self.names.slots, "states", &self.read_slots(Rate::ObservationLane));
+        let states = pattern(
+            &self.names.slots,
+            "states",
+            &self.read_slots(Rate::ObservationLane),
+        );
         let all: BTreeSet<usize> = (0..program.outputs.len()).collect();
         let outputs = pattern(&self.names.outputs, "outputs", &all);
         let statements = self.statements(program.section(Rate::ObservationLane), Place::Lanes);
-        let writes = program.outputs.iter().zip(&self.names.outputs).map(|(output, lane)| {
-            let value = self.read(output.value);
-            quote! { #lane.0[lane] = #value; }
-        });
+        let writes = program
+            .outputs
+            .iter()
+            .zip(&self.names.outputs)
+            .map(|(output, lane)| {
+                let value = self.read(output.value);
+                quote! { #lane.0[lane] = #value; }
+            });
         let (values_name, states_name) = (argument("values", &values), argument("states", &states));
         let outputs_name = argument("outputs", &outputs);
         quote! {
@@ -86,7 +103,10 @@ impl Generator<'_> {
 
     /// Locals for what lanes read of the simulator itself.
     fn lane_bindings(&self, rate: Rate, results: &[ValueId]) -> TokenStream {
-        let operands = self.program.section(rate).flat_map(|id| self.program.value(id).op.operands());
+        let operands = self
+            .program
+            .section(rate)
+            .flat_map(|id| self.program.value(id).op.operands());
         self.bindings(operands.chain(results.iter().copied()))
     }
 
@@ -119,8 +139,13 @@ impl Generator<'_> {
 
     fn read_or_written_slots(&self) -> BTreeSet<usize> {
         let slots = self.program.slots.iter().enumerate();
-        let written = slots.filter(|(slot, s)| !self.is_unchanged(*slot, s.next)).map(|(slot, _)| slot);
-        self.read_slots(Rate::StepLane).into_iter().chain(written).collect()
+        let written = slots
+            .filter(|(slot, s)| !self.is_unchanged(*slot, s.next))
+            .map(|(slot, _)| slot);
+        self.read_slots(Rate::StepLane)
+            .into_iter()
+            .chain(written)
+            .collect()
     }
 
     fn read_sources(&self) -> BTreeSet<usize> {
@@ -128,7 +153,10 @@ impl Generator<'_> {
             Op::Noise(source) => Some(source),
             _ => None,
         };
-        self.program.section(Rate::StepLane).filter_map(source).collect()
+        self.program
+            .section(Rate::StepLane)
+            .filter_map(source)
+            .collect()
     }
 }
 
@@ -139,7 +167,11 @@ fn pattern(names: &[Ident], lanes: &str, used: &BTreeSet<usize>) -> TokenStream 
     }
     let lanes_name = Ident::new(lanes, Span::call_site());
     let names = names.iter().enumerate().map(|(place, name)| {
-        if used.contains(&place) { quote! { #name } } else { quote! { _ } }
+        if used.contains(&place) {
+            quote! { #name }
+        } else {
+            quote! { _ }
+        }
     });
     let message = format!("the driver passes as many {lanes} as the shape says");
     quote! {
@@ -149,6 +181,10 @@ fn pattern(names: &[Ident], lanes: &str, used: &BTreeSet<usize>) -> TokenStream 
 
 /// An argument's name, with an underscore where its pattern is empty.
 fn argument(name: &str, pattern: &TokenStream) -> Ident {
-    let name = if pattern.is_empty() { format!("_{name}") } else { name.to_owned() };
+    let name = if pattern.is_empty() {
+        format!("_{name}")
+    } else {
+        name.to_owned()
+    };
     Ident::new(&name, Span::call_site())
 }

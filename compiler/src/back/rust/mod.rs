@@ -44,7 +44,11 @@ struct Generator<'a> {
 
 impl<'a> Generator<'a> {
     fn new(program: &'a Program, comments: bool) -> Self {
-        Self { program, names: Names::new(program), comments }
+        Self {
+            program,
+            names: Names::new(program),
+            comments,
+        }
     }
 
     fn module(&self) -> TokenStream {
@@ -85,10 +89,15 @@ impl<'a> Generator<'a> {
 
     /// The places of the observed quantities, by name.
     fn quantities(&self) -> TokenStream {
-        let constants = self.names.quantities.iter().enumerate().map(|(place, name)| {
-            let docs = docs::outer(&docs::output(&self.program.outputs[place]));
-            quote! { #docs pub const #name: usize = #place; }
-        });
+        let constants = self
+            .names
+            .quantities
+            .iter()
+            .enumerate()
+            .map(|(place, name)| {
+                let docs = docs::outer(&docs::output(&self.program.outputs[place]));
+                quote! { #docs pub const #name: usize = #place; }
+            });
         quote! {
             /// The places of the observed quantities among the outputs.
             pub mod quantity {
@@ -103,7 +112,12 @@ impl<'a> Generator<'a> {
         if !self.comments {
             return TokenStream::new();
         }
-        let indices = self.program.notes.iter().enumerate().filter(|(_, note)| self.stands_at(note) == id);
+        let indices = self
+            .program
+            .notes
+            .iter()
+            .enumerate()
+            .filter(|(_, note)| self.stands_at(note) == id);
         let markers = indices.map(|(index, _)| quote! { __note!(#index); });
         quote! { #(#markers)* }
     }
@@ -111,6 +125,10 @@ impl<'a> Generator<'a> {
     /// The value at whose statement a note stands: a value without one passes it on.
     fn stands_at(&self, note: &Note) -> ValueId {
         let op = &self.program.value(note.value).op;
-        if spell::has_statement(op) { note.value } else { self.program.slots[note.slot].next }
+        if spell::has_statement(op) {
+            note.value
+        } else {
+            self.program.slots[note.slot].next
+        }
     }
 }

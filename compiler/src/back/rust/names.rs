@@ -8,8 +8,18 @@ use crate::program::{Op, Program, Rate, ValueId};
 
 /// Names of locals that the frame of a function uses itself.
 const RESERVED: [&str; 12] = [
-    "parameters", "required", "states", "values", "noise", "outputs", "lane", "start", "length", "time",
-    "scratch", "holds",
+    "parameters",
+    "required",
+    "states",
+    "values",
+    "noise",
+    "outputs",
+    "lane",
+    "start",
+    "length",
+    "time",
+    "scratch",
+    "holds",
 ];
 
 /// Every name of a module.
@@ -31,20 +41,48 @@ pub(super) struct Names {
 impl Names {
     pub(super) fn new(program: &Program) -> Self {
         let mut fields = Unique::default();
-        let parameters = program.parameters.iter().map(|p| fields.add(&latin(&p.name))).collect();
+        let parameters = program
+            .parameters
+            .iter()
+            .map(|p| fields.add(&latin(&p.name)))
+            .collect();
         let mut constants = Unique::default();
         let upper = |name: &str| latin(name).to_uppercase();
-        let quantities = program.outputs.iter().map(|o| constants.add(&upper(&o.name))).collect();
+        let quantities = program
+            .outputs
+            .iter()
+            .map(|o| constants.add(&upper(&o.name)))
+            .collect();
         let mut shared = Unique::reserving(RESERVED);
         let mut lanes = |prefix: &str, names: Vec<&str>| -> Vec<Ident> {
-            names.iter().map(|name| shared.add(&format!("{prefix}_{}", snake(name)))).collect()
+            names
+                .iter()
+                .map(|name| shared.add(&format!("{prefix}_{}", snake(name))))
+                .collect()
         };
-        let slots = lanes("slot", program.slots.iter().map(|s| s.name.as_str()).collect());
-        let sources = lanes("normal", program.sources.iter().map(String::as_str).collect());
-        let outputs = lanes("output", program.outputs.iter().map(|o| o.name.as_str()).collect());
+        let slots = lanes(
+            "slot",
+            program.slots.iter().map(|s| s.name.as_str()).collect(),
+        );
+        let sources = lanes(
+            "normal",
+            program.sources.iter().map(String::as_str).collect(),
+        );
+        let outputs = lanes(
+            "output",
+            program.outputs.iter().map(|o| o.name.as_str()).collect(),
+        );
         let values = value_names(program, &shared);
         let simulator = simulator_name(&program.name);
-        Self { simulator, parameters, quantities, values, slots, sources, outputs }
+        Self {
+            simulator,
+            parameters,
+            quantities,
+            values,
+            slots,
+            sources,
+            outputs,
+        }
     }
 
     pub(super) fn value(&self, id: ValueId) -> &Ident {
@@ -64,11 +102,17 @@ fn value_names(program: &Program, shared: &Unique) -> Vec<Ident> {
     };
     assign(Rate::Constant, &mut setup);
     assign(Rate::Setup, &mut setup);
-    for rates in [[Rate::Step, Rate::StepLane], [Rate::Observation, Rate::ObservationLane]] {
+    for rates in [
+        [Rate::Step, Rate::StepLane],
+        [Rate::Observation, Rate::ObservationLane],
+    ] {
         let mut scope = setup.clone();
         rates.into_iter().for_each(|rate| assign(rate, &mut scope));
     }
-    names.into_iter().map(|name| name.expect("every value has a rate")).collect()
+    names
+        .into_iter()
+        .map(|name| name.expect("every value has a rate"))
+        .collect()
 }
 
 fn value_hint(program: &Program, id: ValueId) -> String {
@@ -120,12 +164,18 @@ pub(super) fn identifier(name: &str) -> Ident {
 fn simulator_name(model: &str) -> Ident {
     let capital = |part: &str| {
         let mut letters = part.chars();
-        letters.next().map(|first| first.to_uppercase().chain(letters).collect::<String>())
+        letters
+            .next()
+            .map(|first| first.to_uppercase().chain(letters).collect::<String>())
     };
     let name: String = latin(model).split('_').filter_map(capital).collect();
     // The module has types of these names already.
     let taken = ["Parameters", "Required", "Self"].contains(&name.as_str());
-    identifier(&if taken { format!("{name}Simulator") } else { name })
+    identifier(&if taken {
+        format!("{name}Simulator")
+    } else {
+        name
+    })
 }
 
 /// A local's name: Latin, lower case, underscores for whatever else.
@@ -145,13 +195,55 @@ pub(super) fn latin(name: &str) -> String {
 }
 
 const GREEK: [(char, &str); 51] = [
-    ('α', "alpha"), ('β', "beta"), ('γ', "gamma"), ('δ', "delta"), ('ε', "epsilon"), ('ζ', "zeta"),
-    ('η', "eta"), ('θ', "theta"), ('ι', "iota"), ('κ', "kappa"), ('λ', "lambda"), ('μ', "mu"),
-    ('ν', "nu"), ('ξ', "xi"), ('ο', "omicron"), ('π', "pi"), ('ρ', "rho"), ('σ', "sigma"),
-    ('ς', "sigma"), ('τ', "tau"), ('υ', "upsilon"), ('φ', "phi"), ('χ', "chi"), ('ψ', "psi"),
-    ('ω', "omega"), ('ϕ', "phi"), ('ϑ', "theta"), ('Α', "Alpha"), ('Β', "Beta"), ('Γ', "Gamma"),
-    ('Δ', "Delta"), ('Ε', "Epsilon"), ('Ζ', "Zeta"), ('Η', "Eta"), ('Θ', "Theta"), ('Ι', "Iota"),
-    ('Κ', "Kappa"), ('Λ', "Lambda"), ('Μ', "Mu"), ('Ν', "Nu"), ('Ξ', "Xi"), ('Ο', "Omicron"),
-    ('Π', "Pi"), ('Ρ', "Rho"), ('Σ', "Sigma"), ('Τ', "Tau"), ('Υ', "Upsilon"), ('Φ', "Phi"),
-    ('Χ', "Chi"), ('Ψ', "Psi"), ('Ω', "Omega"),
+    ('α', "alpha"),
+    ('β', "beta"),
+    ('γ', "gamma"),
+    ('δ', "delta"),
+    ('ε', "epsilon"),
+    ('ζ', "zeta"),
+    ('η', "eta"),
+    ('θ', "theta"),
+    ('ι', "iota"),
+    ('κ', "kappa"),
+    ('λ', "lambda"),
+    ('μ', "mu"),
+    ('ν', "nu"),
+    ('ξ', "xi"),
+    ('ο', "omicron"),
+    ('π', "pi"),
+    ('ρ', "rho"),
+    ('σ', "sigma"),
+    ('ς', "sigma"),
+    ('τ', "tau"),
+    ('υ', "upsilon"),
+    ('φ', "phi"),
+    ('χ', "chi"),
+    ('ψ', "psi"),
+    ('ω', "omega"),
+    ('ϕ', "phi"),
+    ('ϑ', "theta"),
+    ('Α', "Alpha"),
+    ('Β', "Beta"),
+    ('Γ', "Gamma"),
+    ('Δ', "Delta"),
+    ('Ε', "Epsilon"),
+    ('Ζ', "Zeta"),
+    ('Η', "Eta"),
+    ('Θ', "Theta"),
+    ('Ι', "Iota"),
+    ('Κ', "Kappa"),
+    ('Λ', "Lambda"),
+    ('Μ', "Mu"),
+    ('Ν', "Nu"),
+    ('Ξ', "Xi"),
+    ('Ο', "Omicron"),
+    ('Π', "Pi"),
+    ('Ρ', "Rho"),
+    ('Σ', "Sigma"),
+    ('Τ', "Tau"),
+    ('Υ', "Upsilon"),
+    ('Φ', "Phi"),
+    ('Χ', "Chi"),
+    ('Ψ', "Psi"),
+    ('Ω', "Omega"),
 ];

@@ -9,7 +9,11 @@ impl Generator<'_> {
     pub(super) fn parameters(&self) -> TokenStream {
         let fields: Vec<TokenStream> = self.fields(|_| true);
         let required: Vec<TokenStream> = self.fields(|value| value.is_none());
-        let constructor = if required.is_empty() { self.default_values() } else { self.from_required() };
+        let constructor = if required.is_empty() {
+            self.default_values()
+        } else {
+            self.from_required()
+        };
         let required = if required.is_empty() {
             TokenStream::new()
         } else {

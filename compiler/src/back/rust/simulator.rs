@@ -5,8 +5,8 @@ use std::collections::BTreeSet;
 use proc_macro2::TokenStream;
 use quote::quote;
 
-use super::spell::Place;
 use super::Generator;
+use super::spell::Place;
 use crate::program::{Rate, ValueId};
 
 impl Generator<'_> {
@@ -79,7 +79,9 @@ impl Generator<'_> {
     /// `step_values` or `observation_values`.
     fn uniform(&self, rate: Rate) -> TokenStream {
         let program = self.program;
-        let read = program.section(rate).flat_map(|id| program.value(id).op.operands());
+        let read = program
+            .section(rate)
+            .flat_map(|id| program.value(id).op.operands());
         let bindings = self.bindings(read);
         let statements = self.statements(program.section(rate), Place::Uniform);
         let (stored, step) = match rate {
@@ -88,7 +90,11 @@ impl Generator<'_> {
         };
         let uses = |op: &crate::program::Op| program.values.iter().any(|v| v.op == *op);
         let argument = |name: &str, used: bool| {
-            let name = if used { name.to_owned() } else { format!("_{name}") };
+            let name = if used {
+                name.to_owned()
+            } else {
+                format!("_{name}")
+            };
             proc_macro2::Ident::new(&name, proc_macro2::Span::call_site())
         };
         let values = argument("values", !stored.is_empty());

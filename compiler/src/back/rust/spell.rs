@@ -19,7 +19,10 @@ pub(super) enum Place {
 
 /// Whether a value is computed by a statement of its own; constants are written where they are read.
 pub(super) fn has_statement(op: &Op) -> bool {
-    !matches!(op, Op::Const(_) | Op::Parameter(_) | Op::Start | Op::Length | Op::Time)
+    !matches!(
+        op,
+        Op::Const(_) | Op::Parameter(_) | Op::Start | Op::Length | Op::Time
+    )
 }
 
 /// A number as a literal that reads back to the same bits.
@@ -34,7 +37,11 @@ pub(super) fn number(value: f64) -> TokenStream {
         let literal: Literal = text.parse().expect("a finite double prints as a literal");
         quote! { #literal }
     };
-    if value.is_sign_negative() { quote! { -#size } } else { size }
+    if value.is_sign_negative() {
+        quote! { -#size }
+    } else {
+        size
+    }
 }
 
 impl Generator<'_> {
@@ -53,11 +60,17 @@ impl Generator<'_> {
     }
 
     /// The statements that compute values, in order, each after its comments.
-    pub(super) fn statements(&self, ids: impl Iterator<Item = ValueId>, place: Place) -> TokenStream {
-        let statements = ids.filter(|&id| has_statement(&self.program.value(id).op)).map(|id| {
-            let (markers, statement) = (self.markers(id), self.statement(id, place));
-            quote! { #markers #statement }
-        });
+    pub(super) fn statements(
+        &self,
+        ids: impl Iterator<Item = ValueId>,
+        place: Place,
+    ) -> TokenStream {
+        let statements = ids
+            .filter(|&id| has_statement(&self.program.value(id).op))
+            .map(|id| {
+                let (markers, statement) = (self.markers(id), self.statement(id, place));
+                quote! { #markers #statement }
+            });
         quote! { #(#statements)* }
     }
 
@@ -65,9 +78,13 @@ impl Generator<'_> {
         let name = self.names.value(id);
         match &self.program.value(id).op {
             Op::Cholesky { dim, covariance } => self.cholesky(name, *dim, covariance, place),
-            Op::Transition { dim, a, alpha, q, length } => {
-                self.transition(name, *dim, [a, alpha, q], *length)
-            }
+            Op::Transition {
+                dim,
+                a,
+                alpha,
+                q,
+                length,
+            } => self.transition(name, *dim, [a, alpha, q], *length),
             op => {
                 let expression = self.expression(op, place);
                 quote! { let #name = #expression; }
@@ -97,7 +114,13 @@ impl Generator<'_> {
                 let (a, b, c) = (self.read(a), self.read(b), self.read(c));
                 quote! { <#class as ::driftwright_runtime::Arith>::mul_add(#a, #b, #c) }
             }
-            Op::Select { compare, a, b, then, otherwise } => {
+            Op::Select {
+                compare,
+                a,
+                b,
+                then,
+                otherwise,
+            } => {
                 let comparison = self.comparison(compare, a, b);
                 let (then, otherwise) = (self.read(then), self.read(otherwise));
                 quote! { if #comparison { #then } else { #otherwise } }
@@ -141,7 +164,13 @@ impl Generator<'_> {
         ids.iter().map(|&id| self.read(id)).collect()
     }
 
-    fn cholesky(&self, name: &Ident, dim: usize, covariance: &[ValueId], place: Place) -> TokenStream {
+    fn cholesky(
+        &self,
+        name: &Ident,
+        dim: usize,
+        covariance: &[ValueId],
+        place: Place,
+    ) -> TokenStream {
         let size = dim * dim;
         let covariance = self.reads(covariance);
         let refused = if place == Place::Setup {

@@ -1,12 +1,12 @@
 //! One-step schemes on the drivers' increments, the closed ends of domains, and the flag of paths that
 //! have left theirs.
 
-use super::noise::Noise;
 use super::Lowering;
+use super::noise::Noise;
+use crate::program::Slot;
 use crate::program::builder::Phase;
 use crate::program::functions::UnaryOp;
 use crate::program::op::{Comparison, ValueId};
-use crate::program::Slot;
 use crate::scheme::{Component, EdgeRule, StateStep};
 use crate::symbolic::{Bound, Expr};
 
@@ -25,7 +25,9 @@ impl Lowering<'_> {
         self.note(step.state, value, text);
         value = self.diffusion_terms(step, noise, value);
         value = self.milstein_terms(step, noise, value);
-        let scheme = self.plan.groups[self.plan.group_of(step.state)].scheme.name();
+        let scheme = self.plan.groups[self.plan.group_of(step.state)]
+            .scheme
+            .name();
         let text = self.equation_text(step.state, &format!("stepped by {scheme}"));
         value = self.at_edges(step, value);
         self.note(step.state, value, text);
@@ -49,7 +51,9 @@ impl Lowering<'_> {
             }
         }
         let mixture = noise.combine(self, &uniform);
-        let mut value = self.gaussian_part(Some(value), &mixture).expect("starts from a value");
+        let mut value = self
+            .gaussian_part(Some(value), &mixture)
+            .expect("starts from a value");
         for (driver, coefficient) in varying {
             let increment = self.increment(driver, noise);
             value = self.builder.mul_add(coefficient, increment, value);
@@ -96,8 +100,13 @@ impl Lowering<'_> {
     fn increment(&mut self, driver: usize, noise: &Noise) -> ValueId {
         let component = self.component(driver);
         let mixture = noise.mixture(component).clone();
-        let increment = self.gaussian_part(None, &mixture).expect("an increment has a source");
-        self.builder.hint(increment, format!("increment_{}", self.model.drivers[driver].name));
+        let increment = self
+            .gaussian_part(None, &mixture)
+            .expect("an increment has a source");
+        self.builder.hint(
+            increment,
+            format!("increment_{}", self.model.drivers[driver].name),
+        );
         increment
     }
 
@@ -126,14 +135,23 @@ impl Lowering<'_> {
         (then, otherwise): (ValueId, ValueId),
     ) -> ValueId {
         let sides = if upper { (end, value) } else { (value, end) };
-        self.builder.select(Comparison::LessEqual, sides, then, otherwise)
+        self.builder
+            .select(Comparison::LessEqual, sides, then, otherwise)
     }
 
     fn reflected(&mut self, value: ValueId, end: Expr, upper: bool) -> ValueId {
         let end = self.in_step(end);
-        let inward = if upper { self.builder.sub(end, value) } else { self.builder.sub(value, end) };
+        let inward = if upper {
+            self.builder.sub(end, value)
+        } else {
+            self.builder.sub(value, end)
+        };
         let distance = self.builder.unary(UnaryOp::Abs, inward);
-        if upper { self.builder.sub(end, distance) } else { self.builder.add(end, distance) }
+        if upper {
+            self.builder.sub(end, distance)
+        } else {
+            self.builder.add(end, distance)
+        }
     }
 
     /// A slot that turns 1 when an approximate state leaves its domain, and stays so.

@@ -2,8 +2,8 @@
 
 use std::collections::{BTreeMap, BTreeSet};
 
-use super::noise::{Mixture, Noise, Transition, elapsed, is_diagonal};
 use super::Lowering;
+use super::noise::{Mixture, Noise, Transition, elapsed, is_diagonal};
 use crate::program::op::ValueId;
 use crate::scheme::{Component, Group, LinearGaussian, RowNoise};
 
@@ -44,11 +44,16 @@ impl Lowering<'_> {
         noise: &Noise,
     ) -> Mixture {
         let place = |component| {
-            self.plan.noise.position(component).expect("the plan lists every component it uses")
+            self.plan
+                .noise
+                .position(component)
+                .expect("the plan lists every component it uses")
         };
         let mixture = match system.noise[row] {
             RowNoise::None => return Vec::new(),
-            RowNoise::Convolution => noise.mixture(place(Component::Convolution { group, state })).clone(),
+            RowNoise::Convolution => noise
+                .mixture(place(Component::Convolution { group, state }))
+                .clone(),
             RowNoise::Increments => {
                 let mut weights = Vec::new();
                 for (driver, &coefficient) in system.c[row].iter().enumerate() {
@@ -56,8 +61,10 @@ impl Lowering<'_> {
                         weights.push((place(Component::Increment { driver }), coefficient));
                     }
                 }
-                let weights: Vec<(usize, ValueId)> =
-                    weights.into_iter().map(|(place, c)| (place, self.in_step(c))).collect();
+                let weights: Vec<(usize, ValueId)> = weights
+                    .into_iter()
+                    .map(|(place, c)| (place, self.in_step(c)))
+                    .collect();
                 noise.combine(self, &weights)
             }
         };
@@ -69,7 +76,8 @@ impl Lowering<'_> {
         let name = &self.model.states[state].name;
         for &(source, coefficient) in mixture {
             let source = &self.plan.noise.components[source].source;
-            self.builder.hint(coefficient, format!("deviation_{name}_{source}"));
+            self.builder
+                .hint(coefficient, format!("deviation_{name}_{source}"));
             let text = format!(
                 "Standard deviation that the normal draw `{source}` gives {} over a step.",
                 self.coordinate_text(state)
@@ -109,8 +117,11 @@ impl Lowering<'_> {
         }
         let decay = self.in_step(pool.exp(pool.mul(rate, self.length())));
         self.builder.hint(decay, format!("decay_{name}"));
-        let text =
-            format!("What is left of {} after a step at the rate {}.", self.coordinate_text(state), pool.format(rate));
+        let text = format!(
+            "What is left of {} after a step at the rate {}.",
+            self.coordinate_text(state),
+            pool.format(rate)
+        );
         self.note(state, decay, text);
         match part {
             Some(part) => self.builder.mul_add(decay, current, part),
@@ -127,11 +138,18 @@ impl Lowering<'_> {
         transition: Transition,
         mixture: &Mixture,
     ) -> ValueId {
-        let Transition { matrix, dim, offset } = transition;
+        let Transition {
+            matrix,
+            dim,
+            offset,
+        } = transition;
         let reached = self.reached(system, row);
-        let name = |lowering: &Self, place: usize| lowering.model.states[group.states[place]].name.clone();
+        let name =
+            |lowering: &Self, place: usize| lowering.model.states[group.states[place]].name.clone();
         let own = name(self, row);
-        let shifted = reached.iter().any(|&k| !self.model.pool.is_zero_literal(system.alpha[k]));
+        let shifted = reached
+            .iter()
+            .any(|&k| !self.model.pool.is_zero_literal(system.alpha[k]));
         let shift = shifted.then(|| {
             let shift = self.builder.extract(matrix, dim * dim + offset + row);
             self.builder.hint(shift, format!("shift_{own}"));
@@ -139,7 +157,9 @@ impl Lowering<'_> {
         });
         let mut total = self.gaussian_part(shift, mixture);
         for place in reached {
-            let entry = self.builder.extract(matrix, (offset + row) * dim + offset + place);
+            let entry = self
+                .builder
+                .extract(matrix, (offset + row) * dim + offset + place);
             let of = name(self, place);
             self.builder.hint(entry, format!("transition_{own}_{of}"));
             let current = self.current(group.states[place]);
@@ -166,7 +186,11 @@ impl Lowering<'_> {
     }
 
     /// `shift + sum_k coefficient_k Z_k`.
-    pub(super) fn gaussian_part(&mut self, shift: Option<ValueId>, mixture: &Mixture) -> Option<ValueId> {
+    pub(super) fn gaussian_part(
+        &mut self,
+        shift: Option<ValueId>,
+        mixture: &Mixture,
+    ) -> Option<ValueId> {
         let mut total = shift;
         for &(source, coefficient) in mixture {
             let draw = self.draw(source);
@@ -181,7 +205,10 @@ impl Lowering<'_> {
     /// A source's standard normal draw.
     pub(super) fn draw(&mut self, source: usize) -> ValueId {
         let draw = self.builder.noise(source);
-        self.builder.hint(draw, format!("draw_{}", self.plan.noise.components[source].source));
+        self.builder.hint(
+            draw,
+            format!("draw_{}", self.plan.noise.components[source].source),
+        );
         draw
     }
 

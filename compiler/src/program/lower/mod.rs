@@ -41,7 +41,12 @@ pub fn lower(model: &Model, plan: &Plan) -> Program {
         parameters: lowering.parameters(),
         checks,
         correlation,
-        sources: plan.noise.components.iter().map(|c| c.source.clone()).collect(),
+        sources: plan
+            .noise
+            .components
+            .iter()
+            .map(|c| c.source.clone())
+            .collect(),
         slots,
         outputs,
         notes: std::mem::take(&mut lowering.notes),
@@ -107,14 +112,19 @@ impl<'a> Lowering<'a> {
         let mut values = BTreeMap::new();
         for coordinate in &plan.coordinates {
             let id = self.builder.state(coordinate.state, phase);
-            self.builder.hint(id, &self.model.states[coordinate.state].name);
+            self.builder
+                .hint(id, &self.model.states[coordinate.state].name);
             values.insert(coordinate.symbol, id);
         }
         values
     }
 
     /// An environment for formulas taken at `time` within a step.
-    fn step_environment(&mut self, time: ValueId, coordinates: BTreeMap<Symbol, ValueId>) -> Environment {
+    fn step_environment(
+        &mut self,
+        time: ValueId,
+        coordinates: BTreeMap<Symbol, ValueId>,
+    ) -> Environment {
         let mut bindings = self.parameters.clone();
         bindings.extend(coordinates);
         bindings.insert(self.model.time, time);
@@ -131,17 +141,32 @@ impl<'a> Lowering<'a> {
 
     fn in_setup(&mut self, formula: Expr) -> ValueId {
         let environment = &mut self.setup;
-        Formulas { pool: &self.model.pool, builder: &mut self.builder, environment }.lower(formula)
+        Formulas {
+            pool: &self.model.pool,
+            builder: &mut self.builder,
+            environment,
+        }
+        .lower(formula)
     }
 
     fn in_step(&mut self, formula: Expr) -> ValueId {
         let environment = &mut self.step;
-        Formulas { pool: &self.model.pool, builder: &mut self.builder, environment }.lower(formula)
+        Formulas {
+            pool: &self.model.pool,
+            builder: &mut self.builder,
+            environment,
+        }
+        .lower(formula)
     }
 
     fn in_observation(&mut self, formula: Expr) -> ValueId {
         let environment = &mut self.observation;
-        Formulas { pool: &self.model.pool, builder: &mut self.builder, environment }.lower(formula)
+        Formulas {
+            pool: &self.model.pool,
+            builder: &mut self.builder,
+            environment,
+        }
+        .lower(formula)
     }
 
     /// The length of a step as a formula.

@@ -43,7 +43,10 @@ struct Row {
 impl Noise {
     pub(super) fn new(lowering: &mut Lowering<'_>) -> Self {
         let rows = rows(lowering);
-        let mut noise = Self { mixtures: vec![Vec::new(); rows.len()], ..Self::default() };
+        let mut noise = Self {
+            mixtures: vec![Vec::new(); rows.len()],
+            ..Self::default()
+        };
         for block in blocks(lowering, &rows) {
             noise.block(lowering, &rows, &block);
         }
@@ -56,12 +59,18 @@ impl Noise {
     }
 
     /// The normals that make up a weighted sum of components.
-    pub(super) fn combine(&self, lowering: &mut Lowering<'_>, weights: &[(usize, ValueId)]) -> Mixture {
+    pub(super) fn combine(
+        &self,
+        lowering: &mut Lowering<'_>,
+        weights: &[(usize, ValueId)],
+    ) -> Mixture {
         let mut sums: BTreeMap<usize, ValueId> = BTreeMap::new();
         for &(component, weight) in weights {
             for &(source, coefficient) in self.mixture(component) {
                 let part = lowering.builder.mul(weight, coefficient);
-                let total = sums.get(&source).map_or(part, |&sum| lowering.builder.add(sum, part));
+                let total = sums
+                    .get(&source)
+                    .map_or(part, |&sum| lowering.builder.add(sum, part));
                 sums.insert(source, total);
             }
         }
@@ -74,8 +83,12 @@ impl Noise {
             if self.decoupled_shortcut(lowering, rows, block) {
                 return;
             }
-            let pairs = block.iter().flat_map(|&i| block.iter().map(move |&k| (i, k)));
-            pairs.map(|(i, k)| decoupled_covariance(lowering, &rows[i], &rows[k])).collect()
+            let pairs = block
+                .iter()
+                .flat_map(|&i| block.iter().map(move |&k| (i, k)));
+            pairs
+                .map(|(i, k)| decoupled_covariance(lowering, &rows[i], &rows[k]))
+                .collect()
         } else {
             self.coupled_covariance(lowering, rows, block, &coupled)
         };
@@ -91,12 +104,22 @@ impl Noise {
 
     /// A block without decay is the step's square root times a factor that does not depend on the step;
     /// a row with one driver alone needs no square root of its covariance.
-    fn decoupled_shortcut(&mut self, lowering: &mut Lowering<'_>, rows: &[Row], block: &[usize]) -> bool {
+    fn decoupled_shortcut(
+        &mut self,
+        lowering: &mut Lowering<'_>,
+        rows: &[Row],
+        block: &[usize],
+    ) -> bool {
         let pool = lowering.model.pool.clone();
         if let [only] = *block {
             let row = &rows[only];
-            let mut drivers = row.coefficients.iter().filter(|&&c| !pool.is_zero_literal(c));
-            let (Some(&coefficient), None) = (drivers.next(), drivers.next()) else { return false };
+            let mut drivers = row
+                .coefficients
+                .iter()
+                .filter(|&&c| !pool.is_zero_literal(c));
+            let (Some(&coefficient), None) = (drivers.next(), drivers.next()) else {
+                return false;
+            };
             let variance = elapsed(lowering, pool.mul(pool.int(2), row.rate));
             let deviation = pool.mul(coefficient, pool.sqrt(variance));
             let value = lowering.in_step(deviation);
@@ -164,7 +187,14 @@ impl Noise {
                     place.insert(i, offset + position(lowering, group, state));
                 }
             }
-            self.transitions.insert(group, Transition { matrix: ValueId(0), dim: 0, offset });
+            self.transitions.insert(
+                group,
+                Transition {
+                    matrix: ValueId(0),
+                    dim: 0,
+                    offset,
+                },
+            );
         }
         let (matrix, dim) = system.transition(lowering);
         for group in coupled {
@@ -174,7 +204,11 @@ impl Noise {
         let first = dim * dim + dim;
         let entries = block.iter().flat_map(|i| block.iter().map(move |k| (i, k)));
         entries
-            .map(|(i, k)| lowering.builder.extract(matrix, first + place[i] * dim + place[k]))
+            .map(|(i, k)| {
+                lowering
+                    .builder
+                    .extract(matrix, first + place[i] * dim + place[k])
+            })
             .collect()
     }
 
@@ -183,7 +217,11 @@ impl Noise {
         let mut rows = System::default();
         rows.group(system);
         let (matrix, dim) = rows.transition(lowering);
-        Transition { matrix, dim, offset: 0 }
+        Transition {
+            matrix,
+            dim,
+            offset: 0,
+        }
     }
 }
 
@@ -212,7 +250,8 @@ impl System {
         let offset = self.len();
         for (i, row) in system.a.iter().enumerate() {
             let entries = row.iter().enumerate();
-            self.a.extend(entries.map(|(k, &entry)| (offset + i, offset + k, entry)));
+            self.a
+                .extend(entries.map(|(k, &entry)| (offset + i, offset + k, entry)));
             self.alpha.push(Some(system.alpha[i]));
             self.c.push(system.c[i].clone());
         }
@@ -225,8 +264,11 @@ impl System {
         for &(i, k, entry) in &self.a {
             a[i * dim + k] = lowering.in_step(entry);
         }
-        let alpha: Vec<ValueId> =
-            self.alpha.iter().map(|alpha| alpha.map_or(zero, |alpha| lowering.in_step(alpha))).collect();
+        let alpha: Vec<ValueId> = self
+            .alpha
+            .iter()
+            .map(|alpha| alpha.map_or(zero, |alpha| lowering.in_step(alpha)))
+            .collect();
         let mut q = Vec::with_capacity(dim * dim);
         for i in 0..dim {
             for k in 0..dim {
@@ -235,7 +277,13 @@ impl System {
             }
         }
         let length = lowering.builder.length();
-        let op = Op::Transition { dim, a: a.into(), alpha: alpha.into(), q: q.into(), length };
+        let op = Op::Transition {
+            dim,
+            a: a.into(),
+            alpha: alpha.into(),
+            q: q.into(),
+            length,
+        };
         (lowering.builder.matrix(op), dim)
     }
 }
@@ -246,15 +294,29 @@ fn rows(lowering: &Lowering<'_>) -> Vec<Row> {
         Component::Increment { driver } => {
             let unit = |j| if j == driver { pool.one() } else { pool.zero() };
             let coefficients = (0..lowering.model.drivers.len()).map(unit).collect();
-            Row { component, coefficients, rate: pool.zero() }
+            Row {
+                component,
+                coefficients,
+                rate: pool.zero(),
+            }
         }
         Component::Convolution { group, state } => {
             let system = linear(lowering, group).expect("a convolution belongs to an exact group");
             let i = position(lowering, group, state);
-            Row { component, coefficients: system.c[i].clone(), rate: system.a[i][i] }
+            Row {
+                component,
+                coefficients: system.c[i].clone(),
+                rate: system.a[i][i],
+            }
         }
     };
-    lowering.plan.noise.components.iter().map(|c| row(c.component)).collect()
+    lowering
+        .plan
+        .noise
+        .components
+        .iter()
+        .map(|c| row(c.component))
+        .collect()
 }
 
 fn linear<'a>(lowering: &Lowering<'a>, group: usize) -> Option<&'a LinearGaussian> {
@@ -266,18 +328,28 @@ fn linear<'a>(lowering: &Lowering<'a>, group: usize) -> Option<&'a LinearGaussia
 
 fn position(lowering: &Lowering<'_>, group: usize, state: usize) -> usize {
     let states = &lowering.plan.groups[group].states;
-    states.iter().position(|&s| s == state).expect("the state belongs to the group")
+    states
+        .iter()
+        .position(|&s| s == state)
+        .expect("the state belongs to the group")
 }
 
 /// Whether a system's rows do not read one another.
 pub(super) fn is_diagonal(lowering: &Lowering<'_>, system: &LinearGaussian) -> bool {
     let pool = &lowering.model.pool;
     let rows = system.a.iter().enumerate();
-    rows.into_iter().all(|(i, row)| row.iter().enumerate().all(|(k, &e)| i == k || pool.is_zero_literal(e)))
+    rows.into_iter().all(|(i, row)| {
+        row.iter()
+            .enumerate()
+            .all(|(k, &e)| i == k || pool.is_zero_literal(e))
+    })
 }
 
 fn coupled_groups(lowering: &Lowering<'_>, rows: &[Row], block: &[usize]) -> Vec<usize> {
-    let mut groups: Vec<usize> = block.iter().filter_map(|&i| coupled_group(lowering, &rows[i])).collect();
+    let mut groups: Vec<usize> = block
+        .iter()
+        .filter_map(|&i| coupled_group(lowering, &rows[i]))
+        .collect();
     groups.sort_unstable();
     groups.dedup();
     groups
@@ -285,9 +357,9 @@ fn coupled_groups(lowering: &Lowering<'_>, rows: &[Row], block: &[usize]) -> Vec
 
 fn coupled_group(lowering: &Lowering<'_>, row: &Row) -> Option<usize> {
     match row.component {
-        Component::Convolution { group, .. } => {
-            linear(lowering, group).filter(|system| !is_diagonal(lowering, system)).map(|_| group)
-        }
+        Component::Convolution { group, .. } => linear(lowering, group)
+            .filter(|system| !is_diagonal(lowering, system))
+            .map(|_| group),
         Component::Increment { .. } => None,
     }
 }
@@ -299,7 +371,10 @@ fn blocks(lowering: &Lowering<'_>, rows: &[Row]) -> Vec<Vec<usize>> {
         for k in 0..i {
             if linked(lowering, &rows[i], &rows[k]) && block_of[i] != block_of[k] {
                 let (from, to) = (block_of[i].max(block_of[k]), block_of[i].min(block_of[k]));
-                block_of.iter_mut().filter(|b| **b == from).for_each(|b| *b = to);
+                block_of
+                    .iter_mut()
+                    .filter(|b| **b == from)
+                    .for_each(|b| *b = to);
             }
         }
     }
@@ -322,7 +397,12 @@ fn linked(lowering: &Lowering<'_>, first: &Row, second: &Row) -> bool {
     };
     let (first, second) = (reach(first), reach(second));
     first.iter().any(|c| {
-        second.iter().any(|d| !lowering.model.pool.is_zero_literal(covariance_rate(lowering, c, d)))
+        second.iter().any(|d| {
+            !lowering
+                .model
+                .pool
+                .is_zero_literal(covariance_rate(lowering, c, d))
+        })
     })
 }
 
@@ -331,8 +411,16 @@ fn covariance_rate(lowering: &Lowering<'_>, c: &[Expr], d: &[Expr]) -> Expr {
     let pool = &lowering.model.pool;
     let correlation = &lowering.model.correlation;
     let mut terms = Vec::new();
-    for (j, &left) in c.iter().enumerate().filter(|(_, e)| !pool.is_zero_literal(**e)) {
-        for (k, &right) in d.iter().enumerate().filter(|(_, e)| !pool.is_zero_literal(**e)) {
+    for (j, &left) in c
+        .iter()
+        .enumerate()
+        .filter(|(_, e)| !pool.is_zero_literal(**e))
+    {
+        for (k, &right) in d
+            .iter()
+            .enumerate()
+            .filter(|(_, e)| !pool.is_zero_literal(**e))
+        {
             terms.push(pool.product([left, correlation[j][k], right]));
         }
     }
@@ -346,7 +434,10 @@ pub(super) fn elapsed(lowering: &Lowering<'_>, rate: Expr) -> Expr {
     if pool.is_zero_literal(rate) {
         return length;
     }
-    pool.mul(length, pool.call(Function::Expm1Ratio, &[pool.mul(rate, length)]))
+    pool.mul(
+        length,
+        pool.call(Function::Expm1Ratio, &[pool.mul(rate, length)]),
+    )
 }
 
 fn decoupled_covariance(lowering: &mut Lowering<'_>, first: &Row, second: &Row) -> ValueId {

@@ -24,8 +24,18 @@ impl Lowering<'_> {
             });
         }
         let back = self.inverses();
-        outputs.extend(model.derived.iter().map(|named| self.named(named, OutputKind::Derived, &back)));
-        outputs.extend(model.readouts.iter().map(|named| self.named(named, OutputKind::Readout, &back)));
+        outputs.extend(
+            model
+                .derived
+                .iter()
+                .map(|named| self.named(named, OutputKind::Derived, &back)),
+        );
+        outputs.extend(
+            model
+                .readouts
+                .iter()
+                .map(|named| self.named(named, OutputKind::Readout, &back)),
+        );
         outputs
     }
 

@@ -58,8 +58,14 @@ impl Lowering<'_> {
             }
         }
         let mut environment = self.step_environment(time, coordinates);
-        let mut formulas =
-            Formulas { pool: &self.model.pool, builder: &mut self.builder, environment: &mut environment };
-        drifts.iter().map(|&(_, drift)| formulas.lower(drift)).collect()
+        let mut formulas = Formulas {
+            pool: &self.model.pool,
+            builder: &mut self.builder,
+            environment: &mut environment,
+        };
+        drifts
+            .iter()
+            .map(|&(_, drift)| formulas.lower(drift))
+            .collect()
     }
 }
