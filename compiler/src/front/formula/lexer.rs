@@ -190,7 +190,7 @@ fn number_at(rest: &str) -> &str {
 }
 
 /// Whether names may start with it.
-pub(crate) fn is_letter(c: char) -> bool {
+fn is_letter(c: char) -> bool {
     c.is_alphabetic()
 }
 

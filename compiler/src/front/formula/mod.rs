@@ -14,7 +14,7 @@ mod parser;
 
 pub use ast::{Ast, AstKind, Factor, Term};
 pub use interval::{IntervalAst, IntervalEnd, parse_interval};
-pub(crate) use lexer::{is_letter, is_name};
+pub(crate) use lexer::is_name;
 pub(crate) use lower::kink_at;
 pub use lower::{Names, lower, parse_in_pool};
 pub use number::{NumberError, decimal};

@@ -1,0 +1,140 @@
+//! Parameters and the assumptions between them.
+
+use super::super::raw::{RawAssumption, RawParameter};
+use super::intervals::{ends, show};
+use super::order::{Definition, order};
+use super::place::Place;
+use super::{Resolver, numbers::Basis};
+use crate::diagnostic::{Code, Diagnostic};
+use crate::model::{Assumption, Parameter, Relation};
+use crate::symbolic::{Interval, SymbolKind};
+
+impl Resolver<'_> {
+    /// Parameters with their ranges, which the pool learns too.
+    pub(super) fn parameters(&mut self, raw: &[RawParameter]) -> Vec<Parameter> {
+        for parameter in raw {
+            if let Some((value, _)) = &parameter.value {
+                let symbol = self
+                    .pool
+                    .symbol(&parameter.name.text, SymbolKind::Parameter);
+                self.numbers.set(symbol, value);
+            }
+        }
+        self.range_circles(raw);
+        raw.iter()
+            .map(|parameter| self.parameter(parameter))
+            .collect()
+    }
+
+    /// Ranges whose ends depend on one another say nothing.
+    fn range_circles(&mut self, raw: &[RawParameter]) {
+        let definitions: Vec<Definition<'_>> = raw
+            .iter()
+            .map(|p| Definition {
+                name: &p.name.text,
+                uses: p
+                    .range
+                    .iter()
+                    .flat_map(ends)
+                    .flat_map(|ast| ast.names())
+                    .collect(),
+            })
+            .collect();
+        order(&definitions, self.diagnostics);
+    }
+
+    fn parameter(&mut self, raw: &RawParameter) -> Parameter {
+        let symbol = self.pool.symbol(&raw.name.text, SymbolKind::Parameter);
+        let range = raw
+            .range
+            .as_ref()
+            .map_or(Interval::REAL, |ast| self.interval(ast, Place::Range));
+        self.pool.set_range(symbol, range);
+        if let Some((value, span)) = &raw.value
+            && self
+                .numbers
+                .outside(self.pool.number(value.clone()), &range)
+                .is_some()
+        {
+            let message = format!(
+                "the default value of `{}` is outside its range {}",
+                raw.name.text,
+                show(self, &range)
+            );
+            let mut diagnostic = Diagnostic::error(Code::ValueOutsideRange, *span, message)
+                .hint("change the value or the range");
+            if let Some(ast) = &raw.range {
+                diagnostic = diagnostic.label(ast.span, "the range");
+            }
+            self.diagnostics.push(diagnostic);
+        }
+        Parameter {
+            name: raw.name.text.clone(),
+            symbol,
+            value: raw.value.as_ref().map(|(value, _)| value.clone()),
+            unit: raw.unit.clone(),
+            about: raw.about.clone(),
+            range,
+            span: raw.name.span,
+        }
+    }
+
+    /// `[assumptions]`
+    pub(super) fn assumptions(&mut self, raw: &[RawAssumption]) -> Vec<Assumption> {
+        raw.iter()
+            .filter_map(|assumption| self.assumption(assumption))
+            .collect()
+    }
+
+    fn assumption(&mut self, raw: &RawAssumption) -> Option<Assumption> {
+        let left = self
+            .scope
+            .lower(&raw.left, Place::Assumption, self.diagnostics);
+        let right = self
+            .scope
+            .lower(&raw.right, Place::Assumption, self.diagnostics);
+        let (left, right) = (left?, right?);
+        let difference = self.pool.sub(left, right);
+        match self.numbers.value(difference) {
+            Some((_, Basis::Literal)) => {
+                let message = "the assumption does not depend on any parameter";
+                self.diagnostics.push(
+                    Diagnostic::error(Code::BadAssumption, raw.span, message)
+                        .hint("compare formulas in the parameters, or remove it"),
+                );
+            }
+            Some((value, Basis::Defaults)) if !holds(raw.relation, value) => {
+                let at = |e| self.numbers.value(e).map_or(f64::NAN, |(value, _)| value);
+                let message = format!(
+                    "the assumption `{}` fails at the default values: {} against {}",
+                    raw.name.text,
+                    at(left),
+                    at(right)
+                );
+                self.diagnostics.push(
+                    Diagnostic::warning(Code::AssumptionFails, raw.span, message)
+                        .hint("change the default values, or the assumption"),
+                );
+            }
+            _ => {}
+        }
+        Some(Assumption {
+            name: raw.name.text.clone(),
+            left,
+            relation: raw.relation,
+            right,
+            text: raw.text.clone(),
+            span: raw.span,
+        })
+    }
+}
+
+/// Whether `difference relation 0`.
+fn holds(relation: Relation, difference: f64) -> bool {
+    match relation {
+        Relation::Less => difference < 0.0,
+        Relation::LessEqual => difference <= 0.0,
+        Relation::Greater => difference > 0.0,
+        Relation::GreaterEqual => difference >= 0.0,
+    }
+}

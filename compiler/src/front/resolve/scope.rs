@@ -1,0 +1,312 @@
+//! What each name means, and where it may be used.
+
+use std::cell::RefCell;
+use std::collections::{BTreeMap, BTreeSet};
+
+use super::super::formula::{Ast, Names, kink_at, lower};
+use super::super::raw::{Name, RawFormula};
+use super::super::suggest::did_you_mean;
+use super::place::Place;
+use crate::diagnostic::{Code, Diagnostic, Diagnostics};
+use crate::model::Formula;
+use crate::source::Span;
+use crate::symbolic::{Expr, Function, Pool, Symbol, SymbolKind};
+
+/// The kinds of names.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Kind {
+    Driver,
+    Parameter,
+    State,
+    Where,
+    Derived,
+    Readout,
+}
+
+impl Kind {
+    pub(super) fn noun(self) -> &'static str {
+        match self {
+            Self::Driver => "driver",
+            Self::Parameter => "parameter",
+            Self::State => "state",
+            Self::Where => "sub-expression",
+            Self::Derived => "derived quantity",
+            Self::Readout => "readout",
+        }
+    }
+}
+
+/// A declared name.
+#[derive(Clone, Debug)]
+pub(super) struct Declared {
+    pub(super) kind: Kind,
+    pub(super) span: Span,
+    /// Its formula; none where it was refused, or is not known yet.
+    pub(super) value: Option<Expr>,
+}
+
+/// All names of a file.
+pub(super) struct Scope {
+    pub(super) pool: Pool,
+    pub(super) time: Symbol,
+    names: BTreeMap<String, Declared>,
+    used: RefCell<BTreeSet<String>>,
+}
+
+impl Scope {
+    /// A scope with nothing but `t` and `pi`.
+    pub(super) fn new(pool: Pool) -> Self {
+        let time = pool.symbol("t", SymbolKind::Time);
+        Self {
+            pool,
+            time,
+            names: BTreeMap::new(),
+            used: RefCell::default(),
+        }
+    }
+
+    /// Declares a name; a second meaning is refused.
+    pub(super) fn declare(&mut self, kind: Kind, name: &Name, diagnostics: &mut Diagnostics) {
+        if let Some(first) = self.names.get(&name.text) {
+            let message = format!("`{}` has two meanings", name.text);
+            diagnostics.push(
+                Diagnostic::error(Code::NameTwice, name.span, message)
+                    .label(name.span, format!("here a {}", kind.noun()))
+                    .label(first.span, format!("first a {}", first.kind.noun()))
+                    .hint("rename one of the two"),
+            );
+            return;
+        }
+        let value = match kind {
+            Kind::Parameter => Some(
+                self.pool
+                    .var(self.pool.symbol(&name.text, SymbolKind::Parameter)),
+            ),
+            Kind::State => Some(
+                self.pool
+                    .var(self.pool.symbol(&name.text, SymbolKind::State)),
+            ),
+            _ => None,
+        };
+        self.insert(
+            &name.text,
+            Declared {
+                kind,
+                span: name.span,
+                value,
+            },
+        );
+    }
+
+    /// Adds a name that is known to be new.
+    pub(super) fn insert(&mut self, name: &str, declared: Declared) {
+        self.names.insert(name.to_owned(), declared);
+    }
+
+    /// Gives a declared name its formula.
+    pub(super) fn define(&mut self, kind: Kind, name: &str, value: Option<Expr>) {
+        if let Some(declared) = self.names.get_mut(name).filter(|d| d.kind == kind) {
+            declared.value = value;
+        }
+    }
+
+    /// Whether any formula used the name.
+    pub(super) fn is_used(&self, name: &str) -> bool {
+        self.used.borrow().contains(name)
+    }
+
+    /// Notes a use outside formulas.
+    pub(super) fn mark_used(&self, name: &str) {
+        self.used.borrow_mut().insert(name.to_owned());
+    }
+
+    /// The names of a kind.
+    pub(super) fn of_kind(&self, kind: Kind) -> impl Iterator<Item = &str> {
+        let names = self
+            .names
+            .iter()
+            .filter(move |(_, declared)| declared.kind == kind);
+        names.map(|(name, _)| name.as_str())
+    }
+
+    /// A formula at a place, or its errors to the sink.
+    pub(super) fn formula(
+        &self,
+        raw: &RawFormula,
+        place: Place,
+        diagnostics: &mut Diagnostics,
+    ) -> Option<Formula> {
+        let expr = self.lower(&raw.ast, place, diagnostics)?;
+        Some(Formula {
+            expr,
+            text: raw.text.clone(),
+            span: raw.span,
+        })
+    }
+
+    /// The meaning of a tree at a place, or its errors to the sink. At places that Ito's rule is
+    /// applied to, kinks are refused.
+    pub(super) fn lower(
+        &self,
+        ast: &Ast,
+        place: Place,
+        diagnostics: &mut Diagnostics,
+    ) -> Option<Expr> {
+        let result = lower(&self.pool, ast, &View { scope: self, place });
+        let kink = if place.needs_derivatives() {
+            self.kink(ast, place)
+        } else {
+            None
+        };
+        let mut errors = result.as_ref().err().cloned().unwrap_or_default();
+        let failed = kink.is_some();
+        errors.extend(kink);
+        errors.into_iter().for_each(|d| diagnostics.push(d));
+        result.ok().filter(|_| !failed)
+    }
+
+    /// The kink of a formula, in itself or in a name it uses.
+    fn kink(&self, ast: &Ast, place: Place) -> Option<Diagnostic> {
+        let direct = kink_at(ast).map(|(function, span)| (function, span, None));
+        let (function, span, through) = direct.or_else(|| self.kink_in_names(ast))?;
+        let name = function.name();
+        let message = match through {
+            Some(inner) => format!("`{inner}` uses `{name}`, which is not twice differentiable"),
+            None => format!("`{name}` is not twice differentiable"),
+        };
+        Some(
+            Diagnostic::error(Code::Kink, span, message)
+                .note(format!(
+                    "Ito's rule is applied to {}: where a path crosses the kink, a local-time term \
+                     would be missing",
+                    place.what()
+                ))
+                .hint("make it a readout, which takes any function, or use a smooth function"),
+        )
+    }
+
+    fn kink_in_names(&self, ast: &Ast) -> Option<(Function, Span, Option<String>)> {
+        ast.names().into_iter().find_map(|(name, span)| {
+            let function = self.pool.has_kink(self.names.get(name)?.value?)?;
+            Some((function, span, Some(name.to_owned())))
+        })
+    }
+}
+
+/// The names as seen from a place.
+struct View<'a> {
+    scope: &'a Scope,
+    place: Place,
+}
+
+impl Names for View<'_> {
+    fn value(&self, name: &str, span: Span) -> Result<Option<Expr>, Diagnostic> {
+        let scope = self.scope;
+        if name == "t" {
+            let allowed = self.place.allows_time();
+            return if allowed {
+                Ok(Some(scope.pool.var(scope.time)))
+            } else {
+                Err(self.refused("the time `t`", span))
+            };
+        }
+        if name == "pi" {
+            return Ok(Some(scope.pool.pi()));
+        }
+        let Some(declared) = scope.names.get(name) else {
+            return Err(self.unknown(name, span));
+        };
+        scope.mark_used(name);
+        if !self.place.allows(declared.kind) {
+            return Err(self.refused(&format!("the {} `{name}`", declared.kind.noun()), span));
+        }
+        let Some(value) = declared.value else {
+            return Ok(None);
+        };
+        self.contents_allowed(name, value, span)
+            .map(|()| Some(value))
+    }
+
+    fn kind(&self, name: &str) -> Option<&'static str> {
+        match name {
+            "t" | "pi" => Some("number"),
+            _ => self
+                .scope
+                .names
+                .get(name)
+                .map(|declared| declared.kind.noun()),
+        }
+    }
+}
+
+impl View<'_> {
+    /// Whether what a name stands for may be used here.
+    fn contents_allowed(&self, name: &str, value: Expr, span: Span) -> Result<(), Diagnostic> {
+        let pool = &self.scope.pool;
+        for symbol in pool.symbols_of(value) {
+            let inner = pool.symbol_name(symbol);
+            let thing = match pool.symbol_kind(symbol) {
+                SymbolKind::Time if !self.place.allows_time() => "the time `t`".to_owned(),
+                SymbolKind::State if !self.place.allows_state(symbol) => {
+                    format!("the state `{inner}`")
+                }
+                _ => continue,
+            };
+            let own = &*inner == name;
+            let thing = if own {
+                thing
+            } else {
+                format!("`{name}`, which uses {thing},")
+            };
+            return Err(self.refused(&thing, span));
+        }
+        Ok(())
+    }
+
+    fn refused(&self, thing: &str, span: Span) -> Diagnostic {
+        let message = format!("{thing} may not be used in {}", self.place.what());
+        Diagnostic::error(Code::NotAllowedHere, span, message).hint(format!(
+            "{} holds {}",
+            self.place.what(),
+            self.place.holds()
+        ))
+    }
+
+    fn unknown(&self, name: &str, span: Span) -> Diagnostic {
+        let message = format!("`{name}` is not declared");
+        let diagnostic = Diagnostic::error(Code::UnknownName, span, message);
+        let hint = match name {
+            "e" => Some("the number e is `exp(1)`".to_owned()),
+            "inf" => Some("`inf` stands at the end of an interval only".to_owned()),
+            "dt" | "dW" => {
+                Some("write the coefficient alone, `dt` and `dW` are understood".to_owned())
+            }
+            _ => did_you_mean(name, self.candidates())
+                .or_else(|| no_product(name, &self.scope.names)),
+        };
+        diagnostic.hint(hint.unwrap_or_else(|| "declare it, as a parameter for example".to_owned()))
+    }
+
+    /// The names that could have been meant here.
+    fn candidates(&self) -> impl Iterator<Item = &str> {
+        let declared = self
+            .scope
+            .names
+            .iter()
+            .filter(|(_, d)| self.place.allows(d.kind));
+        let time = self.place.allows_time().then_some("t");
+        declared
+            .map(|(name, _)| name.as_str())
+            .chain(time)
+            .chain(["pi"])
+    }
+}
+
+/// Two names written together, as in `muS`.
+fn no_product(name: &str, names: &BTreeMap<String, Declared>) -> Option<String> {
+    name.char_indices().skip(1).find_map(|(cut, _)| {
+        let (left, right) = name.split_at(cut);
+        let both = names.contains_key(left) && names.contains_key(right);
+        both.then(|| format!("write `{left}*{right}` for a product"))
+    })
+}
