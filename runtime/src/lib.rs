@@ -7,21 +7,29 @@
 //! of the class.
 
 mod arith;
+pub mod collect;
+mod dispatch;
 mod error;
 pub mod gauss;
 mod grid;
 mod interval;
 mod lane;
 pub mod math;
+pub mod random;
+mod run;
 mod simulator;
 mod source;
 mod version;
 
 pub use arith::{Arith, ArithmeticClass, Fused, Unfused, UnknownArithmetic};
+pub use collect::Collector;
+pub use dispatch::InstructionSet;
 pub use error::{ParameterError, StepError, check_initial, check_range};
 pub use grid::{Grid, GridError, MAX_STEPS, Observation, Step};
 pub use interval::Interval;
 pub use lane::{LANES, Lane};
+pub use random::Generator;
+pub use run::{Failures, Outcome, Progress, Run, RunError, simulate};
 pub use simulator::{Shape, Simulator};
 pub use source::{STREAM_VERSION, Source, source_id};
 pub use version::{Runs, Version, require_version};

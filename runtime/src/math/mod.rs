@@ -1,16 +1,42 @@
 //! The functions of the formula language, the same bits on every machine.
 //!
-//! Each takes the arithmetic class as a type argument: `exp::<Fused>(x)`. The platform's
-//! own mathematical library is never used, since it differs between machines.
+//! Each takes the arithmetic class as a type argument, `exp::<Fused>(x)`, and is
+//! `#[inline(always)]`. The platform's own mathematical library is never used, since it
+//! differs between machines. A loop over a lane of `exp`, `ln`, `sin`, `cos`, `sinh`, `cosh`,
+//! `tanh`, `expm1`, `pow`, `powi`, `normal_pdf` and the selections vectorises; the rarer ones
+//! call the crate `libm`, one path after the other.
+//!
+//!
+
+mod double;
+mod exponential;
+mod logarithm;
+mod normal;
+mod quantile;
+mod select;
+mod trigonometry;
 
 use crate::arith::Arith;
 
-/// Square root, correctly rounded.
+pub use exponential::{cosh, exp, expm1, expm1_ratio, sinh, tanh};
+pub(crate) use logarithm::ln_positive;
+pub use logarithm::{ln, pow, powi};
+pub use normal::{normal_cdf, normal_pdf};
+pub use quantile::normal_quantile;
+pub use select::{abs, max, min, sign, sqrt};
+pub(crate) use trigonometry::sin_cos_turns;
+pub use trigonometry::{cos, sin};
+
+/// The polynomial with these coefficients, highest power first.
 #[inline(always)]
-#[must_use]
-pub fn sqrt<A: Arith>(x: f64) -> f64 {
-    x.sqrt()
+fn polynomial<A: Arith, const N: usize>(x: f64, coefficients: [f64; N]) -> f64 {
+    let mut value = coefficients[0];
+    for &coefficient in &coefficients[1..] {
+        value = A::mul_add(value, x, coefficient);
+    }
+    value
 }
+
 macro_rules! delegate {
     ($($(#[$doc:meta])* $name:ident = $target:path;)*) => { $(
         $(#[$doc])*
@@ -23,24 +49,8 @@ macro_rules! delegate {
 }
 
 delegate! {
-    /// Exponential.
-    exp = libm::exp;
-    /// `e^x - 1`.
-    expm1 = libm::expm1;
-    /// Natural logarithm.
-    ln = libm::log;
-    /// Sine.
-    sin = libm::sin;
-    /// Cosine.
-    cos = libm::cos;
     /// Tangent.
     tan = libm::tan;
-    /// Hyperbolic sine.
-    sinh = libm::sinh;
-    /// Hyperbolic cosine.
-    cosh = libm::cosh;
-    /// Hyperbolic tangent.
-    tanh = libm::tanh;
     /// Inverse sine.
     asin = libm::asin;
     /// Inverse cosine.
@@ -58,81 +68,3 @@ delegate! {
     /// Error function.
     erf = libm::erf;
 }
-
-/// `x^y`; a negative `x` takes only integer `y`.
-#[inline(always)]
-#[must_use]
-pub fn pow<A: Arith>(x: f64, y: f64) -> f64 {
-    libm::pow(x, y)
-}
-
-/// `x^n` by repeated multiplication.
-#[inline(always)]
-#[must_use]
-pub fn powi<A: Arith>(x: f64, n: i32) -> f64 {
-    let mut result = 1.0;
-    let mut square = x;
-    let mut rest = n.unsigned_abs();
-    while rest != 0 {
-        if rest & 1 == 1 {
-            result *= square;
-        }
-        square *= square;
-        rest >>= 1;
-    }
-    if n < 0 { 1.0 / result } else { result }
-}
-
-/// `(e^x - 1) / x`, 1 at 0.
-#[inline(always)]
-#[must_use]
-pub fn expm1_ratio<A: Arith>(x: f64) -> f64 {
-    if x == 0.0 { 1.0 } else { expm1::<A>(x) / x }
-}
-
-/// Standard normal distribution function.
-#[inline(always)]
-#[must_use]
-pub fn normal_cdf<A: Arith>(x: f64) -> f64 {
-    0.5 * libm::erfc(-x * std::f64::consts::FRAC_1_SQRT_2)
-}
-
-/// The smaller of two numbers, `a < b ? a : b`: the second if either is NaN.
-#[inline(always)]
-#[must_use]
-pub fn min<A: Arith>(a: f64, b: f64) -> f64 {
-    if a < b { a } else { b }
-}
-
-/// The larger of two numbers, `a > b ? a : b`: the second if either is NaN.
-#[inline(always)]
-#[must_use]
-pub fn max<A: Arith>(a: f64, b: f64) -> f64 {
-    if a > b { a } else { b }
-}
-
-/// Absolute value.
-#[inline(always)]
-#[must_use]
-pub fn abs<A: Arith>(x: f64) -> f64 {
-    x.abs()
-}
-
-/// -1, 0 or 1; NaN for NaN.
-#[inline(always)]
-#[must_use]
-pub fn sign<A: Arith>(x: f64) -> f64 {
-    let s = if x > 0.0 { 1.0 } else { x };
-    if x < 0.0 { -1.0 } else { s }
-}
-
-/// Standard normal density.
-#[inline(always)]
-#[must_use]
-pub fn normal_pdf<A: Arith>(x: f64) -> f64 {
-    const FACTOR: f64 = 0.398_942_280_401_432_7;
-    FACTOR * exp::<A>(-0.5 * (x * x))
-}
-
-mod quantile;
-pub use quantile::normal_quantile;

@@ -2,20 +2,8 @@
 
 #![allow(clippy::excessive_precision)] // the coefficients stand as published
 
-use super::ln;
+use super::{ln, polynomial};
 use crate::arith::Arith;
-
-/// Evaluates the polynomial with these coefficients, highest power first.
-#[inline(always)]
-fn horner<A: Arith>(x: f64, coefficients: [f64; 8]) -> f64 {
-    let [a, b, c, d, e, f, g, h] = coefficients;
-    let m = A::mul_add;
-    m(
-        m(m(m(m(m(m(a, x, b), x, c), x, d), x, e), x, f), x, g),
-        x,
-        h,
-    )
-}
 
 /// Standard normal quantile: the `x` with `normal_cdf(x) = p`. Infinite at 0 and 1, NaN outside.
 ///
@@ -48,7 +36,7 @@ pub fn normal_quantile<A: Arith>(p: f64) -> f64 {
 #[inline(always)]
 fn central<A: Arith>(q: f64) -> f64 {
     let r = A::mul_add(-q, q, 0.180625);
-    let top = horner::<A>(
+    let top = polynomial::<A, 8>(
         r,
         [
             2.509_080_928_730_122_672_7e3,
@@ -61,7 +49,7 @@ fn central<A: Arith>(q: f64) -> f64 {
             3.387_132_872_796_366_608,
         ],
     );
-    let bottom = horner::<A>(
+    let bottom = polynomial::<A, 8>(
         r,
         [
             5.226_495_278_852_854_561e3,
@@ -80,7 +68,7 @@ fn central<A: Arith>(q: f64) -> f64 {
 /// `sqrt(-ln(tail mass)) <= 5`, argument less 1.6.
 #[inline(always)]
 fn middle<A: Arith>(r: f64) -> f64 {
-    let top = horner::<A>(
+    let top = polynomial::<A, 8>(
         r,
         [
             7.745_450_142_783_414_076_4e-4,
@@ -93,7 +81,7 @@ fn middle<A: Arith>(r: f64) -> f64 {
             1.423_437_110_749_683_577_3,
         ],
     );
-    let bottom = horner::<A>(
+    let bottom = polynomial::<A, 8>(
         r,
         [
             1.050_750_071_644_416_843_2e-9,
@@ -112,7 +100,7 @@ fn middle<A: Arith>(r: f64) -> f64 {
 /// The far tail, argument less 5.
 #[inline(always)]
 fn far<A: Arith>(r: f64) -> f64 {
-    let top = horner::<A>(
+    let top = polynomial::<A, 8>(
         r,
         [
             2.010_334_399_292_288_132_7e-7,
@@ -125,7 +113,7 @@ fn far<A: Arith>(r: f64) -> f64 {
             6.657_904_643_501_103_777_2,
         ],
     );
-    let bottom = horner::<A>(
+    let bottom = polynomial::<A, 8>(
         r,
         [
             2.044_263_103_389_939_785_6e-15,
