@@ -1,10 +1,78 @@
 //! How each state is stepped, why, and what was rejected.
+//!
+//! [`plan`] first looks for the largest linear Gaussian system ([`crate::analysis::linear`]) and steps it
+//! by its exact law. What is left is stepped by the scheme of highest strong order that its noise
+//! allows: Milstein where the noise commutes, Euler-Maruyama where it does not, Euler with full
+//! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
+mod approximate;
+mod edges;
+mod exact;
 mod name;
+mod noise;
+mod overrides;
 mod plan;
+mod reasons;
+mod step;
+mod warn;
+
+use crate::analysis::linear;
+use crate::calculus::Dynamics;
+use crate::diagnostic::Diagnostics;
+use crate::model::Model;
 
 pub use name::SchemeName;
 pub use plan::{
     Becomes, Component, Coordinate, EdgeRule, Group, Kind, Law, LinearGaussian, Method,
     NoiseComponent, NoisePlan, Order, Plan, RowNoise, StateStep,
 };
+
+/// Plans how the states of a model are stepped.
+///
+/// Overrides that cannot be honoured, a `through` that cannot be inverted and open ends that may be
+/// reached go to `diagnostics`; the plan is complete in any case.
+pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -> Plan {
+    warn::coordinates(model, diagnostics);
+    let rows = linear::find(model, dynamics, &overrides::excluded(model));
+    let steps: Vec<_> = (0..model.states.len())
+        .map(|i| step::step_coordinate(model, dynamics, i))
+        .collect();
+    let coordinates: Vec<Coordinate> = rows
+        .iter()
+        .zip(&steps)
+        .enumerate()
+        .map(|(i, (row, step))| match row {
+            Ok(row) => step::exact_coordinate(i, row),
+            Err(_) => step.0.clone(),
+        })
+        .collect();
+    let projections: Vec<_> = steps.iter().map(|step| step.1).collect();
+    let traces: Vec<_> = steps.iter().map(|step| step.2.clone()).collect();
+    let context = approximate::Context {
+        model,
+        dynamics,
+        coordinates: &coordinates,
+        projections: &projections,
+        traces: &traces,
+        refusals: rows.iter().map(|row| row.as_ref().err().cloned()).collect(),
+    };
+    let mut groups = exact::groups(model, &rows);
+    let choices = context.choices();
+    groups.extend(context.groups(&choices));
+    groups.sort_by_key(|g| g.states.first().copied());
+    overrides::check(
+        model,
+        dynamics,
+        &groups,
+        &choices,
+        &context.refusals,
+        diagnostics,
+    );
+    warn::open_ends(model, dynamics, &groups, diagnostics);
+    let noise = noise::plan(model, &groups);
+    Plan {
+        coordinates,
+        groups,
+        noise,
+    }
+}

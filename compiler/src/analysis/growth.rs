@@ -1,0 +1,84 @@
+//! Growth and smoothness of step coefficients, which the theorems on orders assume.
+
+use super::asymptotics::{Leading, Side, at_end};
+use crate::symbolic::{Expr, Pool, Rational, Symbol};
+
+/// What is known of a coefficient as a function of the coordinates.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Growth {
+    /// Every derivative is bounded: globally Lipschitz.
+    Lipschitz,
+    /// Grows faster than linearly in this symbol, like this power of it.
+    Superlinear {
+        /// The symbol.
+        symbol: Symbol,
+        /// The power.
+        power: Rational,
+    },
+    /// The derivative in this symbol is unbounded or could not be bounded.
+    NotShown {
+        /// The symbol.
+        symbol: Symbol,
+    },
+}
+
+/// Classifies a coefficient on the ranges of `symbols`, the coordinates.
+pub fn growth(pool: &Pool, coefficient: Expr, symbols: &[Symbol]) -> Growth {
+    let mentioned: Vec<Symbol> = symbols
+        .iter()
+        .copied()
+        .filter(|&s| pool.depends_on(coefficient, s))
+        .collect();
+    if let [symbol] = mentioned[..]
+        && let Some(power) = power_at_infinity(pool, coefficient, symbol)
+        && power > Rational::ONE
+    {
+        return Growth::Superlinear { symbol, power };
+    }
+    let unbounded = mentioned.iter().find(|&&s| {
+        let slope = pool.simplify(pool.derivative(coefficient, s));
+        !is_bounded(pool, slope, symbols)
+    });
+    match unbounded {
+        Some(&symbol) => Growth::NotShown { symbol },
+        None => Growth::Lipschitz,
+    }
+}
+
+/// The largest power of |x| a formula grows like towards an infinite end.
+fn power_at_infinity(pool: &Pool, e: Expr, x: Symbol) -> Option<Rational> {
+    let range = pool.range(x);
+    let ends = [(range.lower, Side::Lower), (range.upper, Side::Upper)];
+    let powers = ends
+        .into_iter()
+        .filter(|(end, _)| end.value().is_none())
+        .filter_map(|(end, side)| match at_end(pool, e, x, end, side) {
+            Leading::Term { exponent, .. } => Some(-exponent),
+            Leading::Zero | Leading::Unknown => None,
+        });
+    powers.max()
+}
+
+/// Whether a formula is certainly bounded: free of the symbols, or a function of one of them with
+/// finite limits at both ends (formulas here are continuous inside).
+fn is_bounded(pool: &Pool, e: Expr, symbols: &[Symbol]) -> bool {
+    let mentioned: Vec<Symbol> = symbols
+        .iter()
+        .copied()
+        .filter(|&s| pool.depends_on(e, s))
+        .collect();
+    match mentioned[..] {
+        [] => true,
+        [symbol] => {
+            let range = pool.range(symbol);
+            let ends = [(range.lower, Side::Lower), (range.upper, Side::Upper)];
+            ends.into_iter()
+                .all(|(end, side)| match at_end(pool, e, symbol, end, side) {
+                    Leading::Zero => true,
+                    Leading::Term { exponent, .. } => exponent >= Rational::ZERO,
+                    Leading::Unknown => false,
+                })
+        }
+        _ => false,
+    }
+}

@@ -1,0 +1,86 @@
+//! The noise of a single state: constant in a coordinate, or why in none.
+
+use super::coordinate::Candidate;
+use super::free::{Freedom, free_of};
+use crate::model::Model;
+use crate::symbolic::{Bound, Expr, Pool, Symbol};
+
+/// The coefficients of the drivers in a coordinate, if they are free of all states.
+pub(super) fn constant_noise(
+    pool: &Pool,
+    noise: &[Expr],
+    coordinate: &Candidate,
+    state: Symbol,
+    states: &[Symbol],
+) -> Option<Vec<Expr>> {
+    let slope = pool.derivative(coordinate.forward, state);
+    let constant = |&b: &Expr| match free_of(pool, pool.mul(b, slope), states) {
+        Freedom::Free(c) if pool.has_kink(b).is_none() || !mentions(pool, b, states) => Some(c),
+        _ => None,
+    };
+    noise.iter().map(constant).collect()
+}
+
+fn mentions(pool: &Pool, e: Expr, states: &[Symbol]) -> bool {
+    states.iter().any(|&s| pool.depends_on(e, s))
+}
+
+/// Why no coordinate makes the noise of a state constant, and what the author can do.
+pub(super) fn why_no_coordinate(model: &Model, state: usize, noise: &[Expr]) -> String {
+    let (pool, declared) = (&model.pool, &model.states[state]);
+    if let Some(through) = &declared.through {
+        return format!(
+            "in the coordinate {} the noise still depends on the states",
+            pool.format(through.expr)
+        );
+    }
+    for (other, b) in model
+        .states
+        .iter()
+        .flat_map(|s| noise.iter().map(move |&b| (s, b)))
+    {
+        if other.symbol != declared.symbol && pool.depends_on(b, other.symbol) {
+            return format!(
+                "its noise depends on {}, so that no coordinate of {} alone makes it constant",
+                other.name, declared.name
+            );
+        }
+    }
+    let own = noise.iter().copied().find(|&b| !pool.is_zero_literal(b));
+    if let Some(reason) = own.and_then(|b| beyond_domain(model, state, b)) {
+        return reason;
+    }
+    format!(
+        "no known coordinate takes the domain of {} onto the whole line and makes its noise constant",
+        declared.name
+    )
+}
+
+/// Noise that a coordinate would make constant, were it not for the declared domain.
+fn beyond_domain(model: &Model, state: usize, b: Expr) -> Option<String> {
+    let (pool, declared) = (&model.pool, &model.states[state]);
+    let x = declared.symbol;
+    let slope = pool.derivative(b, x);
+    if let Freedom::Free(slope) = free_of(pool, slope, &[x]) {
+        if pool.is_zero_literal(slope) {
+            return Some(
+                "its noise is constant, yet its domain has an end: a Gaussian variable leaves it"
+                    .to_owned(),
+            );
+        }
+        let end = pool.simplify(pool.sub(pool.var(x), pool.div(b, slope)));
+        let bounds = [declared.domain.lower, declared.domain.upper];
+        let touches = bounds
+            .into_iter()
+            .any(|bound| matches!(bound, Bound::Open(e) if pool.equal(e, end).is_yes()));
+        if !touches {
+            let end = pool.format(end);
+            return Some(format!(
+                "its noise is proportional to its distance from {end}, so that the logarithm of that \
+                 distance has constant noise, but its domain does not say that it stays on one side: \
+                 declare domain = \"({end}, inf)\" if it does"
+            ));
+        }
+    }
+    None
+}

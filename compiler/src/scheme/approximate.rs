@@ -1,0 +1,281 @@
+//! Groups stepped by a scheme with a discretisation error: which scheme, and why.
+
+use std::collections::BTreeMap;
+use std::rc::Rc;
+
+use super::edges::Projection;
+use super::step::{Frame, state_step};
+use super::{Coordinate, Group, Kind, Law, Method, Order, SchemeName, overrides, reasons};
+use crate::analysis::commute::{Clash, clash};
+use crate::analysis::coordinate::through;
+use crate::analysis::dependence::{deterministic, sources};
+use crate::calculus::Dynamics;
+use crate::model::{AtEdge, Model};
+use crate::symbolic::trace::Trace;
+use crate::symbolic::{Bound, Expr, Function};
+
+/// What the choice among approximate schemes rests on.
+pub(super) struct Context<'a> {
+    pub(super) model: &'a Model,
+    pub(super) dynamics: &'a Dynamics,
+    pub(super) coordinates: &'a [Coordinate],
+    /// Per state, the ends its coefficients are projected to.
+    pub(super) projections: &'a [Projection],
+    /// Per state, Ito's rule on its coordinate.
+    pub(super) traces: &'a [Trace],
+    /// Per state, why it has no exact law; none where it has one.
+    pub(super) refusals: Vec<Option<String>>,
+}
+
+/// What is known of a component of approximate states, and what follows.
+pub(super) struct Choice {
+    /// The scheme for states without an override.
+    pub(super) scheme: SchemeName,
+    /// Nothing random reaches the component.
+    pub(super) deterministic: bool,
+    /// Every coefficient of the noise is free of the states.
+    pub(super) additive: bool,
+    /// The first state whose noise does not commute, with the pair of drivers.
+    pub(super) clash: Option<(usize, Clash)>,
+    /// A function with a kink in a coefficient.
+    pub(super) kink: Option<Function>,
+    /// A state that is projected to its domain.
+    pub(super) projected: bool,
+    /// A state that is absorbed or reflected.
+    pub(super) ruled: bool,
+}
+
+impl Context<'_> {
+    /// The groups of all states without an exact row, each component split by scheme.
+    pub(super) fn groups(&self, choices: &BTreeMap<usize, Rc<Choice>>) -> Vec<Group> {
+        let frame = Frame::new(self.model, self.coordinates);
+        let mut groups = Vec::new();
+        for component in self.components() {
+            let choice = &choices[&component[0]];
+            let mut by_scheme: BTreeMap<SchemeName, Vec<usize>> = BTreeMap::new();
+            for &state in &component {
+                let scheme =
+                    overrides::honoured(self.model, state, choice).unwrap_or(choice.scheme);
+                by_scheme.entry(scheme).or_default().push(state);
+            }
+            let mixed = by_scheme.contains_key(&SchemeName::EulerMaruyama);
+            for (scheme, states) in by_scheme {
+                groups.push(self.group(&frame, choice, scheme, mixed, states));
+            }
+        }
+        groups
+    }
+
+    /// The choice for the component of each approximate state.
+    pub(super) fn choices(&self) -> BTreeMap<usize, Rc<Choice>> {
+        let mut found = BTreeMap::new();
+        for component in self.components() {
+            let choice = Rc::new(self.choose(&component));
+            found.extend(component.into_iter().map(|i| (i, Rc::clone(&choice))));
+        }
+        found
+    }
+
+    /// Whether a state's coordinate takes every number into its domain.
+    pub(super) fn is_mapped(&self, state: usize) -> bool {
+        let declared = &self.model.states[state];
+        through(self.model, declared).is_some_and(|c| c.onto_line && !c.is_identity())
+    }
+
+    /// Whether a state is stepped approximately.
+    pub(super) fn is_member(&self, state: usize) -> bool {
+        self.refusals[state].is_some()
+    }
+
+    /// Approximate states connected through their coefficients.
+    fn components(&self) -> Vec<Vec<usize>> {
+        let count = self.model.states.len();
+        let mut label: Vec<usize> = (0..count).collect();
+        for i in (0..count).filter(|&i| self.is_member(i)) {
+            for j in sources(self.model, self.dynamics, i) {
+                if self.is_member(j) && label[i] != label[j] {
+                    let (keep, drop) = (label[i].min(label[j]), label[i].max(label[j]));
+                    label
+                        .iter_mut()
+                        .filter(|l| **l == drop)
+                        .for_each(|l| *l = keep);
+                }
+            }
+        }
+        let mut found: BTreeMap<usize, Vec<usize>> = BTreeMap::new();
+        for i in (0..count).filter(|&i| self.is_member(i)) {
+            found.entry(label[i]).or_default().push(i);
+        }
+        found.into_values().collect()
+    }
+
+    pub(super) fn choose(&self, component: &[usize]) -> Choice {
+        let calm = deterministic(self.model, self.dynamics);
+        let clash = component.iter().find_map(|&i| {
+            Some((
+                i,
+                clash(
+                    self.model,
+                    self.dynamics,
+                    &self.coordinates[i].process.diffusion,
+                )?,
+            ))
+        });
+        let mut choice = Choice {
+            scheme: SchemeName::Milstein,
+            deterministic: component.iter().all(|&i| calm[i]),
+            additive: component
+                .iter()
+                .all(|&i| self.noise(i).all(|b| !self.mentions_states(b))),
+            clash,
+            kink: component.iter().find_map(|&i| self.kink(i)),
+            projected: component.iter().any(|&i| !self.projections[i].is_none()),
+            ruled: component.iter().any(|&i| self.is_ruled(i)),
+        };
+        choice.scheme = if choice.deterministic {
+            SchemeName::RungeKutta4
+        } else if choice.projected {
+            SchemeName::FullTruncationEuler
+        } else if choice.ruled || choice.kink.is_some() || choice.clash.is_some() {
+            SchemeName::EulerMaruyama
+        } else {
+            SchemeName::Milstein
+        };
+        choice
+    }
+
+    fn noise(&self, state: usize) -> impl Iterator<Item = Expr> + '_ {
+        self.coordinates[state].process.diffusion.iter().copied()
+    }
+
+    fn mentions_states(&self, e: Expr) -> bool {
+        self.model
+            .states
+            .iter()
+            .any(|s| self.model.pool.depends_on(e, s.symbol))
+    }
+
+    fn kink(&self, state: usize) -> Option<Function> {
+        let process = &self.coordinates[state].process;
+        let coefficients = process.diffusion.iter().copied().chain([process.drift]);
+        coefficients
+            .filter(|&e| self.mentions_states(e))
+            .find_map(|e| self.model.pool.has_kink(e))
+    }
+
+    fn is_ruled(&self, state: usize) -> bool {
+        let declared = &self.model.states[state];
+        [declared.at_lower, declared.at_upper]
+            .iter()
+            .any(|rule| matches!(rule, Some(AtEdge::Absorb | AtEdge::Reflect)))
+    }
+
+    fn group(
+        &self,
+        frame: &Frame<'_>,
+        choice: &Choice,
+        scheme: SchemeName,
+        mixed: bool,
+        states: Vec<usize>,
+    ) -> Group {
+        let (strong_order, weak_order) = orders(choice, scheme, mixed);
+        let step = |&i: &usize| {
+            state_step(
+                self.model,
+                self.dynamics,
+                &self.coordinates[i],
+                frame,
+                scheme,
+            )
+        };
+        let method = match scheme {
+            SchemeName::RungeKutta4 => Method::RungeKutta4(
+                states
+                    .iter()
+                    .map(|&i| (i, frame.write(self.coordinates[i].process.drift)))
+                    .collect(),
+            ),
+            _ => Method::Step(states.iter().map(step).collect()),
+        };
+        let mut trace = Trace::default();
+        for &i in &states {
+            trace.steps.extend(self.traces[i].steps.iter().cloned());
+        }
+        self.log_steps(&method, &mut trace);
+        Group {
+            kind: Kind::Approximate,
+            law: choice.deterministic.then_some(Law::Deterministic),
+            becomes: None,
+            scheme,
+            strong_order,
+            weak_order,
+            preserves_domain: states.iter().all(|&i| self.preserves_domain(i)),
+            reasons: reasons::why(self, choice, scheme, &states, &method),
+            rejected: reasons::rejected(self, choice, scheme, &states),
+            trace,
+            method,
+            states,
+        }
+    }
+
+    fn log_steps(&self, method: &Method, trace: &mut Trace) {
+        let Method::Step(steps) = method else { return };
+        let drivers = &self.model.drivers;
+        for step in steps {
+            let name = &self.model.states[step.state].name;
+            for &(j, k, coefficient) in &step.milstein {
+                let (first, second) = (&drivers[j].name, &drivers[k].name);
+                let note = format!(
+                    "coefficient of d{first} d{second} less its mean over the step, in the coordinate of {name}"
+                );
+                trace.push("Milstein term", note, None, coefficient);
+            }
+        }
+    }
+
+    /// Whether every step stays in the domain: the whole line, a coordinate whose inverse takes every
+    /// number into the domain, a projection, or a rule at each finite end.
+    fn preserves_domain(&self, state: usize) -> bool {
+        let declared = &self.model.states[state];
+        let projection = self.projections[state];
+        let ruled = |rule: Option<AtEdge>| matches!(rule, Some(AtEdge::Absorb | AtEdge::Reflect));
+        let closed = |bound| matches!(bound, Bound::Closed(_));
+        let held = |bound: Bound, rule, projected: bool| {
+            bound.value().is_none() || (closed(bound) && (ruled(rule) || projected))
+        };
+        let lower = held(
+            declared.domain.lower,
+            declared.at_lower,
+            projection.lower.is_some(),
+        );
+        let upper = held(
+            declared.domain.upper,
+            declared.at_upper,
+            projection.upper.is_some(),
+        );
+        (lower && upper) || self.is_mapped(state)
+    }
+}
+
+/// Strong and weak order; none where no rate is known. `mixed`: some state of the component is stepped
+/// by Euler-Maruyama, whose error the others inherit.
+fn orders(choice: &Choice, scheme: SchemeName, mixed: bool) -> (Option<Order>, Option<Order>) {
+    if choice.projected || choice.ruled {
+        return (None, None);
+    }
+    if choice.deterministic {
+        let order = match (scheme, choice.kink) {
+            (SchemeName::RungeKutta4, None) => Order::FOUR,
+            _ => Order::ONE,
+        };
+        return (Some(order), Some(order));
+    }
+    let weak = choice.kink.is_none().then_some(Order::ONE);
+    let strong = match scheme {
+        _ if choice.kink.is_some() => Order::HALF,
+        SchemeName::Milstein if !mixed => Order::ONE,
+        _ if choice.additive => Order::ONE,
+        _ => Order::HALF,
+    };
+    (Some(strong), weak)
+}

@@ -1,0 +1,128 @@
+//! What a one-step scheme does at the ends of a domain.
+
+use super::{EdgeRule, SchemeName};
+use crate::analysis::asymptotics::{Leading, Side, at_end};
+use crate::analysis::coordinate::Candidate;
+use crate::analysis::limits::{Limit, limit};
+use crate::calculus::{Dynamics, covariation};
+use crate::model::{AtEdge, Model};
+use crate::symbolic::{Bound, Expr, Function, Rational, Sign};
+
+/// The ends a state is projected to when its coefficients are taken.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub(super) struct Projection {
+    /// The lower end.
+    pub(super) lower: Option<Expr>,
+    /// The upper end.
+    pub(super) upper: Option<Expr>,
+}
+
+impl Projection {
+    pub(super) fn is_none(self) -> bool {
+        self.lower.is_none() && self.upper.is_none()
+    }
+
+    /// `max(u, lower)`, `min(u, upper)` or both.
+    pub(super) fn apply(self, model: &Model, u: Expr) -> Expr {
+        let pool = &model.pool;
+        let raised = self
+            .lower
+            .map_or(u, |end| pool.call(Function::Max, &[u, end]));
+        self.upper
+            .map_or(raised, |end| pool.call(Function::Min, &[raised, end]))
+    }
+}
+
+/// Which finite ends of a state's domain need the projection: closed ends at which the equation itself
+/// rules and has a drift, ends at which the noise vanishes like a root, so that the coefficients have no value
+/// beyond, and every finite end where full truncation was asked for.
+pub(super) fn projection(model: &Model, dynamics: &Dynamics, state: usize) -> Projection {
+    let declared = &model.states[state];
+    let asked = matches!(declared.scheme, Some((SchemeName::FullTruncationEuler, _)));
+    let end = |side: Side| {
+        let (bound, rule) = bound_and_rule(model, state, side);
+        let end = bound.value()?;
+        let needed = match (bound, rule) {
+            (Bound::Closed(_), Some(AtEdge::Absorb | AtEdge::Reflect)) => false,
+            (Bound::Closed(_), Some(AtEdge::AsEquation)) => has_drift(model, dynamics, state, side),
+            (Bound::Closed(_), None) => vanishes(model, dynamics, state, end),
+            _ => vanishes_like_root(model, dynamics, state, bound, side),
+        };
+        let ruled = matches!(rule, Some(AtEdge::Absorb | AtEdge::Reflect));
+        (needed || (asked && !ruled)).then_some(end)
+    };
+    Projection {
+        lower: end(Side::Lower),
+        upper: end(Side::Upper),
+    }
+}
+
+fn bound_and_rule(model: &Model, state: usize, side: Side) -> (Bound, Option<AtEdge>) {
+    let declared = &model.states[state];
+    match side {
+        Side::Lower => (declared.domain.lower, declared.at_lower),
+        Side::Upper => (declared.domain.upper, declared.at_upper),
+    }
+}
+
+fn vanishes(model: &Model, dynamics: &Dynamics, state: usize, end: Expr) -> bool {
+    let pool = &model.pool;
+    let at = [(model.states[state].symbol, end)].into_iter().collect();
+    let noise = &dynamics.states[state].diffusion;
+    noise
+        .iter()
+        .all(|&b| pool.is_zero(pool.substitute(b, &at)).is_yes())
+}
+
+/// Whether the drift stays finite at an end, so that it can be taken there.
+fn has_drift(model: &Model, dynamics: &Dynamics, state: usize, side: Side) -> bool {
+    let (bound, _) = bound_and_rule(model, state, side);
+    let drift = dynamics.states[state].drift;
+    match at_end(&model.pool, drift, model.states[state].symbol, bound, side) {
+        Leading::Zero => true,
+        Leading::Term { exponent, .. } => exponent >= Rational::ZERO,
+        Leading::Unknown => false,
+    }
+}
+
+fn vanishes_like_root(
+    model: &Model,
+    dynamics: &Dynamics,
+    state: usize,
+    bound: Bound,
+    side: Side,
+) -> bool {
+    let square = covariation(model, &dynamics.states, state, state);
+    match at_end(&model.pool, square, model.states[state].symbol, bound, side) {
+        Leading::Term { exponent, .. } => exponent > Rational::ZERO && exponent < Rational::from(2),
+        Leading::Zero | Leading::Unknown => false,
+    }
+}
+
+/// The rules at the lower and upper end of the coordinate's range.
+pub(super) fn rules(
+    model: &Model,
+    state: usize,
+    coordinate: &Candidate,
+) -> (Option<EdgeRule>, Option<EdgeRule>) {
+    let pool = &model.pool;
+    let rule = |side: Side| {
+        let (bound, rule) = bound_and_rule(model, state, side);
+        let x = model.states[state].symbol;
+        let end = match limit(pool, coordinate.forward, x, Limit::Value(bound.value()?)) {
+            Limit::Value(end) => end,
+            _ => return None,
+        };
+        match rule? {
+            AtEdge::Absorb => Some(EdgeRule::Absorb { end }),
+            AtEdge::Reflect => Some(EdgeRule::Reflect { end }),
+            AtEdge::AsEquation => None,
+        }
+    };
+    let (lower, upper) = (rule(Side::Lower), rule(Side::Upper));
+    let slope = pool.derivative(coordinate.forward, model.states[state].symbol);
+    match pool.sign(slope) {
+        Sign::Negative | Sign::NonPositive => (upper, lower),
+        _ => (lower, upper),
+    }
+}

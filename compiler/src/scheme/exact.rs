@@ -1,0 +1,187 @@
+//! Groups stepped by their exact Gaussian transition.
+
+use super::{Becomes, Group, Kind, Law, LinearGaussian, Method, RowNoise, SchemeName};
+use crate::analysis::free::{Freedom, free_of};
+use crate::analysis::linear::{Row, Rows, components, reached};
+use crate::model::Model;
+use crate::symbolic::trace::Trace;
+use crate::symbolic::{Bound, Expr};
+
+/// One group for each connected component of the states that have a row.
+pub(super) fn groups(model: &Model, rows: &Rows) -> Vec<Group> {
+    let reached = reached(&model.pool, rows);
+    components(model, rows)
+        .into_iter()
+        .map(|states| group(model, rows, &reached, states))
+        .collect()
+}
+
+fn group(model: &Model, rows: &Rows, reached: &[bool], states: Vec<usize>) -> Group {
+    let members: Vec<(usize, &Row)> = states
+        .iter()
+        .filter_map(|&i| Some((i, rows[i].as_ref().ok()?)))
+        .collect();
+    let random = states.iter().any(|&i| reached[i]);
+    let system = system(model, &members, reached);
+    let (law, becomes) = if random {
+        (law(model, &members), becomes(&members))
+    } else {
+        (Law::Deterministic, Becomes::Deterministic)
+    };
+    let mut trace = Trace::default();
+    for &(i, row) in &members {
+        trace.steps.extend(row.trace.steps.iter().cloned());
+        trace.push(
+            "linear form",
+            format!(
+                "drift of the coordinate of {} as a linear function of the coordinates",
+                model.states[i].name
+            ),
+            Some(row.process.drift),
+            linear_form(model, rows, row),
+        );
+    }
+    let reasons = reasons(model, rows, &members, law);
+    Group {
+        states,
+        kind: Kind::Exact,
+        law: Some(law),
+        becomes: Some(becomes),
+        scheme: SchemeName::Exact,
+        strong_order: None,
+        weak_order: None,
+        preserves_domain: true,
+        reasons,
+        rejected: vec![(
+            SchemeName::Milstein,
+            "a discretisation has an error that the exact law does not have".to_owned(),
+        )],
+        trace,
+        method: Method::LinearGaussian(system),
+    }
+}
+
+fn system(model: &Model, members: &[(usize, &Row)], reached: &[bool]) -> LinearGaussian {
+    let pool = &model.pool;
+    let entry = |row: &Row, j: usize| row.slopes.get(&j).copied().unwrap_or_else(|| pool.zero());
+    let noise = |i: usize, row: &Row| match (reached[i], row.slopes.is_empty()) {
+        (false, _) => RowNoise::None,
+        (true, true) => RowNoise::Increments,
+        (true, false) => RowNoise::Convolution,
+    };
+    LinearGaussian {
+        a: members
+            .iter()
+            .map(|&(_, row)| members.iter().map(|&(j, _)| entry(row, j)).collect())
+            .collect(),
+        alpha: members.iter().map(|&(_, row)| row.constant).collect(),
+        c: members.iter().map(|&(_, row)| row.noise.clone()).collect(),
+        noise: members.iter().map(|&(i, row)| noise(i, row)).collect(),
+    }
+}
+
+/// The law of the states themselves, given that their coordinates are Gaussian.
+fn law(model: &Model, members: &[(usize, &Row)]) -> Law {
+    let affine = members.iter().all(|&(i, row)| is_affine(model, i, row));
+    match members {
+        [_] if affine => Law::Normal,
+        [(i, row)] if is_log(model, *i, row) => Law::Lognormal,
+        _ if affine => Law::JointNormal,
+        _ => Law::TransformedNormal,
+    }
+}
+
+fn becomes(members: &[(usize, &Row)]) -> Becomes {
+    match members {
+        [(_, row)] if row.slopes.is_empty() => Becomes::ArithmeticBrownianMotion,
+        [_] => Becomes::OrnsteinUhlenbeck,
+        _ => Becomes::LinearGaussianSystem,
+    }
+}
+
+fn is_affine(model: &Model, state: usize, row: &Row) -> bool {
+    let x = model.states[state].symbol;
+    let slope = model.pool.derivative(row.coordinate.forward, x);
+    matches!(free_of(&model.pool, slope, &[x]), Freedom::Free(_))
+}
+
+/// Whether the coordinate is an affine function of log(x) on the positive half line.
+fn is_log(model: &Model, state: usize, row: &Row) -> bool {
+    let (pool, declared) = (&model.pool, &model.states[state]);
+    let x = declared.symbol;
+    let scaled = pool.mul(pool.var(x), pool.derivative(row.coordinate.forward, x));
+    let positive = match declared.domain.lower {
+        Bound::Open(end) | Bound::Closed(end) => pool.is_zero(end).is_yes(),
+        Bound::Infinite => false,
+    };
+    positive && matches!(free_of(pool, scaled, &[x]), Freedom::Free(_))
+}
+
+/// `sum_j A_ij F_j(x_j) + alpha_i`.
+fn linear_form(model: &Model, rows: &Rows, row: &Row) -> Expr {
+    let pool = &model.pool;
+    let terms = row.slopes.iter().filter_map(|(&j, &slope)| {
+        Some(pool.mul(slope, rows[j].as_ref().ok()?.coordinate.forward))
+    });
+    pool.sum(terms.chain([row.constant]).collect::<Vec<_>>())
+}
+
+fn reasons(model: &Model, rows: &Rows, members: &[(usize, &Row)], law: Law) -> Vec<String> {
+    let mut reasons: Vec<String> = members
+        .iter()
+        .map(|&(_, row)| equation(model, rows, row))
+        .collect();
+    let closing = match (members.len(), law) {
+        (1, Law::Deterministic) => {
+            "This is a linear equation with constant coefficients and no noise: each step is its exact solution."
+        }
+        (_, Law::Deterministic) => {
+            "These are linear equations with constant coefficients and no noise: each step is their exact solution."
+        }
+        (1, _) => {
+            "Its drift is linear with constant coefficients and its noise is constant, so that each step is \
+             drawn from the normal law of the transition: there is no discretisation error."
+        }
+        _ => {
+            "The drift is linear with constant coefficients and the noise is constant, so that each step is one \
+             draw from the joint normal law of the transition: there is no discretisation error."
+        }
+    };
+    reasons.push(closing.to_owned());
+    reasons
+}
+
+/// `Ito's rule gives d log(S) = (mu - sigma^2/2) dt + sigma dW.`
+fn equation(model: &Model, rows: &Rows, row: &Row) -> String {
+    let pool = &model.pool;
+    let factor = |e: Expr| {
+        let text = pool.format(e);
+        if text.contains([' ', '/']) || text.starts_with('-') {
+            format!("({text})")
+        } else {
+            text
+        }
+    };
+    let drift = linear_form(model, rows, row);
+    let mut terms = Vec::new();
+    if !pool.is_zero_literal(drift) {
+        terms.push(format!("{} dt", factor(drift)));
+    }
+    for (driver, &c) in model.drivers.iter().zip(&row.noise) {
+        if pool.is_one_literal(c) {
+            terms.push(format!("d{}", driver.name));
+        } else if !pool.is_zero_literal(c) {
+            terms.push(format!("{} d{}", factor(c), driver.name));
+        }
+    }
+    if terms.is_empty() {
+        terms.push("0".to_owned());
+    }
+    let forward = pool.format(row.coordinate.forward);
+    let left = if row.coordinate.is_identity() {
+        format!("d{forward}")
+    } else {
+        format!("d({forward})")
+    };
+    format!("Ito's rule gives {left} = {}.", terms.join(" + "))
+}

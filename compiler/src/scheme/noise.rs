@@ -1,0 +1,75 @@
+//! The Gaussian vector of a step: who needs which component, and under which name it is drawn.
+
+use super::{Component, Group, Method, NoiseComponent, NoisePlan, RowNoise};
+use crate::model::Model;
+use crate::symbolic::{Expr, Pool};
+
+/// Collects the components that the groups read.
+pub(super) fn plan(model: &Model, groups: &[Group]) -> NoisePlan {
+    let pool = &model.pool;
+    let raw = |driver: usize| groups.iter().any(|g| reads_increment(pool, g, driver));
+    let increments = (0..model.drivers.len())
+        .filter(|&d| raw(d))
+        .map(|driver| (Component::Increment { driver }, Some(driver)));
+    let convolutions = groups.iter().enumerate().flat_map(|(index, group)| {
+        convolutions(pool, group)
+            .into_iter()
+            .map(move |(state, driver)| {
+                (
+                    Component::Convolution {
+                        group: index,
+                        state,
+                    },
+                    driver,
+                )
+            })
+    });
+    let found: Vec<(Component, Option<usize>)> = increments.chain(convolutions).collect();
+    let users = |driver: usize| found.iter().filter(|&&(_, d)| d == Some(driver)).count();
+    let components = found.iter().map(|&(component, driver)| {
+        let source = match (component, driver) {
+            (Component::Increment { driver }, _) => model.drivers[driver].name.clone(),
+            (Component::Convolution { .. }, Some(d)) if users(d) == 1 => {
+                model.drivers[d].name.clone()
+            }
+            (Component::Convolution { state, .. }, _) => {
+                format!("law:{}", model.states[state].name)
+            }
+        };
+        NoiseComponent { component, source }
+    });
+    NoisePlan {
+        components: components.collect(),
+    }
+}
+
+fn reads_increment(pool: &Pool, group: &Group, driver: usize) -> bool {
+    let present = |e: Expr| !pool.is_zero_literal(e);
+    match &group.method {
+        Method::Step(steps) => steps.iter().any(|s| present(s.diffusion[driver])),
+        Method::LinearGaussian(system) => system
+            .noise
+            .iter()
+            .zip(&system.c)
+            .any(|(&noise, c)| noise == RowNoise::Increments && present(c[driver])),
+        Method::RungeKutta4(_) => false,
+    }
+}
+
+/// The convolution rows of a group, each with its driver where it has exactly one.
+fn convolutions(pool: &Pool, group: &Group) -> Vec<(usize, Option<usize>)> {
+    let Method::LinearGaussian(system) = &group.method else {
+        return Vec::new();
+    };
+    let rows = group.states.iter().zip(&system.noise).zip(&system.c);
+    rows.filter(|((_, noise), _)| **noise == RowNoise::Convolution)
+        .map(|((&state, _), c)| {
+            let mut drivers = (0..c.len()).filter(|&j| !pool.is_zero_literal(c[j]));
+            let driver = match (drivers.next(), drivers.next()) {
+                (Some(only), None) => Some(only),
+                _ => None,
+            };
+            (state, driver)
+        })
+        .collect()
+}

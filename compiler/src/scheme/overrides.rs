@@ -1,0 +1,116 @@
+//! The author's `scheme = "..."`: honoured, or refused with a reason.
+
+use std::collections::BTreeMap;
+use std::rc::Rc;
+
+use super::approximate::Choice;
+use super::{Group, SchemeName};
+use crate::analysis::dependence::deterministic;
+use crate::calculus::Dynamics;
+use crate::diagnostic::{Code, Diagnostic, Diagnostics};
+use crate::model::Model;
+use crate::symbolic::Bound;
+
+/// The approximate scheme asked for, if it is one that can be carried out.
+pub(super) fn scheme(model: &Model, state: usize) -> Option<SchemeName> {
+    let (asked, _) = model.states[state].scheme?;
+    let available = matches!(
+        asked,
+        SchemeName::EulerMaruyama
+            | SchemeName::Milstein
+            | SchemeName::FullTruncationEuler
+            | SchemeName::RungeKutta4
+    );
+    available.then_some(asked)
+}
+
+/// The approximate scheme asked for, if it can be carried out for this state.
+pub(super) fn honoured(model: &Model, state: usize, choice: &Choice) -> Option<SchemeName> {
+    let asked = scheme(model, state)?;
+    let possible = match asked {
+        SchemeName::Milstein => choice.kink.is_none() && choice.clash.is_none(),
+        SchemeName::RungeKutta4 => choice.deterministic,
+        SchemeName::FullTruncationEuler => truncates(model, state),
+        _ => true,
+    };
+    possible.then_some(asked)
+}
+
+fn truncates(model: &Model, state: usize) -> bool {
+    has_finite_end(model, state) && model.states[state].through.is_none()
+}
+
+/// The states that leave the exact laws because another scheme was asked for.
+pub(super) fn excluded(model: &Model) -> BTreeMap<usize, String> {
+    let asked = |i: usize| Some((i, format!("{} was asked for", scheme(model, i)?)));
+    (0..model.states.len()).filter_map(asked).collect()
+}
+
+/// Reports the overrides that cannot be honoured.
+pub(super) fn check(
+    model: &Model,
+    dynamics: &Dynamics,
+    groups: &[Group],
+    choices: &BTreeMap<usize, Rc<Choice>>,
+    refusals: &[Option<String>],
+    diagnostics: &mut Diagnostics,
+) {
+    let calm = deterministic(model, dynamics);
+    for (i, state) in model.states.iter().enumerate() {
+        let Some((asked, span)) = state.scheme else {
+            continue;
+        };
+        let group = groups.iter().find(|g| g.states.contains(&i));
+        let reason = match asked {
+            SchemeName::Exact => refusals[i].clone(),
+            SchemeName::Milstein => choices.get(&i).and_then(|c| no_milstein(model, c)),
+            SchemeName::RungeKutta4 if !calm[i] => Some(format!(
+                "{} is random; this scheme is for states that nothing random reaches",
+                state.name
+            )),
+            SchemeName::FullTruncationEuler if !has_finite_end(model, i) => Some(format!(
+                "the domain of {} has no finite end to truncate at",
+                state.name
+            )),
+            SchemeName::FullTruncationEuler if state.through.is_some() => Some(
+                "full truncation steps the state itself, not the coordinate of `through`"
+                    .to_owned(),
+            ),
+            SchemeName::EulerMaruyama
+            | SchemeName::RungeKutta4
+            | SchemeName::FullTruncationEuler => None,
+            _ => Some("it is not available for this model".to_owned()),
+        };
+        if let Some(reason) = reason {
+            let chosen = group.map_or(SchemeName::EulerMaruyama, |g| g.scheme);
+            let message = format!("`{asked}` cannot be used for {}: {reason}", state.name);
+            diagnostics.push(
+                Diagnostic::error(Code::SchemeRefused, span, message).hint(hint(asked, chosen)),
+            );
+        }
+    }
+}
+
+fn hint(asked: SchemeName, chosen: SchemeName) -> String {
+    if asked == chosen || asked == SchemeName::Milstein {
+        "leave `scheme` out, or use `euler_maruyama`".to_owned()
+    } else {
+        format!("leave `scheme` out to have `{chosen}`, or use `euler_maruyama`")
+    }
+}
+
+fn no_milstein(model: &Model, choice: &Choice) -> Option<String> {
+    if let Some(kink) = choice.kink {
+        return Some(format!(
+            "a coefficient has a kink (`{}`), and Milstein's term needs derivatives",
+            kink.name()
+        ));
+    }
+    let (state, clash) = choice.clash.as_ref()?;
+    Some(super::reasons::clash(model, *state, clash))
+}
+
+fn has_finite_end(model: &Model, state: usize) -> bool {
+    let domain = model.states[state].domain;
+    domain.lower != Bound::Infinite || domain.upper != Bound::Infinite
+}

@@ -1,0 +1,238 @@
+//! What the planner tells people about an approximate scheme.
+
+use super::approximate::{Choice, Context};
+use super::{Method, SchemeName};
+use crate::analysis::commute::Clash;
+use crate::analysis::growth::{Growth, growth};
+use crate::model::{AtEdge, Model};
+use crate::symbolic::{Expr, Symbol};
+
+/// Why the scheme, sentence by sentence.
+pub(super) fn why(
+    context: &Context<'_>,
+    choice: &Choice,
+    scheme: SchemeName,
+    states: &[usize],
+    method: &Method,
+) -> Vec<String> {
+    let model = context.model;
+    let mut reasons: Vec<String> = states
+        .iter()
+        .filter_map(|&i| no_law(model, i, context.refusals[i].as_deref()?))
+        .collect();
+    for &i in states {
+        if super::overrides::scheme(model, i) == Some(scheme) {
+            reasons.push(format!(
+                "The author asked for {scheme} for {}.",
+                model.states[i].name
+            ));
+        }
+        let coordinate = &context.coordinates[i];
+        if coordinate.symbol != model.states[i].symbol {
+            let forward = model.pool.format(coordinate.forward);
+            reasons.push(format!(
+                "{} is stepped in the coordinate {forward}.",
+                model.states[i].name
+            ));
+        }
+    }
+    reasons.push(main_reason(context, choice, scheme));
+    reasons.extend(states.iter().flat_map(|&i| ends(context, i)));
+    reasons.extend(regularity(context, choice, method));
+    reasons
+}
+
+fn no_law(model: &Model, state: usize, refusal: &str) -> Option<String> {
+    let asked = super::overrides::scheme(model, state).is_some();
+    (!asked).then(|| {
+        format!(
+            "No exact law is known for {}: {refusal}.",
+            model.states[state].name
+        )
+    })
+}
+
+fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> String {
+    let text = match scheme {
+        SchemeName::RungeKutta4 => {
+            "Nothing random reaches these states, so that they follow ordinary differential equations: the \
+             classical fourth-order Runge-Kutta scheme."
+        }
+        SchemeName::FullTruncationEuler => {
+            "An Euler step may cross an end of the domain at which the equation itself rules; the coefficients \
+             are taken at the value projected to the domain, and the projected value is what is observed (Lord, \
+             Koekkoek and van Dijk 2010). The scheme converges strongly for square-root processes, without a \
+             rate that holds for all parameters, so no order is stated."
+        }
+        SchemeName::Milstein if choice.additive => {
+            "The noise does not depend on the states: Milstein's term is zero, Milstein and Euler-Maruyama \
+             coincide and have strong order 1."
+        }
+        SchemeName::Milstein if context.model.drivers.len() == 1 => {
+            "One driver: Milstein's scheme needs no iterated integrals beyond the increment."
+        }
+        SchemeName::Milstein => {
+            "The noise commutes: Milstein's scheme needs only products of increments, less the correlation \
+             times the step."
+        }
+        _ if choice.ruled => {
+            "Euler-Maruyama, with the value kept at or folded back at the closed ends as declared; for \
+             paths that meet an end no order is stated."
+        }
+        _ if choice.kink.is_some() => {
+            "A coefficient has a kink, so that Milstein's derivatives do not exist everywhere: Euler-Maruyama."
+        }
+        _ if choice.clash.is_some() => {
+            "The noise does not commute and no Levy area is drawn: Euler-Maruyama."
+        }
+        _ => "Euler-Maruyama.",
+    };
+    text.to_owned()
+}
+
+/// What happens at the ends of a state's domain.
+fn ends(context: &Context<'_>, state: usize) -> Vec<String> {
+    let declared = &context.model.states[state];
+    let sides = [
+        (
+            "lower",
+            declared.domain.lower,
+            declared.at_lower,
+            context.projections[state].lower,
+        ),
+        (
+            "upper",
+            declared.domain.upper,
+            declared.at_upper,
+            context.projections[state].upper,
+        ),
+    ];
+    let mut found = Vec::new();
+    for (side, bound, rule, projected) in sides {
+        let Some(end) = bound.value() else { continue };
+        let (name, end) = (&declared.name, context.model.pool.format(end));
+        match rule {
+            Some(AtEdge::Absorb) => found.push(format!(
+                "A value of {name} at or beyond its {side} end {end} after a step is put there and stays; \
+                 excursions within a step are not seen."
+            )),
+            Some(AtEdge::Reflect) => found.push(format!(
+                "A value of {name} beyond its {side} end {end} is reflected there (symmetrised Euler)."
+            )),
+            Some(AtEdge::AsEquation) | None if projected.is_none() && !context.is_mapped(state) => {
+                found.push(format!("A step may take {name} beyond its {side} end {end}; such paths are counted."));
+            }
+            _ => {}
+        }
+    }
+    found
+}
+
+/// On what the orders rest.
+fn regularity(context: &Context<'_>, choice: &Choice, method: &Method) -> Vec<String> {
+    let Method::Step(steps) = method else {
+        return Vec::new();
+    };
+    if choice.projected || choice.ruled {
+        return Vec::new();
+    }
+    // States with an exact law are inputs here: the scheme makes no error in them.
+    let coordinates = context
+        .coordinates
+        .iter()
+        .filter(|c| context.is_member(c.state));
+    let symbols: Vec<Symbol> = coordinates.map(|c| c.symbol).collect();
+    let mut found = Vec::new();
+    let mut lipschitz = true;
+    for step in steps {
+        let name = &context.model.states[step.state].name;
+        let noise = step.diffusion.iter().map(|&b| ("noise", b));
+        for (what, coefficient) in std::iter::once(("drift", step.drift)).chain(noise) {
+            let sentence = not_lipschitz(context, what, name, coefficient, &symbols);
+            lipschitz &= sentence.is_none();
+            found.extend(sentence);
+        }
+    }
+    found.dedup();
+    found.push(if lipschitz {
+        "The coefficients are globally Lipschitz, as the theorems on these orders assume.".to_owned()
+    } else {
+        "The orders are those for globally Lipschitz coefficients, which is not given here: check the step \
+         by halving it."
+            .to_owned()
+    });
+    found
+}
+
+fn not_lipschitz(
+    context: &Context<'_>,
+    what: &str,
+    name: &str,
+    coefficient: Expr,
+    symbols: &[Symbol],
+) -> Option<String> {
+    let pool = &context.model.pool;
+    match growth(pool, coefficient, symbols) {
+        Growth::Lipschitz => None,
+        Growth::Superlinear { symbol, power } => Some(format!(
+            "The {what} of {name} grows like |{}|^{power}: moments of explicit schemes may diverge \
+             (Hutzenthaler, Jentzen and Kloeden 2011).",
+            pool.symbol_name(symbol)
+        )),
+        Growth::NotShown { symbol } => Some(format!(
+            "The {what} of {name} could not be shown to be globally Lipschitz in {}.",
+            pool.symbol_name(symbol)
+        )),
+    }
+}
+
+/// What was considered and why it was not taken.
+pub(super) fn rejected(
+    context: &Context<'_>,
+    choice: &Choice,
+    scheme: SchemeName,
+    states: &[usize],
+) -> Vec<(SchemeName, String)> {
+    let model = context.model;
+    let mut found = Vec::new();
+    for &i in states {
+        if let Some(refusal) = &context.refusals[i] {
+            found.push((
+                SchemeName::Exact,
+                format!("{}: {refusal}", model.states[i].name),
+            ));
+        }
+    }
+    if scheme == SchemeName::Milstein || choice.deterministic {
+        return found;
+    }
+    let reason = if let Some((state, pair)) = &choice.clash {
+        clash(model, *state, pair)
+    } else if let Some(kink) = choice.kink {
+        format!("a coefficient has a kink (`{}`)", kink.name())
+    } else if choice.projected || choice.ruled {
+        "its term needs derivatives of the noise up to the end of the domain, where they need not exist".to_owned()
+    } else {
+        return found;
+    };
+    found.push((SchemeName::Milstein, reason));
+    found
+}
+
+/// Why Milstein's scheme needs more than increments.
+pub(super) fn clash(model: &Model, state: usize, clash: &Clash) -> String {
+    let (first, second) = (
+        &model.drivers[clash.first].name,
+        &model.drivers[clash.second].name,
+    );
+    let name = &model.states[state].name;
+    if clash.certain {
+        format!(
+            "the noise of {name} does not commute: along {first} and {second} the iterated derivatives \
+             differ by {}, so that Levy areas would be needed",
+            model.pool.format(clash.difference)
+        )
+    } else {
+        format!("it could not be proved that the noise of {name} commutes in {first} and {second}")
+    }
+}

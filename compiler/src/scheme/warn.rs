@@ -1,0 +1,117 @@
+//! What the author should know of a model's coordinates and open ends.
+
+use super::Group;
+use crate::analysis::asymptotics::Side;
+use crate::analysis::boundary::{End, classify};
+use crate::analysis::coordinate::through;
+use crate::analysis::sample;
+use crate::calculus::Dynamics;
+use crate::diagnostic::{Code, Diagnostic, Diagnostics};
+use crate::model::Model;
+use crate::symbolic::{Bound, Sign};
+
+/// Reports each `through` that cannot be inverted or is not monotone.
+pub(super) fn coordinates(model: &Model, diagnostics: &mut Diagnostics) {
+    for (i, state) in model.states.iter().enumerate() {
+        let Some(formula) = &state.through else {
+            continue;
+        };
+        let complaint = if turns(model, i) {
+            "it rises and falls on the state's domain"
+        } else if through(model, state).is_none() {
+            "its inverse could not be found in closed form"
+        } else {
+            continue;
+        };
+        diagnostics.push(
+            Diagnostic::error(
+                Code::BadCoordinate,
+                formula.span,
+                format!(
+                    "`{}` cannot be mapped back to {}: {complaint}",
+                    formula.text, state.name
+                ),
+            )
+            .hint("use a strictly monotone formula such as a logarithm, a power or a logit"),
+        );
+    }
+}
+
+/// Whether the derivative of a `through` was seen with both signs.
+fn turns(model: &Model, state: usize) -> bool {
+    let (pool, declared) = (&model.pool, &model.states[state]);
+    let Some(formula) = &declared.through else {
+        return false;
+    };
+    let slope = pool.derivative(formula.expr, declared.symbol);
+    if matches!(pool.sign(slope), Sign::Positive | Sign::Negative) {
+        return false;
+    }
+    let values = sample::values(pool, slope);
+    values.iter().any(|&v| v > 0.0) && values.iter().any(|&v| v < 0.0)
+}
+
+/// Warns of open ends that are reached, or may be, by states that are not exact: an exact law's
+/// coordinate goes to infinity there.
+pub(super) fn open_ends(
+    model: &Model,
+    dynamics: &Dynamics,
+    groups: &[Group],
+    diagnostics: &mut Diagnostics,
+) {
+    for &state in groups
+        .iter()
+        .filter(|g| !g.is_exact())
+        .flat_map(|g| &g.states)
+    {
+        let domain = model.states[state].domain;
+        for (bound, side) in [(domain.lower, Side::Lower), (domain.upper, Side::Upper)] {
+            if let Some(warning) = open_end(model, dynamics, state, bound, side) {
+                diagnostics.push(warning);
+            }
+        }
+    }
+}
+
+fn open_end(
+    model: &Model,
+    dynamics: &Dynamics,
+    state: usize,
+    bound: Bound,
+    side: Side,
+) -> Option<Diagnostic> {
+    let (pool, declared) = (&model.pool, &model.states[state]);
+    if matches!(bound, Bound::Closed(_)) {
+        return None;
+    }
+    let end = match (bound.value(), side) {
+        (Some(end), _) => pool.format(end),
+        (None, Side::Lower) => "-inf".to_owned(),
+        (None, Side::Upper) => "inf".to_owned(),
+    };
+    let span = declared.domain_span.unwrap_or(declared.span);
+    let name = &declared.name;
+    let warning = |message: String| Some(Diagnostic::warning(Code::OpenEndReached, span, message));
+    match classify(model, dynamics, state, side) {
+        End::NotReached => None,
+        End::Reached if bound == Bound::Infinite => warning(format!(
+            "{name} reaches {end} in finite time: its solution explodes"
+        )),
+        // Far out the rules are short of logarithms and exponentials; silence there is no claim.
+        End::Undecided(_) if bound == Bound::Infinite => None,
+        End::Reached => warning(format!("{name} reaches the open end {end} of its domain")),
+        End::Undecided(Some(margin)) => warning(format!(
+            "{name} reaches the open end {end} of its domain unless {} >= 0",
+            pool.format(margin)
+        ))
+        .map(|w| {
+            w.hint(format!(
+                "add the assumption \"{} >= 0\", or close the end",
+                pool.format(margin)
+            ))
+        }),
+        End::Undecided(None) => warning(format!(
+            "it could not be decided whether {name} reaches the open end {end} of its domain"
+        )),
+    }
+}
