@@ -142,8 +142,16 @@ impl Builder {
         match (self.constant_value(a), self.constant_value(b)) {
             (Some(0.0), _) => b,
             (_, Some(0.0)) => a,
+            (Some(x), None) if x < 0.0 => self.add_number(b, x),
+            (None, Some(x)) if x < 0.0 => self.add_number(a, x),
             _ => self.binary(BinaryOp::Add, a, b),
         }
+    }
+
+    /// `a + x` for a negative number, as people write it.
+    fn add_number(&mut self, a: ValueId, x: f64) -> ValueId {
+        let size = self.number(-x);
+        self.binary(BinaryOp::Sub, a, size)
     }
 
     pub(super) fn sub(&mut self, a: ValueId, b: ValueId) -> ValueId {

@@ -13,7 +13,11 @@ mod functions;
 mod lower;
 mod op;
 mod rate;
+#[cfg(test)]
+mod sketch;
 mod sweep;
+#[cfg(test)]
+mod tests;
 mod verify;
 
 pub use checks::{Bound, Check, Range};

@@ -42,7 +42,7 @@ impl Generator<'_> {
                 /// hold, a state that starts outside its domain, contradictory correlations.
                 pub fn new(
                     parameters: Parameters,
-                ) -> Result<Self, ::driftwright_runtime::ParameterError> {
+                ) -> Result<Self, runtime::ParameterError> {
                     #unpacked
                     #first
                     #(#checks)*
@@ -127,7 +127,7 @@ impl Generator<'_> {
                     &self.names.parameters[*parameter],
                 );
                 let range = self.interval(range);
-                quote! { ::driftwright_runtime::check_range(#name, parameters.#field, #range)?; }
+                quote! { runtime::check_range(#name, parameters.#field, #range)?; }
             }
             Check::Assumption {
                 name,
@@ -140,7 +140,7 @@ impl Generator<'_> {
                 quote! {
                     let holds = #comparison;
                     if !holds {
-                        return Err(::driftwright_runtime::ParameterError::Assumption {
+                        return Err(runtime::ParameterError::Assumption {
                             name: #name.into(),
                             text: #text.into(),
                         });
@@ -153,7 +153,7 @@ impl Generator<'_> {
                 domain,
             } => {
                 let (value, domain) = (self.read(*value), self.interval(domain));
-                quote! { ::driftwright_runtime::check_initial(#state, #value, #domain)?; }
+                quote! { runtime::check_initial(#state, #value, #domain)?; }
             }
         }
     }
@@ -165,6 +165,6 @@ impl Generator<'_> {
         };
         let (lower, lower_closed) = (end(range.lower, f64::NEG_INFINITY), range.lower.is_closed());
         let (upper, upper_closed) = (end(range.upper, f64::INFINITY), range.upper.is_closed());
-        quote! { ::driftwright_runtime::Interval::new(#lower, #lower_closed, #upper, #upper_closed) }
+        quote! { runtime::Interval::new(#lower, #lower_closed, #upper, #upper_closed) }
     }
 }

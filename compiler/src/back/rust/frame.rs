@@ -31,7 +31,12 @@ pub(super) fn source(program: &Program, tokens: TokenStream) -> String {
 /// Replaces the markers of notes by comments.
 fn commented(program: &Program, source: &str) -> String {
     let mut out = String::new();
+    let mut before = "";
     for line in source.lines() {
+        if starts_item_after(before, line) {
+            out.push('\n');
+        }
+        before = line;
         match marker(line) {
             Some((indent, index)) => comment(&mut out, indent, &program.notes[index].text),
             None => {
@@ -43,13 +48,20 @@ fn commented(program: &Program, source: &str) -> String {
     out
 }
 
-/// The indentation and the note of a line `__note!(17usize);`.
+/// Whether a line begins an item that follows another one: a blank line sets it apart.
+fn starts_item_after(before: &str, line: &str) -> bool {
+    let item = line.trim_start();
+    let ended =
+        matches!(before.trim_start(), "}" | ">();") || before.trim_start().starts_with("//! ");
+    let ended = ended || (before.trim_start().starts_with("const _") && before.ends_with(';'));
+    let begins = ["///", "#[", "impl", "pub ", "fn ", "use ", "const "];
+    ended && begins.iter().any(|start| item.starts_with(start))
+}
+
+/// The indentation and the note of a line `__note!(17);`.
 fn marker(line: &str) -> Option<(&str, usize)> {
     let (indent, rest) = line.split_at(line.len() - line.trim_start().len());
-    let digits = rest
-        .strip_prefix("__note!(")?
-        .strip_suffix(");")?
-        .trim_end_matches("usize");
+    let digits = rest.strip_prefix("__note!(")?.strip_suffix(");")?;
     Some((indent, digits.parse().ok()?))
 }
 

@@ -38,18 +38,18 @@ impl Generator<'_> {
         let states_name = argument("states", &states);
         quote! {
             #[inline(always)]
-            fn step<A: ::driftwright_runtime::Arith>(
+            fn step<A: runtime::Arith>(
                 &self,
                 #values_name: &[f64],
-                #states_name: &mut [::driftwright_runtime::Lane],
-                #noise_name: &[::driftwright_runtime::Lane],
-                _scratch: &mut [::driftwright_runtime::Lane],
+                #states_name: &mut [runtime::Lane],
+                #noise_name: &[runtime::Lane],
+                _scratch: &mut [runtime::Lane],
             ) {
                 #bindings
                 #values
                 #states
                 #noise
-                for lane in 0..::driftwright_runtime::LANES {
+                for lane in 0..runtime::LANES {
                     #statements
                     #(#writes)*
                 }
@@ -82,18 +82,18 @@ impl Generator<'_> {
         let outputs_name = argument("outputs", &outputs);
         quote! {
             #[inline(always)]
-            fn observe<A: ::driftwright_runtime::Arith>(
+            fn observe<A: runtime::Arith>(
                 &self,
                 #values_name: &[f64],
-                #states_name: &[::driftwright_runtime::Lane],
-                #outputs_name: &mut [::driftwright_runtime::Lane],
-                _scratch: &mut [::driftwright_runtime::Lane],
+                #states_name: &[runtime::Lane],
+                #outputs_name: &mut [runtime::Lane],
+                _scratch: &mut [runtime::Lane],
             ) {
                 #bindings
                 #values
                 #states
                 #outputs
-                for lane in 0..::driftwright_runtime::LANES {
+                for lane in 0..runtime::LANES {
                     #statements
                     #(#writes)*
                 }
@@ -117,7 +117,7 @@ impl Generator<'_> {
         }
         let names = stored.iter().map(|&id| self.read(id));
         quote! {
-            let &[#(#names),*] = values else { unreachable!("the driver passes the values of the step") };
+            let &[#(#names),*] = values else { unreachable!("the driver passes as many values as the shape says") };
         }
     }
 
@@ -173,7 +173,12 @@ fn pattern(names: &[Ident], lanes: &str, used: &BTreeSet<usize>) -> TokenStream 
             quote! { _ }
         }
     });
-    let message = format!("the driver passes as many {lanes} as the shape says");
+    let lane = if lanes == "noise" {
+        "lanes of noise"
+    } else {
+        lanes
+    };
+    let message = format!("the driver passes as many {lane} as the shape says");
     quote! {
         let [#(#names),*] = #lanes_name else { unreachable!(#message) };
     }

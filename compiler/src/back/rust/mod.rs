@@ -12,7 +12,7 @@ mod parameters;
 mod simulator;
 mod spell;
 
-use proc_macro2::TokenStream;
+use proc_macro2::{Literal, TokenStream};
 use quote::quote;
 
 use self::names::Names;
@@ -35,6 +35,17 @@ pub fn generate_source(program: &Program) -> String {
     frame::source(program, generator.module())
 }
 
+/// The type of the simulator in the module of a model.
+pub fn simulator_type(program: &Program) -> String {
+    Names::new(program).simulator.to_string()
+}
+
+/// The fields of the parameters in the module of a model, in the model's order.
+pub fn parameter_fields(program: &Program) -> Vec<String> {
+    let fields = Names::new(program).parameters;
+    fields.iter().map(ToString::to_string).collect()
+}
+
 /// What the parts of a module share.
 struct Generator<'a> {
     program: &'a Program,
@@ -54,7 +65,10 @@ impl<'a> Generator<'a> {
     fn module(&self) -> TokenStream {
         let name = names::identifier(&self.program.name);
         let docs = docs::inner(&docs::module(self.program));
-        let (major, minor) = INTERFACE;
+        let (major, minor) = (
+            Literal::u32_unsuffixed(INTERFACE.0),
+            Literal::u32_unsuffixed(INTERFACE.1),
+        );
         let quantities = self.quantities();
         let parameters = self.parameters();
         let constructor = self.constructor();
@@ -75,9 +89,9 @@ impl<'a> Generator<'a> {
             pub mod #name {
                 #docs
 
-                const _: () = ::driftwright_runtime::require_version::<
-                    ::driftwright_runtime::Version<#major, #minor>,
-                >();
+                use ::driftwright_runtime as runtime;
+
+                const _: () = runtime::require_version::<runtime::Version<#major, #minor>>();
 
                 #quantities
                 #parameters
@@ -96,6 +110,7 @@ impl<'a> Generator<'a> {
             .enumerate()
             .map(|(place, name)| {
                 let docs = docs::outer(&docs::output(&self.program.outputs[place]));
+                let place = Literal::usize_unsuffixed(place);
                 quote! { #docs pub const #name: usize = #place; }
             });
         quote! {
@@ -118,7 +133,10 @@ impl<'a> Generator<'a> {
             .iter()
             .enumerate()
             .filter(|(_, note)| self.stands_at(note) == id);
-        let markers = indices.map(|(index, _)| quote! { __note!(#index); });
+        let markers = indices.map(|(index, _)| {
+            let index = Literal::usize_unsuffixed(index);
+            quote! { __note!(#index); }
+        });
         quote! { #(#markers)* }
     }
 

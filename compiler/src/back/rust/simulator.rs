@@ -2,12 +2,12 @@
 
 use std::collections::BTreeSet;
 
-use proc_macro2::TokenStream;
+use proc_macro2::{Ident, Literal, Span, TokenStream};
 use quote::quote;
 
 use super::Generator;
 use super::spell::Place;
-use crate::program::{Rate, ValueId};
+use crate::program::{Op, Rate, ValueId};
 
 impl Generator<'_> {
     pub(super) fn simulator(&self) -> TokenStream {
@@ -19,7 +19,7 @@ impl Generator<'_> {
         let step = self.step();
         let observe = self.observe();
         quote! {
-            impl ::driftwright_runtime::Simulator for #name {
+            impl runtime::Simulator for #name {
                 #shape
                 #start
                 #step_values
@@ -33,22 +33,27 @@ impl Generator<'_> {
     fn shape(&self) -> TokenStream {
         let program = self.program;
         let (sources, outputs) = (&program.sources, program.outputs.iter().map(|o| &o.name));
-        let (source_count, output_count) = (program.sources.len(), program.outputs.len());
-        let states = program.slots.len();
-        let step_values = program.step_values.len();
-        let observation_values = program.observation_values.len();
+        let count = Literal::usize_unsuffixed;
+        let (source_count, output_count) =
+            (count(program.sources.len()), count(program.outputs.len()));
+        let states = count(program.slots.len());
+        let step_values = count(program.step_values.len());
+        let observation_values = count(program.observation_values.len());
         let left_domain = match program.left_domain {
-            Some(slot) => quote! { Some(#slot) },
+            Some(slot) => {
+                let slot = count(slot);
+                quote! { Some(#slot) }
+            }
             None => quote! { None },
         };
         let (time_dependent, approximate) = (program.time_dependent(), program.approximate);
         quote! {
-            fn shape(&self) -> ::driftwright_runtime::Shape<'_> {
-                static SOURCES: [::driftwright_runtime::Source; #source_count] =
-                    [#(::driftwright_runtime::Source::new(#sources)),*];
+            fn shape(&self) -> runtime::Shape<'_> {
+                static SOURCES: [runtime::Source; #source_count] =
+                    [#(runtime::Source::new(#sources)),*];
                 static OUTPUTS: [::std::borrow::Cow<'static, str>; #output_count] =
                     [#(::std::borrow::Cow::Borrowed(#outputs)),*];
-                ::driftwright_runtime::Shape {
+                runtime::Shape {
                     states: #states,
                     step_values: #step_values,
                     step_scratch: 0,
@@ -88,14 +93,14 @@ impl Generator<'_> {
             Rate::Step => (&program.step_values, true),
             _ => (&program.observation_values, false),
         };
-        let uses = |op: &crate::program::Op| program.values.iter().any(|v| v.op == *op);
+        let uses = |op: &Op| program.values.iter().any(|v| v.op == *op);
         let argument = |name: &str, used: bool| {
             let name = if used {
                 name.to_owned()
             } else {
                 format!("_{name}")
             };
-            proc_macro2::Ident::new(&name, proc_macro2::Span::call_site())
+            Ident::new(&name, Span::call_site())
         };
         let values = argument("values", !stored.is_empty());
         let write = if stored.is_empty() {
@@ -105,15 +110,15 @@ impl Generator<'_> {
             quote! { values.copy_from_slice(&[#(#stored),*]); }
         };
         let signature = if step {
-            let start = argument("start", uses(&crate::program::Op::Start));
-            let length = argument("length", uses(&crate::program::Op::Length));
+            let start = argument("start", uses(&Op::Start));
+            let length = argument("length", uses(&Op::Length));
             quote! { fn step_values(&self, #start: f64, #length: f64, #values: &mut [f64]) }
         } else {
-            let time = argument("time", uses(&crate::program::Op::Time));
+            let time = argument("time", uses(&Op::Time));
             quote! { fn observation_values(&self, #time: f64, #values: &mut [f64]) }
         };
         quote! {
-            #signature -> Result<(), ::driftwright_runtime::StepError> {
+            #signature -> Result<(), runtime::StepError> {
                 #bindings
                 #statements
                 #write

@@ -96,7 +96,7 @@ impl Generator<'_> {
         let class = if place == Place::Lanes {
             quote! { A }
         } else {
-            quote! { ::driftwright_runtime::Unfused }
+            quote! { runtime::Unfused }
         };
         match *op {
             Op::Unary(op, a) => {
@@ -105,14 +105,17 @@ impl Generator<'_> {
                     None => quote! { -#a },
                     Some(name) => {
                         let name = Ident::new(name, Span::call_site());
-                        quote! { ::driftwright_runtime::math::#name::<#class>(#a) }
+                        quote! { runtime::math::#name::<#class>(#a) }
                     }
                 }
             }
             Op::Binary(op, a, b) => self.binary(op, a, b, &class),
             Op::MulAdd(a, b, c) => {
                 let (a, b, c) = (self.read(a), self.read(b), self.read(c));
-                quote! { <#class as ::driftwright_runtime::Arith>::mul_add(#a, #b, #c) }
+                match place {
+                    Place::Lanes => quote! { A::mul_add(#a, #b, #c) },
+                    _ => quote! { <#class as runtime::Arith>::mul_add(#a, #b, #c) },
+                }
             }
             Op::Select {
                 compare,
@@ -147,7 +150,7 @@ impl Generator<'_> {
             BinaryOp::Div => quote! { #a / #b },
             BinaryOp::Pow | BinaryOp::Min | BinaryOp::Max => {
                 let name = Ident::new(op.name(), Span::call_site());
-                quote! { ::driftwright_runtime::math::#name::<#class>(#a, #b) }
+                quote! { runtime::math::#name::<#class>(#a, #b) }
             }
         }
     }
@@ -171,16 +174,19 @@ impl Generator<'_> {
         covariance: &[ValueId],
         place: Place,
     ) -> TokenStream {
-        let size = dim * dim;
         let covariance = self.reads(covariance);
+        let (size, dim) = (
+            Literal::usize_unsuffixed(dim * dim),
+            Literal::usize_unsuffixed(dim),
+        );
         let refused = if place == Place::Setup {
-            quote! { .map_err(|_| ::driftwright_runtime::ParameterError::CorrelationNotPositiveSemidefinite)? }
+            quote! { .map_err(|_| runtime::ParameterError::CorrelationNotPositiveSemidefinite)? }
         } else {
             quote! { ? }
         };
         quote! {
             let mut #name = [0.0; #size];
-            ::driftwright_runtime::gauss::cholesky(#dim, &[#(#covariance),*], &mut #name)#refused;
+            runtime::gauss::cholesky(#dim, &[#(#covariance),*], &mut #name)#refused;
         }
     }
 
@@ -191,12 +197,15 @@ impl Generator<'_> {
         [a, alpha, q]: [&[ValueId]; 3],
         length: ValueId,
     ) -> TokenStream {
-        let size = dim * dim;
+        let (size, dim) = (
+            Literal::usize_unsuffixed(dim * dim),
+            Literal::usize_unsuffixed(dim),
+        );
         let (a, alpha, q) = (self.reads(a), self.reads(alpha), self.reads(q));
         let length = self.read(length);
         quote! {
             let mut #name = ([0.0; #size], [0.0; #dim], [0.0; #size]);
-            ::driftwright_runtime::gauss::linear_transition(
+            runtime::gauss::linear_transition(
                 #dim,
                 &[#(#a),*],
                 &[#(#alpha),*],

@@ -100,12 +100,19 @@ impl Lowering<'_> {
         let shift = if pool.is_zero_literal(alpha) {
             None
         } else {
+            let drift = self.in_step(alpha);
+            self.builder.hint(drift, format!("drift_{name}"));
             let shift = self.in_step(pool.mul(alpha, elapsed(self, rate)));
             self.builder.hint(shift, format!("shift_{name}"));
             let text = format!(
-                "Constant part of the drift of {}, {}, over a step.",
+                "Constant part of the drift of {}: {}.",
                 self.coordinate_text(state),
                 pool.format(alpha)
+            );
+            self.note(state, drift, text);
+            let text = format!(
+                "What the constant drift adds to {} over a step.",
+                self.coordinate_text(state)
             );
             self.note(state, shift, text);
             Some(shift)
