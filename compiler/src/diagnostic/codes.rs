@@ -103,14 +103,16 @@ FormulaSyntax "DW0201" "formula cannot be read"
 parentheses, numbers, names and function calls; products need a `*`."
 
 UnknownCharacter "DW0202" "character not used in formulas"
-"The character has no meaning in a formula. Powers are written `x^2`, products `a*b`."
+"The character has no meaning in a formula. Powers are written `x^2`, products `a*b`, and a minus sign
+is the `-` of the keyboard."
 
 BadNumber "DW0203" "number cannot be read"
 "Numbers are written 12, 0.5, 1e-3. They must fit a double precision number, between about 1e-307
 and 1e308 in size, and hold at most 1000 digits."
 
 UnbalancedParentheses "DW0204" "parentheses do not match"
-"A parenthesis is opened and not closed, or closed and not opened."
+"A parenthesis is opened and not closed, or closed and not opened. The place shown is the parenthesis
+without a partner."
 
 NestedTooDeep "DW0205" "formula nested too deep"
 "Parentheses, calls, powers and signs may stand inside one another up to 200 levels. Name the inner
@@ -122,7 +124,8 @@ Functions: exp log sqrt abs sin cos tan asin acos atan sinh cosh tanh asinh acos
 normal_cdf normal_pdf normal_quantile min max sign. `log` is the natural logarithm."
 
 ArgumentCount "DW0207" "wrong number of arguments"
-"`min` and `max` take two arguments, every other function takes one."
+"`min` and `max` take two arguments, every other function takes one. For the largest of three nest
+the calls: `max(a, max(b, c))`."
 
 NotAllowedHere "DW0208" "name that may not be used here"
 "The name exists, but not at this place: initial values, ranges, domains and assumptions hold
@@ -142,7 +145,8 @@ Undefined "DW0211" "formula without a value"
 logarithm or a root of a negative number, or a power too large to be written out."
 
 ReservedSyntax "DW0212" "syntax kept for later"
-"Square brackets are kept for indexed families and have no meaning yet."
+"Square brackets are kept for indexed families and have no meaning yet. Parts of a formula are grouped
+with round parentheses."
 
 ValueOutsideRange "DW0301" "default value outside its range"
 "The default value of a parameter must lie inside the parameter's own range."
@@ -174,7 +178,7 @@ UnusedDriver "DW0308" "driver without use"
 
 BadEdge "DW0401" "behaviour at an end that is not closed"
 "`at_edge` says what a state does at a closed end of its domain. An open end is never reached, so
-there is nothing to say. With two closed ends give { lower = \"...\", upper = \"...\" }."
+there is nothing to say. Two closed ends may differ: { lower = \"...\", upper = \"...\" }."
 
 BadDiffusion "DW0402" "diffusion without a clear driver"
 "A plain formula belongs to the only driver of the model. With several drivers write a table,
@@ -185,7 +189,8 @@ BadCoordinate "DW0403" "coordinate that cannot be mapped back"
 state, and have a value on the whole domain."
 
 InitialOutsideDomain "DW0404" "initial value outside the domain"
-"The value at time 0 must lie in the state's domain."
+"The value at time 0 must lie in the state's domain: inside, or on an end that is closed. Where
+parameters decide, the default values are tried and the finding is a warning."
 
 OpenEndReached "DW0405" "open end that may be reached"
 "An open end of a domain asserts that the state never gets there. This end is reached, or it could

@@ -114,12 +114,12 @@ impl<'a> Lexer<'a> {
         };
         let message = format!("`{shown}` is not used in formulas");
         let diagnostic = Diagnostic::error(Code::UnknownCharacter, span, message);
-        self.errors.push(diagnostic.maybe_hint(replacement(c)));
+        self.errors.push(diagnostic.hint(replacement(c)));
     }
 }
 
 /// What the author of an unusual character may have meant.
-fn replacement(c: char) -> Option<String> {
+fn replacement(c: char) -> &'static str {
     let text = match c {
         '²' => "write `^2`",
         '³' => "write `^3`",
@@ -132,11 +132,11 @@ fn replacement(c: char) -> Option<String> {
         '≥' => "write `>=`",
         '{' | '}' => "only round parentheses group",
         '\'' | '"' => "a formula holds no quotes of its own",
-        '=' => "a formula is only the right side, without `=`",
+        '=' => "a formula stands without `=`; inequalities are written <, <=, >, >=",
         '_' => "names start with a letter",
-        _ => return None,
+        _ => "remove it",
     };
-    Some(text.to_owned())
+    text
 }
 
 fn number_error(error: NumberError, text: &str, span: Span) -> Diagnostic {

@@ -245,7 +245,9 @@ impl Lowering<'_> {
         let message = format!("there is no function `{name}`");
         let diagnostic = Diagnostic::error(Code::NotAFunction, span, message);
         let known = Function::ALL.into_iter().map(Function::name);
-        diagnostic.maybe_hint(other_name(name).or_else(|| did_you_mean(name, known)))
+        let hint = other_name(name).or_else(|| did_you_mean(name, known));
+        diagnostic
+            .hint(hint.unwrap_or_else(|| "`check --explain DW0206` lists the functions".to_owned()))
     }
 }
 

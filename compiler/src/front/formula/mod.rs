@@ -19,3 +19,6 @@ pub(crate) use lower::kink_at;
 pub use lower::{Names, lower, parse_in_pool};
 pub use number::{NumberError, decimal};
 pub use parser::{MAX_DEPTH, parse, parse_inequality};
+
+#[cfg(test)]
+mod tests;

@@ -2,6 +2,7 @@
 
 use super::super::raw::{RawFormula, RawState};
 use super::Resolver;
+use super::numbers::short;
 use super::place::Place;
 use crate::diagnostic::{Code, Diagnostic};
 use crate::model::Formula;
@@ -65,7 +66,7 @@ impl Resolver<'_> {
         for point in self.points(domain) {
             values.insert(symbol, point);
             if self.pool.eval_f64(formula.expr, &values).is_none() && point.abs() < 100.0 {
-                let message = format!("the coordinate has no value at {name} = {point}");
+                let message = format!("the coordinate has no value at {name} = {}", short(point));
                 let hint = "narrow the domain, to \"(0, inf)\" for a logarithm".to_owned();
                 return Some(Some((message, hint)));
             }
@@ -78,7 +79,11 @@ impl Resolver<'_> {
         let (Some(up), Some(down)) = (rises, falls) else {
             return Some(None);
         };
-        let message = format!("the coordinate rises at {name} = {up} and falls at {name} = {down}");
+        let message = format!(
+            "the coordinate rises at {name} = {} and falls at {name} = {}",
+            short(up),
+            short(down)
+        );
         let hint = "a coordinate is strictly monotone, so that it can be mapped back".to_owned();
         Some(Some((message, hint)))
     }

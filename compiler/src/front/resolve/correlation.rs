@@ -3,7 +3,7 @@
 use super::super::raw::{Name, RawCorrelation, RawModel};
 use super::super::suggest::did_you_mean;
 use super::Resolver;
-use super::numbers::Basis;
+use super::numbers::{Basis, short};
 use super::place::Place;
 use super::scope::Kind;
 use crate::diagnostic::{Code, Diagnostic};
@@ -100,12 +100,12 @@ impl Resolver<'_> {
             Basis::Literal => Diagnostic::error(
                 Code::CorrelationBounds,
                 formula.span,
-                format!("a correlation cannot be {value}"),
+                format!("a correlation cannot be {}", short(value)),
             ),
             Basis::Defaults => Diagnostic::warning(
                 Code::CorrelationBounds,
                 formula.span,
-                format!("at the default values the correlation is {value}"),
+                format!("at the default values the correlation is {}", short(value)),
             ),
         };
         self.diagnostics

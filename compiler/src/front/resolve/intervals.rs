@@ -16,8 +16,11 @@ impl Resolver<'_> {
             return Interval::REAL;
         };
         let interval = Interval { lower, upper };
-        self.check_ends(ast, interval);
-        interval
+        if self.ends_in_order(ast, interval) {
+            interval
+        } else {
+            Interval::REAL
+        }
     }
 
     fn bound(&mut self, end: &IntervalEnd, place: Place) -> Option<Bound> {
@@ -33,17 +36,17 @@ impl Resolver<'_> {
     }
 
     /// The lower end must lie below the upper one, where numbers decide.
-    fn check_ends(&mut self, ast: &IntervalAst, interval: Interval) {
+    fn ends_in_order(&mut self, ast: &IntervalAst, interval: Interval) -> bool {
         let (Some(lower), Some(upper)) = (interval.lower.value(), interval.upper.value()) else {
-            return;
+            return true;
         };
         let (Some((low, first)), Some((high, second))) =
             (self.numbers.value(lower), self.numbers.value(upper))
         else {
-            return;
+            return true;
         };
         if low < high && lower != upper {
-            return;
+            return true;
         }
         let literal = first == Basis::Literal && second == Basis::Literal;
         let message = if literal || lower == upper {
@@ -55,6 +58,7 @@ impl Resolver<'_> {
             Diagnostic::error(Code::BadInterval, ast.span, message)
                 .hint("the lower end comes first and must be the smaller one"),
         );
+        false
     }
 }
 

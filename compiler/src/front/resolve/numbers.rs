@@ -81,3 +81,11 @@ impl Numbers {
         (out(value, end) || (value == end && !closed)).then_some(basis)
     }
 }
+
+/// A number for people, to six digits.
+pub(super) fn short(value: f64) -> String {
+    format!("{value:.5e}")
+        .parse::<f64>()
+        .unwrap_or(value)
+        .to_string()
+}

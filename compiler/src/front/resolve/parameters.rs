@@ -1,10 +1,11 @@
 //! Parameters and the assumptions between them.
 
 use super::super::raw::{RawAssumption, RawParameter};
+use super::Resolver;
 use super::intervals::{ends, show};
+use super::numbers::{Basis, short};
 use super::order::{Definition, order};
 use super::place::Place;
-use super::{Resolver, numbers::Basis};
 use crate::diagnostic::{Code, Diagnostic};
 use crate::model::{Assumption, Parameter, Relation};
 use crate::symbolic::{Interval, SymbolKind};
@@ -104,7 +105,11 @@ impl Resolver<'_> {
                 );
             }
             Some((value, Basis::Defaults)) if !holds(raw.relation, value) => {
-                let at = |e| self.numbers.value(e).map_or(f64::NAN, |(value, _)| value);
+                let at = |e| {
+                    self.numbers
+                        .value(e)
+                        .map_or(String::new(), |(value, _)| short(value))
+                };
                 let message = format!(
                     "the assumption `{}` fails at the default values: {} against {}",
                     raw.name.text,

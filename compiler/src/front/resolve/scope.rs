@@ -153,44 +153,54 @@ impl Scope {
         diagnostics: &mut Diagnostics,
     ) -> Option<Expr> {
         let result = lower(&self.pool, ast, &View { scope: self, place });
+        let direct = kink_at(ast).map(|(function, span)| (function, span, None));
+        let hidden = || result.is_ok().then(|| self.kink_in_names(ast)).flatten();
         let kink = if place.needs_derivatives() {
-            self.kink(ast, place)
+            direct.or_else(hidden)
         } else {
             None
         };
-        let mut errors = result.as_ref().err().cloned().unwrap_or_default();
         let failed = kink.is_some();
-        errors.extend(kink);
-        errors.into_iter().for_each(|d| diagnostics.push(d));
-        result.ok().filter(|_| !failed)
+        if let Some((function, span, name)) = kink {
+            diagnostics.push(kink_error(function, span, name, place));
+        }
+        match result {
+            Ok(expr) => (!failed).then_some(expr),
+            Err(errors) => {
+                errors.into_iter().for_each(|d| diagnostics.push(d));
+                None
+            }
+        }
     }
 
-    /// The kink of a formula, in itself or in a name it uses.
-    fn kink(&self, ast: &Ast, place: Place) -> Option<Diagnostic> {
-        let direct = kink_at(ast).map(|(function, span)| (function, span, None));
-        let (function, span, through) = direct.or_else(|| self.kink_in_names(ast))?;
-        let name = function.name();
-        let message = match through {
-            Some(inner) => format!("`{inner}` uses `{name}`, which is not twice differentiable"),
-            None => format!("`{name}` is not twice differentiable"),
-        };
-        Some(
-            Diagnostic::error(Code::Kink, span, message)
-                .note(format!(
-                    "Ito's rule is applied to {}: where a path crosses the kink, a local-time term \
-                     would be missing",
-                    place.what()
-                ))
-                .hint("make it a readout, which takes any function, or use a smooth function"),
-        )
-    }
-
+    /// A kink of the names a formula uses.
     fn kink_in_names(&self, ast: &Ast) -> Option<(Function, Span, Option<String>)> {
         ast.names().into_iter().find_map(|(name, span)| {
             let function = self.pool.has_kink(self.names.get(name)?.value?)?;
             Some((function, span, Some(name.to_owned())))
         })
     }
+}
+
+/// A function with a kink where Ito's rule is applied, in the formula itself or in a name it uses.
+fn kink_error(function: Function, span: Span, inner: Option<String>, place: Place) -> Diagnostic {
+    let name = function.name();
+    let message = match inner {
+        Some(inner) => format!("`{inner}` uses `{name}`, which is not twice differentiable"),
+        None => format!("`{name}` is not twice differentiable"),
+    };
+    let hint = match place {
+        Place::Derived => "make it a readout, which takes any function, or use a smooth function",
+        Place::Through(_) => "use a smooth function that is strictly monotone",
+        _ => "claim something of a smooth function, or the mean of a readout",
+    };
+    Diagnostic::error(Code::Kink, span, message)
+        .note(format!(
+            "Ito's rule is applied to {}: where a path crosses the kink, a local-time term would be \
+             missing",
+            place.what()
+        ))
+        .hint(hint)
 }
 
 /// The names as seen from a place.
@@ -281,8 +291,8 @@ impl View<'_> {
             "dt" | "dW" => {
                 Some("write the coefficient alone, `dt` and `dW` are understood".to_owned())
             }
-            _ => did_you_mean(name, self.candidates())
-                .or_else(|| no_product(name, &self.scope.names)),
+            _ => no_product(name, &self.scope.names)
+                .or_else(|| did_you_mean(name, self.candidates())),
         };
         diagnostic.hint(hint.unwrap_or_else(|| "declare it, as a parameter for example".to_owned()))
     }
