@@ -1,8 +1,10 @@
-//! Facts beside the model: exact laws, commutativity, what happens at the ends of a domain, growth.
+//! Facts beside the model: exact laws, commutativity, what happens at the ends of a domain, growth,
+//! moments, claims.
 
 pub mod assume;
 pub mod asymptotics;
 pub mod boundary;
+pub mod claims;
 pub mod commute;
 pub mod coordinate;
 pub mod dependence;
@@ -10,5 +12,6 @@ pub mod free;
 pub mod growth;
 pub mod limits;
 pub mod linear;
+pub mod moments;
 mod noise;
 pub mod sample;

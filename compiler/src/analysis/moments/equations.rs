@@ -1,0 +1,215 @@
+//! Moment equations: the generator on a space of functions that it maps to itself.
+//!
+//! `d/dt E[f] = E[L f]` for each function `f` of the space; where the generator takes `f` to a
+//! combination of `f` itself and of functions already solved, variation of constants gives the mean in
+//! closed form. On polynomials of a model with drifts of degree 1 and variance rates of degree 2 the
+//! space closes (Cuchiero, Keller-Ressel and Teichmann 2012, "Polynomial processes and their
+//! applications to mathematical finance", Finance and Stochastics 16). The functions here are whatever
+//! products of states come out of Ito's rule, so logarithms and powers close too where they can.
+
+use std::cell::RefCell;
+use std::collections::BTreeMap;
+
+use super::exp_poly::{ExpPoly, factors, summands};
+use super::integrability::martingale_part;
+use crate::calculus::System;
+use crate::symbolic::{Expr, Symbol};
+
+/// A function space larger than this is given up on.
+const MOST_FUNCTIONS: usize = 300;
+/// So is one in which a function needs a longer chain of others.
+const DEEPEST: usize = 40;
+/// And one whose generator has more terms.
+const MOST_TERMS: usize = 200;
+
+/// The equations of one system, solved on demand.
+pub(super) struct Equations<'a> {
+    system: System<'a>,
+    /// Values of the coordinates at time 0.
+    start: BTreeMap<Symbol, Expr>,
+    known: RefCell<BTreeMap<Expr, Option<ExpPoly>>>,
+}
+
+/// A combination of functions of the coordinates; coefficients hold time and parameters.
+type Combination = BTreeMap<Expr, Expr>;
+
+impl<'a> Equations<'a> {
+    pub(super) fn new(system: System<'a>, start: BTreeMap<Symbol, Expr>) -> Self {
+        Self {
+            system,
+            start,
+            known: RefCell::default(),
+        }
+    }
+
+    /// `E[formula]` at time t, in closed form.
+    pub(super) fn mean(&self, formula: Expr) -> Option<Expr> {
+        let pool = self.system.pool();
+        let parts = self.split(formula)?;
+        let mut terms = Vec::new();
+        for (function, coefficient) in parts {
+            let mean = self
+                .solve(function, 0)?
+                .formula(pool, self.system.model.time);
+            terms.push(pool.mul(coefficient, mean));
+        }
+        Some(pool.sum(terms))
+    }
+
+    /// `E[formula]` at time `t` as a number, by the matrix exponential of the generator on the whole
+    /// function space, so that it needs no order of solving and no two rates apart.
+    pub(super) fn number(
+        &self,
+        formula: Expr,
+        values: &BTreeMap<Symbol, f64>,
+        t: f64,
+    ) -> Option<f64> {
+        let pool = self.system.pool();
+        let parts = self.split(formula)?;
+        let mut basis: Vec<Expr> = parts.keys().copied().collect();
+        let mut entries = Vec::new();
+        let mut next = 0;
+        while next < basis.len() {
+            for (function, coefficient) in self.generator(basis[next])? {
+                if pool.depends_on(coefficient, self.system.model.time) {
+                    return None;
+                }
+                let column = basis
+                    .iter()
+                    .position(|&f| f == function)
+                    .unwrap_or_else(|| {
+                        basis.push(function);
+                        basis.len() - 1
+                    });
+                entries.push((next, column, pool.eval_f64(coefficient, values)?));
+            }
+            next += 1;
+            if basis.len() > MOST_FUNCTIONS {
+                return None;
+            }
+        }
+        let means = self.propagate(&basis, &entries, values, t)?;
+        let mut at = values.clone();
+        at.insert(self.system.model.time, t);
+        let terms = parts
+            .iter()
+            .zip(means)
+            .map(|((_, &c), m)| Some(pool.eval_f64(c, &at)? * m));
+        terms.sum()
+    }
+
+    /// `exp(t M)` applied to the functions' values at time 0.
+    fn propagate(
+        &self,
+        basis: &[Expr],
+        entries: &[(usize, usize, f64)],
+        values: &BTreeMap<Symbol, f64>,
+        t: f64,
+    ) -> Option<Vec<f64>> {
+        let n = basis.len();
+        let mut matrix = vec![0.0; n * n];
+        for &(row, column, value) in entries {
+            matrix[row * n + column] += value;
+        }
+        let (zeros, none) = (vec![0.0; n], vec![0.0; n * n]);
+        let (mut e, mut shift, mut spread) = (vec![0.0; n * n], vec![0.0; n], vec![0.0; n * n]);
+        driftwright_runtime::gauss::linear_transition(
+            n,
+            &matrix,
+            &zeros,
+            &none,
+            t,
+            &mut e,
+            &mut shift,
+            &mut spread,
+        )
+        .ok()?;
+        let start: Option<Vec<f64>> = basis
+            .iter()
+            .map(|&f| {
+                self.system
+                    .pool()
+                    .eval_f64(self.system.pool().substitute(f, &self.start), values)
+            })
+            .collect();
+        let start = start?;
+        Some(
+            (0..n)
+                .map(|row| (0..n).map(|k| e[row * n + k] * start[k]).sum())
+                .collect(),
+        )
+    }
+
+    /// The mean of one function of the coordinates.
+    fn solve(&self, function: Expr, depth: usize) -> Option<ExpPoly> {
+        let pool = self.system.pool();
+        if self.system.occurring(function).is_empty() {
+            return Some(ExpPoly::constant(pool, function));
+        }
+        if let Some(known) = self.known.borrow().get(&function) {
+            return known.clone();
+        }
+        if depth > DEEPEST || self.known.borrow().len() > MOST_FUNCTIONS {
+            return None;
+        }
+        // Whoever needs this function in order to solve it has found a cycle, and gets "none".
+        self.known.borrow_mut().insert(function, None);
+        let found = self.solve_new(function, depth);
+        self.known.borrow_mut().insert(function, found.clone());
+        found
+    }
+
+    fn solve_new(&self, function: Expr, depth: usize) -> Option<ExpPoly> {
+        let pool = self.system.pool();
+        let time = self.system.model.time;
+        let mut rate = pool.zero();
+        let mut forcing = ExpPoly::default();
+        for (other, coefficient) in self.generator(function)? {
+            if other == function {
+                rate = coefficient;
+            } else {
+                let coefficient = ExpPoly::read(pool, time, coefficient)?;
+                forcing.add_product(pool, &coefficient, &self.solve(other, depth + 1)?);
+            }
+        }
+        if pool.depends_on(rate, time) {
+            return None;
+        }
+        let start = pool.simplify(pool.substitute(function, &self.start));
+        ExpPoly::solve(pool, rate, &forcing, start)
+    }
+
+    /// The generator on a function, taken apart; none where the mean may not be taken.
+    fn generator(&self, function: Expr) -> Option<Combination> {
+        if self.system.occurring(function).is_empty() {
+            return Some(Combination::new());
+        }
+        let expansion = self.system.expand(function);
+        martingale_part(&self.system, &expansion)?;
+        self.split(self.system.generator(function))
+    }
+
+    /// A formula as a combination of functions of the coordinates.
+    fn split(&self, formula: Expr) -> Option<Combination> {
+        let pool = self.system.pool();
+        let terms = summands(pool, pool.expand(formula));
+        if terms.len() > MOST_TERMS {
+            return None;
+        }
+        let mut parts = Combination::new();
+        for term in terms {
+            let (moving, fixed): (Vec<Expr>, Vec<Expr>) = factors(pool, term)
+                .into_iter()
+                .partition(|&f| !self.system.occurring(f).is_empty());
+            let function = pool.product(moving);
+            // Time belongs to the coefficients: a function that mixes it with states is not one of ours.
+            if pool.depends_on(function, self.system.model.time) {
+                return None;
+            }
+            let coefficient = parts.entry(function).or_insert_with(|| pool.zero());
+            *coefficient = pool.add(*coefficient, pool.product(fixed));
+        }
+        parts.retain(|_, c| !pool.is_zero_literal(*c) && !pool.is_zero(*c).is_yes());
+        Some(parts)
+    }
+}
