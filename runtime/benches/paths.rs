@@ -1,13 +1,12 @@
 //! Cost of a path-step: `cargo bench -p driftwright-runtime`. Divide by paths times steps.
 
-#[path = "../tests/common/mod.rs"]
-mod common;
-
-use common::{Geometric, ORCHARD};
+#[path = "../tests/models.rs"]
+mod models;
 use divan::Bencher;
 use divan::counter::ItemsCount;
 use driftwright_runtime::collect::Moments;
 use driftwright_runtime::{ArithmeticClass, Generator, Grid, InstructionSet, Run, simulate};
+use models::{Geometric, ORCHARD};
 
 const PATHS: u64 = 20_000;
 const STEPS: usize = 252;

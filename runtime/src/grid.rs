@@ -175,7 +175,7 @@ fn advance(
     mut next: usize,
 ) -> usize {
     let close = COINCIDENCE * horizon;
-    if let Some(count) = count {
+    if let Some(count) = count.filter(|_| horizon > 0.0) {
         while next <= count && regular_time(next, count, horizon) < time - close {
             nodes.push(Node {
                 time: regular_time(next, count, horizon),

@@ -15,7 +15,8 @@ const TERMS: usize = 20;
 /// exponential", IEEE Trans. Automat. Control 23 (1978), but evaluated by their Taylor
 /// series over `h / 2^s` and doubled `s` times. The block exponential of that paper holds
 /// `exp(-a h)` too, which overflows for fast mean reversion; doubling does not. `exp - 1`
-/// is what is squared, so that slow rates keep their digits and `a = 0` needs no case.
+/// is what is squared, so that slow rates keep their digits beside fast ones and `a = 0` needs
+/// no case; entries of `e` are accurate to rounding errors of 1, however small they are.
 ///
 /// Matrices are row-major with `dim * dim` entries, vectors have `dim`.
 ///
@@ -133,6 +134,8 @@ impl Law {
         for (i, c) in self.covariance.iter_mut().enumerate() {
             *c = 2.0 * *c + (crossed[i] + outer[i]);
         }
+        // Rounding leaves an asymmetry, which doubling would double.
+        self.covariance = symmetric_sum(dim, &self.covariance, 0.5);
         multiply(dim, &self.growth, &self.growth, &mut product);
         for (f, squared) in self.growth.iter_mut().zip(&product) {
             *f = 2.0 * *f + squared;

@@ -44,14 +44,16 @@ impl Parts {
     }
 }
 
-/// Splits `high + low`; the low part may be as large as a rounding error of the high one.
+/// Splits `high + low`; the low part may be as large as a rounding error of the high one,
+/// which is many units in the last place of `r`.
 #[inline(always)]
 fn parts<A: Arith>(high: f64, low: f64) -> Parts {
     let shifted = A::mul_add(high, std::f64::consts::LOG2_E, ROUNDER);
     let k = shifted - ROUNDER;
     let near = A::mul_add(-k, LN2.0, high);
-    let r = A::mul_add(-k, LN2.1, near);
-    let tail = A::mul_add(-k, LN2.1, near - r) + low;
+    let reduced = A::mul_add(-k, LN2.1, near);
+    let r = reduced + low;
+    let tail = A::mul_add(-k, LN2.1, near - reduced) + (low - (r - reduced));
     let quotient = polynomial::<A, 11>(r, SERIES);
     Parts {
         k: shifted.to_bits().wrapping_sub(ROUNDER.to_bits()),

@@ -155,11 +155,8 @@ fn with_sign(x: f64, y: f64, size: f64) -> f64 {
     let odd = integer & !is_integer(0.5 * y.abs());
     let negative = x.is_sign_negative();
     let value = if negative & odd { -size } else { size };
-    let value = if (x < 0.0) & !integer {
-        f64::NAN
-    } else {
-        value
-    };
+    let rootless = (x < 0.0) & (x > f64::NEG_INFINITY) & !integer;
+    let value = if rootless { f64::NAN } else { value };
     let value = if x.is_nan() | y.is_nan() {
         f64::NAN
     } else {

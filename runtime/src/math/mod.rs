@@ -6,7 +6,21 @@
 //! `tanh`, `expm1`, `pow`, `powi`, `normal_pdf` and the selections vectorises; the rarer ones
 //! call the crate `libm`, one path after the other.
 //!
+//! Worst errors in units of the last place, either class, over 10,000 arguments against
+//! 128-bit arithmetic (`tests/math_accuracy.rs` holds them); those of `sqrt`, `abs`, `min`, `max`
+//! and `sign` are those of IEEE 754:
 //!
+//! | function | error | | function | error |
+//! |---|---|---|---|---|
+//! | `exp` | 0.7 | | `tan` | 0.7 |
+//! | `expm1` | 1.3 | | `asin` | 0.8 |
+//! | `ln` | 0.8 | | `acos` | 0.9 |
+//! | `pow` | 0.7 | | `atan` | 0.8 |
+//! | `sin` | 0.9 | | `asinh` | 1.3 |
+//! | `cos` | 0.8 | | `acosh` | 1.8 |
+//! | `sinh` | 1.7 | | `atanh` | 1.5 |
+//! | `cosh` | 1.1 | | `cbrt` | 0.6 |
+//! | `tanh` | 2.0 | | `normal_pdf` | 1.9 |
 
 mod double;
 mod exponential;

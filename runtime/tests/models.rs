@@ -1,4 +1,4 @@
-//! Hand-written simulators for the tests.
+//! Hand-written simulators for the tests and benchmarks.
 
 use std::borrow::Cow;
 

@@ -1,0 +1,11 @@
+//! Tests of the runtime against things outside it, as one program.
+
+mod collectors;
+mod fragile;
+mod generators;
+mod linear_algebra;
+mod math_accuracy;
+mod models;
+mod normal_law;
+mod reference;
+mod simulation;
