@@ -6,11 +6,13 @@ use crate::symbolic::Expr;
 
 /// The states a formula mentions, by index, ascending.
 pub fn mentioned(model: &Model, e: Expr) -> Vec<usize> {
-    let states = model.states.iter().enumerate();
-    states
-        .filter(|(_, s)| model.pool.depends_on(e, s.symbol))
-        .map(|(i, _)| i)
-        .collect()
+    let symbols = model.pool.symbols_of(e);
+    let mut found: Vec<usize> = symbols
+        .into_iter()
+        .filter_map(|s| model.state_of(s))
+        .collect();
+    found.sort_unstable();
+    found
 }
 
 /// The states that the drift or the noise of a state mentions, itself included if they do.

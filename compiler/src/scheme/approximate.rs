@@ -8,7 +8,7 @@ use super::step::{Frame, state_step};
 use super::{Coordinate, Group, Kind, Law, Method, Order, SchemeName, overrides, reasons};
 use crate::analysis::commute::{Clash, clash};
 use crate::analysis::coordinate::through;
-use crate::analysis::dependence::{deterministic, sources};
+use crate::analysis::dependence::{mentioned, sources};
 use crate::calculus::Dynamics;
 use crate::model::{AtEdge, Model};
 use crate::symbolic::trace::Trace;
@@ -23,6 +23,8 @@ pub(super) struct Context<'a> {
     pub(super) projections: &'a [Projection],
     /// Per state, Ito's rule on its coordinate.
     pub(super) traces: &'a [Trace],
+    /// Per state, whether nothing random reaches it.
+    pub(super) calm: Vec<bool>,
     /// Per state, why it has no exact law; none where it has one.
     pub(super) refusals: Vec<Option<String>>,
 }
@@ -110,7 +112,6 @@ impl Context<'_> {
     }
 
     pub(super) fn choose(&self, component: &[usize]) -> Choice {
-        let calm = deterministic(self.model, self.dynamics);
         let clash = component.iter().find_map(|&i| {
             Some((
                 i,
@@ -123,7 +124,7 @@ impl Context<'_> {
         });
         let mut choice = Choice {
             scheme: SchemeName::Milstein,
-            deterministic: component.iter().all(|&i| calm[i]),
+            deterministic: component.iter().all(|&i| self.calm[i]),
             additive: component
                 .iter()
                 .all(|&i| self.noise(i).all(|b| !self.mentions_states(b))),
@@ -149,10 +150,7 @@ impl Context<'_> {
     }
 
     fn mentions_states(&self, e: Expr) -> bool {
-        self.model
-            .states
-            .iter()
-            .any(|s| self.model.pool.depends_on(e, s.symbol))
+        !mentioned(self.model, e).is_empty()
     }
 
     fn kink(&self, state: usize) -> Option<Function> {

@@ -16,6 +16,7 @@ mod reasons;
 mod step;
 mod warn;
 
+use crate::analysis::dependence::deterministic;
 use crate::analysis::linear;
 use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostics;
@@ -54,20 +55,14 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         coordinates: &coordinates,
         projections: &projections,
         traces: &traces,
+        calm: deterministic(model, dynamics),
         refusals: rows.iter().map(|row| row.as_ref().err().cloned()).collect(),
     };
     let mut groups = exact::groups(model, &rows);
     let choices = context.choices();
     groups.extend(context.groups(&choices));
     groups.sort_by_key(|g| g.states.first().copied());
-    overrides::check(
-        model,
-        dynamics,
-        &groups,
-        &choices,
-        &context.refusals,
-        diagnostics,
-    );
+    overrides::check(&context, &groups, &choices, diagnostics);
     warn::open_ends(model, dynamics, &groups, diagnostics);
     let noise = noise::plan(model, &groups);
     Plan {

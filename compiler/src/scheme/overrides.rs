@@ -3,10 +3,8 @@
 use std::collections::BTreeMap;
 use std::rc::Rc;
 
-use super::approximate::Choice;
+use super::approximate::{Choice, Context};
 use super::{Group, SchemeName};
-use crate::analysis::dependence::deterministic;
-use crate::calculus::Dynamics;
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Model;
 use crate::symbolic::Bound;
@@ -48,23 +46,21 @@ pub(super) fn excluded(model: &Model) -> BTreeMap<usize, String> {
 
 /// Reports the overrides that cannot be honoured.
 pub(super) fn check(
-    model: &Model,
-    dynamics: &Dynamics,
+    context: &Context<'_>,
     groups: &[Group],
     choices: &BTreeMap<usize, Rc<Choice>>,
-    refusals: &[Option<String>],
     diagnostics: &mut Diagnostics,
 ) {
-    let calm = deterministic(model, dynamics);
+    let model = context.model;
     for (i, state) in model.states.iter().enumerate() {
         let Some((asked, span)) = state.scheme else {
             continue;
         };
         let group = groups.iter().find(|g| g.states.contains(&i));
         let reason = match asked {
-            SchemeName::Exact => refusals[i].clone(),
+            SchemeName::Exact => context.refusals[i].clone(),
             SchemeName::Milstein => choices.get(&i).and_then(|c| no_milstein(model, c)),
-            SchemeName::RungeKutta4 if !calm[i] => Some(format!(
+            SchemeName::RungeKutta4 if !context.calm[i] => Some(format!(
                 "{} is random; this scheme is for states that nothing random reaches",
                 state.name
             )),

@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 
 use super::edges::{self, Projection};
 use super::{Coordinate, SchemeName, StateStep};
-use crate::analysis::commute::along_noise;
+use crate::analysis::commute::{along_noise, relevant_drivers};
 use crate::analysis::coordinate::{Candidate, through};
 use crate::analysis::linear::Row;
 use crate::calculus::{Dynamics, Process, expand};
@@ -121,10 +121,11 @@ fn milstein(
     frame: &Frame<'_>,
 ) -> Vec<(usize, usize, Expr)> {
     let pool = &model.pool;
+    let drivers = relevant_drivers(model, dynamics, b);
     let mut terms = Vec::new();
-    for j in 0..b.len() {
-        for (k, &other) in b.iter().enumerate().skip(j) {
-            let along = along_noise(model, dynamics, j, other);
+    for (position, &j) in drivers.iter().enumerate() {
+        for &k in &drivers[position..] {
+            let along = along_noise(model, dynamics, j, b[k]);
             let weight = if j == k { pool.ratio(1, 2) } else { pool.one() };
             let coefficient = frame.write(pool.mul(weight, along));
             if !pool.is_zero_literal(coefficient) {
