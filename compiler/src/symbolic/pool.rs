@@ -6,6 +6,7 @@ use std::rc::Rc;
 
 use super::facts::Interval;
 use super::node::{Expr, Node, Rational, Symbol, SymbolKind};
+use super::normal::{Fraction, Mode, Rule};
 
 /// Holds the formulas of one model. Cloning gives another handle to the same pool.
 ///
@@ -44,6 +45,9 @@ pub(super) struct Inner {
     pub(super) symbols: Vec<SymbolData>,
     names: HashMap<Rc<str>, Symbol>,
     pub(super) symbols_of: HashMap<Expr, Rc<[Symbol]>>,
+    pub(super) normals: HashMap<(Expr, Mode), Rc<Fraction>>,
+    pub(super) rules: HashMap<(Expr, Mode), Rc<Rule>>,
+    pub(super) simplified: HashMap<Expr, Expr>,
     pub(super) signs: HashMap<Expr, (super::Sign, usize)>,
     pub(super) derivatives: HashMap<(Expr, Symbol), Expr>,
 }
@@ -91,6 +95,8 @@ impl Pool {
         let mut inner = self.inner.borrow_mut();
         inner.symbols[symbol.0 as usize].range = range;
         inner.signs.clear();
+        inner.normals.clear();
+        inner.simplified.clear();
     }
 
     /// Where the values of a symbol lie; the whole line unless stated.

@@ -69,7 +69,12 @@ impl Pool {
             Node::Number(value) => number_piece(value),
             Node::Pi => Piece::atom("pi"),
             Node::Symbol(symbol) => Piece::atom(&*self.symbol_name(*symbol)),
-            Node::Sum(terms) => sum_piece(terms.iter().map(|t| &done[t])),
+            Node::Sum(terms) => {
+                // A number stands first in a sum and is written last: x + 1.
+                let constant = usize::from(self.as_number(terms[0]).is_some());
+                let (first, rest) = terms.split_at(constant);
+                sum_piece(rest.iter().chain(first).map(|t| &done[t]))
+            }
             Node::Product(factors) => self.product_piece(factors, done),
             Node::Power(..) => self.product_piece(&[e], done),
             Node::Call(Function::Expm1Ratio, arguments) => {

@@ -1,17 +1,106 @@
 //! An equal formula in a shape a person would write.
 
-use super::node::Expr;
+use super::node::{Expr, Node, Rational};
 use super::pool::Pool;
 
 impl Pool {
-    /// An equal formula, shorter where algebra finds one: the expanded form competes with the one
-    /// given.
+    /// An equal formula, as a person would write it: among the shapes the normal form offers and the
+    /// one given, the lightest. The result is remembered.
+    ///
+    /// ```
+    /// use driftwright::front::formula::parse_in_pool;
+    /// use driftwright::symbolic::{Pool, SymbolKind};
+    /// let pool = Pool::new();
+    /// for name in ["mu", "sigma", "x"] {
+    ///     pool.symbol(name, SymbolKind::Parameter);
+    /// }
+    /// let drift = parse_in_pool(&pool, "mu*x*(1/x) + (1/2)*(sigma*x)^2*(-1/x^2)").unwrap();
+    /// assert_eq!(pool.format(pool.simplify(drift)), "mu - sigma^2/2");
+    /// ```
     pub fn simplify(&self, e: Expr) -> Expr {
-        let expanded = self.expand(e);
-        if self.format(expanded).len() < self.format(e).len() {
-            expanded
-        } else {
-            e
+        let known = self.inner.borrow().simplified.get(&e).copied();
+        if let Some(known) = known {
+            return known;
+        }
+        let parts = self.simplify_parts(e);
+        let mut best = (self.weight(parts), parts);
+        for shape in self.shapes(parts) {
+            // Of two equally light shapes the author's own stays.
+            let shape = self.simplify_arguments(shape);
+            let weight = self.weight(shape);
+            if weight < best.0 {
+                best = (weight, shape);
+            }
+        }
+        self.inner.borrow_mut().simplified.insert(e, best.1);
+        best.1
+    }
+
+    /// The same formula with its terms and factors simplified one by one.
+    fn simplify_parts(&self, e: Expr) -> Expr {
+        match &*self.node(e) {
+            Node::Number(_) | Node::Pi | Node::Symbol(_) => e,
+            node => self.rebuild(node, |part| self.simplify(part)),
+        }
+    }
+
+    /// The same formula with the arguments of its functions and the bases of its roots simplified.
+    fn simplify_arguments(&self, e: Expr) -> Expr {
+        match &*self.node(e) {
+            Node::Number(_) | Node::Pi | Node::Symbol(_) => e,
+            node @ (Node::Sum(_) | Node::Product(_)) => {
+                self.rebuild(node, |part| self.simplify_arguments(part))
+            }
+            node @ Node::Power(_, exponent)
+                if self.as_number(*exponent).is_some_and(|n| n.is_int()) =>
+            {
+                self.rebuild(node, |part| self.simplify_arguments(part))
+            }
+            node => self.rebuild(
+                node,
+                |part| if part == e { part } else { self.simplify(part) },
+            ),
+        }
+    }
+
+    /// How much there is to read: names count two, whole numbers and operators one.
+    fn weight(&self, e: Expr) -> u64 {
+        let mut weights = std::collections::HashMap::new();
+        for part in self.postorder(e) {
+            let of = |child: &Expr| -> u64 { weights[child] };
+            let sum = |items: &[Expr]| {
+                items
+                    .iter()
+                    .map(of)
+                    .fold(items.len() as u64 - 1, u64::saturating_add)
+            };
+            let weight = match &*self.node(part) {
+                Node::Number(value) if value.is_int() => 1,
+                Node::Number(_) => 3,
+                Node::Pi | Node::Symbol(_) => 2,
+                Node::Sum(items) => sum(items),
+                Node::Product(items) => sum(items).saturating_add_signed(self.sign_weight(items)),
+                Node::Power(base, exponent) => {
+                    let inverse = self
+                        .as_number(*exponent)
+                        .is_some_and(|n| n == Rational::from(-1));
+                    of(base).saturating_add(if inverse { 0 } else { 1 + of(exponent) })
+                }
+                Node::Call(_, items) => sum(items).saturating_add(2),
+            };
+            weights.insert(part, weight);
+        }
+        weights[&e]
+    }
+
+    /// A sign weighs less than a number, but before a sum more than inside it.
+    fn sign_weight(&self, factors: &[Expr]) -> i64 {
+        let number = self.as_number(factors[0]);
+        let sum = |e: &Expr| matches!(&*self.node(*e), Node::Sum(_));
+        match number {
+            Some(n) if n < Rational::ZERO && factors.iter().any(sum) => 2,
+            Some(n) if n == Rational::from(-1) => -1,
+            _ => 0,
         }
     }
 }

@@ -4,6 +4,7 @@ use dashu_base::Abs;
 
 use super::big::{self, Big, PRECISION};
 use super::node::{Expr, Symbol};
+use super::normal::Mode;
 use super::pool::Pool;
 use super::sample::Sampler;
 
@@ -52,7 +53,9 @@ impl Pool {
 
     /// Whether two formulas agree wherever both have a value.
     pub fn equal(&self, a: Expr, b: Expr) -> Truth {
-        if a == b || self.is_zero_literal(self.expand(self.sub(a, b))) {
+        let difference = self.sub(a, b);
+        let vanishes = |mode| self.normal(difference, mode).is_zero();
+        if vanishes(Mode::Light) || vanishes(Mode::Proof) {
             return Truth::Yes;
         }
         self.refute(a, b).map_or(Truth::CannotTell, Truth::No)
@@ -62,7 +65,10 @@ impl Pool {
     /// same at 256 and at 384 bits, so it is not rounding, and is not small beside the two sides.
     fn refute(&self, a: Expr, b: Expr) -> Option<Witness> {
         let difference = self.sub(a, b);
-        let symbols = self.symbol_set(difference);
+        let mut symbols = self.symbols_of(a);
+        symbols.extend(self.symbols_of(b));
+        symbols.sort_unstable();
+        symbols.dedup();
         let mut sampler = Sampler::new(self);
         for _ in 0..ATTEMPTS {
             let Some(point) = sampler.point(&symbols) else {

@@ -1,0 +1,149 @@
+//! Shapes of one normal form: candidates for what a person would write.
+
+use std::cmp::Reverse;
+use std::collections::BTreeMap;
+
+use super::super::node::{Expr, Node, Rational};
+use super::Normalizer;
+use super::exponent::Exponent;
+use super::fraction::Fraction;
+use super::poly::{Monomial, Poly};
+
+/// Numerators with more terms are not searched for factors.
+const MAX_TERMS: usize = 60;
+
+/// Which kernels are taken out of a sum first.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Preference {
+    /// Those with states in them.
+    States,
+    /// Those without.
+    Parameters,
+}
+
+impl Normalizer<'_> {
+    /// Equal formulas in different shapes: expanded, with a common monomial taken out, in factors,
+    /// and with kernels taken out of groups of terms.
+    pub(in super::super) fn shapes(&self, fraction: &Fraction) -> Vec<Expr> {
+        let (numerator, below) = self.oriented(fraction);
+        let mut shapes = vec![self.poly_to_expr(&numerator)];
+        if numerator.0.len() > 1 {
+            self.outside(&numerator, &mut shapes, &|poly| self.poly_to_expr(poly));
+            if numerator.0.len() <= MAX_TERMS {
+                shapes.push(self.in_factors(&numerator));
+                for preference in [Preference::States, Preference::Parameters] {
+                    self.outside(&numerator, &mut shapes, &|poly| {
+                        self.grouped(poly, preference)
+                    });
+                    shapes.push(self.grouped(&numerator, preference));
+                }
+            }
+        }
+        shapes
+            .into_iter()
+            .map(|shape| self.pool.mul(shape, below))
+            .collect()
+    }
+
+    /// What all terms share times the rest in a shape of its own: once with the number's denominator
+    /// inside, as in `mu - sigma^2/2`, once outside, as in `(x - y)/2`.
+    fn outside(&self, poly: &Poly, shapes: &mut Vec<Expr>, shape: &dyn Fn(&Poly) -> Expr) {
+        let Some((number, monomial, factor)) = self.factored(poly) else {
+            return;
+        };
+        let negative = factor.0.values().all(|c| *c < Rational::ZERO)
+            || (number < Rational::ZERO && factor.0.values().any(|c| *c < Rational::ZERO));
+        let sign = Rational::from(if negative { -1 } else { 1 });
+        let (number, factor) = (number * &sign, factor.scaled(&sign));
+        let monomial = self.monomial_to_expr(&monomial);
+        let divisor = Rational::from_parts(1.into(), number.denominator().clone());
+        let inner = shape(&factor.scaled(&divisor));
+        let outer = self.pool.number(&number / &divisor);
+        shapes.push(self.pool.product([outer, monomial, inner]));
+        if !divisor.is_one() {
+            shapes.push(
+                self.pool
+                    .product([self.pool.number(number), monomial, shape(&factor)]),
+            );
+        }
+    }
+
+    /// The polynomial as a product of powers of factors, as far as square-free decomposition and
+    /// contents find them.
+    fn in_factors(&self, poly: &Poly) -> Expr {
+        let (negative, powers) = poly.squarefree();
+        let content = poly.positive_content();
+        let mut number = if negative { -content } else { content };
+        let mut factors = vec![self.monomial_to_expr(&poly.common_monomial())];
+        for (factor, times) in powers {
+            let mut product = factor.clone();
+            for part in factor.split_contents() {
+                if let Some(rest) = product.exact_quotient(&part) {
+                    product = rest;
+                }
+                let turned = self.leads_negative(self.poly_to_expr(&part));
+                let part = if turned { part.negated() } else { part };
+                if turned && times % 2 == 1 {
+                    number = -number;
+                }
+                factors.push(self.pool.pow(
+                    self.grouped(&part, Preference::States),
+                    self.pool.int(times.into()),
+                ));
+            }
+            // The parts make the factor up to a number.
+            let left = product.as_constant().unwrap_or(Rational::ONE);
+            number *= left.pow(isize::try_from(times).unwrap_or(1));
+        }
+        if number < Rational::ZERO
+            && let Some(factor) = factors
+                .iter_mut()
+                .find(|f| matches!(&*self.pool.node(**f), Node::Sum(_)))
+        {
+            *factor = self.pool.sum([self.pool.neg(*factor)]);
+            number = -number;
+        }
+        self.pool
+            .product(factors.into_iter().chain([self.pool.number(number)]))
+    }
+
+    /// Takes the kernel that occurs in most terms out of those, and goes on with both parts.
+    fn grouped(&self, poly: &Poly, preference: Preference) -> Expr {
+        let Some((kernel, exponent)) = self.most_frequent(poly, preference) else {
+            return self.poly_to_expr(poly);
+        };
+        let (mut inside, mut outside) = (Poly::zero(), Poly::zero());
+        let power = Monomial::of(kernel, exponent);
+        for (monomial, coefficient) in &poly.0 {
+            if monomial.exponent(kernel) == exponent {
+                inside.add_term(monomial.without(kernel), coefficient.clone());
+            } else {
+                outside.add_term(monomial.clone(), coefficient.clone());
+            }
+        }
+        let mut inner = Vec::new();
+        self.outside(&inside, &mut inner, &|poly| self.grouped(poly, preference));
+        let group = self.pool.mul(self.monomial_to_expr(&power), inner[0]);
+        if outside.is_zero() {
+            group
+        } else {
+            self.pool.add(group, self.grouped(&outside, preference))
+        }
+    }
+
+    /// The power of a kernel that most terms share; at least two of them.
+    fn most_frequent(&self, poly: &Poly, preference: Preference) -> Option<(Expr, Exponent)> {
+        let mut counts: BTreeMap<(Expr, Exponent), usize> = BTreeMap::new();
+        for &power in poly.0.keys().flat_map(|m| m.0.iter()) {
+            *counts.entry(power).or_insert(0) += 1;
+        }
+        let preferred = |kernel: Expr| {
+            let states = self.pool.inner.borrow().entry(kernel).rank >= 3;
+            states == (preference == Preference::States)
+        };
+        let shared = counts.into_iter().filter(|(_, count)| *count >= 2);
+        let best = shared
+            .max_by_key(|((kernel, _), count)| (preferred(*kernel), *count, Reverse(*kernel)));
+        best.map(|(power, _)| power)
+    }
+}
