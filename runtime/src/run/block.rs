@@ -1,5 +1,7 @@
 //! One block of paths, from the start to the last observation.
 
+use std::ops::Range;
+
 use super::plan::Plan;
 use super::{Failures, Run};
 use crate::arith::Arith;
@@ -36,23 +38,25 @@ impl Workspace {
 }
 
 /// What is the same for all blocks of a run.
-pub(super) struct Setting<'a, S, C> {
+///
+/// It does not know the collector: stepping and collecting are dispatched apart, so that a
+/// program with several simulators and several collectors holds the sum of their bodies for
+/// each instruction set and not the product.
+pub(super) struct Setting<'a, S> {
     pub(super) simulator: &'a S,
     pub(super) shape: Shape<'a>,
     pub(super) grid: &'a Grid,
     pub(super) plan: &'a Plan,
-    pub(super) collector: &'a C,
     pub(super) target: Target,
     pub(super) seed: u64,
     pub(super) generator: Generator,
 }
 
-impl<'a, S: Simulator, C: Collector> Setting<'a, S, C> {
+impl<'a, S: Simulator> Setting<'a, S> {
     pub(super) fn new(
         simulator: &'a S,
         grid: &'a Grid,
         plan: &'a Plan,
-        collector: &'a C,
         target: Target,
         run: &Run<'_>,
     ) -> Self {
@@ -61,7 +65,6 @@ impl<'a, S: Simulator, C: Collector> Setting<'a, S, C> {
             shape: simulator.shape(),
             grid,
             plan,
-            collector,
             target,
             seed: run.seed,
             generator: run.generator,
@@ -69,18 +72,44 @@ impl<'a, S: Simulator, C: Collector> Setting<'a, S, C> {
     }
 
     /// Runs one block.
-    pub(super) fn block(
+    pub(super) fn block<C: Collector>(
         &self,
+        collector: &C,
         span: &BlockSpan,
         part: &mut C::Block,
         work: &mut Workspace,
     ) -> Failures {
-        self.target.run(BlockTask {
-            setting: self,
-            span,
-            part,
-            work,
-        })
+        let first_path = span.block * LANES as u64;
+        for (lane, &value) in work.states.iter_mut().zip(&work.start) {
+            *lane = Lane::splat(value);
+        }
+        let mut not_finite = Lane::ZERO;
+        let mut step = 0;
+        for (time, observation) in self.grid.observations().iter().enumerate() {
+            let steps = step..observation.steps_before;
+            step = observation.steps_before.max(step);
+            self.target.run(Advance {
+                setting: self,
+                first_path,
+                steps,
+                time,
+                work,
+                not_finite: &mut not_finite,
+            });
+            let outputs = &work.outputs;
+            self.target.run(Collect {
+                collector,
+                part,
+                time,
+                outputs,
+            });
+        }
+        let live = span.lanes.clone();
+        let flag = self.shape.left_domain.map(|slot| &work.states[slot]);
+        Failures {
+            non_finite: count(&not_finite, live.clone()),
+            left_domain: flag.map_or(0, |lane| count(lane, live)),
+        }
     }
 
     /// Draws the normals of the steps `2 block` and `2 block + 1` from all sources.
@@ -99,52 +128,56 @@ impl<'a, S: Simulator, C: Collector> Setting<'a, S, C> {
     }
 }
 
-struct BlockTask<'a, 'b, S, C: Collector> {
-    setting: &'a Setting<'b, S, C>,
-    span: &'a BlockSpan,
-    part: &'a mut C::Block,
+/// The steps up to an observation, and the observation.
+struct Advance<'a, 'b, S> {
+    setting: &'a Setting<'b, S>,
+    first_path: u64,
+    steps: Range<usize>,
+    time: usize,
     work: &'a mut Workspace,
+    not_finite: &'a mut Lane,
 }
 
-impl<S: Simulator, C: Collector> Task for BlockTask<'_, '_, S, C> {
-    type Output = Failures;
+impl<S: Simulator> Task for Advance<'_, '_, S> {
+    type Output = ();
 
     #[inline(always)]
-    fn run<A: Arith>(self) -> Failures {
+    fn run<A: Arith>(self) {
         let setting = self.setting;
         let work = self.work;
-        let first_path = self.span.block * LANES as u64;
         let sources = setting.shape.sources.len();
-        for (lane, &value) in work.states.iter_mut().zip(&work.start) {
-            *lane = Lane::splat(value);
-        }
-        let mut not_finite = Lane::ZERO;
-        let mut step = 0;
-        for (time, observation) in setting.grid.observations().iter().enumerate() {
-            while step < observation.steps_before {
-                if step % 2 == 0 {
-                    setting.draw(step / 2, first_path, &mut work.noise);
-                }
-                let noise = &work.noise[step % 2 * sources..][..sources];
-                let values = setting.plan.step(step);
-                let (states, scratch) = (&mut work.states, &mut work.scratch);
-                setting.simulator.step::<A>(values, states, noise, scratch);
-                step += 1;
+        for step in self.steps {
+            if step % 2 == 0 {
+                setting.draw(step / 2, self.first_path, &mut work.noise);
             }
-            let values = setting.plan.observation(time);
-            let (outputs, scratch) = (&mut work.outputs, &mut work.scratch);
-            setting
-                .simulator
-                .observe::<A>(values, &work.states, outputs, scratch);
-            mark_not_finite(outputs, &mut not_finite);
-            setting.collector.observe(self.part, time, outputs);
+            let noise = &work.noise[step % 2 * sources..][..sources];
+            let values = setting.plan.step(step);
+            let (states, scratch) = (&mut work.states, &mut work.scratch);
+            setting.simulator.step::<A>(values, states, noise, scratch);
         }
-        let live = self.span.lanes.clone();
-        let flag = setting.shape.left_domain.map(|slot| &work.states[slot]);
-        Failures {
-            non_finite: count(&not_finite, live.clone()),
-            left_domain: flag.map_or(0, |lane| count(lane, live)),
-        }
+        let values = setting.plan.observation(self.time);
+        let (outputs, scratch) = (&mut work.outputs, &mut work.scratch);
+        setting
+            .simulator
+            .observe::<A>(values, &work.states, outputs, scratch);
+        mark_not_finite(outputs, self.not_finite);
+    }
+}
+
+/// Handing what was observed to the collector.
+struct Collect<'a, C: Collector> {
+    collector: &'a C,
+    part: &'a mut C::Block,
+    time: usize,
+    outputs: &'a [Lane],
+}
+
+impl<C: Collector> Task for Collect<'_, C> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run<A: Arith>(self) {
+        self.collector.observe(self.part, self.time, self.outputs);
     }
 }
 
@@ -159,6 +192,6 @@ fn mark_not_finite(outputs: &[Lane], marks: &mut Lane) {
 }
 
 /// How many of the live lanes are not zero.
-fn count(lane: &Lane, live: std::ops::Range<usize>) -> u64 {
+fn count(lane: &Lane, live: Range<usize>) -> u64 {
     lane[live].iter().filter(|mark| **mark != 0.0).count() as u64
 }

@@ -164,7 +164,7 @@ pub fn simulate<S: Simulator, C: Collector>(
     };
     let plan = Plan::new(simulator, grid)?;
     let target = Target::new(run.instruction_set, run.arithmetic);
-    let setting = Setting::new(simulator, grid, &plan, &collector, target, run);
+    let setting = Setting::new(simulator, grid, &plan, target, run);
     let layout = Layout {
         paths: run.paths,
         first_path: run.first_path,
@@ -192,7 +192,7 @@ pub fn simulate<S: Simulator, C: Collector>(
             }
             let span = BlockSpan::new(index, run.first_path, end);
             let mut part = collector.block(&layout, &span);
-            let failures = setting.block(&span, &mut part, &mut space);
+            let failures = setting.block(&collector, &span, &mut part, &mut space);
             let paths = span.lanes.len() as u64;
             order.deliver(index, (part, failures, paths), |tally, item| {
                 tally.accept(&collector, item, run)
