@@ -3,6 +3,7 @@
 mod collectors;
 mod fragile;
 mod generators;
+mod grids;
 mod linear_algebra;
 mod math_accuracy;
 mod models;

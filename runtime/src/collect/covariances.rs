@@ -2,7 +2,7 @@
 
 use std::io;
 
-use super::moments::halving_sum;
+use super::summary::halving_sum;
 use super::tree::{Merge, Tree};
 use super::{BlockSpan, Collector, Layout};
 use crate::lane::{LANES, Lane};

@@ -8,15 +8,19 @@ mod covariances;
 mod moments;
 mod paths;
 mod quantiles;
+mod selection;
+mod summary;
 mod tree;
 
 use std::io;
 use std::ops::Range;
 
 pub use covariances::{CoMoments, Covariances};
-pub use moments::{Moments, Summary};
+pub use moments::Moments;
 pub use paths::{PathArray, Paths, Stream};
-pub use quantiles::{QuantileTable, Quantiles, Selection};
+pub use quantiles::{QuantileTable, Quantiles};
+pub use selection::Selection;
+pub use summary::Summary;
 
 use crate::lane::{LANES, Lane};
 

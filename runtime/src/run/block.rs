@@ -152,11 +152,13 @@ impl<S: Simulator> Task for Advance<'_, '_, S> {
             }
             let noise = &work.noise[step % 2 * sources..][..sources];
             let values = setting.plan.step(step);
-            let (states, scratch) = (&mut work.states, &mut work.scratch);
+            let states = &mut work.states;
+            let scratch = &mut work.scratch[..setting.shape.step_scratch];
             setting.simulator.step::<A>(values, states, noise, scratch);
         }
         let values = setting.plan.observation(self.time);
-        let (outputs, scratch) = (&mut work.outputs, &mut work.scratch);
+        let outputs = &mut work.outputs;
+        let scratch = &mut work.scratch[..setting.shape.observation_scratch];
         setting
             .simulator
             .observe::<A>(values, &work.states, outputs, scratch);
