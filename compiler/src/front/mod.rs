@@ -7,12 +7,14 @@ pub mod formula;
 mod load;
 mod raw;
 mod resolve;
+mod schema;
 mod suggest;
 pub mod text;
 mod tree;
 
 pub use load::load;
 pub use resolve::{Place, read_formula};
+pub use schema::json_schema;
 
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Model;

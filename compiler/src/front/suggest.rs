@@ -16,10 +16,9 @@ pub(super) fn nearest<'a>(name: &str, known: impl IntoIterator<Item = &'a str>) 
     for candidate in known {
         let other = candidate.to_lowercase();
         let distance = strsim::damerau_levenshtein(&folded, &other);
-        // A name of one or two letters is near to too many others, unless only the case differs.
-        let near = distance <= limit && (distance == 0 || distance < folded.chars().count().max(2));
-        let short = folded.chars().count() < 2 && other.chars().count() > 2;
-        if near && !short && best.is_none_or(|(least, _)| distance < least) {
+        // Of a single letter only the case can be wrong: it is near to too many others.
+        let near = distance <= limit && (distance == 0 || distance < folded.chars().count());
+        if near && best.is_none_or(|(least, _)| distance < least) {
             best = Some((distance, candidate));
         }
     }
@@ -48,7 +47,8 @@ mod tests {
             ("Mu", Some("mu")),
             ("kapa", Some("kappa")),
             ("rho", None),
-            ("m", Some("mu")),
+            ("m", None),
+            ("MU", Some("mu")),
         ] {
             assert_eq!(nearest(name, known), expected, "{name}");
         }

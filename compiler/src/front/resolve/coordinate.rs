@@ -8,8 +8,9 @@ use crate::diagnostic::{Code, Diagnostic};
 use crate::model::Formula;
 use crate::symbolic::{Bound, Interval, Symbol};
 
-/// Points of the domain at which a coordinate is tried.
-const POINTS: i32 = 41;
+/// Distances from zero or from an end at which a coordinate is tried: small enough that no common
+/// function overflows.
+const DISTANCES: [f64; 7] = [0.01, 0.1, 0.25, 0.5, 1.0, 2.0, 3.0];
 
 impl Resolver<'_> {
     /// The coordinate, if it can be one: it uses its state, has a value on the domain and does not
@@ -65,7 +66,7 @@ impl Resolver<'_> {
         let (mut rises, mut falls) = (None, None);
         for point in self.points(domain) {
             values.insert(symbol, point);
-            if self.pool.eval_f64(formula.expr, &values).is_none() && point.abs() < 100.0 {
+            if self.pool.eval_f64(formula.expr, &values).is_none() {
                 let message = format!("the coordinate has no value at {name} = {}", short(point));
                 let hint = "narrow the domain, to \"(0, inf)\" for a logarithm".to_owned();
                 return Some(Some((message, hint)));
@@ -88,16 +89,15 @@ impl Resolver<'_> {
         Some(Some((message, hint)))
     }
 
-    /// Points spread over the domain, closed ends among them.
+    /// Points in the domain, closed ends among them.
     fn points(&self, domain: &Interval) -> Vec<f64> {
         let end = |bound: Bound| bound.value().and_then(|e| Some(self.numbers.value(e)?.0));
-        let (low, high) = (end(domain.lower), end(domain.upper));
-        let steps = (0..POINTS).map(|i| f64::from(2 * i + 1 - POINTS) / f64::from(POINTS));
-        let mut points: Vec<f64> = match (low, high) {
-            (Some(a), Some(b)) => steps.map(|s| a + (b - a) * (1.0 + s) / 2.0).collect(),
-            (Some(a), None) => steps.map(|s| a + (6.0 * s).exp()).collect(),
-            (None, Some(b)) => steps.map(|s| b - (6.0 * s).exp()).collect(),
-            (None, None) => steps.map(|s| (4.0 * s).sinh()).collect(),
+        let distances = DISTANCES.into_iter();
+        let mut points: Vec<f64> = match (end(domain.lower), end(domain.upper)) {
+            (Some(a), Some(b)) => (1..20).map(|i| a + (b - a) * f64::from(i) / 20.0).collect(),
+            (Some(a), None) => distances.map(|d| a + d).collect(),
+            (None, Some(b)) => distances.map(|d| b - d).collect(),
+            (None, None) => distances.rev().flat_map(|d| [d, -d]).collect(),
         };
         let closed = [domain.lower, domain.upper].into_iter();
         points.extend(

@@ -2,7 +2,7 @@
 
 use super::super::formula::{IntervalAst, IntervalEnd};
 use super::Resolver;
-use super::numbers::Basis;
+use super::numbers::{Basis, short};
 use super::place::Place;
 use crate::diagnostic::{Code, Diagnostic};
 use crate::symbolic::{Bound, Interval};
@@ -48,17 +48,19 @@ impl Resolver<'_> {
         if low < high && lower != upper {
             return true;
         }
-        let literal = first == Basis::Literal && second == Basis::Literal;
-        let message = if literal || lower == upper {
-            format!("the lower end {low} does not lie below the upper end {high}")
-        } else {
-            format!("at the default values the lower end is {low}, the upper end {high}")
-        };
-        self.diagnostics.push(
+        let literal = first == Basis::Literal && second == Basis::Literal || lower == upper;
+        let (low, high) = (short(low), short(high));
+        let diagnostic = if literal {
+            let message = format!("the lower end {low} does not lie below the upper end {high}");
             Diagnostic::error(Code::BadInterval, ast.span, message)
-                .hint("the lower end comes first and must be the smaller one"),
-        );
-        false
+        } else {
+            let message =
+                format!("at the default values the lower end is {low}, the upper end {high}");
+            Diagnostic::warning(Code::BadInterval, ast.span, message)
+        };
+        self.diagnostics
+            .push(diagnostic.hint("the lower end comes first and must be the smaller one"));
+        !literal
     }
 }
 
