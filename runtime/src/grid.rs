@@ -146,6 +146,32 @@ impl Grid {
         self.observations.iter().map(|o| o.time).collect()
     }
 
+    /// The same grid with every step cut into two halves: halves `2 k` and `2 k + 1` make up step `k`.
+    ///
+    /// ```
+    /// use driftwright_runtime::Grid;
+    /// let halved = Grid::new(&[1.0], Some(2)).unwrap().halved();
+    /// assert_eq!(halved.steps().len(), 4);
+    /// assert_eq!(halved.steps()[3].start, 0.75);
+    /// assert_eq!(halved.observations()[0].steps_before, 4);
+    /// ```
+    #[must_use]
+    pub fn halved(&self) -> Grid {
+        let halves = |step: &Step| {
+            let length = 0.5 * step.length;
+            let start = step.start + length;
+            [Step { length, ..*step }, Step { start, length }]
+        };
+        let later = |o: &Observation| Observation {
+            steps_before: 2 * o.steps_before,
+            ..*o
+        };
+        Grid {
+            steps: self.steps.iter().flat_map(halves).collect(),
+            observations: self.observations.iter().map(later).collect(),
+        }
+    }
+
     /// The last observation time.
     #[must_use]
     pub fn horizon(&self) -> f64 {
