@@ -1,1 +1,46 @@
-//! What a reviewer reads: the dossier, written as text, Markdown or JSON.
+//! What the compiler found, for those who read it: one neutral [`Document`], and writers for it.
+//!
+//! [`dossier`] builds the derivation a reviewer signs, [`on_the_spot`] Ito's rule for one formula;
+//! [`text`] and [`markdown`] write a document, [`json`] the same facts for programs. Everything shown
+//! was logged by the pass that did the work; nothing is derived again here.
+
+pub mod document;
+mod claims;
+mod dossier;
+mod dynamics;
+pub mod json;
+pub mod markdown;
+mod methods;
+pub mod number;
+mod spell;
+mod statement;
+pub mod text;
+mod trace;
+mod wrap;
+
+pub use claims::{claim_table, statement as claim_statement, verdict_mark};
+pub use document::Document;
+pub use dossier::{dossier, on_the_spot};
+pub use dynamics::{derived_summary, state_equations};
+pub use methods::{method_line, method_table};
+
+use crate::calculus::Dynamics;
+use crate::analysis::claims::ClaimResult;
+use crate::diagnostic::Diagnostic;
+use crate::model::Model;
+use crate::scheme::Plan;
+
+/// Everything about one model that a report shows.
+#[derive(Clone, Copy)]
+pub struct Derivation<'a> {
+    /// What the author declared.
+    pub model: &'a Model,
+    /// Ito dynamics of states and derived quantities.
+    pub dynamics: &'a Dynamics,
+    /// How each state is stepped.
+    pub plan: &'a Plan,
+    /// The claims' verdicts, in file order.
+    pub claims: &'a [ClaimResult],
+    /// What was found on the way.
+    pub diagnostics: &'a [Diagnostic],
+}

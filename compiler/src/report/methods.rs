@@ -1,0 +1,118 @@
+//! How the states are stepped, and why.
+
+use super::document::{Align, Equation, Inline, Mark, Table, Term, code, words};
+use super::{Derivation, Document, trace};
+use crate::model::Model;
+use crate::scheme::{Coordinate, Group, Plan};
+
+fn states(model: &Model, group: &Group) -> String {
+    let names: Vec<&str> = group.states.iter().map(|&s| model.states[s].name.as_str()).collect();
+    names.join(", ")
+}
+
+/// The coordinates of a group that are not the states themselves.
+fn changed<'a>(plan: &'a Plan, group: &'a Group) -> impl Iterator<Item = &'a Coordinate> {
+    group.states.iter().map(|&s| &plan.coordinates[s]).filter(|c| !c.identity)
+}
+
+/// A name such as `ornstein_uhlenbeck` as words.
+fn spoken(name: &str) -> String {
+    match name {
+        "arithmetic_brownian_motion" => "Brownian motion with drift".to_owned(),
+        "ornstein_uhlenbeck" => "an Ornstein-Uhlenbeck process".to_owned(),
+        "linear_gaussian_system" => "a linear Gaussian system".to_owned(),
+        "square_root" => "a square-root process".to_owned(),
+        "euler_maruyama" => "Euler-Maruyama".to_owned(),
+        "milstein" => "Milstein".to_owned(),
+        other => other.replace('_', " "),
+    }
+}
+
+fn orders(group: &Group) -> String {
+    let order = |o: &Option<crate::scheme::Order>| o.map_or("not known".to_owned(), |o| o.to_string());
+    format!("strong order {}, weak order {}", order(&group.strong_order), order(&group.weak_order))
+}
+
+/// One line about a group: what it is stepped by and why that is right.
+pub fn method_line(model: &Model, plan: &Plan, group: &Group) -> String {
+    let mut line = if group.is_exact() {
+        let law = group.law.map_or("known".to_owned(), |l| spoken(l.name()));
+        format!("exact: {law} law")
+    } else {
+        format!("approximate: {}, {}", spoken(group.scheme.name()), orders(group))
+    };
+    let through: Vec<String> =
+        changed(plan, group).map(|c| model.pool.format(c.forward)).collect();
+    if !through.is_empty() {
+        line.push_str(&format!("; through {}", through.join(", ")));
+    }
+    if let Some(becomes) = group.becomes {
+        let verb = if through.is_empty() { "is" } else { "becomes" };
+        line.push_str(&format!(", which {verb} {}", spoken(becomes.name())));
+    }
+    line
+}
+
+/// One row a group.
+pub fn method_table(model: &Model, plan: &Plan) -> Table {
+    let mut table = Table::new([("states", Align::Left), ("method", Align::Left)]);
+    for group in &plan.groups {
+        table.row([code(states(model, group)), words(method_line(model, plan, group))]);
+    }
+    table
+}
+
+/// The section on methods.
+pub(super) fn methods(document: &mut Document, derivation: &Derivation<'_>) {
+    let (model, plan) = (derivation.model, derivation.plan);
+    document.section("Methods");
+    for group in &plan.groups {
+        let mut head = vec![Inline::Code(states(model, group)), Inline::Words(": ".into())];
+        head.push(Inline::Words(method_line(model, plan, group)));
+        document.part(head);
+        document.equations(maps(plan, model, group));
+        document.list(reasons(group));
+        document.equations(trace::equations(&group.trace));
+    }
+    let sources: Vec<&str> = plan.noise.components.iter().map(|c| c.source.as_str()).collect();
+    if !sources.is_empty() {
+        document.paragraph(words(format!(
+            "Each step draws one standard normal number from each of: {}.",
+            sources.join(", ")
+        )));
+    }
+}
+
+fn maps(plan: &Plan, model: &Model, group: &Group) -> Vec<Equation> {
+    let mut lines = Vec::new();
+    for coordinate in changed(plan, group) {
+        let u = model.pool.symbol_name(coordinate.symbol).to_string();
+        let state = model.states[coordinate.state].name.clone();
+        let forward = vec![Term::Formula(coordinate.forward)];
+        let inverse = vec![Term::Formula(coordinate.inverse)];
+        lines.push(Equation::new(vec![Term::Name(u.clone())], forward).remark("simulated coordinate"));
+        lines.push(Equation::new(vec![Term::Name(state)], inverse).remark("and back"));
+        let process = &coordinate.process;
+        lines.push(
+            super::dynamics::equation(model, &u, process.drift, &process.diffusion)
+                .remark("its dynamics, by Ito's rule"),
+        );
+    }
+    lines
+}
+
+fn reasons(group: &Group) -> Vec<super::document::Text> {
+    let mut items: Vec<_> = group.reasons.iter().map(|r| words(r.clone())).collect();
+    items.push(words(if group.preserves_domain {
+        "Every step stays in the domain."
+    } else {
+        "A step can leave the domain; paths that do are counted and reported."
+    }));
+    for (scheme, why) in &group.rejected {
+        items.push(vec![
+            Inline::Marked(Mark::Strong, format!("Not {}", spoken(scheme.name()))),
+            Inline::Words(format!(": {why}")),
+        ]);
+    }
+    items
+}
