@@ -1,1 +1,7 @@
-fn main() {}
+//! The `driftwright` binary; everything it does stands in [`driftwright::cli`].
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    driftwright::cli::main()
+}

@@ -1,0 +1,88 @@
+//! `driftwright check`
+
+use std::io;
+
+use super::args::{CheckArgs, Format};
+use super::load::{Loaded, load};
+use super::{Failure, Outcome, Status, output};
+use crate::diagnostic::{self, Code, Severity, explain, human};
+use crate::analysis::claims::Verdict;
+
+/// Checks the files, or explains a code.
+pub(super) fn run(args: &CheckArgs) -> Outcome {
+    if let Some(code) = &args.explain {
+        return explanation(code);
+    }
+    let files: Vec<Loaded> = args.files.iter().map(|path| load(path)).collect();
+    match args.format {
+        Format::Human => {
+            let colour = output::colour_on(&io::stdout());
+            let mut text = String::new();
+            for file in &files {
+                text.push_str(&human(&file.source, &file.diagnostics, colour));
+                text.push_str(&summary(file));
+            }
+            output::print(&text)?;
+        }
+        Format::Json => {
+            let found = files.iter().map(|f| (&f.source, f.diagnostics.as_slice()));
+            output::print(&format!("{:#}\n", diagnostic::json(found)))?;
+        }
+    }
+    Ok(files.iter().map(|file| status(file, args.deny_warnings)).max().unwrap_or(Status::Well))
+}
+
+fn status(file: &Loaded, deny_warnings: bool) -> Status {
+    if deny_warnings && !file.diagnostics.is_empty() { Status::Wrong.max(file.status()) } else { file.status() }
+}
+
+/// One line a file: is it fine, which claims hold, how it will be stepped.
+fn summary(file: &Loaded) -> String {
+    let count = |severity| file.diagnostics.iter().filter(|d| d.severity == severity).count();
+    let (errors, warnings) = (count(Severity::Error), count(Severity::Warning));
+    let mut parts = Vec::new();
+    if errors > 0 {
+        parts.push(plural(errors, "error"));
+    }
+    if warnings > 0 {
+        parts.push(plural(warnings, "warning"));
+    }
+    if parts.is_empty() {
+        parts.push("fine".to_owned());
+    }
+    if let Some(compiled) = file.compiled() {
+        let claims = |verdict| compiled.claims.iter().filter(|c| c.verdict == verdict).count();
+        for verdict in [Verdict::Proved, Verdict::Refuted, Verdict::Open] {
+            if claims(verdict) > 0 {
+                parts.push(format!("{} {}", plural(claims(verdict), "claim"), verdict.name()));
+            }
+        }
+        for group in &compiled.plan.groups {
+            let names: Vec<&str> =
+                group.states.iter().map(|&s| compiled.model.states[s].name.as_str()).collect();
+            parts.push(format!("{} by {}", names.join(", "), group.scheme.name()));
+        }
+    }
+    format!("{}: {}\n", file.source.path(), parts.join("; "))
+}
+
+fn plural(count: usize, noun: &str) -> String {
+    if count == 1 { format!("1 {noun}") } else { format!("{count} {noun}s") }
+}
+
+fn explanation(code: &str) -> Outcome {
+    match explain(code) {
+        Some(page) => {
+            output::print(&page)?;
+            Ok(Status::Well)
+        }
+        None => {
+            let first = Code::ALL.first().map_or("", |c| c.id());
+            let last = Code::ALL.last().map_or("", |c| c.id());
+            Err(Failure(format!(
+                "there is no code `{code}`: codes run from {first} to {last} and stand in brackets at the \
+                 head of each diagnostic"
+            )))
+        }
+    }
+}

@@ -1,0 +1,154 @@
+//! Where output goes: standard output that may be closed early, and files that appear whole or not at
+//! all.
+
+use std::ffi::OsString;
+use std::fs::{self, File};
+use std::io::{self, BufWriter, ErrorKind, IsTerminal, Write};
+use std::path::{Path, PathBuf};
+
+use super::Failure;
+
+/// Prints to standard output. A reader that has gone away is no failure: what it wanted, it has.
+pub(super) fn print(text: &str) -> Result<(), Failure> {
+    let mut out = io::stdout().lock();
+    match out.write_all(text.as_bytes()).and_then(|()| out.flush()) {
+        Err(error) if error.kind() != ErrorKind::BrokenPipe => {
+            Err(Failure(format!("cannot write to standard output: {error}")))
+        }
+        _ => Ok(()),
+    }
+}
+
+/// Prints to standard error, as far as that goes.
+pub(super) fn note(text: &str) {
+    let _ = io::stderr().lock().write_all(text.as_bytes());
+}
+
+/// Says on standard error why a command failed.
+pub(super) fn complain(reason: &str) {
+    let head = if colour_on(&io::stderr()) { "\u{1b}[1;31merror\u{1b}[0m" } else { "error" };
+    note(&format!("{head}: {reason}\n"));
+}
+
+/// Whether a stream should carry colours: it is a terminal, and nobody asked for none.
+pub(super) fn colour_on(stream: &impl IsTerminal) -> bool {
+    let refused = std::env::var_os("NO_COLOR").is_some_and(|v| !v.is_empty());
+    let dumb = std::env::var_os("TERM").is_some_and(|v| v == "dumb");
+    stream.is_terminal() && !refused && !dumb
+}
+
+/// Writes text to a file, whole or not at all, or to standard output.
+pub(super) fn deliver(path: Option<&Path>, text: &str) -> Result<(), Failure> {
+    let Some(path) = path else { return print(text) };
+    let mut file = OutputFile::create(path)?;
+    file.write_all(text.as_bytes()).map_err(|e| file.failure(&e))?;
+    file.commit()
+}
+
+/// A file in the making: written beside its target under another name, and given its name when it is
+/// complete. Dropped before that, it leaves nothing behind.
+pub(super) struct OutputFile {
+    target: PathBuf,
+    partial: Option<PathBuf>,
+    writer: Option<BufWriter<File>>,
+}
+
+impl OutputFile {
+    /// Opens a file to become `path`. A device or a pipe is written directly: it cannot be replaced.
+    pub(super) fn create(path: &Path) -> Result<Self, Failure> {
+        let fail = |e: &io::Error| Failure(format!("cannot write {}: {e}", path.display()));
+        // Through a symbolic link the file behind it is replaced, not the link.
+        let target = fs::canonicalize(path).unwrap_or_else(|_| path.to_owned());
+        let kind = fs::metadata(&target);
+        if kind.as_ref().is_ok_and(fs::Metadata::is_dir) {
+            return Err(Failure(format!("cannot write {}: it is a directory", path.display())));
+        }
+        if kind.is_ok_and(|m| !m.is_file()) {
+            let file = File::options().write(true).open(&target).map_err(|e| fail(&e))?;
+            return Ok(Self { target, partial: None, writer: Some(BufWriter::new(file)) });
+        }
+        let mut name = OsString::from(".");
+        name.push(target.file_name().unwrap_or_default());
+        name.push(format!(".{}.partial", std::process::id()));
+        let partial = target.with_file_name(name);
+        let file = File::create(&partial).map_err(|e| fail(&e))?;
+        let writer = Some(BufWriter::with_capacity(1 << 18, file));
+        Ok(Self { target, partial: Some(partial), writer })
+    }
+
+    /// The failure that an error of writing is.
+    pub(super) fn failure(&self, error: &io::Error) -> Failure {
+        Failure(format!("cannot write {}: {error}", self.target.display()))
+    }
+
+    /// Gives the file its name.
+    pub(super) fn commit(mut self) -> Result<(), Failure> {
+        if let Some(mut writer) = self.writer.take() {
+            writer.flush().map_err(|e| self.failure(&e))?;
+        }
+        if let Some(partial) = self.partial.take() {
+            fs::rename(&partial, &self.target).map_err(|e| {
+                let _ = fs::remove_file(&partial);
+                self.failure(&e)
+            })?;
+        }
+        Ok(())
+    }
+}
+
+impl Write for OutputFile {
+    fn write(&mut self, bytes: &[u8]) -> io::Result<usize> {
+        match &mut self.writer {
+            Some(writer) => writer.write(bytes),
+            None => Err(io::Error::other("the file is closed")),
+        }
+    }
+
+    fn flush(&mut self) -> io::Result<()> {
+        self.writer.as_mut().map_or(Ok(()), Write::flush)
+    }
+}
+
+impl Drop for OutputFile {
+    fn drop(&mut self) {
+        self.writer = None;
+        if let Some(partial) = self.partial.take() {
+            let _ = fs::remove_file(partial);
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_dropped_file_leaves_nothing_and_keeps_the_old_one() {
+        let folder = tempfile::tempdir().unwrap();
+        let path = folder.path().join("x.csv");
+        fs::write(&path, "old").unwrap();
+        let mut file = OutputFile::create(&path).unwrap();
+        file.write_all(b"half").unwrap();
+        drop(file);
+        assert_eq!(fs::read_to_string(&path).unwrap(), "old");
+        assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 1);
+    }
+
+    #[test]
+    fn a_committed_file_replaces_the_old_one() {
+        let folder = tempfile::tempdir().unwrap();
+        let path = folder.path().join("x.csv");
+        fs::write(&path, "old").unwrap();
+        deliver(Some(&path), "new").unwrap();
+        assert_eq!(fs::read_to_string(&path).unwrap(), "new");
+        assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 1);
+    }
+
+    #[test]
+    fn a_folder_that_does_not_exist_is_named() {
+        let Err(Failure(reason)) = deliver(Some(Path::new("no/such/folder/x.csv")), "x") else {
+            panic!("wrote into a folder that does not exist");
+        };
+        assert!(reason.contains("no/such/folder/x.csv"), "{reason}");
+    }
+}

@@ -1,0 +1,87 @@
+//! `driftwright verify`: the model simulated, and the sample held against analytic values.
+
+mod expect;
+mod judge;
+mod measure;
+mod show;
+mod targets;
+
+use std::io;
+use std::path::Path;
+
+use serde_json::Value;
+
+use self::judge::Check;
+use self::targets::Targets;
+use super::args::{Format, VerifyArgs};
+use super::load::{Loaded, load_and_show};
+use super::run::Settings;
+use super::{Failure, Outcome, Status, output};
+use crate::pipeline::Compiled;
+use crate::report::text::{self, Style};
+
+/// What verifying one model gave.
+struct Verification {
+    settings: Settings,
+    checks: Vec<Check>,
+    /// Statistics that could not be put to the test, and why.
+    skipped: Vec<String>,
+    threshold: f64,
+    passed: bool,
+    run: measure::Measured,
+}
+
+/// Verifies the files, one after the other.
+pub(super) fn run(args: &VerifyArgs) -> Outcome {
+    let mut status = Status::Well;
+    let mut documents: Vec<Value> = Vec::new();
+    for path in &args.files {
+        let (one, document) = verify_file(args, path)?;
+        status = status.max(one);
+        documents.extend(document);
+    }
+    if args.run.format == Format::Json {
+        // One file gives its object; several, an array of them.
+        let text = match documents.as_slice() {
+            [] => return Ok(status),
+            [one] if args.files.len() == 1 => format!("{one:#}\n"),
+            _ => format!("{:#}\n", Value::from(documents)),
+        };
+        output::print(&text)?;
+    }
+    Ok(status)
+}
+
+fn verify_file(args: &VerifyArgs, path: &Path) -> Result<(Status, Option<Value>), Failure> {
+    let Some(loaded) = load_and_show(path) else { return Ok((Status::Wrong, None)) };
+    let Some(compiled) = loaded.compiled() else { return Ok((Status::Wrong, None)) };
+    let verification = verify(args, &loaded, compiled)?;
+    let document = match args.run.format {
+        Format::Json => Some(show::json(&verification, compiled)),
+        Format::Human => {
+            let style = Style { colour: output::colour_on(&io::stdout()), ..Style::default() };
+            let document = show::document(&verification, compiled);
+            output::print(&format!("{}\n", text::write(&document, style)))?;
+            None
+        }
+    };
+    let held = if verification.passed { Status::Well } else { Status::NotHeld };
+    Ok((held.max(loaded.status()), document))
+}
+
+fn verify(args: &VerifyArgs, loaded: &Loaded, compiled: &Compiled) -> Result<Verification, Failure> {
+    let model = &compiled.model;
+    let settings = Settings::new(&args.run, model, &compiled.plan)?;
+    let parameters = model
+        .parameters
+        .iter()
+        .filter_map(|p| settings.parameters.get(&p.name).map(|v| (p.symbol, *v)))
+        .collect();
+    let analyst = expect::Analyst { model, moments: &compiled.moments, parameters };
+    let targets = Targets::new(&analyst, &compiled.claims);
+    let run = measure::measure(compiled, &targets, &settings)?;
+    let (checks, skipped) = measure::checks(&analyst, compiled, &targets, &settings, &run);
+    let threshold = judge::threshold(checks.len());
+    let passed = checks.iter().all(|c| c.passed(threshold)) && loaded.status() == Status::Well;
+    Ok(Verification { settings, checks, skipped, threshold, passed, run })
+}
