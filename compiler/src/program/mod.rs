@@ -170,16 +170,11 @@ impl Program {
         for id in self.checks.iter().flat_map(Check::operands) {
             needed[id.index()] = true;
         }
-        for id in self
-            .ids()
-            .collect::<Vec<_>>()
-            .into_iter()
-            .rev()
-            .filter(|id| needed[id.index()])
-            .collect::<Vec<_>>()
-        {
-            for operand in self.value(id).op.operands() {
-                needed[operand.index()] = true;
+        for index in (0..self.values.len()).rev().filter(|&index| self.values[index].rate == Rate::Setup) {
+            if needed[index] {
+                for operand in self.values[index].op.operands() {
+                    needed[operand.index()] = true;
+                }
             }
         }
         self.section(Rate::Setup)

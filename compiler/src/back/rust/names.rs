@@ -122,7 +122,6 @@ fn value_hint(program: &Program, id: ValueId) -> String {
         (Op::Start, _) => "start_of_step".to_owned(),
         (Op::Length, _) => "length_of_step".to_owned(),
         (Op::Time, _) => "time_of_observation".to_owned(),
-        (Op::Parameter(_), Some(hint)) => format!("given_{}", snake(hint)),
         (_, Some(hint)) => snake(hint),
         (_, None) => format!("v{}", id.index()),
     }
