@@ -170,7 +170,10 @@ impl Program {
         for id in self.checks.iter().flat_map(Check::operands) {
             needed[id.index()] = true;
         }
-        for index in (0..self.values.len()).rev().filter(|&index| self.values[index].rate == Rate::Setup) {
+        for index in (0..self.values.len())
+            .rev()
+            .filter(|&index| self.values[index].rate == Rate::Setup)
+        {
             if needed[index] {
                 for operand in self.values[index].op.operands() {
                     needed[operand.index()] = true;

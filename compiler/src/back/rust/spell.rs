@@ -30,13 +30,16 @@ pub(super) fn number(value: f64) -> TokenStream {
     if value.is_nan() {
         return quote! { f64::NAN };
     }
-    let size = if value.is_infinite() {
-        quote! { f64::INFINITY }
-    } else {
-        let text = format!("{:?}", value.abs());
-        let literal: Literal = text.parse().expect("a finite double prints as a literal");
-        quote! { #literal }
-    };
+    if value.is_infinite() {
+        let positive = value > 0.0;
+        return if positive {
+            quote! { f64::INFINITY }
+        } else {
+            quote! { f64::NEG_INFINITY }
+        };
+    }
+    let text = format!("{:?}", value.abs());
+    let size: Literal = text.parse().expect("a finite double prints as a literal");
     if value.is_sign_negative() {
         quote! { -#size }
     } else {
