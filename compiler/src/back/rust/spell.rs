@@ -43,7 +43,7 @@ pub(super) fn number(value: f64) -> TokenStream {
     if value.is_sign_negative() {
         quote! { -#size }
     } else {
-        size
+        quote! { #size }
     }
 }
 
