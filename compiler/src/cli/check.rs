@@ -5,8 +5,8 @@ use std::io;
 use super::args::{CheckArgs, Format};
 use super::load::{Loaded, load};
 use super::{Failure, Outcome, Status, output};
-use crate::diagnostic::{self, Code, Severity, explain, human};
 use crate::analysis::claims::Verdict;
+use crate::diagnostic::{self, Code, Severity, explain, human};
 
 /// Checks the files, or explains a code.
 pub(super) fn run(args: &CheckArgs) -> Outcome {
@@ -29,16 +29,29 @@ pub(super) fn run(args: &CheckArgs) -> Outcome {
             output::print(&format!("{:#}\n", diagnostic::json(found)))?;
         }
     }
-    Ok(files.iter().map(|file| status(file, args.deny_warnings)).max().unwrap_or(Status::Well))
+    Ok(files
+        .iter()
+        .map(|file| status(file, args.deny_warnings))
+        .max()
+        .unwrap_or(Status::Well))
 }
 
 fn status(file: &Loaded, deny_warnings: bool) -> Status {
-    if deny_warnings && !file.diagnostics.is_empty() { Status::Wrong.max(file.status()) } else { file.status() }
+    if deny_warnings && !file.diagnostics.is_empty() {
+        Status::Wrong.max(file.status())
+    } else {
+        file.status()
+    }
 }
 
 /// One line a file: is it fine, which claims hold, how it will be stepped.
 fn summary(file: &Loaded) -> String {
-    let count = |severity| file.diagnostics.iter().filter(|d| d.severity == severity).count();
+    let count = |severity| {
+        file.diagnostics
+            .iter()
+            .filter(|d| d.severity == severity)
+            .count()
+    };
     let (errors, warnings) = (count(Severity::Error), count(Severity::Warning));
     let mut parts = Vec::new();
     if errors > 0 {
@@ -51,15 +64,28 @@ fn summary(file: &Loaded) -> String {
         parts.push("fine".to_owned());
     }
     if let Some(compiled) = file.compiled() {
-        let claims = |verdict| compiled.claims.iter().filter(|c| c.verdict == verdict).count();
+        let claims = |verdict| {
+            compiled
+                .claims
+                .iter()
+                .filter(|c| c.verdict == verdict)
+                .count()
+        };
         for verdict in [Verdict::Proved, Verdict::Refuted, Verdict::Open] {
             if claims(verdict) > 0 {
-                parts.push(format!("{} {}", plural(claims(verdict), "claim"), verdict.name()));
+                parts.push(format!(
+                    "{} {}",
+                    plural(claims(verdict), "claim"),
+                    verdict.name()
+                ));
             }
         }
         for group in &compiled.plan.groups {
-            let names: Vec<&str> =
-                group.states.iter().map(|&s| compiled.model.states[s].name.as_str()).collect();
+            let names: Vec<&str> = group
+                .states
+                .iter()
+                .map(|&s| compiled.model.states[s].name.as_str())
+                .collect();
             parts.push(format!("{} by {}", names.join(", "), group.scheme.name()));
         }
     }
@@ -67,7 +93,11 @@ fn summary(file: &Loaded) -> String {
 }
 
 fn plural(count: usize, noun: &str) -> String {
-    if count == 1 { format!("1 {noun}") } else { format!("{count} {noun}s") }
+    if count == 1 {
+        format!("1 {noun}")
+    } else {
+        format!("{count} {noun}s")
+    }
 }
 
 fn explanation(code: &str) -> Outcome {

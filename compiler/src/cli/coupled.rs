@@ -33,7 +33,11 @@ struct Halves {
 impl<'a, S: Simulator> Coupled<'a, S> {
     /// The simulator as it is.
     pub(super) fn single(inner: &'a S) -> Self {
-        Self { inner, halves: None, outputs: inner.shape().outputs.to_vec() }
+        Self {
+            inner,
+            halves: None,
+            outputs: inner.shape().outputs.to_vec(),
+        }
     }
 
     /// Couples the steps of a grid with their halves. The pair runs on `grid.halved()`.
@@ -43,7 +47,11 @@ impl<'a, S: Simulator> Coupled<'a, S> {
             starts: grid.halved().steps().iter().map(|s| s.start).collect(),
             long: grid.steps().iter().map(|s| (s.start, s.length)).collect(),
         };
-        Self { inner, halves: Some(halves), outputs: names.iter().chain(names).cloned().collect() }
+        Self {
+            inner,
+            halves: Some(halves),
+            outputs: names.iter().chain(names).cloned().collect(),
+        }
     }
 
     fn copies(&self) -> usize {
@@ -68,7 +76,10 @@ impl<S: Simulator> Simulator for Coupled<'_, S> {
 
     fn start(&self, states: &mut [f64]) {
         states.fill(0.0);
-        for copy in states.chunks_exact_mut(self.inner.shape().states).take(self.copies()) {
+        for copy in states
+            .chunks_exact_mut(self.inner.shape().states)
+            .take(self.copies())
+        {
             self.inner.start(copy);
         }
     }
@@ -81,8 +92,10 @@ impl<S: Simulator> Simulator for Coupled<'_, S> {
         let (long_start, long_length) = long[(half / 2).min(long.len() - 1)];
         let count = self.inner.shape().step_values;
         values[2 * count] = (half % 2) as f64;
-        self.inner.step_values(long_start, long_length, &mut values[..count])?;
-        self.inner.step_values(start, length, &mut values[count..2 * count])
+        self.inner
+            .step_values(long_start, long_length, &mut values[..count])?;
+        self.inner
+            .step_values(start, length, &mut values[count..2 * count])
     }
 
     fn observation_values(&self, time: f64, values: &mut [f64]) -> Result<(), StepError> {
@@ -102,12 +115,20 @@ impl<S: Simulator> Simulator for Coupled<'_, S> {
         let second = held.is_empty() || values[2 * shape.step_values] != 0.0;
         for (sum, lane) in held.iter_mut().zip(noise) {
             for (a, b) in sum.0.iter_mut().zip(&lane.0) {
-                *a = if second { (*a + *b) * std::f64::consts::FRAC_1_SQRT_2 } else { *b };
+                *a = if second {
+                    (*a + *b) * std::f64::consts::FRAC_1_SQRT_2
+                } else {
+                    *b
+                };
             }
         }
         let first = if second { 0 } else { 1 };
         for copy in first..self.copies() {
-            let noise = if copy == 0 && !held.is_empty() { &*held } else { noise };
+            let noise = if copy == 0 && !held.is_empty() {
+                &*held
+            } else {
+                noise
+            };
             let values = &values[copy * shape.step_values..][..shape.step_values];
             let states = &mut copies[copy * shape.states..][..shape.states];
             self.inner.step::<A>(values, states, noise, scratch);

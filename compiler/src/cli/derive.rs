@@ -15,8 +15,12 @@ use crate::source::SourceFile;
 
 /// Writes the derivation of a model, or of one formula.
 pub(super) fn run(args: &DeriveArgs) -> Outcome {
-    let Some(loaded) = load_and_show(&args.file) else { return Ok(Status::Wrong) };
-    let Some(compiled) = loaded.compiled() else { return Ok(Status::Wrong) };
+    let Some(loaded) = load_and_show(&args.file) else {
+        return Ok(Status::Wrong);
+    };
+    let Some(compiled) = loaded.compiled() else {
+        return Ok(Status::Wrong);
+    };
     let text = match &args.of {
         Some(formula) => match on_the_spot(args, &loaded, compiled, formula) {
             Some(text) => text,
@@ -39,7 +43,13 @@ fn write(document: &Document, format: DeriveFormat, to_file: bool) -> String {
         DeriveFormat::Markdown => report::markdown::write(document),
         _ => {
             let colour = !to_file && output::colour_on(&io::stdout());
-            report::text::write(document, Style { colour, ..Style::default() })
+            report::text::write(
+                document,
+                Style {
+                    colour,
+                    ..Style::default()
+                },
+            )
         }
     }
 }
@@ -61,6 +71,10 @@ fn on_the_spot(
     let derivation = loaded.derivation(compiled);
     Some(match args.format {
         DeriveFormat::Json => format!("{:#}\n", report::json::on_the_spot(&derivation, &expansion)),
-        format => write(&report::on_the_spot(&derivation, &expansion), format, args.output.is_some()),
+        format => write(
+            &report::on_the_spot(&derivation, &expansion),
+            format,
+            args.output.is_some(),
+        ),
     })
 }

@@ -36,8 +36,11 @@ const TOP: f64 = 30.0;
 const BOTTOM: f64 = 44.0;
 
 /// Pairs of quantiles that bound a band, widest first, with the class that colours it.
-const BANDS: [(usize, usize, &str, &str); 3] =
-    [(0, 6, "b1", "1 to 99 %"), (1, 5, "b2", "5 to 95 %"), (2, 4, "b3", "25 to 75 %")];
+const BANDS: [(usize, usize, &str, &str); 3] = [
+    (0, 6, "b1", "1 to 99 %"),
+    (1, 5, "b2", "5 to 95 %"),
+    (2, 4, "b3", "25 to 75 %"),
+];
 
 const STYLE: &str = "\
 svg{background:#fff;color:#1d2733;font:13px system-ui,sans-serif}
@@ -107,11 +110,34 @@ impl Scale {
 }
 
 fn panel(svg: &mut String, caption: &Caption, times: &[f64], fan: &Fan) {
-    let values = || fan.quantiles.iter().flatten().chain(&fan.mean).copied().filter(|v| v.is_finite());
-    let (low, high) = spread(values().fold(f64::INFINITY, f64::min), values().fold(f64::NEG_INFINITY, f64::max));
-    let (start, end) = spread(times.first().copied().unwrap_or(0.0), times.last().copied().unwrap_or(1.0));
-    let x = Scale { low: start, high: end, from: LEFT, to: WIDTH - RIGHT };
-    let y = Scale { low, high, from: PANEL - BOTTOM, to: TOP };
+    let values = || {
+        fan.quantiles
+            .iter()
+            .flatten()
+            .chain(&fan.mean)
+            .copied()
+            .filter(|v| v.is_finite())
+    };
+    let (low, high) = spread(
+        values().fold(f64::INFINITY, f64::min),
+        values().fold(f64::NEG_INFINITY, f64::max),
+    );
+    let (start, end) = spread(
+        times.first().copied().unwrap_or(0.0),
+        times.last().copied().unwrap_or(1.0),
+    );
+    let x = Scale {
+        low: start,
+        high: end,
+        from: LEFT,
+        to: WIDTH - RIGHT,
+    };
+    let y = Scale {
+        low,
+        high,
+        from: PANEL - BOTTOM,
+        to: TOP,
+    };
     axes(svg, caption, fan, &x, &y);
     for (lower, upper, class, _) in BANDS {
         let forth = points(times, &fan.quantiles[lower], &x, &y);
@@ -119,7 +145,11 @@ fn panel(svg: &mut String, caption: &Caption, times: &[f64], fan: &Fan) {
         back.reverse();
         if !forth.is_empty() {
             let outline: Vec<String> = forth.into_iter().chain(back).collect();
-            let _ = writeln!(svg, "<polygon class=\"{class}\" points=\"{}\"/>", outline.join(" "));
+            let _ = writeln!(
+                svg,
+                "<polygon class=\"{class}\" points=\"{}\"/>",
+                outline.join(" ")
+            );
         }
     }
     for (class, series) in [("median", &fan.quantiles[3]), ("mean", &fan.mean)] {
@@ -138,7 +168,11 @@ fn points(times: &[f64], values: &[f64], x: &Scale, y: &Scale) -> Vec<String> {
 }
 
 fn axes(svg: &mut String, caption: &Caption, fan: &Fan, x: &Scale, y: &Scale) {
-    let unit = fan.unit.as_ref().map(|u| format!(" ({u})")).unwrap_or_default();
+    let unit = fan
+        .unit
+        .as_ref()
+        .map(|u| format!(" ({u})"))
+        .unwrap_or_default();
     let _ = writeln!(
         svg,
         "<text class=\"name\" x=\"{LEFT}\" y=\"20\">{}{}</text>",
@@ -197,14 +231,23 @@ fn spread(low: f64, high: f64) -> (f64, f64) {
 fn ticks(low: f64, high: f64, wanted: usize) -> Vec<f64> {
     let rough = (high - low) / wanted as f64;
     let power = 10_f64.powf(rough.log10().floor());
-    let step = [1.0, 2.0, 5.0, 10.0].into_iter().map(|m| m * power).find(|s| *s >= rough).unwrap_or(rough);
+    let step = [1.0, 2.0, 5.0, 10.0]
+        .into_iter()
+        .map(|m| m * power)
+        .find(|s| *s >= rough)
+        .unwrap_or(rough);
     let (first, last) = ((low / step - 1e-9).ceil(), (high / step + 1e-9).floor());
     let count = (last - first).clamp(0.0, 100.0) as usize;
-    (0..=count).map(|i| (first + i as f64) * step).map(|v| if v == 0.0 { 0.0 } else { v }).collect()
+    (0..=count)
+        .map(|i| (first + i as f64) * step)
+        .map(|v| if v == 0.0 { 0.0 } else { v })
+        .collect()
 }
 
 fn escape(text: &str) -> String {
-    text.replace('&', "&amp;").replace('<', "&lt;").replace('>', "&gt;")
+    text.replace('&', "&amp;")
+        .replace('<', "&lt;")
+        .replace('>', "&gt;")
 }
 
 #[cfg(test)]
@@ -213,7 +256,10 @@ mod tests {
 
     #[test]
     fn ticks_are_round_and_inside() {
-        let shown: Vec<String> = ticks(0.13, 1.04, 5).iter().map(|t| significant(*t, 6)).collect();
+        let shown: Vec<String> = ticks(0.13, 1.04, 5)
+            .iter()
+            .map(|t| significant(*t, 6))
+            .collect();
         assert_eq!(shown, ["0.2", "0.4", "0.6", "0.8", "1"]);
         assert_eq!(ticks(0.0, 1.0, 8).len(), 6);
     }
@@ -226,8 +272,15 @@ mod tests {
             mean: vec![1.0, f64::NAN],
             quantiles: std::array::from_fn(|i| vec![i as f64, f64::INFINITY]),
         };
-        let caption = Caption { title: "t".into(), description: "d".into(), time: "time".into() };
+        let caption = Caption {
+            title: "t".into(),
+            description: "d".into(),
+            time: "time".into(),
+        };
         let svg = draw(&caption, &[0.0, 1.0], &[fan]);
-        assert!(svg.contains("a&lt;b") && !svg.contains("NaN") && !svg.contains("inf"), "{svg}");
+        assert!(
+            svg.contains("a&lt;b") && !svg.contains("NaN") && !svg.contains("inf"),
+            "{svg}"
+        );
     }
 }

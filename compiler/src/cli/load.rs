@@ -26,11 +26,19 @@ pub(super) fn load(path: &Path) -> Loaded {
         Ok(source) => {
             let compilation = pipeline::compile(&source);
             let (diagnostics, compiled) = (compilation.diagnostics, compilation.compiled);
-            Loaded { source, diagnostics, compiled }
+            Loaded {
+                source,
+                diagnostics,
+                compiled,
+            }
         }
         Err(diagnostic) => {
             let source = SourceFile::new(path.display().to_string(), "");
-            Loaded { source, diagnostics: vec![diagnostic], compiled: None }
+            Loaded {
+                source,
+                diagnostics: vec![diagnostic],
+                compiled: None,
+            }
         }
     }
 }
@@ -41,19 +49,31 @@ impl Loaded {
     pub(super) fn status(&self) -> Status {
         let errors = self.diagnostics.iter().filter(|d| d.is_error());
         errors
-            .map(|d| if d.code == Code::ClaimRefuted { Status::NotHeld } else { Status::Wrong })
+            .map(|d| {
+                if d.code == Code::ClaimRefuted {
+                    Status::NotHeld
+                } else {
+                    Status::Wrong
+                }
+            })
             .max()
             .unwrap_or(Status::Well)
     }
 
     /// Shows the diagnostics on standard error.
     pub(super) fn show_diagnostics(&self) {
-        output::note(&human(&self.source, &self.diagnostics, output::colour_on(&io::stderr())));
+        output::note(&human(
+            &self.source,
+            &self.diagnostics,
+            output::colour_on(&io::stderr()),
+        ));
     }
 
     /// The compiled model, unless errors other than refuted claims stand in the way.
     pub(super) fn compiled(&self) -> Option<&Compiled> {
-        self.compiled.as_ref().filter(|_| self.status() < Status::Wrong)
+        self.compiled
+            .as_ref()
+            .filter(|_| self.status() < Status::Wrong)
     }
 
     /// What the reports read.

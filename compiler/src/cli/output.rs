@@ -26,7 +26,11 @@ pub(super) fn note(text: &str) {
 
 /// Says on standard error why a command failed.
 pub(super) fn complain(reason: &str) {
-    let head = if colour_on(&io::stderr()) { "\u{1b}[1;31merror\u{1b}[0m" } else { "error" };
+    let head = if colour_on(&io::stderr()) {
+        "\u{1b}[1;31merror\u{1b}[0m"
+    } else {
+        "error"
+    };
     note(&format!("{head}: {reason}\n"));
 }
 
@@ -41,7 +45,8 @@ pub(super) fn colour_on(stream: &impl IsTerminal) -> bool {
 pub(super) fn deliver(path: Option<&Path>, text: &str) -> Result<(), Failure> {
     let Some(path) = path else { return print(text) };
     let mut file = OutputFile::create(path)?;
-    file.write_all(text.as_bytes()).map_err(|e| file.failure(&e))?;
+    file.write_all(text.as_bytes())
+        .map_err(|e| file.failure(&e))?;
     file.commit()
 }
 
@@ -61,11 +66,21 @@ impl OutputFile {
         let target = fs::canonicalize(path).unwrap_or_else(|_| path.to_owned());
         let kind = fs::metadata(&target);
         if kind.as_ref().is_ok_and(fs::Metadata::is_dir) {
-            return Err(Failure(format!("cannot write {}: it is a directory", path.display())));
+            return Err(Failure(format!(
+                "cannot write {}: it is a directory",
+                path.display()
+            )));
         }
         if kind.is_ok_and(|m| !m.is_file()) {
-            let file = File::options().write(true).open(&target).map_err(|e| fail(&e))?;
-            return Ok(Self { target, partial: None, writer: Some(BufWriter::new(file)) });
+            let file = File::options()
+                .write(true)
+                .open(&target)
+                .map_err(|e| fail(&e))?;
+            return Ok(Self {
+                target,
+                partial: None,
+                writer: Some(BufWriter::new(file)),
+            });
         }
         let mut name = OsString::from(".");
         name.push(target.file_name().unwrap_or_default());
@@ -73,7 +88,11 @@ impl OutputFile {
         let partial = target.with_file_name(name);
         let file = File::create(&partial).map_err(|e| fail(&e))?;
         let writer = Some(BufWriter::with_capacity(1 << 18, file));
-        Ok(Self { target, partial: Some(partial), writer })
+        Ok(Self {
+            target,
+            partial: Some(partial),
+            writer,
+        })
     }
 
     /// The failure that an error of writing is.

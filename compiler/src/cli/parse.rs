@@ -15,7 +15,11 @@ const MAX_STEPS: u64 = 100_000_000;
 
 fn number(text: &str) -> Result<f64, String> {
     let value = f64::from_str(text.trim()).map_err(|_| format!("`{text}` is not a number"))?;
-    if value.is_finite() { Ok(value) } else { Err(format!("`{text}` is not a finite number")) }
+    if value.is_finite() {
+        Ok(value)
+    } else {
+        Err(format!("`{text}` is not a finite number"))
+    }
 }
 
 fn whole(text: &str, most: u64) -> Result<u64, String> {
@@ -26,7 +30,9 @@ fn whole(text: &str, most: u64) -> Result<u64, String> {
         Err(_) => {
             let value = number(&plain).map_err(|_| format!("`{text}` is not a whole number"))?;
             if value.fract() != 0.0 || value < 0.0 || value > most as f64 {
-                return Err(format!("expected a whole number from 1 to {most}, not `{text}`"));
+                return Err(format!(
+                    "expected a whole number from 1 to {most}, not `{text}`"
+                ));
             }
             value as u64
         }
@@ -34,7 +40,9 @@ fn whole(text: &str, most: u64) -> Result<u64, String> {
     if (1..=most).contains(&value) {
         Ok(value)
     } else {
-        Err(format!("expected a whole number from 1 to {most}, not `{text}`"))
+        Err(format!(
+            "expected a whole number from 1 to {most}, not `{text}`"
+        ))
     }
 }
 
@@ -71,8 +79,9 @@ pub(super) fn time(text: &str) -> Result<f64, String> {
 
 /// `name=value`.
 pub(super) fn assignment(text: &str) -> Result<(String, f64), String> {
-    let (name, value) =
-        text.split_once('=').ok_or_else(|| format!("expected NAME=VALUE, as in sigma=0.3, not `{text}`"))?;
+    let (name, value) = text
+        .split_once('=')
+        .ok_or_else(|| format!("expected NAME=VALUE, as in sigma=0.3, not `{text}`"))?;
     let name = name.trim();
     if name.is_empty() {
         return Err(format!("`{text}` names no parameter"));
@@ -86,17 +95,28 @@ pub(super) fn part(text: &str) -> Result<(u64, u64), String> {
     let (index, of) = text.split_once('/').ok_or_else(expected)?;
     let index: u64 = index.trim().parse().map_err(|_| expected())?;
     let of: u64 = of.trim().parse().map_err(|_| expected())?;
-    if (1..=of).contains(&index) { Ok((index, of)) } else { Err(expected()) }
+    if (1..=of).contains(&index) {
+        Ok((index, of))
+    } else {
+        Err(expected())
+    }
 }
 
 fn file_with_ending(text: &str, endings: &[&str]) -> Result<PathBuf, String> {
     let path = PathBuf::from(text);
-    let ending = path.extension().and_then(|e| e.to_str()).unwrap_or("").to_ascii_lowercase();
+    let ending = path
+        .extension()
+        .and_then(|e| e.to_str())
+        .unwrap_or("")
+        .to_ascii_lowercase();
     if endings.contains(&ending.as_str()) {
         return Ok(path);
     }
     let list: Vec<String> = endings.iter().map(|e| format!(".{e}")).collect();
-    Err(format!("the file's ending chooses its form: {}", list.join(" or ")))
+    Err(format!(
+        "the file's ending chooses its form: {}",
+        list.join(" or ")
+    ))
 }
 
 /// A file for paths.
@@ -111,8 +131,13 @@ pub(super) fn plot_file(text: &str) -> Result<PathBuf, String> {
 
 /// `fused` or `unfused`.
 pub(super) fn arithmetic() -> impl TypedValueParser<Value = ArithmeticClass> {
-    PossibleValuesParser::new(["fused", "unfused"])
-        .map(|text| if text == "fused" { ArithmeticClass::Fused } else { ArithmeticClass::Unfused })
+    PossibleValuesParser::new(["fused", "unfused"]).map(|text| {
+        if text == "fused" {
+            ArithmeticClass::Fused
+        } else {
+            ArithmeticClass::Unfused
+        }
+    })
 }
 
 #[cfg(test)]

@@ -35,9 +35,12 @@ impl PathsFile {
     /// Opens a file; its ending chooses the form.
     pub(super) fn create(path: &Path, layout: Layout) -> Result<Self, Failure> {
         let mut file = OutputFile::create(path)?;
-        let is_npy = path.extension().is_some_and(|e| e.eq_ignore_ascii_case("npy"));
+        let is_npy = path
+            .extension()
+            .is_some_and(|e| e.eq_ignore_ascii_case("npy"));
         let form = if is_npy {
-            file.write_all(&npy_header(&layout)).map_err(|e| file.failure(&e))?;
+            file.write_all(&npy_header(&layout))
+                .map_err(|e| file.failure(&e))?;
             Form::Npy(file)
         } else {
             let mut writer = csv::Writer::from_writer(file);
@@ -45,7 +48,11 @@ impl PathsFile {
             writer.write_record(["path", "time"].into_iter().chain(names))?;
             Form::Csv(Box::new(writer))
         };
-        Ok(Self { path: path.to_owned(), layout, form })
+        Ok(Self {
+            path: path.to_owned(),
+            layout,
+            form,
+        })
     }
 
     /// Appends paths from `first_path` on: values in C order, shape (paths, times, quantities).
@@ -78,7 +85,9 @@ impl PathsFile {
     pub(super) fn finish(self, description: &Value) -> Result<(), Failure> {
         match self.form {
             Form::Csv(writer) => {
-                let file = writer.into_inner().map_err(|e| Failure(e.error().to_string()))?;
+                let file = writer
+                    .into_inner()
+                    .map_err(|e| Failure(e.error().to_string()))?;
                 file.commit()
             }
             Form::Npy(file) => {
@@ -95,7 +104,12 @@ impl PathsFile {
 /// and a Python dictionary padded so that the data are aligned to 64 bytes.
 fn npy_header(layout: &Layout) -> Vec<u8> {
     const MAGIC: &[u8] = b"\x93NUMPY\x01\x00";
-    let shape = format!("({}, {}, {})", layout.paths, layout.times.len(), layout.quantities.len());
+    let shape = format!(
+        "({}, {}, {})",
+        layout.paths,
+        layout.times.len(),
+        layout.quantities.len()
+    );
     let mut dictionary = format!("{{'descr': '<f8', 'fortran_order': False, 'shape': {shape}, }}");
     let unpadded = MAGIC.len() + 2 + dictionary.len() + 1;
     dictionary.push_str(&" ".repeat(unpadded.next_multiple_of(64) - unpadded));
@@ -109,7 +123,11 @@ mod tests {
     use super::*;
 
     fn layout() -> Layout {
-        Layout { quantities: vec!["S".into(), "log_S".into()], times: vec![0.5, 1.0], paths: 2 }
+        Layout {
+            quantities: vec!["S".into(), "log_S".into()],
+            times: vec![0.5, 1.0],
+            paths: 2,
+        }
     }
 
     const VALUES: [f64; 8] = [0.0, 1.0, 2.0, 3.0, 10.0, 11.0, 12.0, 13.5];
@@ -119,8 +137,14 @@ mod tests {
         let header = npy_header(&layout());
         assert_eq!(header.len() % 64, 0);
         let text = String::from_utf8_lossy(&header[10..]).into_owned();
-        assert!(text.contains("'shape': (2, 2, 2)") && text.ends_with(" \n"), "{text}");
-        assert_eq!(usize::from(u16::from_le_bytes([header[8], header[9]])), header.len() - 10);
+        assert!(
+            text.contains("'shape': (2, 2, 2)") && text.ends_with(" \n"),
+            "{text}"
+        );
+        assert_eq!(
+            usize::from(u16::from_le_bytes([header[8], header[9]])),
+            header.len() - 10
+        );
     }
 
     #[test]
@@ -147,6 +171,9 @@ mod tests {
         file.append(7, &VALUES).unwrap();
         file.finish(&Value::Null).unwrap();
         let text = std::fs::read_to_string(&path).unwrap();
-        assert_eq!(text, "path,time,S,log_S\n7,0.5,0,1\n7,1,2,3\n8,0.5,10,11\n8,1,12,13.5\n");
+        assert_eq!(
+            text,
+            "path,time,S,log_S\n7,0.5,0,1\n7,1,2,3\n8,0.5,10,11\n8,1,12,13.5\n"
+        );
     }
 }

@@ -29,7 +29,9 @@ pub(super) fn bar(paths: u64, what: &str) -> Bar {
         ProgressDrawTarget::hidden()
     };
     let bar = ProgressBar::with_draw_target(Some(paths), target);
-    if let Ok(style) = ProgressStyle::with_template("{msg} {bar:40} {human_pos}/{human_len} paths, {eta} left") {
+    if let Ok(style) =
+        ProgressStyle::with_template("{msg} {bar:40} {human_pos}/{human_len} paths, {eta} left")
+    {
         bar.set_style(style);
     }
     bar.set_message(what.to_owned());

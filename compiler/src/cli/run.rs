@@ -125,8 +125,11 @@ impl Settings {
 impl Settings {
     /// The parameters in one line, `name = value`, in the order of their names.
     pub(super) fn describe_parameters(&self) -> String {
-        let list: Vec<String> =
-            self.parameters.iter().map(|(name, value)| format!("{name} = {}", significant(*value, 6))).collect();
+        let list: Vec<String> = self
+            .parameters
+            .iter()
+            .map(|(name, value)| format!("{name} = {}", significant(*value, 6)))
+            .collect();
         list.join(", ")
     }
 }
@@ -148,9 +151,14 @@ impl Part {
         let bound = |i: u64| (u128::from(paths) * u128::from(i) / u128::from(of)) as u64;
         let (first_path, end) = (bound(index - 1), bound(index));
         if end == first_path {
-            return Err(Failure(format!("--part: part {index} of {of} of {paths} paths holds no path")));
+            return Err(Failure(format!(
+                "--part: part {index} of {of} of {paths} paths holds no path"
+            )));
         }
-        Ok(Self { first_path, paths: end - first_path })
+        Ok(Self {
+            first_path,
+            paths: end - first_path,
+        })
     }
 }
 
@@ -160,7 +168,9 @@ fn available_threads() -> usize {
 
 /// The times to observe at: those named, which must not pass the horizon, or the horizon alone.
 fn observation_times(args: &RunArgs, horizon: f64) -> Result<Vec<f64>, Failure> {
-    let Some(times) = &args.times else { return Ok(vec![horizon]) };
+    let Some(times) = &args.times else {
+        return Ok(vec![horizon]);
+    };
     if let Some(pair) = times.windows(2).find(|pair| pair[1] <= pair[0]) {
         return Err(Failure(format!(
             "--times: {} follows {}; give the times in increasing order, each once",
@@ -183,7 +193,9 @@ fn parameters(model: &Model, set: &[(String, f64)]) -> Result<BTreeMap<String, f
     let mut values = BTreeMap::new();
     for parameter in &model.parameters {
         if let Some(value) = &parameter.value {
-            let value = model.pool.eval_f64(model.pool.number(value.clone()), &BTreeMap::new());
+            let value = model
+                .pool
+                .eval_f64(model.pool.number(value.clone()), &BTreeMap::new());
             values.insert(parameter.name.clone(), value.unwrap_or(f64::NAN));
         }
     }
@@ -202,8 +214,15 @@ fn parameters(model: &Model, set: &[(String, f64)]) -> Result<BTreeMap<String, f
     if missing.is_empty() {
         return Ok(values);
     }
-    let options: Vec<String> = missing.iter().map(|name| format!("--set {name}=VALUE")).collect();
-    let (noun, verb) = if missing.len() == 1 { ("parameter", "has") } else { ("parameters", "have") };
+    let options: Vec<String> = missing
+        .iter()
+        .map(|name| format!("--set {name}=VALUE"))
+        .collect();
+    let (noun, verb) = if missing.len() == 1 {
+        ("parameter", "has")
+    } else {
+        ("parameters", "have")
+    };
     Err(Failure(format!(
         "the {noun} `{}` {verb} no value in the file: give {}",
         missing.join("`, `"),
@@ -223,7 +242,10 @@ fn unknown(model: &Model, name: &str) -> Failure {
         None if model.parameters.is_empty() => "it has none".to_owned(),
         None => format!("it has {}", names.collect::<Vec<_>>().join(", ")),
     };
-    Failure(format!("--set: model `{}` has no parameter `{name}`; {hint}", model.name))
+    Failure(format!(
+        "--set: model `{}` has no parameter `{name}`; {hint}",
+        model.name
+    ))
 }
 
 #[cfg(test)]
@@ -232,7 +254,9 @@ mod tests {
 
     #[test]
     fn parts_cover_the_paths_in_order() {
-        let parts: Vec<Part> = (1..=7).map(|i| Part::new(1000, Some((i, 7))).unwrap()).collect();
+        let parts: Vec<Part> = (1..=7)
+            .map(|i| Part::new(1000, Some((i, 7))).unwrap())
+            .collect();
         let mut next = 0;
         for part in parts {
             assert_eq!(part.first_path, next);

@@ -6,6 +6,9 @@ use crate::front;
 
 /// Prints the JSON Schema of the model file.
 pub(super) fn run(args: &SchemaArgs) -> Outcome {
-    output::deliver(args.output.as_deref(), &format!("{:#}\n", front::json_schema()))?;
+    output::deliver(
+        args.output.as_deref(),
+        &format!("{:#}\n", front::json_schema()),
+    )?;
     Ok(Status::Well)
 }

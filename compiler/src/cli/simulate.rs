@@ -25,8 +25,12 @@ const CHART_STEPS: usize = 60;
 
 /// Runs paths; summarises, stores or draws them.
 pub(super) fn run(args: &SimulateArgs) -> Outcome {
-    let Some(loaded) = load_and_show(&args.file) else { return Ok(Status::Wrong) };
-    let Some(compiled) = loaded.compiled() else { return Ok(Status::Wrong) };
+    let Some(loaded) = load_and_show(&args.file) else {
+        return Ok(Status::Wrong);
+    };
+    let Some(compiled) = loaded.compiled() else {
+        return Ok(Status::Wrong);
+    };
     if loaded.status() != Status::Well {
         // A refuted claim is an error of the model: nothing is run until it is mended.
         return Ok(loaded.status());
@@ -51,7 +55,10 @@ pub(super) fn run(args: &SimulateArgs) -> Outcome {
             let mut document =
                 summary::document(&sample, &session.settings, &compiled.model, &compiled.plan);
             session.name_files(args, &mut document);
-            let style = Style { colour: output::colour_on(&io::stdout()), ..Style::default() };
+            let style = Style {
+                colour: output::colour_on(&io::stdout()),
+                ..Style::default()
+            };
             output::print(&text::write(&document, style))?;
         }
     }
@@ -72,8 +79,19 @@ impl<'a> Session<'a> {
         let settings = Settings::new(&args.run, &compiled.model, &compiled.plan)?;
         let part = Part::new(settings.paths, args.part)?;
         let interpreter = Interpreter::new(&compiled.program, &settings.parameters)?;
-        let names = compiled.program.outputs.iter().map(|o| o.name.clone()).collect();
-        Ok(Self { compiled, settings, part, interpreter, names })
+        let names = compiled
+            .program
+            .outputs
+            .iter()
+            .map(|o| o.name.clone())
+            .collect();
+        Ok(Self {
+            compiled,
+            settings,
+            part,
+            interpreter,
+            names,
+        })
     }
 
     fn open_paths_file(&self, path: Option<&Path>) -> Result<Option<PathsFile>, Failure> {
@@ -86,7 +104,12 @@ impl<'a> Session<'a> {
     }
 
     /// Runs the paths, and writes them into the file if there is one.
-    fn sample(&self, grid: &Grid, file: Option<&mut PathsFile>, what: &str) -> Result<Sample, Failure> {
+    fn sample(
+        &self,
+        grid: &Grid,
+        file: Option<&mut PathsFile>,
+        what: &str,
+    ) -> Result<Sample, Failure> {
         let bar = progress::bar(self.part.paths, what);
         let run = Run {
             paths: self.part.paths,
@@ -98,7 +121,8 @@ impl<'a> Session<'a> {
             levels: LEVELS.iter().map(|(level, _)| *level).collect(),
             pairs: Vec::new(),
             coupled: false,
-            writer: file.map(|file| Box::new(|first, values: &[f64]| file.append(first, values)) as _),
+            writer: file
+                .map(|file| Box::new(|first, values: &[f64]| file.append(first, values)) as _),
         };
         let collected = sample(&self.interpreter, grid, &run, request)?;
         Ok(Sample {
@@ -119,15 +143,20 @@ impl<'a> Session<'a> {
             sample
         } else {
             let horizon = self.settings.horizon;
-            let times: Vec<f64> =
-                (0..=CHART_STEPS).map(|i| horizon * i as f64 / CHART_STEPS as f64).collect();
+            let times: Vec<f64> = (0..=CHART_STEPS)
+                .map(|i| horizon * i as f64 / CHART_STEPS as f64)
+                .collect();
             let grid = Grid::new(&times, self.settings.steps)?;
             own = self.sample(&grid, None, "drawing")?;
             &own
         };
         let model = &self.compiled.model;
         let fans: Vec<Fan> = shown.quantities.iter().map(|q| self.fan(q)).collect();
-        let unit = model.time_unit.as_ref().map(|u| format!(" ({u})")).unwrap_or_default();
+        let unit = model
+            .time_unit
+            .as_ref()
+            .map(|u| format!(" ({u})"))
+            .unwrap_or_default();
         let caption = Caption {
             title: model.title.clone().unwrap_or_else(|| model.name.clone()),
             description: format!(
@@ -144,7 +173,10 @@ impl<'a> Session<'a> {
         let outputs = &self.compiled.program.outputs;
         Fan {
             name: quantity.name.clone(),
-            unit: outputs.iter().find(|o| o.name == quantity.name).and_then(|o| o.unit.clone()),
+            unit: outputs
+                .iter()
+                .find(|o| o.name == quantity.name)
+                .and_then(|o| o.unit.clone()),
             mean: quantity.mean.clone(),
             quantiles: quantity.quantiles.clone(),
         }
@@ -154,13 +186,19 @@ impl<'a> Session<'a> {
     fn name_files(&self, args: &SimulateArgs, document: &mut crate::report::Document) {
         let mut items = Vec::new();
         if let Some(path) = &args.output {
-            items.push(crate::report::document::words(format!("paths in {}", path.display())));
+            items.push(crate::report::document::words(format!(
+                "paths in {}",
+                path.display()
+            )));
         }
         if let Some(path) = &args.plot {
             let times = if self.settings.times_given {
                 "at the times above".to_owned()
             } else {
-                format!("at {} times from 0 on, in a run of its own", CHART_STEPS + 1)
+                format!(
+                    "at {} times from 0 on, in a run of its own",
+                    CHART_STEPS + 1
+                )
             };
             let text = format!("fan chart in {}, {times}", path.display());
             items.push(crate::report::document::words(text));
@@ -187,7 +225,8 @@ fn description(sample: &Sample, session: &Session<'_>, loaded: &Loaded) -> serde
 
 fn quantities(names: &[String], collected: &Collected) -> Vec<Quantity> {
     let (moments, table) = (&collected.moments, &collected.quantiles);
-    let series = |q: usize, of: fn(&Summary) -> f64| moments.iter().map(|row| of(&row[q])).collect();
+    let series =
+        |q: usize, of: fn(&Summary) -> f64| moments.iter().map(|row| of(&row[q])).collect();
     names
         .iter()
         .enumerate()
@@ -201,7 +240,9 @@ fn quantities(names: &[String], collected: &Collected) -> Vec<Quantity> {
             minimum: series(q, |s| s.minimum),
             maximum: series(q, |s| s.maximum),
             quantiles: std::array::from_fn(|level| {
-                (0..moments.len()).map(|time| table.get(time, q, level)).collect()
+                (0..moments.len())
+                    .map(|time| table.get(time, q, level))
+                    .collect()
             }),
         })
         .collect()

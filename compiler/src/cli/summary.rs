@@ -66,7 +66,12 @@ pub(super) fn manifest(sample: &Sample, settings: &Settings, model: &Model, plan
         .states
         .iter()
         .enumerate()
-        .map(|(i, s)| (s.name.clone(), plan.groups[plan.group_of(i)].scheme.name().into()))
+        .map(|(i, s)| {
+            (
+                s.name.clone(),
+                plan.groups[plan.group_of(i)].scheme.name().into(),
+            )
+        })
         .collect();
     json!({
         "stream_version": STREAM_VERSION,
@@ -82,8 +87,11 @@ pub(super) fn manifest(sample: &Sample, settings: &Settings, model: &Model, plan
 
 /// `simulate --format json`.
 pub(super) fn json(sample: &Sample, settings: &Settings, model: &Model, plan: &Plan) -> Value {
-    let quantities: Map<String, Value> =
-        sample.quantities.iter().map(|q| (q.name.clone(), quantity(q))).collect();
+    let quantities: Map<String, Value> = sample
+        .quantities
+        .iter()
+        .map(|q| (q.name.clone(), quantity(q)))
+        .collect();
     json!({
         "model": model.name,
         "paths": sample.paths,
@@ -119,16 +127,30 @@ fn quantity(q: &Quantity) -> Value {
 }
 
 /// The summary for people.
-pub(super) fn document(sample: &Sample, settings: &Settings, model: &Model, plan: &Plan) -> Document {
+pub(super) fn document(
+    sample: &Sample,
+    settings: &Settings,
+    model: &Model,
+    plan: &Plan,
+) -> Document {
     let title = model.title.clone().unwrap_or_else(|| model.name.clone());
     let mut document = Document::new(&model.pool, title, settings.describe());
-    let unit = model.time_unit.as_ref().map(|u| format!(" {u}")).unwrap_or_default();
+    let unit = model
+        .time_unit
+        .as_ref()
+        .map(|u| format!(" {u}"))
+        .unwrap_or_default();
     for (i, time) in sample.times.iter().enumerate() {
         document.section(format!("Time {}{unit}", significant(*time, 6)));
         document.table(table(sample, i));
     }
     document.section("The run");
-    document.list(facts(sample, settings, model, plan).into_iter().map(words).collect());
+    document.list(
+        facts(sample, settings, model, plan)
+            .into_iter()
+            .map(words)
+            .collect(),
+    );
     failures(&mut document, sample);
     document
 }
@@ -194,8 +216,15 @@ fn facts(sample: &Sample, settings: &Settings, model: &Model, plan: &Plan) -> Ve
 
 /// Paths that went wrong are never passed over in silence.
 pub(super) fn failures(document: &mut Document, sample: &Sample) {
-    let Failures { non_finite, left_domain, .. } = sample.failures;
-    for (count, what) in [(non_finite, "came to a value that is not finite"), (left_domain, "left the domain")] {
+    let Failures {
+        non_finite,
+        left_domain,
+        ..
+    } = sample.failures;
+    for (count, what) in [
+        (non_finite, "came to a value that is not finite"),
+        (left_domain, "left the domain"),
+    ] {
         if count > 0 {
             document.list(vec![vec![
                 Inline::Marked(Mark::Bad, grouped(count)),

@@ -4,6 +4,7 @@ use super::document::{Align, Equation, Inline, Mark, Table, Term, Text, code, wo
 use super::{Derivation, Document, trace};
 use crate::analysis::claims::{ClaimResult, Verdict};
 use crate::model::{Claim, ClaimKind, Model};
+use crate::symbolic::trace::Trace;
 use crate::symbolic::{Pool, Witness};
 
 /// A verdict as a marked word.
@@ -21,9 +22,15 @@ pub fn statement(model: &Model, claim: &Claim) -> String {
     match &claim.kind {
         ClaimKind::DriftOf { of, is } => format!("drift of {} is {}", of.text, is.text),
         ClaimKind::DiffusionOf { of, is } => {
-            let parts: Vec<String> =
-                is.iter().map(|(j, f)| format!("{} d{}", f.text, model.drivers[*j].name)).collect();
-            let parts = if parts.is_empty() { "0".to_owned() } else { parts.join(" + ") };
+            let parts: Vec<String> = is
+                .iter()
+                .map(|(j, f)| format!("{} d{}", f.text, model.drivers[*j].name))
+                .collect();
+            let parts = if parts.is_empty() {
+                "0".to_owned()
+            } else {
+                parts.join(" + ")
+            };
             format!("diffusion of {} is {parts}", of.text)
         }
         ClaimKind::Martingale { of } => format!("{} is a martingale", of.text),
@@ -38,7 +45,11 @@ pub fn statement(model: &Model, claim: &Claim) -> String {
 
 /// One row a claim: name, statement, verdict.
 pub fn claim_table(model: &Model, results: &[ClaimResult]) -> Table {
-    let mut table = Table::new([("claim", Align::Left), ("says", Align::Left), ("verdict", Align::Left)]);
+    let mut table = Table::new([
+        ("claim", Align::Left),
+        ("says", Align::Left),
+        ("verdict", Align::Left),
+    ]);
     for (claim, result) in model.claims.iter().zip(results) {
         table.row([
             code(&claim.name),
@@ -70,7 +81,7 @@ pub(super) fn claims(document: &mut Document, derivation: &Derivation<'_>) {
             verdict.push(Inline::Words(format!(": {}", result.reason)));
         }
         document.list(vec![verdict]);
-        document.equations(trace::equations(&result.trace));
+        document.equations(trace::equations(&working(derivation, claim, result)));
         if result.verdict == Verdict::Refuted {
             document.equations(sides(result));
             if let Some(witness) = &result.witness {
@@ -80,18 +91,51 @@ pub(super) fn claims(document: &mut Document, derivation: &Derivation<'_>) {
     }
 }
 
+/// The working of a verdict. Where Ito's rule was applied to a quantity that was derived above, what
+/// stands there is not repeated.
+fn working(derivation: &Derivation<'_>, claim: &Claim, result: &ClaimResult) -> Trace {
+    let of = match &claim.kind {
+        ClaimKind::DriftOf { of, .. }
+        | ClaimKind::DiffusionOf { of, .. }
+        | ClaimKind::Martingale { of } => of.expr,
+        _ => return result.trace.clone(),
+    };
+    let derived = derivation.dynamics.derived.iter().find(|d| d.formula == of);
+    let known = derived.map_or(&[][..], |d| &d.trace.steps);
+    let own = result
+        .trace
+        .steps
+        .iter()
+        .filter(|step| !known.contains(step));
+    Trace {
+        steps: own.cloned().collect(),
+    }
+}
+
 fn sides(result: &ClaimResult) -> Vec<Equation> {
-    [("derived", result.derived), ("claimed", result.claimed), ("difference", result.difference)]
-        .into_iter()
-        .filter_map(|(name, side)| {
-            side.map(|e| Equation::new(vec![Term::Symbol(name.into())], vec![Term::Formula(e)]))
-        })
-        .collect()
+    [
+        ("derived", result.derived),
+        ("claimed", result.claimed),
+        ("difference", result.difference),
+    ]
+    .into_iter()
+    .filter_map(|(name, side)| {
+        side.map(|e| Equation::new(vec![Term::Symbol(name.into())], vec![Term::Formula(e)]))
+    })
+    .collect()
 }
 
 /// Where two sides differ, in words.
 fn at(pool: &Pool, witness: &Witness) -> String {
-    let point: Vec<String> =
-        witness.point.iter().map(|(s, v)| format!("{} = {v}", pool.symbol_name(*s))).collect();
-    format!("At {}: derived {}, claimed {}.", point.join(", "), witness.left, witness.right)
+    let point: Vec<String> = witness
+        .point
+        .iter()
+        .map(|(s, v)| format!("{} = {v}", pool.symbol_name(*s)))
+        .collect();
+    format!(
+        "At {}: derived {}, claimed {}.",
+        point.join(", "),
+        witness.left,
+        witness.right
+    )
 }

@@ -139,12 +139,20 @@ pub fn code(text: impl Into<String>) -> Text {
 impl Document {
     /// An empty document about the formulas of `pool`.
     pub fn new(pool: &Pool, title: impl Into<String>, subtitle: impl Into<String>) -> Self {
-        Self { pool: pool.clone(), title: title.into(), subtitle: subtitle.into(), blocks: Vec::new() }
+        Self {
+            pool: pool.clone(),
+            title: title.into(),
+            subtitle: subtitle.into(),
+            blocks: Vec::new(),
+        }
     }
 
     /// Starts a section.
     pub fn section(&mut self, text: impl Into<String>) {
-        self.blocks.push(Block::Heading { level: 1, text: words(text) });
+        self.blocks.push(Block::Heading {
+            level: 1,
+            text: words(text),
+        });
     }
 
     /// Starts a part of a section.
@@ -184,9 +192,17 @@ impl Document {
 impl Table {
     /// An empty table with these columns.
     pub fn new<const N: usize>(columns: [(&str, Align); N]) -> Self {
-        let columns =
-            columns.into_iter().map(|(title, align)| Column { title: title.to_owned(), align }).collect();
-        Self { columns, rows: Vec::new() }
+        let columns = columns
+            .into_iter()
+            .map(|(title, align)| Column {
+                title: title.to_owned(),
+                align,
+            })
+            .collect();
+        Self {
+            columns,
+            rows: Vec::new(),
+        }
     }
 
     /// Adds a row.
@@ -199,7 +215,12 @@ impl Table {
 impl Equation {
     /// `left = right`.
     pub fn new(left: Math, right: Math) -> Self {
-        Self { left, relation: "=", right, remark: String::new() }
+        Self {
+            left,
+            relation: "=",
+            right,
+            remark: String::new(),
+        }
     }
 
     /// Says what the line is.

@@ -29,7 +29,10 @@ pub fn on_the_spot(derivation: &Derivation<'_>, expansion: &Expansion) -> Docume
     let head = format!("Ito's rule for {}", model.pool.format(expansion.formula));
     let mut document = Document::new(&model.pool, head, subtitle(model));
     document.section("Dynamics of the states");
-    document.equations(dynamics::state_equations(model, &derivation.dynamics.states));
+    document.equations(dynamics::state_equations(
+        model,
+        &derivation.dynamics.states,
+    ));
     document.section("Derivation");
     dynamics::expansion_steps(&mut document, model, "F", expansion);
     document
@@ -45,7 +48,11 @@ fn subtitle(model: &Model) -> String {
         Calculus::Ito => "Ito calculus",
         Calculus::Stratonovich => "Stratonovich calculus, converted to Ito's",
     };
-    let time = model.time_unit.as_ref().map(|u| format!(", time in {u}s")).unwrap_or_default();
+    let time = model
+        .time_unit
+        .as_ref()
+        .map(|u| format!(", time in {u}s"))
+        .unwrap_or_default();
     format!("model {}, {calculus}{time}", model.name)
 }
 
@@ -86,7 +93,9 @@ fn cautions(document: &mut Document, derivation: &Derivation<'_>) {
         ));
     }
     if !derivation.model.assumptions.is_empty() {
-        items.push(words("All of it holds under the assumptions above, and not beyond them."));
+        items.push(words(
+            "All of it holds under the assumptions above, and not beyond them.",
+        ));
     }
     items.push(words(
         "Use for valuation, risk or capital falls under your firm's model-risk policy and your local \

@@ -7,13 +7,21 @@ use crate::model::{Calculus, Model};
 use crate::symbolic::Expr;
 
 fn named<'a>(model: &'a Model, diffusion: &[Expr]) -> Vec<(&'a str, Expr)> {
-    model.drivers.iter().map(|d| d.name.as_str()).zip(diffusion.iter().copied()).collect()
+    model
+        .drivers
+        .iter()
+        .map(|d| d.name.as_str())
+        .zip(diffusion.iter().copied())
+        .collect()
 }
 
 /// `dX = drift dt + ... dW`.
 pub(super) fn equation(model: &Model, name: &str, drift: Expr, diffusion: &[Expr]) -> Equation {
     let left = vec![Term::Differential(name.to_owned())];
-    Equation::new(left, increments(&model.pool, drift, named(model, diffusion)))
+    Equation::new(
+        left,
+        increments(&model.pool, drift, named(model, diffusion)),
+    )
 }
 
 /// The Ito equations of all states.
@@ -37,9 +45,15 @@ pub fn derived_summary(model: &Model, expansions: &[Expansion]) -> Vec<Equation>
             let line = equation(model, &derived.name, expansion.drift, &expansion.diffusion);
             let correction = pool.format(expansion.ito_correction);
             line.remark(if correction == "0" {
-                format!("{} = {}; no Ito correction", derived.name, derived.formula.text)
+                format!(
+                    "{} = {}; no Ito correction",
+                    derived.name, derived.formula.text
+                )
             } else {
-                format!("{} = {}; Ito correction {correction}", derived.name, derived.formula.text)
+                format!(
+                    "{} = {}; Ito correction {correction}",
+                    derived.name, derived.formula.text
+                )
             })
         })
         .collect()
@@ -53,14 +67,23 @@ pub(super) fn states(document: &mut Document, derivation: &Derivation<'_>) {
         document.paragraph(words(
             "The model is declared in Stratonovich's sense. As declared, with ∘ for his integral:",
         ));
-        document.equations(model.states.iter().map(|s| stratonovich(model, s)).collect());
+        document.equations(
+            model
+                .states
+                .iter()
+                .map(|s| stratonovich(model, s))
+                .collect(),
+        );
         document.paragraph(words(
             "Converted to Ito's sense: each drift gains half the derivatives of its diffusion along \
              the diffusions, weighted with the drivers' correlations.",
         ));
         for (state, conversion) in model.states.iter().zip(&dynamics.conversion) {
             if !conversion.steps.is_empty() {
-                document.part(vec![Inline::Code(state.name.clone()), Inline::Words(", converted".into())]);
+                document.part(vec![
+                    Inline::Code(state.name.clone()),
+                    Inline::Words(", converted".into()),
+                ]);
                 document.equations(trace::equations(conversion));
             }
         }
@@ -110,7 +133,10 @@ pub(super) fn derived(document: &mut Document, derivation: &Derivation<'_>) {
          x_i). The last term of the drift is the Ito correction; it is set apart below.",
     ));
     for (quantity, expansion) in model.derived.iter().zip(&dynamics.derived) {
-        let mut head = vec![Inline::Code(quantity.name.clone()), Inline::Words(" = ".into())];
+        let mut head = vec![
+            Inline::Code(quantity.name.clone()),
+            Inline::Words(" = ".into()),
+        ];
         head.push(Inline::Formula(expansion.formula));
         if let Some(about) = &quantity.about {
             head.push(Inline::Words(format!("   ({about})")));

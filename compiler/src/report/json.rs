@@ -3,8 +3,8 @@
 use serde_json::{Map, Value, json};
 
 use super::Derivation;
-use crate::calculus::Expansion;
 use crate::analysis::claims::ClaimResult;
+use crate::calculus::Expansion;
 use crate::diagnostic::diagnostic_json;
 use crate::model::{Calculus, Model};
 use crate::scheme::{Group, Order, Plan};
@@ -14,14 +14,18 @@ use crate::symbolic::{Expr, Pool, Witness};
 pub fn derivation(derivation: &Derivation<'_>) -> Value {
     let (model, dynamics) = (derivation.model, derivation.dynamics);
     let derived = model.derived.iter().zip(&dynamics.derived);
-    let derived: Map<String, Value> =
-        derived.map(|(d, expansion)| (d.name.clone(), self::expansion(model, expansion))).collect();
+    let derived: Map<String, Value> = derived
+        .map(|(d, expansion)| (d.name.clone(), self::expansion(model, expansion)))
+        .collect();
     document(derivation, derived)
 }
 
 /// `derive --of FORMULA --format json`: the result stands under `derived` with the key `of`.
 pub fn on_the_spot(derivation: &Derivation<'_>, expansion: &Expansion) -> Value {
-    let derived = Map::from_iter([("of".to_owned(), self::expansion(derivation.model, expansion))]);
+    let derived = Map::from_iter([(
+        "of".to_owned(),
+        self::expansion(derivation.model, expansion),
+    )]);
     document(derivation, derived)
 }
 
@@ -34,15 +38,28 @@ fn document(derivation: &Derivation<'_>, derived: Map<String, Value>) -> Value {
         .zip(&derivation.dynamics.states)
         .map(|(s, process)| {
             let drift = pool.format(process.drift);
-            (s.name.clone(), json!({ "drift": drift, "diffusion": diffusion(model, &process.diffusion) }))
+            (
+                s.name.clone(),
+                json!({ "drift": drift, "diffusion": diffusion(model, &process.diffusion) }),
+            )
         })
         .collect();
-    let methods: Vec<Value> =
-        derivation.plan.groups.iter().map(|g| method(model, derivation.plan, g)).collect();
-    let claims: Map<String, Value> =
-        derivation.claims.iter().map(|c| (c.name.clone(), claim(pool, c))).collect();
-    let diagnostics: Vec<Value> =
-        derivation.diagnostics.iter().map(|d| diagnostic_json(&model.source, d)).collect();
+    let methods: Vec<Value> = derivation
+        .plan
+        .groups
+        .iter()
+        .map(|g| method(model, derivation.plan, g))
+        .collect();
+    let claims: Map<String, Value> = derivation
+        .claims
+        .iter()
+        .map(|c| (c.name.clone(), claim(pool, c)))
+        .collect();
+    let diagnostics: Vec<Value> = derivation
+        .diagnostics
+        .iter()
+        .map(|d| diagnostic_json(&model.source, d))
+        .collect();
     json!({
         "model": model.name,
         "calculus": match model.calculus {
@@ -90,16 +107,28 @@ fn order(order: Option<Order>) -> Value {
 }
 
 fn method(model: &Model, plan: &Plan, group: &Group) -> Value {
-    let names: Vec<&str> = group.states.iter().map(|&s| model.states[s].name.as_str()).collect();
+    let names: Vec<&str> = group
+        .states
+        .iter()
+        .map(|&s| model.states[s].name.as_str())
+        .collect();
     let through: Map<String, Value> = group
         .states
         .iter()
         .map(|&s| &plan.coordinates[s])
         .filter(|c| !c.identity)
-        .map(|c| (model.states[c.state].name.clone(), Value::from(model.pool.format(c.forward))))
+        .map(|c| {
+            (
+                model.states[c.state].name.clone(),
+                Value::from(model.pool.format(c.forward)),
+            )
+        })
         .collect();
-    let rejected: Vec<Value> =
-        group.rejected.iter().map(|(s, why)| json!({ "scheme": s.name(), "reason": why })).collect();
+    let rejected: Vec<Value> = group
+        .rejected
+        .iter()
+        .map(|(s, why)| json!({ "scheme": s.name(), "reason": why }))
+        .collect();
     json!({
         "states": names,
         "kind": group.kind.name(),
@@ -122,8 +151,11 @@ fn claim(pool: &Pool, result: &ClaimResult) -> Value {
     if let Some(local) = result.local {
         entry.insert("local".to_owned(), local.name().into());
     }
-    let sides =
-        [("derived", result.derived), ("claimed", result.claimed), ("difference", result.difference)];
+    let sides = [
+        ("derived", result.derived),
+        ("claimed", result.claimed),
+        ("difference", result.difference),
+    ];
     for (key, side) in sides {
         if let Some(side) = side {
             entry.insert(key.to_owned(), pool.format(side).into());

@@ -37,7 +37,11 @@ fn equations(pool: &Pool, list: &[Equation]) -> String {
     let mut out = String::from("```text\n");
     for (equation, left) in list.iter().zip(&lefts) {
         let pad = " ".repeat(widest - left.chars().count());
-        let line = format!("{left}{pad} {} {}", equation.relation, spell::math(pool, &equation.right));
+        let line = format!(
+            "{left}{pad} {} {}",
+            equation.relation,
+            spell::math(pool, &equation.right)
+        );
         out.push_str(line.trim_end());
         if !equation.remark.is_empty() {
             out.push_str(&format!("    ({})", equation.remark));
@@ -49,11 +53,21 @@ fn equations(pool: &Pool, list: &[Equation]) -> String {
 }
 
 fn table(pool: &Pool, table: &Table) -> String {
-    let heads: Vec<String> = table.columns.iter().map(|c| cell(&escape(&c.title))).collect();
+    let heads: Vec<String> = table
+        .columns
+        .iter()
+        .map(|c| cell(&escape(&c.title)))
+        .collect();
     let rules: Vec<&str> = table
         .columns
         .iter()
-        .map(|c| if c.align == Align::Right { "---:" } else { "---" })
+        .map(|c| {
+            if c.align == Align::Right {
+                "---:"
+            } else {
+                "---"
+            }
+        })
         .collect();
     let mut out = format!("| {} |\n| {} |\n", heads.join(" | "), rules.join(" | "));
     for row in &table.rows {
@@ -82,14 +96,21 @@ fn inline(pool: &Pool, parts: &[Inline]) -> String {
 
 /// Code in as many backticks as its own do not need.
 fn literal(text: &str) -> String {
-    if text.contains('`') { format!("`` {text} ``") } else { format!("`{text}`") }
+    if text.contains('`') {
+        format!("`` {text} ``")
+    } else {
+        format!("`{text}`")
+    }
 }
 
 /// Characters that Markdown would read as marks.
 fn escape(text: &str) -> String {
     let mut out = String::with_capacity(text.len());
     for c in text.chars() {
-        if matches!(c, '\\' | '`' | '*' | '_' | '[' | ']' | '<' | '>' | '#' | '~') {
+        if matches!(
+            c,
+            '\\' | '`' | '*' | '_' | '[' | ']' | '<' | '>' | '#' | '~'
+        ) {
             out.push('\\');
         }
         out.push(c);

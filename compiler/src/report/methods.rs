@@ -6,13 +6,21 @@ use crate::model::Model;
 use crate::scheme::{Coordinate, Group, Plan};
 
 fn states(model: &Model, group: &Group) -> String {
-    let names: Vec<&str> = group.states.iter().map(|&s| model.states[s].name.as_str()).collect();
+    let names: Vec<&str> = group
+        .states
+        .iter()
+        .map(|&s| model.states[s].name.as_str())
+        .collect();
     names.join(", ")
 }
 
 /// The coordinates of a group that are not the states themselves.
 fn changed<'a>(plan: &'a Plan, group: &'a Group) -> impl Iterator<Item = &'a Coordinate> {
-    group.states.iter().map(|&s| &plan.coordinates[s]).filter(|c| !c.identity)
+    group
+        .states
+        .iter()
+        .map(|&s| &plan.coordinates[s])
+        .filter(|c| !c.identity)
 }
 
 /// A name such as `ornstein_uhlenbeck` as words.
@@ -24,13 +32,21 @@ fn spoken(name: &str) -> String {
         "square_root" => "a square-root process".to_owned(),
         "euler_maruyama" => "Euler-Maruyama".to_owned(),
         "milstein" => "Milstein".to_owned(),
+        "full_truncation_euler" => "Euler with full truncation".to_owned(),
+        "runge_kutta_4" => "Runge-Kutta of order 4".to_owned(),
+        "strong_taylor_1_5" => "strong Taylor of order 1.5".to_owned(),
         other => other.replace('_', " "),
     }
 }
 
 fn orders(group: &Group) -> String {
-    let order = |o: &Option<crate::scheme::Order>| o.map_or("not known".to_owned(), |o| o.to_string());
-    format!("strong order {}, weak order {}", order(&group.strong_order), order(&group.weak_order))
+    let order =
+        |o: &Option<crate::scheme::Order>| o.map_or("not known".to_owned(), |o| o.to_string());
+    format!(
+        "strong order {}, weak order {}",
+        order(&group.strong_order),
+        order(&group.weak_order)
+    )
 }
 
 /// One line about a group: what it is stepped by and why that is right.
@@ -39,16 +55,26 @@ pub fn method_line(model: &Model, plan: &Plan, group: &Group) -> String {
         let law = group.law.map_or("known".to_owned(), |l| spoken(l.name()));
         format!("exact: {law} law")
     } else {
-        format!("approximate: {}, {}", spoken(group.scheme.name()), orders(group))
+        format!(
+            "approximate: {}, {}",
+            spoken(group.scheme.name()),
+            orders(group)
+        )
     };
-    let through: Vec<String> =
-        changed(plan, group).map(|c| model.pool.format(c.forward)).collect();
-    if !through.is_empty() {
-        line.push_str(&format!("; through {}", through.join(", ")));
-    }
-    if let Some(becomes) = group.becomes {
-        let verb = if through.is_empty() { "is" } else { "becomes" };
-        line.push_str(&format!(", which {verb} {}", spoken(becomes.name())));
+    let through: Vec<String> = changed(plan, group)
+        .map(|c| model.pool.format(c.forward))
+        .collect();
+    let becomes = group.becomes.map(|b| spoken(b.name()));
+    match (through.as_slice(), becomes) {
+        ([], Some(becomes)) if group.law.is_none_or(|l| spoken(l.name()) != becomes) => {
+            line.push_str(&format!(" of {becomes}"));
+        }
+        ([], _) => {}
+        ([one], Some(becomes)) => line.push_str(&format!("; {one} is {becomes}")),
+        (several, Some(becomes)) => {
+            line.push_str(&format!("; {} are {becomes}", several.join(", ")))
+        }
+        (coordinates, None) => line.push_str(&format!("; through {}", coordinates.join(", "))),
     }
     line
 }
@@ -57,7 +83,10 @@ pub fn method_line(model: &Model, plan: &Plan, group: &Group) -> String {
 pub fn method_table(model: &Model, plan: &Plan) -> Table {
     let mut table = Table::new([("states", Align::Left), ("method", Align::Left)]);
     for group in &plan.groups {
-        table.row([code(states(model, group)), words(method_line(model, plan, group))]);
+        table.row([
+            code(states(model, group)),
+            words(method_line(model, plan, group)),
+        ]);
     }
     table
 }
@@ -67,14 +96,22 @@ pub(super) fn methods(document: &mut Document, derivation: &Derivation<'_>) {
     let (model, plan) = (derivation.model, derivation.plan);
     document.section("Methods");
     for group in &plan.groups {
-        let mut head = vec![Inline::Code(states(model, group)), Inline::Words(": ".into())];
+        let mut head = vec![
+            Inline::Code(states(model, group)),
+            Inline::Words(": ".into()),
+        ];
         head.push(Inline::Words(method_line(model, plan, group)));
         document.part(head);
         document.equations(maps(plan, model, group));
         document.list(reasons(group));
         document.equations(trace::equations(&group.trace));
     }
-    let sources: Vec<&str> = plan.noise.components.iter().map(|c| c.source.as_str()).collect();
+    let sources: Vec<&str> = plan
+        .noise
+        .components
+        .iter()
+        .map(|c| c.source.as_str())
+        .collect();
     if !sources.is_empty() {
         document.paragraph(words(format!(
             "Each step draws one standard normal number from each of: {}.",
@@ -90,7 +127,9 @@ fn maps(plan: &Plan, model: &Model, group: &Group) -> Vec<Equation> {
         let state = model.states[coordinate.state].name.clone();
         let forward = vec![Term::Formula(coordinate.forward)];
         let inverse = vec![Term::Formula(coordinate.inverse)];
-        lines.push(Equation::new(vec![Term::Name(u.clone())], forward).remark("simulated coordinate"));
+        lines.push(
+            Equation::new(vec![Term::Name(u.clone())], forward).remark("simulated coordinate"),
+        );
         lines.push(Equation::new(vec![Term::Name(state)], inverse).remark("and back"));
         let process = &coordinate.process;
         lines.push(

@@ -4,8 +4,8 @@
 //! [`text`] and [`markdown`] write a document, [`json`] the same facts for programs. Everything shown
 //! was logged by the pass that did the work; nothing is derived again here.
 
-pub mod document;
 mod claims;
+pub mod document;
 mod dossier;
 mod dynamics;
 pub mod json;
@@ -24,8 +24,8 @@ pub use dossier::{dossier, on_the_spot};
 pub use dynamics::{derived_summary, state_equations};
 pub use methods::{method_line, method_table};
 
-use crate::calculus::Dynamics;
 use crate::analysis::claims::ClaimResult;
+use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostic;
 use crate::model::Model;
 use crate::scheme::Plan;

@@ -21,7 +21,9 @@ pub fn significant(value: f64, digits: usize) -> String {
     }
     // The exponent after rounding to the digits shown.
     let scientific = format!("{value:.*e}", digits.saturating_sub(1));
-    let (mantissa, exponent) = scientific.split_once('e').unwrap_or((scientific.as_str(), "0"));
+    let (mantissa, exponent) = scientific
+        .split_once('e')
+        .unwrap_or((scientific.as_str(), "0"));
     let exponent: i32 = exponent.parse().unwrap_or(0);
     if (-4..=(digits as i32 + 2)).contains(&exponent) {
         let decimals = (digits as i32 - 1 - exponent).max(0) as usize;
@@ -51,7 +53,7 @@ pub fn with_error(value: f64, error: f64) -> String {
         return significant(value, 6);
     }
     let place = error.log10().floor() as i32 - 1;
-    if place < -9 || place > 6 {
+    if !(-7..=6).contains(&place) {
         return format!("{} ± {}", significant(value, 6), significant(error, 2));
     }
     let decimals = (-place).max(0) as usize;

@@ -11,7 +11,11 @@ pub(super) fn math(pool: &Pool, terms: &[Term]) -> String {
             Term::Formula(expr) => pool.format(*expr),
             Term::Factor(expr) => {
                 let text = pool.format(*expr);
-                if matches!(*pool.node(*expr), Node::Sum(_)) { format!("({text})") } else { text }
+                if matches!(*pool.node(*expr), Node::Sum(_)) {
+                    format!("({text})")
+                } else {
+                    text
+                }
             }
             Term::Differential(name) => format!("d{name}"),
             Term::Name(name) | Term::Symbol(name) => name.clone(),

@@ -26,7 +26,9 @@ pub(super) fn declared(document: &mut Document, model: &Model) {
     parameters(document, model);
     noise(document, model);
     if !model.assumptions.is_empty() {
-        document.paragraph(words("Assumptions, used in the analysis and checked before every run:"));
+        document.paragraph(words(
+            "Assumptions, used in the analysis and checked before every run:",
+        ));
         document.list(
             model
                 .assumptions
@@ -74,7 +76,10 @@ fn noise(document: &mut Document, model: &Model) {
         0 => "No Brownian motion drives the model.".to_owned(),
         1 => format!("One Brownian motion drives the model: {}.", names[0]),
         _ if model.declared_correlations.is_empty() => {
-            format!("Independent Brownian motions drive the model: {}.", names.join(", "))
+            format!(
+                "Independent Brownian motions drive the model: {}.",
+                names.join(", ")
+            )
         }
         _ => format!(
             "Brownian motions drive the model: {}. Pairs not named below are independent.",
@@ -121,9 +126,14 @@ pub(super) fn readouts(document: &mut Document, derivation: &Derivation<'_>) {
         return;
     }
     document.section("Readouts");
-    document.paragraph(words("Observed along the paths; Ito's rule is not applied to them."));
+    document.paragraph(words(
+        "Observed along the paths; Ito's rule is not applied to them.",
+    ));
     let lines = model.readouts.iter().map(|r| {
-        let line = Equation::new(vec![Term::Name(r.name.clone())], vec![Term::Formula(r.formula.expr)]);
+        let line = Equation::new(
+            vec![Term::Name(r.name.clone())],
+            vec![Term::Formula(r.formula.expr)],
+        );
         line.remark(r.about.clone().unwrap_or_default())
     });
     document.equations(lines.collect());

@@ -19,15 +19,25 @@ pub struct Style {
 impl Default for Style {
     /// A hundred columns, no colour.
     fn default() -> Self {
-        Self { columns: 100, colour: false }
+        Self {
+            columns: 100,
+            colour: false,
+        }
     }
 }
 
 const INDENT: &str = "  ";
 
+/// Columns beyond which an equation no longer sets the column of the remarks.
+const REMARKS_FROM: usize = 32;
+
 /// Writes a document as plain text.
 pub fn write(document: &Document, style: Style) -> String {
-    let mut writer = Writer { pool: &document.pool, style, out: String::new() };
+    let mut writer = Writer {
+        pool: &document.pool,
+        style,
+        out: String::new(),
+    };
     writer.title(document);
     for block in &document.blocks {
         writer.block(block);
@@ -51,7 +61,9 @@ impl Writer<'_> {
         if !document.subtitle.is_empty() {
             self.line(&document.subtitle);
         }
-        let rule = width(&document.title).max(width(&document.subtitle)).min(self.style.columns);
+        let rule = width(&document.title)
+            .max(width(&document.subtitle))
+            .min(self.style.columns);
         self.line(&"═".repeat(rule));
     }
 
@@ -67,12 +79,14 @@ impl Writer<'_> {
             }
             Block::Heading { text, .. } => {
                 let text = spell::text(self.pool, text);
-                self.gap();
+                self.gap_below_text();
                 let head = self.paint(Mark::Strong, &text).into_owned();
-                self.line(&head);
+                for line in wrap::words(&head, self.style.columns) {
+                    self.line(&line);
+                }
             }
             Block::Paragraph(text) => {
-                self.gap_after_paragraph();
+                self.gap_below_text();
                 let words = self.inline(text);
                 for line in wrap::words(&words, self.style.columns) {
                     self.line(&line);
@@ -104,8 +118,8 @@ impl Writer<'_> {
         }
     }
 
-    /// Two paragraphs in a row are set apart; one below a heading or a table is not.
-    fn gap_after_paragraph(&mut self) {
+    /// Paragraphs and parts are set apart from what stands above, unless that is a section's head.
+    fn gap_below_text(&mut self) {
         let last = self.out.lines().next_back().unwrap_or("");
         if !last.starts_with(['─', '═']) && !last.is_empty() {
             self.gap();
@@ -138,14 +152,30 @@ impl Writer<'_> {
     fn equations(&mut self, equations: &[Equation]) {
         let sides: Vec<(String, String)> = equations
             .iter()
-            .map(|e| (spell::math(self.pool, &e.left), spell::math(self.pool, &e.right)))
+            .map(|e| {
+                (
+                    spell::math(self.pool, &e.left),
+                    spell::math(self.pool, &e.right),
+                )
+            })
             .collect();
         let left = sides.iter().map(|(l, _)| width(l)).max().unwrap_or(0);
-        let relation = equations.iter().map(|e| width(e.relation)).max().unwrap_or(0);
+        let relation = equations
+            .iter()
+            .map(|e| width(e.relation))
+            .max()
+            .unwrap_or(0);
         let hang = INDENT.len() + left + relation + 2;
         let room = self.style.columns.saturating_sub(hang).max(20);
         let bodies: Vec<Vec<String>> = sides.iter().map(|(_, r)| wrap::formula(r, room)).collect();
-        let widest = bodies.iter().filter(|b| b.len() == 1).map(|b| width(&b[0])).max().unwrap_or(0);
+        // Remarks stand in one column behind the short equations; a long one pushes its own away.
+        let short = |b: &&Vec<String>| b.len() == 1 && width(&b[0]) <= REMARKS_FROM;
+        let widest = bodies
+            .iter()
+            .filter(short)
+            .map(|b| width(&b[0]))
+            .max()
+            .unwrap_or(0);
         for ((equation, (l, _)), body) in equations.iter().zip(&sides).zip(&bodies) {
             let pad = " ".repeat(left - width(l));
             let lead = format!("{INDENT}{l}{pad} {:<relation$} ", equation.relation);
@@ -155,9 +185,14 @@ impl Writer<'_> {
 
     /// One equation: its remark stands beside it where there is room, else below.
     fn equation(&mut self, lead: &str, body: &[String], widest: usize, hang: usize, remark: &str) {
-        let beside = hang + widest + 3 + width(remark) <= self.style.columns && body.len() == 1;
+        let end = widest.max(body.first().map_or(0, |b| width(b)));
+        let beside = body.len() == 1 && hang + end + 3 + width(remark) <= self.style.columns;
         for (i, piece) in body.iter().enumerate() {
-            let lead = if i == 0 { lead.to_owned() } else { " ".repeat(hang + 2) };
+            let lead = if i == 0 {
+                lead.to_owned()
+            } else {
+                " ".repeat(hang + 2)
+            };
             if beside && !remark.is_empty() {
                 let pad = " ".repeat(widest.saturating_sub(width(piece)) + 3);
                 self.line(&format!("{lead}{piece}{pad}{remark}"));
@@ -173,29 +208,48 @@ impl Writer<'_> {
     }
 
     fn table(&mut self, table: &Table) {
-        let cells: Vec<Vec<String>> =
-            table.rows.iter().map(|row| row.iter().map(|cell| self.inline(cell)).collect()).collect();
+        let cells: Vec<Vec<String>> = table
+            .rows
+            .iter()
+            .map(|row| row.iter().map(|cell| self.inline(cell)).collect())
+            .collect();
         let mut widths: Vec<usize> = table.columns.iter().map(|c| width(&c.title)).collect();
         for row in &cells {
             for (w, cell) in widths.iter_mut().zip(row) {
                 *w = (*w).max(width(cell));
             }
         }
-        wrap::fit(&mut widths, self.style.columns.saturating_sub(INDENT.len()), 2);
+        let fixed: Vec<bool> = table
+            .columns
+            .iter()
+            .map(|c| c.align == Align::Right)
+            .collect();
+        wrap::fit(
+            &mut widths,
+            &fixed,
+            self.style.columns.saturating_sub(INDENT.len()),
+            2,
+        );
         if table.columns.iter().any(|c| !c.title.is_empty()) {
             let heads: Vec<Vec<String>> = table
                 .columns
                 .iter()
                 .zip(&widths)
                 .map(|(c, w)| {
-                    wrap::words(&c.title, *w).iter().map(|l| self.paint(Mark::Strong, l).into_owned()).collect()
+                    wrap::words(&c.title, *w)
+                        .iter()
+                        .map(|l| self.paint(Mark::Strong, l).into_owned())
+                        .collect()
                 })
                 .collect();
             self.row(table, &heads, &widths);
         }
         for row in &cells {
-            let wrapped: Vec<Vec<String>> =
-                row.iter().zip(&widths).map(|(cell, w)| wrap::words(cell, *w)).collect();
+            let wrapped: Vec<Vec<String>> = row
+                .iter()
+                .zip(&widths)
+                .map(|(cell, w)| wrap::words(cell, *w))
+                .collect();
             self.row(table, &wrapped, &widths);
         }
     }

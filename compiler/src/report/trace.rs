@@ -4,8 +4,12 @@ use super::document::{Equation, Math, Term, symbol};
 use crate::symbolic::trace::Trace;
 
 /// Rules whose note is the left side of an equation (`d/dS`), not a remark about it.
-const NOTE_IS_THE_LEFT_SIDE: &[&str] =
-    &["time derivative", "first derivative", "second derivative", "covariation"];
+const NOTE_IS_THE_LEFT_SIDE: &[&str] = &[
+    "time derivative",
+    "first derivative",
+    "second derivative",
+    "covariation",
+];
 
 /// The log, step by step: `left = before = after`, with a remark.
 pub(super) fn equations(trace: &Trace) -> Vec<Equation> {
@@ -14,7 +18,7 @@ pub(super) fn equations(trace: &Trace) -> Vec<Equation> {
         .iter()
         .map(|step| {
             let mut right = Math::new();
-            if let Some(before) = step.before {
+            if let Some(before) = step.before.filter(|before| *before != step.after) {
                 right.push(Term::Formula(before));
                 right.push(Term::Symbol("=".to_owned()));
             }

@@ -71,12 +71,18 @@ fn operands(text: &str, depth: usize) -> Vec<String> {
     pieces
 }
 
-/// Narrows the widest columns until the row fits.
-pub(super) fn fit(widths: &mut [usize], columns: usize, gap: usize) {
-    const NARROWEST: usize = 12;
+/// Narrows the widest columns of words until the row fits; columns of numbers (`fixed`) keep their
+/// width, since a number that is broken in two is hard to read.
+pub(super) fn fit(widths: &mut [usize], fixed: &[bool], columns: usize, gap: usize) {
+    const NARROWEST: usize = 10;
     loop {
         let total: usize = widths.iter().map(|w| w + gap).sum();
-        let Some(widest) = widths.iter_mut().max() else { return };
+        let words = widths
+            .iter_mut()
+            .zip(fixed)
+            .filter(|(_, fixed)| !**fixed)
+            .map(|(w, _)| w);
+        let Some(widest) = words.max() else { return };
         if total <= columns + gap || *widest <= NARROWEST {
             return;
         }
@@ -102,10 +108,9 @@ mod tests {
 
     #[test]
     fn the_widest_column_gives_way() {
-        let mut widths = [10, 80, 30];
-        fit(&mut widths, 100, 2);
-        assert_eq!(widths.iter().map(|w| w + 2).sum::<usize>(), 102);
-        assert_eq!(widths[0], 10);
-        assert_eq!(widths[2], 30);
+        let mut widths = [10, 70, 20, 40];
+        fit(&mut widths, &[false, false, false, true], 110, 2);
+        assert_eq!(widths.iter().map(|w| w + 2).sum::<usize>(), 112);
+        assert_eq!([widths[0], widths[2], widths[3]], [10, 20, 40]);
     }
 }

@@ -303,6 +303,10 @@ impl Moments {
         formula: Expr,
         answer: impl Fn(&Equations<'_>, Expr) -> Option<T>,
     ) -> Option<T> {
+        // The generator says nothing of a formula with a kink.
+        if self.model.pool.has_kink(formula).is_some() {
+            return None;
+        }
         self.charts(formula).into_iter().find_map(|chart| {
             let inside = chart.express(formula);
             if !chart.ends_hold(&self.dynamics, inside) {

@@ -24,8 +24,11 @@ pub(super) enum Statistic {
 }
 
 /// Levels of the quantiles that are checked, with their names.
-pub(super) const LEVELS: [(f64, &str); 3] =
-    [(0.05, "5 % quantile"), (0.5, "median"), (0.95, "95 % quantile")];
+pub(super) const LEVELS: [(f64, &str); 3] = [
+    (0.05, "5 % quantile"),
+    (0.5, "median"),
+    (0.95, "95 % quantile"),
+];
 
 /// An analytic value.
 #[derive(Clone, Copy, Debug)]
@@ -63,25 +66,41 @@ impl Analyst<'_> {
     pub(super) fn number(&self, formula: Expr, time: f64) -> Option<f64> {
         let mut at = self.parameters.clone();
         at.insert(self.model.time, time);
-        self.model.pool.eval_f64(formula, &at).filter(|v| v.is_finite())
+        self.model
+            .pool
+            .eval_f64(formula, &at)
+            .filter(|v| v.is_finite())
     }
 
     /// The value of a formula at time 0.
     pub(super) fn at_start(&self, formula: Expr) -> Option<f64> {
-        let initial = self.model.states.iter().map(|s| (s.symbol, s.initial.expr)).collect();
+        let initial = self
+            .model
+            .states
+            .iter()
+            .map(|s| (s.symbol, s.initial.expr))
+            .collect();
         self.number(self.model.pool.substitute(formula, &initial), 0.0)
     }
 
     fn mean(&self, formula: Expr, time: f64) -> Option<f64> {
-        self.moments.numeric_mean(formula, &self.parameters, time).filter(|v| v.is_finite())
+        self.moments
+            .numeric_mean(formula, &self.parameters, time)
+            .filter(|v| v.is_finite())
     }
 
     /// The central moments of a formula; none where its mean or variance is not known.
     pub(super) fn central(&self, formula: Expr, time: f64) -> Option<Central> {
         let mean = self.mean(formula, time)?;
-        let variance = self.moments.numeric_variance(formula, &self.parameters, time)?;
+        let variance = self
+            .moments
+            .numeric_variance(formula, &self.parameters, time)?;
         let variance = Some(variance).filter(|v| v.is_finite())?.max(0.0);
-        Some(Central { mean, variance, standard: self.standard(formula, mean, variance, time) })
+        Some(Central {
+            mean,
+            variance,
+            standard: self.standard(formula, mean, variance, time),
+        })
     }
 
     /// Powers of a variable that is narrow beside its mean cancel digits: then none are given.
@@ -100,25 +119,38 @@ impl Analyst<'_> {
         let [third, fourth, fifth, sixth] = found;
         // What every distribution obeys (Hankel determinants of low order); rounding that breaks it
         // has spoilt the moments.
-        let sound = fourth >= (1.0 + third * third) * 0.999 && sixth * (1.0 + 1e-6) >= fourth * fourth / 1.001
+        let sound = fourth >= (1.0 + third * third) * 0.999
+            && sixth * (1.0 + 1e-6) >= fourth * fourth / 1.001
             && sixth * fourth * 1.001 >= fifth * fifth;
         sound.then_some(found)
     }
 
     /// The covariance of two formulas.
     pub(super) fn covariance(&self, a: Expr, b: Expr, time: f64) -> Option<f64> {
-        self.moments.numeric_covariance(a, b, &self.parameters, time).filter(|v| v.is_finite())
+        self.moments
+            .numeric_covariance(a, b, &self.parameters, time)
+            .filter(|v| v.is_finite())
     }
 
     /// A quantile of a law and the unit error of its sample, sqrt(p (1 - p)) / density.
-    pub(super) fn quantile(&self, law: &NormalLaw, level: f64, near: f64, time: f64) -> Option<Expected> {
+    pub(super) fn quantile(
+        &self,
+        law: &NormalLaw,
+        level: f64,
+        near: f64,
+        time: f64,
+    ) -> Option<Expected> {
         let cdf = |x: f64| self.moments.cdf(law, x, &self.parameters, time);
         let value = invert(&cdf, level, near)?;
         let step = 1e-4 * value.abs().max(1e-8);
         let density = (cdf(value + step)? - cdf(value - step)?) / (2.0 * step);
         let unit_error = (level * (1.0 - level)).sqrt() / density;
         let paths_needed = 100.0 / (level * (1.0 - level));
-        (unit_error.is_finite()).then_some(Expected { value, unit_error: Some(unit_error), paths_needed })
+        (unit_error.is_finite()).then_some(Expected {
+            value,
+            unit_error: Some(unit_error),
+            paths_needed,
+        })
     }
 }
 
@@ -141,13 +173,22 @@ fn invert(cdf: &dyn Fn(f64) -> Option<f64>, level: f64, near: f64) -> Option<f64
         if middle <= low || middle >= high {
             return Some(middle);
         }
-        if at(middle) < level { low = middle } else { high = middle }
+        if at(middle) < level {
+            low = middle
+        } else {
+            high = middle
+        }
     }
 }
 
 impl Central {
     fn moments(&self) -> [f64; 4] {
         self.standard.unwrap_or(NORMAL)
+    }
+
+    /// Whether the variable varies at all.
+    pub(super) fn is_random(&self) -> bool {
+        self.variance > 0.0
     }
 
     /// The mean as something to check.
@@ -163,10 +204,16 @@ impl Central {
     /// The variance as something to check: its sample's variance is (m4 - m2^2)/n.
     pub(super) fn expected_variance(&self) -> Expected {
         let [_, fourth, ..] = self.moments();
-        let spread = self.standard.map(|_| self.variance * (fourth - 1.0).max(0.0).sqrt());
+        let spread = self
+            .standard
+            .map(|_| self.variance * (fourth - 1.0).max(0.0).sqrt());
         Expected {
             value: self.variance,
-            unit_error: if self.variance == 0.0 { Some(0.0) } else { spread },
+            unit_error: if self.variance == 0.0 {
+                Some(0.0)
+            } else {
+                spread
+            },
             paths_needed: 1e4 * fourth / 3.0,
         }
     }
@@ -193,9 +240,15 @@ mod tests {
     #[test]
     fn the_errors_of_a_normal_sample_are_the_textbooks() {
         // Cramer (1946), Mathematical Methods of Statistics, section 29.3.
-        let normal = Central { mean: 1.0, variance: 4.0, standard: Some(NORMAL) };
+        let normal = Central {
+            mean: 1.0,
+            variance: 4.0,
+            standard: Some(NORMAL),
+        };
         assert_eq!(normal.expected_mean().unit_error, Some(2.0));
-        assert!((normal.expected_variance().unit_error.unwrap() - 4.0 * 2_f64.sqrt()).abs() < 1e-12);
+        assert!(
+            (normal.expected_variance().unit_error.unwrap() - 4.0 * 2_f64.sqrt()).abs() < 1e-12
+        );
         let skewness = normal.expected_skewness().unwrap();
         assert!((skewness.unit_error.unwrap() - 6_f64.sqrt()).abs() < 1e-12);
     }
@@ -205,7 +258,10 @@ mod tests {
         let cdf = |x: f64| (x > 0.0).then(|| 1.0 - (-x).exp());
         for near in [0.01, 0.7, 5.0] {
             let median = invert(&cdf, 0.5, near);
-            assert!(median.is_some_and(|m| (m - 2_f64.ln()).abs() < 1e-12), "{near}: {median:?}");
+            assert!(
+                median.is_some_and(|m| (m - 2_f64.ln()).abs() < 1e-12),
+                "{near}: {median:?}"
+            );
         }
         assert_eq!(invert(&cdf, 0.5, -1.0), None);
     }

@@ -1,13 +1,14 @@
 //! Verdicts on statistics: z-scores, the family's threshold, the allowance for discretisation.
 
-use driftwright_runtime::math::normal_quantile;
 use driftwright_runtime::Unfused;
+use driftwright_runtime::math::normal_quantile;
 
 /// The probability that any of a model's checks fails although all is right.
 pub(super) const FAMILY_ERROR: f64 = 1e-3;
 
-/// Deviations that rounding explains, relative to the size of the value, where there is no noise.
-const ROUNDING: f64 = 1e-9;
+/// Rounding of a path, relative to the size of its values: the accuracy that is asked for where there
+/// is no noise to hide behind.
+pub(super) const ROUNDING: f64 = 1e-9;
 
 /// One statistic of one quantity at one time, held against its analytic value.
 #[derive(Clone, Debug)]
@@ -26,6 +27,8 @@ pub(super) struct Check {
     pub(super) std_error: f64,
     /// Estimated bias of discretisation; none where the scheme is exact.
     pub(super) bias: Option<f64>,
+    /// Deviation that rounding alone explains.
+    pub(super) rounding: f64,
     /// Where the analytic value comes from.
     pub(super) source: String,
     /// The claim that is put to the test, if it is one.
@@ -36,18 +39,18 @@ impl Check {
     /// Deviation of the sample in standard errors; 0 where both agree without noise.
     pub(super) fn z(&self) -> f64 {
         let gap = self.sample - self.analytic;
-        if gap.abs() <= self.rounding() { 0.0 } else { gap / self.std_error }
+        if gap.abs() <= self.rounding {
+            0.0
+        } else {
+            gap / self.std_error
+        }
     }
 
     /// Whether the deviation is within the threshold, and the estimated bias beside it.
     pub(super) fn passed(&self, threshold: f64) -> bool {
         let bias = self.bias.map_or(0.0, f64::abs);
-        let allowed = threshold * self.std_error + bias + self.rounding();
+        let allowed = threshold * self.std_error + bias + self.rounding;
         (self.sample - self.analytic).abs() <= allowed
-    }
-
-    fn rounding(&self) -> f64 {
-        ROUNDING * self.analytic.abs().max(f64::MIN_POSITIVE)
     }
 }
 
@@ -65,8 +68,18 @@ mod tests {
     #[test]
     fn thresholds_grow_with_the_family() {
         // Two-sided quantiles of the normal law at 0.001/m.
-        for (checks, expected) in [(1, 3.29), (20, 4.06), (100, 4.42), (500, 4.75), (1000, 4.89)] {
-            assert!((threshold(checks) - expected).abs() < 0.006, "{checks}: {}", threshold(checks));
+        for (checks, expected) in [
+            (1, 3.29),
+            (20, 4.06),
+            (100, 4.42),
+            (500, 4.75),
+            (1000, 4.89),
+        ] {
+            assert!(
+                (threshold(checks) - expected).abs() < 0.006,
+                "{checks}: {}",
+                threshold(checks)
+            );
         }
     }
 
@@ -79,6 +92,7 @@ mod tests {
             sample,
             std_error,
             bias,
+            rounding: ROUNDING,
             source: String::new(),
             claim: None,
         }

@@ -4,7 +4,7 @@
 use driftwright_runtime::{Run, Simulator};
 
 use super::expect::{Analyst, Expected, LEVELS, Statistic};
-use super::judge::Check;
+use super::judge::{Check, ROUNDING};
 use super::targets::{Origin, Target, Targets};
 use crate::back::interpret::Interpreter;
 use crate::cli::run::Settings;
@@ -33,12 +33,22 @@ pub(super) fn measure(
 ) -> Result<Measured, Failure> {
     let program = program::lower(&targets.model, &compiled.plan);
     let interpreter = Interpreter::new(&program, &settings.parameters)?;
-    let bar = progress::bar(settings.paths, &format!("verifying {}", compiled.model.name));
-    let run = Run { progress: Some(&bar), ..settings.run() };
+    let bar = progress::bar(
+        settings.paths,
+        &format!("verifying {}", compiled.model.name),
+    );
+    let run = Run {
+        progress: Some(&bar),
+        ..settings.run()
+    };
     let coupled = interpreter.shape().approximate;
     let request = Request {
         levels: LEVELS.iter().map(|(level, _)| *level).collect(),
-        pairs: if coupled { coupled_pairs(targets) } else { targets.pairs.clone() },
+        pairs: if coupled {
+            coupled_pairs(targets)
+        } else {
+            targets.pairs.clone()
+        },
         coupled,
         writer: None,
     };
@@ -63,27 +73,41 @@ impl Measured {
     fn observed(&self, statistic: &Statistic, time: usize, shift: (usize, usize)) -> Observed {
         let summary = |output: &usize| &self.collected.moments[time][output + shift.0];
         match statistic {
-            Statistic::Mean(output) => {
-                Observed { value: summary(output).mean, own_error: summary(output).std_error() }
-            }
+            Statistic::Mean(output) => Observed {
+                value: summary(output).mean,
+                own_error: summary(output).std_error(),
+            },
             Statistic::Variance(output) => {
                 let s = summary(output);
-                Observed { value: s.variance(), own_error: s.variance_std_error() }
+                Observed {
+                    value: s.variance(),
+                    own_error: s.variance_std_error(),
+                }
             }
-            Statistic::Skewness(output) => {
-                Observed { value: summary(output).skewness(), own_error: f64::NAN }
-            }
+            Statistic::Skewness(output) => Observed {
+                value: summary(output).skewness(),
+                own_error: f64::NAN,
+            },
             Statistic::Covariance(pair) => {
                 let c = &self.collected.covariances[time][pair + shift.1];
-                Observed { value: c.covariance(), own_error: c.std_error() }
+                Observed {
+                    value: c.covariance(),
+                    own_error: c.std_error(),
+                }
             }
             Statistic::Quantile(output, level, _) => {
                 let value = self.collected.quantiles.get(time, output + shift.0, *level);
-                Observed { value, own_error: f64::NAN }
+                Observed {
+                    value,
+                    own_error: f64::NAN,
+                }
             }
             Statistic::Vanishing(output) => {
                 let s = summary(output);
-                Observed { value: s.maximum.max(-s.minimum), own_error: f64::NAN }
+                Observed {
+                    value: s.maximum.max(-s.minimum),
+                    own_error: f64::NAN,
+                }
             }
         }
     }
@@ -98,10 +122,21 @@ pub(super) fn checks(
     settings: &Settings,
     run: &Measured,
 ) -> (Vec<Check>, Vec<String>) {
-    let judge = Judge { analyst, compiled, targets, settings, run };
+    let judge = Judge {
+        analyst,
+        compiled,
+        targets,
+        settings,
+        run,
+    };
     let (mut checks, mut skipped) = (Vec::new(), Vec::new());
     for target in &targets.list {
-        for (i, time) in settings.times.iter().enumerate().filter(|(_, time)| **time > 0.0) {
+        for (i, time) in settings
+            .times
+            .iter()
+            .enumerate()
+            .filter(|(_, time)| **time > 0.0)
+        {
             match judge.check(target, i, *time) {
                 Some(Ok(check)) => checks.push(check),
                 Some(Err(reason)) if !skipped.contains(&reason) => skipped.push(reason),
@@ -133,7 +168,9 @@ impl Judge<'_> {
                 grouped(expected.paths_needed.ceil() as u64)
             )));
         }
-        let std_error = expected.unit_error.map_or(observed.own_error, |e| e / paths.sqrt());
+        let std_error = expected
+            .unit_error
+            .map_or(observed.own_error, |e| e / paths.sqrt());
         if std_error.is_nan() {
             return None;
         }
@@ -146,6 +183,7 @@ impl Judge<'_> {
             sample: observed.value,
             std_error,
             bias: self.bias(target, index, observed.value),
+            rounding: self.rounding(target, index, expected.value),
             source,
             claim,
         }))
@@ -156,8 +194,15 @@ impl Judge<'_> {
         // What a claim says, with the error that analysis knows, where it does.
         let claimed = |value: Option<f64>, derived: Option<Expected>| {
             let value = value?;
-            let unknown = Expected { value, unit_error: None, paths_needed: 0.0 };
-            Some(Expected { value, ..derived.unwrap_or(unknown) })
+            let unknown = Expected {
+                value,
+                unit_error: None,
+                paths_needed: 0.0,
+            };
+            Some(Expected {
+                value,
+                ..derived.unwrap_or(unknown)
+            })
         };
         let derived = match &target.statistic {
             Statistic::Mean(output) => known(output).map(|c| c.expected_mean()),
@@ -166,10 +211,19 @@ impl Judge<'_> {
             Statistic::Covariance(pair) => {
                 let (i, j) = self.targets.pairs[*pair];
                 let (a, b) = (self.targets.outputs[i], self.targets.outputs[j]);
-                let value = self.analyst.covariance(a, b, time);
-                value.map(|value| Expected { value, unit_error: None, paths_needed: 0.0 })
+                let random = [a, b]
+                    .iter()
+                    .all(|e| self.analyst.central(*e, time).is_none_or(|c| c.is_random()));
+                let value = self.analyst.covariance(a, b, time).filter(|_| random);
+                value.map(|value| Expected {
+                    value,
+                    unit_error: None,
+                    paths_needed: 0.0,
+                })
             }
-            Statistic::Quantile(_, level, law) => self.analyst.quantile(law, LEVELS[*level].0, near, time),
+            Statistic::Quantile(_, level, law) => {
+                self.analyst.quantile(law, LEVELS[*level].0, near, time)
+            }
             Statistic::Vanishing(_) => None,
         };
         match &target.origin {
@@ -179,8 +233,26 @@ impl Judge<'_> {
             Origin::Zero => {
                 let scale = 1.0_f64.max(near.abs().min(1.0));
                 let unit_error = Some(VANISHING * scale * (self.settings.paths as f64).sqrt());
-                Some(Expected { value: 0.0, unit_error, paths_needed: 0.0 })
+                Some(Expected {
+                    value: 0.0,
+                    unit_error,
+                    paths_needed: 0.0,
+                })
             }
+        }
+    }
+
+    /// Rounding of a statistic: of first order in the values, of second for those that are squares.
+    fn rounding(&self, target: &Target, index: usize, value: f64) -> f64 {
+        let size = |output: usize| ROUNDING * self.run.collected.moments[index][output].mean.abs();
+        let own = ROUNDING * value.abs();
+        match &target.statistic {
+            Statistic::Variance(output) => own + size(*output) * size(*output),
+            Statistic::Covariance(pair) => {
+                let (i, j) = self.targets.pairs[*pair];
+                own + size(i) * size(j)
+            }
+            _ => own,
         }
     }
 
@@ -227,7 +299,9 @@ impl Judge<'_> {
         };
         let model = &self.compiled.model;
         let plan = &self.compiled.plan;
-        let symbols = outputs.iter().flat_map(|&o| model.pool.symbols_of(self.targets.outputs[o]));
+        let symbols = outputs
+            .iter()
+            .flat_map(|&o| model.pool.symbols_of(self.targets.outputs[o]));
         symbols
             .filter_map(|symbol| model.state_of(symbol))
             .map(|state| &plan.groups[plan.group_of(state)])

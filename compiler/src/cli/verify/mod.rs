@@ -53,23 +53,38 @@ pub(super) fn run(args: &VerifyArgs) -> Outcome {
 }
 
 fn verify_file(args: &VerifyArgs, path: &Path) -> Result<(Status, Option<Value>), Failure> {
-    let Some(loaded) = load_and_show(path) else { return Ok((Status::Wrong, None)) };
-    let Some(compiled) = loaded.compiled() else { return Ok((Status::Wrong, None)) };
+    let Some(loaded) = load_and_show(path) else {
+        return Ok((Status::Wrong, None));
+    };
+    let Some(compiled) = loaded.compiled() else {
+        return Ok((Status::Wrong, None));
+    };
     let verification = verify(args, &loaded, compiled)?;
     let document = match args.run.format {
         Format::Json => Some(show::json(&verification, compiled)),
         Format::Human => {
-            let style = Style { colour: output::colour_on(&io::stdout()), ..Style::default() };
+            let style = Style {
+                colour: output::colour_on(&io::stdout()),
+                ..Style::default()
+            };
             let document = show::document(&verification, compiled);
             output::print(&format!("{}\n", text::write(&document, style)))?;
             None
         }
     };
-    let held = if verification.passed { Status::Well } else { Status::NotHeld };
+    let held = if verification.passed {
+        Status::Well
+    } else {
+        Status::NotHeld
+    };
     Ok((held.max(loaded.status()), document))
 }
 
-fn verify(args: &VerifyArgs, loaded: &Loaded, compiled: &Compiled) -> Result<Verification, Failure> {
+fn verify(
+    args: &VerifyArgs,
+    loaded: &Loaded,
+    compiled: &Compiled,
+) -> Result<Verification, Failure> {
     let model = &compiled.model;
     let settings = Settings::new(&args.run, model, &compiled.plan)?;
     let parameters = model
@@ -77,11 +92,22 @@ fn verify(args: &VerifyArgs, loaded: &Loaded, compiled: &Compiled) -> Result<Ver
         .iter()
         .filter_map(|p| settings.parameters.get(&p.name).map(|v| (p.symbol, *v)))
         .collect();
-    let analyst = expect::Analyst { model, moments: &compiled.moments, parameters };
+    let analyst = expect::Analyst {
+        model,
+        moments: &compiled.moments,
+        parameters,
+    };
     let targets = Targets::new(&analyst, &compiled.claims);
     let run = measure::measure(compiled, &targets, &settings)?;
     let (checks, skipped) = measure::checks(&analyst, compiled, &targets, &settings, &run);
     let threshold = judge::threshold(checks.len());
     let passed = checks.iter().all(|c| c.passed(threshold)) && loaded.status() == Status::Well;
-    Ok(Verification { settings, checks, skipped, threshold, passed, run })
+    Ok(Verification {
+        settings,
+        checks,
+        skipped,
+        threshold,
+        passed,
+        run,
+    })
 }

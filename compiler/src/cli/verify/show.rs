@@ -14,10 +14,16 @@ use crate::report::{self, Document};
 /// `verify --format json`.
 pub(super) fn json(verification: &Verification, compiled: &Compiled) -> Value {
     let settings = &verification.settings;
-    let checks: Vec<Value> =
-        verification.checks.iter().map(|c| check(c, verification.threshold)).collect();
-    let claims: serde_json::Map<String, Value> =
-        compiled.claims.iter().map(|c| (c.name.clone(), c.verdict.name().into())).collect();
+    let checks: Vec<Value> = verification
+        .checks
+        .iter()
+        .map(|c| check(c, verification.threshold))
+        .collect();
+    let claims: serde_json::Map<String, Value> = compiled
+        .claims
+        .iter()
+        .map(|c| (c.name.clone(), c.verdict.name().into()))
+        .collect();
     let failures = verification.run.collected.failures;
     json!({
         "model": compiled.model.name,
@@ -81,7 +87,10 @@ fn derivation(document: &mut Document, compiled: &Compiled) {
 }
 
 fn table(verification: &Verification, model: &Model) -> Table {
-    let unit = model.time_unit.as_ref().map_or("time".to_owned(), |u| format!("time ({u})"));
+    let unit = model
+        .time_unit
+        .as_ref()
+        .map_or("time".to_owned(), |u| format!("time ({u})"));
     let approximate = verification.checks.iter().any(|c| c.bias.is_some());
     let mut columns = vec![
         ("quantity", Align::Left),
@@ -97,29 +106,52 @@ fn table(verification: &Verification, model: &Model) -> Table {
     let mut table = Table::new([]);
     table.columns = columns
         .into_iter()
-        .map(|(title, align)| report::document::Column { title: title.to_owned(), align })
+        .map(|(title, align)| report::document::Column {
+            title: title.to_owned(),
+            align,
+        })
         .collect();
-    table.rows = verification.checks.iter().map(|c| row(c, verification.threshold, approximate)).collect();
+    table.rows = verification
+        .checks
+        .iter()
+        .map(|c| row(c, verification.threshold, approximate))
+        .collect();
     table
 }
 
 fn row(check: &Check, threshold: f64, approximate: bool) -> Vec<Text> {
-    let mark = if check.passed(threshold) { Mark::Good } else { Mark::Bad };
+    let mark = if check.passed(threshold) {
+        Mark::Good
+    } else {
+        Mark::Bad
+    };
     let z = format!("{:+.2}", check.z());
-    let z = if check.passed(threshold) { z } else { format!("{z} FAILS") };
+    let z = if check.passed(threshold) {
+        z
+    } else {
+        format!("{z} FAILS")
+    };
     let mut cells = vec![
         code(&check.quantity),
         words(check.statistic),
         words(significant(check.time, 6)),
-        words(significant(check.analytic, 6)),
+        words(analytic(check)),
         words(with_error(check.sample, check.std_error)),
     ];
     if approximate {
-        cells.push(words(check.bias.map_or(String::new(), |b| significant(b, 2))));
+        cells.push(words(
+            check.bias.map_or(String::new(), |b| significant(b, 2)),
+        ));
     }
     cells.push(vec![Inline::Marked(mark, z)]);
     cells.push(words(check.source.clone()));
     cells
+}
+
+/// The analytic value; what is nothing beside the standard error is rounding, and shown as 0.
+fn analytic(check: &Check) -> String {
+    let negligible = check.analytic.abs() < 1e-6 * check.std_error;
+    significant(if negligible { 0.0 } else { check.analytic }, 6)
 }
 
 fn remarks(verification: &Verification) -> Vec<Text> {
@@ -133,7 +165,12 @@ fn remarks(verification: &Verification) -> Vec<Text> {
              beside the sampling error",
         ));
     }
-    items.extend(verification.skipped.iter().map(|reason| words(format!("not tested: {reason}"))));
+    items.extend(
+        verification
+            .skipped
+            .iter()
+            .map(|reason| words(format!("not tested: {reason}"))),
+    );
     let failures = verification.run.collected.failures;
     for (count, what) in [
         (failures.non_finite, "came to a value that is not finite"),
@@ -142,7 +179,10 @@ fn remarks(verification: &Verification) -> Vec<Text> {
         if count > 0 {
             items.push(vec![
                 Inline::Marked(Mark::Bad, grouped(count)),
-                Inline::Words(format!(" of {} paths {what}", grouped(verification.settings.paths))),
+                Inline::Words(format!(
+                    " of {} paths {what}",
+                    grouped(verification.settings.paths)
+                )),
             ]);
         }
     }
@@ -150,19 +190,35 @@ fn remarks(verification: &Verification) -> Vec<Text> {
 }
 
 fn conclusion(verification: &Verification, compiled: &Compiled) -> Text {
-    let failed = verification.checks.iter().filter(|c| !c.passed(verification.threshold)).count();
-    let refuted = compiled.claims.iter().filter(|c| c.verdict == Verdict::Refuted).count();
+    let failed = verification
+        .checks
+        .iter()
+        .filter(|c| !c.passed(verification.threshold))
+        .count();
+    let refuted = compiled
+        .claims
+        .iter()
+        .filter(|c| c.verdict == Verdict::Refuted)
+        .count();
     let total = verification.checks.len();
     let terms = format!(
         "threshold {:.2} standard errors, family-wise error {FAMILY_ERROR}",
         verification.threshold
     );
     if total == 0 && refuted == 0 {
-        let why = ": no moment or law of this model is known to the compiler, and no claim names one";
-        return vec![Inline::Marked(Mark::Open, "Nothing to check".into()), Inline::Words(why.into())];
+        let why =
+            ": no moment or law of this model is known to the compiler, and no claim names one";
+        return vec![
+            Inline::Marked(Mark::Open, "Nothing to check".into()),
+            Inline::Words(why.into()),
+        ];
     }
     if verification.passed {
-        let worst = verification.checks.iter().map(|c| c.z().abs()).fold(0.0, f64::max);
+        let worst = verification
+            .checks
+            .iter()
+            .map(|c| c.z().abs())
+            .fold(0.0, f64::max);
         return vec![
             Inline::Marked(Mark::Good, format!("All {total} checks hold")),
             Inline::Words(format!(": largest |z| {worst:.2}, {terms}.")),
@@ -173,7 +229,10 @@ fn conclusion(verification: &Verification, compiled: &Compiled) -> Text {
         reasons.push(format!("{failed} of {total} checks fail"));
     }
     if refuted > 0 {
-        reasons.push(format!("{refuted} of {} claims are refuted", compiled.claims.len()));
+        reasons.push(format!(
+            "{refuted} of {} claims are refuted",
+            compiled.claims.len()
+        ));
     }
     vec![
         Inline::Marked(Mark::Bad, "Not verified".into()),

@@ -50,12 +50,21 @@ impl Targets {
     pub(super) fn new(analyst: &Analyst<'_>, claims: &[ClaimResult]) -> Self {
         let model = analyst.model.clone();
         let pool = &model.pool;
-        let states = model.states.iter().map(|s| (s.name.clone(), pool.var(s.symbol)));
+        let states = model
+            .states
+            .iter()
+            .map(|s| (s.name.clone(), pool.var(s.symbol)));
         let named = model.derived.iter().chain(&model.readouts);
-        let quantities: Vec<(String, Expr)> =
-            states.chain(named.map(|n| (n.name.clone(), n.formula.expr))).collect();
+        let quantities: Vec<(String, Expr)> = states
+            .chain(named.map(|n| (n.name.clone(), n.formula.expr)))
+            .collect();
         let outputs = quantities.iter().map(|(_, e)| *e).collect();
-        let mut targets = Self { model, outputs, pairs: Vec::new(), list: Vec::new() };
+        let mut targets = Self {
+            model,
+            outputs,
+            pairs: Vec::new(),
+            list: Vec::new(),
+        };
         for (output, (name, formula)) in quantities.iter().enumerate() {
             targets.quantity(analyst, output, name, *formula);
         }
@@ -70,13 +79,22 @@ impl Targets {
 
     fn push(&mut self, quantity: &str, statistic: Statistic, origin: Origin, claim: Option<&str>) {
         let claim = claim.map(str::to_owned);
-        self.list.push(Target { quantity: quantity.to_owned(), statistic, origin, claim });
+        self.list.push(Target {
+            quantity: quantity.to_owned(),
+            statistic,
+            origin,
+            claim,
+        });
     }
 
     fn quantity(&mut self, analyst: &Analyst<'_>, output: usize, name: &str, formula: Expr) {
         let closed = analyst.moments.mean(formula).map(|m| m.source);
         let source = closed.unwrap_or_else(|| "moment equations, solved as numbers".to_owned());
-        for statistic in [Statistic::Mean(output), Statistic::Variance(output), Statistic::Skewness(output)] {
+        for statistic in [
+            Statistic::Mean(output),
+            Statistic::Variance(output),
+            Statistic::Skewness(output),
+        ] {
             self.push(name, statistic, Origin::Derived(source.clone()), None);
         }
         if output < self.model.states.len() {
@@ -84,7 +102,14 @@ impl Targets {
         }
     }
 
-    fn law(&mut self, analyst: &Analyst<'_>, output: usize, name: &str, formula: Expr, claim: Option<&str>) {
+    fn law(
+        &mut self,
+        analyst: &Analyst<'_>,
+        output: usize,
+        name: &str,
+        formula: Expr,
+        claim: Option<&str>,
+    ) {
         if let Some(law) = analyst.moments.normal_law(formula) {
             let source = format!("{} law", law.name.name().replace('_', " "));
             for level in 0..LEVELS.len() {
@@ -98,22 +123,34 @@ impl Targets {
         let states = self.model.states.len();
         for i in 0..states {
             for j in i + 1..states {
-                let name = format!("{}, {}", self.model.states[i].name, self.model.states[j].name);
+                let name = format!(
+                    "{}, {}",
+                    self.model.states[i].name, self.model.states[j].name
+                );
                 let found = analyst.moments.covariance(self.outputs[i], self.outputs[j]);
-                let source =
-                    found.map_or("moment equations, solved as numbers".to_owned(), |m| m.source);
+                let source = found.map_or("moment equations, solved as numbers".to_owned(), |m| {
+                    m.source
+                });
                 let pair = self.pair(i, j);
-                self.push(&name, Statistic::Covariance(pair), Origin::Derived(source), None);
+                self.push(
+                    &name,
+                    Statistic::Covariance(pair),
+                    Origin::Derived(source),
+                    None,
+                );
             }
         }
     }
 
     fn pair(&mut self, i: usize, j: usize) -> usize {
         let wanted = (i, j);
-        self.pairs.iter().position(|p| *p == wanted).unwrap_or_else(|| {
-            self.pairs.push(wanted);
-            self.pairs.len() - 1
-        })
+        self.pairs
+            .iter()
+            .position(|p| *p == wanted)
+            .unwrap_or_else(|| {
+                self.pairs.push(wanted);
+                self.pairs.len() - 1
+            })
     }
 
     /// The output of a formula; one that is not yet observed becomes a readout.
@@ -123,7 +160,11 @@ impl Targets {
         }
         self.model.readouts.push(Named {
             name: text.to_owned(),
-            formula: Formula { expr: formula, text: text.to_owned(), span: Span::default() },
+            formula: Formula {
+                expr: formula,
+                text: text.to_owned(),
+                span: Span::default(),
+            },
             about: None,
             unit: None,
             span: Span::default(),
@@ -142,11 +183,21 @@ impl Targets {
         match &claim.kind {
             ClaimKind::MeanOf { of, is } if !known(self, of) => {
                 let output = self.output(&of.text, of.expr);
-                self.push(&of.text, Statistic::Mean(output), Origin::Claimed(is.expr), name);
+                self.push(
+                    &of.text,
+                    Statistic::Mean(output),
+                    Origin::Claimed(is.expr),
+                    name,
+                );
             }
             ClaimKind::VarianceOf { of, is } if !known(self, of) => {
                 let output = self.output(&of.text, of.expr);
-                self.push(&of.text, Statistic::Variance(output), Origin::Claimed(is.expr), name);
+                self.push(
+                    &of.text,
+                    Statistic::Variance(output),
+                    Origin::Claimed(is.expr),
+                    name,
+                );
             }
             ClaimKind::CovarianceOf { of: [x, y], is } => {
                 let (i, j) = (self.output(&x.text, x.expr), self.output(&y.text, y.expr));
@@ -154,7 +205,12 @@ impl Targets {
                 let pair = self.pair(i.min(j), i.max(j));
                 if open || pair == pairs {
                     let both = format!("{}, {}", x.text, y.text);
-                    self.push(&both, Statistic::Covariance(pair), Origin::Claimed(is.expr), name);
+                    self.push(
+                        &both,
+                        Statistic::Covariance(pair),
+                        Origin::Claimed(is.expr),
+                        name,
+                    );
                 }
             }
             ClaimKind::Martingale { of } => {
