@@ -5,6 +5,8 @@
 //! instruction set that this processor has been seen to have, which is what makes the
 //! calls below sound.
 
+#![allow(unsafe_code)] // calls of functions compiled for more than the baseline
+
 use crate::arith::{Arith, ArithmeticClass, Fused, Unfused};
 
 /// The instruction sets the runtime is compiled for. The bits of a path do not depend on it.

@@ -6,6 +6,8 @@
 //! paths, bit for bit, on any number of threads, in any part of a run and on any machine
 //! of the class.
 
+#![deny(unsafe_code)]
+
 mod arith;
 pub mod collect;
 mod dispatch;

@@ -36,6 +36,55 @@ pub struct Shape<'a> {
 ///
 /// `step` and `observe` are `#[inline(always)]` in every implementation: the driver is
 /// compiled for several instruction sets, and only what is inlined into it is.
+///
+/// ```
+/// use std::borrow::Cow;
+/// use driftwright_runtime::{
+///     Arith, Grid, LANES, Lane, Run, Shape, Simulator, Source, StepError, collect::Moments, simulate,
+/// };
+///
+/// /// Brownian motion with a volatility.
+/// struct Motion { sigma: f64 }
+///
+/// static SOURCES: [Source; 1] = [Source::new("W")];
+/// static OUTPUTS: [Cow<'static, str>; 1] = [Cow::Borrowed("X")];
+///
+/// impl Simulator for Motion {
+///     fn shape(&self) -> Shape<'_> {
+///         Shape {
+///             states: 1, step_values: 1, step_scratch: 0, sources: &SOURCES, outputs: &OUTPUTS,
+///             observation_values: 0, observation_scratch: 0, left_domain: None,
+///             time_dependent: false, approximate: false,
+///         }
+///     }
+///     fn start(&self, states: &mut [f64]) {
+///         states[0] = 0.0;
+///     }
+///     fn step_values(&self, _start: f64, length: f64, values: &mut [f64]) -> Result<(), StepError> {
+///         values[0] = self.sigma * length.sqrt();
+///         Ok(())
+///     }
+///     fn observation_values(&self, _time: f64, _values: &mut [f64]) -> Result<(), StepError> {
+///         Ok(())
+///     }
+///     #[inline(always)]
+///     fn step<A: Arith>(&self, values: &[f64], x: &mut [Lane], noise: &[Lane], _: &mut [Lane]) {
+///         for i in 0..LANES {
+///             x[0][i] = A::mul_add(values[0], noise[0][i], x[0][i]);
+///         }
+///     }
+///     #[inline(always)]
+///     fn observe<A: Arith>(&self, _: &[f64], x: &[Lane], outputs: &mut [Lane], _: &mut [Lane]) {
+///         outputs[0] = x[0];
+///     }
+/// }
+///
+/// let grid = Grid::new(&[1.0, 2.0], None).unwrap();
+/// let run = Run { paths: 10_000, seed: 7, ..Run::default() };
+/// let outcome = simulate(&Motion { sigma: 0.3 }, &grid, &run, Moments).unwrap();
+/// let last = outcome.output[1][0];
+/// assert!((last.variance() - 0.18).abs() < 4.0 * last.variance_std_error());
+/// ```
 pub trait Simulator: Sync {
     /// Sizes and names; constant for the life of the simulator.
     fn shape(&self) -> Shape<'_>;

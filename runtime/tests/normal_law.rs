@@ -135,7 +135,7 @@ fn law_of_the_normals() {
         let statistic = kolmogorov(normals(generator, 500_000).collect());
         assert!(statistic < 2.23, "{generator}: {statistic}");
     }
-    // The twin: a shift by half a per cent of the standard deviation fails.
+    // The twin: a shift by one per cent of the standard deviation fails.
     let shifted = normals(Generator::Threefry2x64, 500_000).map(|z| z + 0.01);
     assert!(kolmogorov(shifted.collect()) > 2.23);
 }
