@@ -97,6 +97,7 @@ impl Inner {
         let (left, right) = (self.entry(a), self.entry(b));
         (left.rank.cmp(&right.rank))
             .then_with(|| class(&left.node).cmp(&class(&right.node)))
+            .then_with(|| left.depth.cmp(&right.depth))
             .then_with(|| match (&*left.node, &*right.node) {
                 (Node::Number(x), Node::Number(y)) => x.cmp(y),
                 (Node::Symbol(x), Node::Symbol(y)) => self.symbols[x.0 as usize]

@@ -36,6 +36,8 @@ pub(super) struct Entry {
     pub(super) rank: u8,
     /// A degree to sort terms by: the exponent of a power, the sum over factors, the largest term.
     pub(super) degree: f64,
+    /// How deep it nests; 0 without operands.
+    pub(super) depth: u32,
 }
 
 #[derive(Default)]
@@ -185,7 +187,7 @@ impl Pool {
         if let Some(&e) = inner.ids.get(&node) {
             return e;
         }
-        let (rank, degree) = inner.measure(&node);
+        let (rank, degree, depth) = inner.measure(&node);
         let e =
             Expr(u32::try_from(inner.entries.len()).expect("fewer than 2^32 formulas in a model"));
         let node = Rc::new(node);
@@ -193,6 +195,7 @@ impl Pool {
             node: node.clone(),
             rank,
             degree,
+            depth,
         });
         inner.ids.insert(node, e);
         e
@@ -204,10 +207,13 @@ impl Inner {
         &self.entries[e.0 as usize]
     }
 
-    /// Rank and degree of a node from those of its operands.
-    fn measure(&self, node: &Node) -> (u8, f64) {
-        let mut rank = 0;
-        node.for_each_child(|child| rank = rank.max(self.entry(child).rank));
+    /// Rank, degree and depth of a node from those of its operands.
+    fn measure(&self, node: &Node) -> (u8, f64, u32) {
+        let (mut rank, mut depth) = (0, 0);
+        node.for_each_child(|child| {
+            rank = rank.max(self.entry(child).rank);
+            depth = depth.max(self.entry(child).depth + 1);
+        });
         let degree = match node {
             Node::Number(_) | Node::Pi => 0.0,
             Node::Symbol(symbol) => {
@@ -225,6 +231,6 @@ impl Inner {
                 _ => 1.0,
             },
         };
-        (rank, degree)
+        (rank, degree, depth)
     }
 }

@@ -35,22 +35,19 @@ impl Pool {
 
     /// The symbols in a formula, cached.
     pub(super) fn symbol_set(&self, e: Expr) -> Rc<[Symbol]> {
-        if let Some(known) = self.inner.borrow().symbols_of.get(&e) {
-            return known.clone();
+        let known = |part: Expr| self.inner.borrow().symbols_of.get(&part).cloned();
+        for part in self.postorder_where(e, |part| known(part).is_none()) {
+            let node = self.node(part);
+            let symbols: Rc<[Symbol]> = if let Node::Symbol(symbol) = &*node {
+                [*symbol].into()
+            } else {
+                let mut sets = Vec::new();
+                node.for_each_child(|child| sets.extend(known(child)));
+                union(&sets)
+            };
+            self.inner.borrow_mut().symbols_of.insert(part, symbols);
         }
-        let mut symbols: Vec<Symbol> = (self.postorder(e).into_iter())
-            .filter_map(|part| match &*self.node(part) {
-                Node::Symbol(symbol) => Some(*symbol),
-                _ => None,
-            })
-            .collect();
-        symbols.sort_unstable();
-        let symbols: Rc<[Symbol]> = symbols.into();
-        self.inner
-            .borrow_mut()
-            .symbols_of
-            .insert(e, symbols.clone());
-        symbols
+        known(e).unwrap_or_else(|| [].into())
     }
 
     /// Whether the symbol occurs in the formula.
@@ -79,4 +76,19 @@ impl Pool {
     pub fn size(&self, e: Expr) -> usize {
         self.postorder(e).len()
     }
+}
+
+/// The union of sorted sets; one of them itself where it holds the others.
+fn union(sets: &[Rc<[Symbol]>]) -> Rc<[Symbol]> {
+    let Some(largest) = sets.iter().max_by_key(|set| set.len()) else {
+        return [].into();
+    };
+    let within = |symbol: &Symbol| largest.binary_search(symbol).is_ok();
+    if sets.iter().all(|set| set.iter().all(within)) {
+        return largest.clone();
+    }
+    let mut all: Vec<Symbol> = sets.iter().flat_map(|set| set.iter().copied()).collect();
+    all.sort_unstable();
+    all.dedup();
+    all.into()
 }

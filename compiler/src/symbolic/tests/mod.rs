@@ -6,6 +6,7 @@ mod inverse;
 mod near_misses;
 mod properties;
 mod shapes;
+mod soundness;
 
 use crate::front::formula::parse_in_pool;
 use crate::symbolic::{Bound, Expr, Interval, Pool, SymbolKind};
