@@ -135,7 +135,7 @@ fn affine_image(
 }
 
 /// The symbol of a state's coordinate: a name that the model does not use.
-fn auxiliary(pool: &Pool, state: &str) -> Symbol {
+pub fn auxiliary(pool: &Pool, state: &str) -> Symbol {
     let mut name = format!("u_{state}");
     while let Some(taken) = pool.find_symbol(&name) {
         if pool.symbol_kind(taken) == SymbolKind::Auxiliary {

@@ -6,7 +6,7 @@ use crate::analysis::coordinate::Candidate;
 use crate::analysis::limits::{Limit, limit};
 use crate::calculus::{Dynamics, covariation};
 use crate::model::{AtEdge, Model};
-use crate::symbolic::{Bound, Expr, Function, Rational, Sign};
+use crate::symbolic::{Bound, Expr, Function, Interval, Rational, Sign};
 
 /// The ends a state is projected to when its coefficients are taken.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -96,6 +96,31 @@ fn vanishes_like_root(
     match at_end(&model.pool, square, model.states[state].symbol, bound, side) {
         Leading::Term { exponent, .. } => exponent > Rational::ZERO && exponent < Rational::from(2),
         Leading::Zero | Leading::Unknown => false,
+    }
+}
+
+/// The values a coordinate takes on the state's domain; the whole line where that is not known.
+pub(super) fn image(model: &Model, state: usize, forward: Expr) -> Interval {
+    let (pool, x) = (&model.pool, model.states[state].symbol);
+    let domain = model.states[state].domain;
+    let end = |bound: Bound| {
+        let place = Limit::Value(bound.value()?);
+        match limit(pool, forward, x, place) {
+            Limit::Value(end) if pool.depends_on(end, model.time) => None,
+            Limit::Value(end) if matches!(bound, Bound::Open(_)) => Some(Bound::Open(end)),
+            Limit::Value(end) => Some(Bound::Closed(end)),
+            _ => None,
+        }
+    };
+    let lower = end(domain.lower).unwrap_or(Bound::Infinite);
+    let upper = end(domain.upper).unwrap_or(Bound::Infinite);
+    match pool.sign(pool.derivative(forward, x)) {
+        Sign::Positive | Sign::NonNegative => Interval { lower, upper },
+        Sign::Negative | Sign::NonPositive => Interval {
+            lower: upper,
+            upper: lower,
+        },
+        Sign::Zero | Sign::Unknown => Interval::REAL,
     }
 }
 

@@ -47,6 +47,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
             Err(_) => step.0.clone(),
         })
         .collect();
+    announce_ranges(model, &coordinates);
     let projections: Vec<_> = steps.iter().map(|step| step.1).collect();
     let traces: Vec<_> = steps.iter().map(|step| step.2.clone()).collect();
     let context = approximate::Context {
@@ -69,5 +70,14 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         coordinates,
         groups,
         noise,
+    }
+}
+
+/// Tells the algebra which values the coordinates take. A projected state's stored value may take any.
+fn announce_ranges(model: &Model, coordinates: &[Coordinate]) {
+    let moved = |c: &&Coordinate| c.forward != model.pool.var(model.states[c.state].symbol);
+    for coordinate in coordinates.iter().filter(moved) {
+        let image = edges::image(model, coordinate.state, coordinate.forward);
+        model.pool.set_range(coordinate.symbol, image);
     }
 }

@@ -38,12 +38,13 @@ impl Plan {
 ///
 /// Where a square-root-like state is stepped by full truncation the stored value may lie beyond the
 /// closed end of the domain; then `forward` is the state itself and `inverse` is `max(u, end)` (or
-/// `min`, or both), so that whoever reads the state reads the projected value.
+/// `min`, or both), so that whoever reads the state reads the projected value; u has a symbol of its
+/// own then, without the state's range.
 #[derive(Clone, Debug)]
 pub struct Coordinate {
     /// The state, by its index in the model.
     pub state: usize,
-    /// The symbol of u: the state's own where the coordinate is the state, else an auxiliary one.
+    /// The symbol of u: the state's own where both maps are the identity, else an auxiliary one.
     pub symbol: Symbol,
     /// u in the state's symbol, time and parameters.
     pub forward: Expr,

@@ -28,7 +28,7 @@ pub(super) fn why(
             ));
         }
         let coordinate = &context.coordinates[i];
-        if coordinate.symbol != model.states[i].symbol {
+        if coordinate.forward != model.pool.var(model.states[i].symbol) {
             let forward = model.pool.format(coordinate.forward);
             reasons.push(format!(
                 "{} is stepped in the coordinate {forward}.",

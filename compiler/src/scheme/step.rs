@@ -5,7 +5,7 @@ use std::collections::BTreeMap;
 use super::edges::{self, Projection};
 use super::{Coordinate, SchemeName, StateStep};
 use crate::analysis::commute::{along_noise, relevant_drivers};
-use crate::analysis::coordinate::{Candidate, through};
+use crate::analysis::coordinate::{Candidate, auxiliary, through};
 use crate::analysis::linear::Row;
 use crate::calculus::{Dynamics, Process, expand};
 use crate::model::Model;
@@ -49,13 +49,18 @@ pub(super) fn step_coordinate(
             expansion.trace,
         );
     }
-    let mut identity = coordinate(state, &Candidate::identity(&model.pool, declared), own);
+    let mut identity = Candidate::identity(&model.pool, declared);
     let projection = edges::projection(model, dynamics, state);
     if !projection.is_none() {
-        identity.inverse = projection.apply(model, identity.forward);
-        identity.identity = false;
+        // The stored value may lie beyond the domain, so that its symbol must not have the state's range.
+        identity.symbol = auxiliary(&model.pool, &declared.name);
+        identity.inverse = projection.apply(model, model.pool.var(identity.symbol));
     }
-    (identity, projection, Trace::default())
+    (
+        coordinate(state, &identity, own),
+        projection,
+        Trace::default(),
+    )
 }
 
 /// Rewrites formulas in the states as formulas in the coordinates.

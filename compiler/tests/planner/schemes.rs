@@ -170,12 +170,12 @@ fn square_root_noise_is_truncated_and_its_integral_steps_with_it() {
     let pool = &planned.model.pool;
     let coordinate = &planned.plan.coordinates[0];
     assert_eq!(pool.format(coordinate.forward), "r");
-    assert_eq!(pool.format(coordinate.inverse), "max(r, 0)");
+    assert_eq!(pool.format(coordinate.inverse), "max(u_r, 0)");
     assert_eq!(
         pool.format(steps(group)[0].diffusion[0]),
-        "sigma*sqrt(max(r, 0))"
+        "sigma*sqrt(max(u_r, 0))"
     );
-    assert_eq!(pool.format(steps(group)[1].drift), "max(r, 0)");
+    assert_eq!(pool.format(steps(group)[1].drift), "max(u_r, 0)");
 }
 
 /// Entrance at 0 if and only if 2 kappa theta >= sigma^2 (Feller 1951): an open end needs the assumption.

@@ -162,7 +162,14 @@ impl Lowering<'_> {
         for (state, next) in slots.iter().map(|s| s.next).enumerate() {
             let group = &self.plan.groups[self.plan.group_of(state)];
             if !group.is_exact() && !group.preserves_domain {
-                let range = self.model.pool.range(self.plan.coordinates[state].symbol);
+                let coordinate = &self.plan.coordinates[state];
+                let declared = &self.model.states[state];
+                // A projected state's stored number is the state itself, wherever it lies.
+                let range = if coordinate.forward == self.model.pool.var(declared.symbol) {
+                    declared.domain
+                } else {
+                    self.model.pool.range(coordinate.symbol)
+                };
                 flag = self.leaving(next, range.lower, false, flag);
                 flag = self.leaving(next, range.upper, true, flag);
             }
