@@ -6,6 +6,7 @@
 //! Brownian motion or an Ornstein-Uhlenbeck process, which leave every smaller interval.
 
 use super::free::{Freedom, free_of};
+use super::limits::{Limit, limit};
 use crate::model::{Model, State};
 use crate::symbolic::{Bound, Expr, Function, Pool, Sign, Symbol, SymbolKind};
 
@@ -100,9 +101,23 @@ pub fn through(model: &Model, state: &State) -> Option<Candidate> {
     }
     let u = auxiliary(pool, &state.name);
     let known = table(pool, state, None);
-    known
+    let affine = known
         .iter()
-        .find_map(|row| affine_image(pool, state.symbol, u, forward, row))
+        .find_map(|row| affine_image(pool, state.symbol, u, forward, row));
+    affine.or_else(|| {
+        let inverse = pool.invert(forward, state.symbol, u)?;
+        let end = |bound: Bound, infinite: Limit| bound.value().map_or(infinite, Limit::Value);
+        let at = |end: Limit| limit(pool, forward, state.symbol, end);
+        let lower = at(end(state.domain.lower, Limit::MinusInfinity));
+        let upper = at(end(state.domain.upper, Limit::PlusInfinity));
+        let onto_line = lower.is_infinite() && upper.is_infinite();
+        Some(Candidate {
+            symbol: u,
+            forward,
+            inverse,
+            onto_line,
+        })
+    })
 }
 
 /// A formula that is `scale*row + shift` for a row of the table, scale and shift free of the state, so

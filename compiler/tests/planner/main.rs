@@ -1,5 +1,7 @@
 //! How the states of a model are stepped: exact laws found, schemes chosen, ends of domains.
 
+mod catalogue;
 mod ends;
+mod exact_laws;
 mod schemes;
 mod support;
