@@ -43,6 +43,14 @@ impl System<'_> {
         self.pool().add(rule.first_order(), rule.second_order())
     }
 
+    /// The coefficients of the drivers in a formula's differential, one per driver, not simplified.
+    pub fn noise(&self, formula: Expr) -> Vec<Expr> {
+        let rule = Rule::new(self, formula);
+        (0..self.model.drivers.len())
+            .map(|j| rule.diffusion(j))
+            .collect()
+    }
+
     /// Ito's rule: `dF = (F_t + sum_i F_i a_i + 1/2 sum_ij F_ij (B R B')_ij) dt + sum_j (sum_i F_i B_ij) dW_j`
     /// (Ito 1951; Karatzas and Shreve 1991, section 3.3).
     ///
@@ -83,7 +91,7 @@ impl System<'_> {
             Some(sum),
             drift,
         );
-        let diffusion = rule.diffusion(&mut trace);
+        let diffusion = rule.log_diffusion(&mut trace);
         Expansion {
             formula,
             chain_rule_drift,
@@ -166,18 +174,24 @@ impl<'a> Rule<'a> {
         pool.sum(terms.collect::<Vec<_>>())
     }
 
-    fn diffusion(&self, trace: &mut Trace) -> Vec<Expr> {
+    fn diffusion(&self, driver: usize) -> Expr {
         let pool = self.pool();
-        (0..self.system.model.drivers.len())
-            .map(|j| {
-                let terms = self
-                    .first
-                    .iter()
-                    .map(|&(i, slope)| pool.mul(slope, self.system.processes[i].diffusion[j]));
-                let raw = pool.sum(terms.collect::<Vec<_>>());
+        let terms = self
+            .first
+            .iter()
+            .map(|&(i, slope)| pool.mul(slope, self.system.processes[i].diffusion[driver]));
+        pool.sum(terms.collect::<Vec<_>>())
+    }
+
+    fn log_diffusion(&self, trace: &mut Trace) -> Vec<Expr> {
+        let pool = self.pool();
+        let drivers = self.system.model.drivers.iter().enumerate();
+        drivers
+            .map(|(j, driver)| {
+                let raw = self.diffusion(j);
                 let simple = pool.simplify(raw);
                 if !pool.is_zero_literal(raw) {
-                    let note = format!("coefficient of d{}", self.system.model.drivers[j].name);
+                    let note = format!("coefficient of d{}", driver.name);
                     log(trace, "diffusion", note, Some(raw), simple);
                 }
                 simple

@@ -184,8 +184,7 @@ impl<'a> Equations<'a> {
         if self.system.occurring(function).is_empty() {
             return Some(Combination::new());
         }
-        let expansion = self.system.expand(function);
-        martingale_part(&self.system, &expansion)?;
+        martingale_part(&self.system, function)?;
         self.split(self.system.generator(function))
     }
 

@@ -14,18 +14,18 @@ pub(super) fn ends_hold(model: &Model, dynamics: &Dynamics, which: &[usize]) -> 
         .all(|&i| edge(model, dynamics, i) <= Edge::KeptInside)
 }
 
-/// A reason why the stochastic integral in the expansion of a formula is a true martingale on every
+/// A reason why the stochastic integral in Ito's rule for a formula is a true martingale on every
 /// finite horizon; none where none was found.
 ///
 /// The ends of the domains are not looked at here.
-pub(super) fn martingale_part(system: &System<'_>, expansion: &Expansion) -> Option<&'static str> {
-    if polynomial_growth(system, expansion) {
+pub(super) fn martingale_part(system: &System<'_>, formula: Expr) -> Option<&'static str> {
+    if polynomial_growth(system, formula) {
         return Some(
             "the coefficients grow at most linearly, so all moments are finite, and the formula's \
              diffusion grows at most polynomially: the stochastic integral is square integrable",
         );
     }
-    if linear_shift(system, expansion) {
+    if linear_shift(system, &system.expand(formula)) {
         return Some(
             "the formula is a stochastic exponential whose coefficient does not explode under the \
              measure it defines, since the shifted coefficients grow at most linearly",
@@ -36,9 +36,10 @@ pub(super) fn martingale_part(system: &System<'_>, expansion: &Expansion) -> Opt
 
 /// Linear growth of the coordinates behind the formula and polynomial growth of its diffusion: the
 /// integrand is square integrable (Karatzas and Shreve 1991, problem 5.3.15).
-fn polynomial_growth(system: &System<'_>, expansion: &Expansion) -> bool {
-    let formulas = std::iter::once(expansion.formula).chain(expansion.diffusion.iter().copied());
-    let closure = system.closure(formulas.clone());
+fn polynomial_growth(system: &System<'_>, formula: Expr) -> bool {
+    let mut formulas = system.noise(formula);
+    formulas.push(formula);
+    let closure = system.closure(formulas.iter().copied());
     growth::is_linear(system, &closure)
         && formulas
             .into_iter()

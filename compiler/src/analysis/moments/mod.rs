@@ -34,6 +34,9 @@ use equations::Equations;
 use gaussian::{Gaussian, GaussianRow, covariance_symbol, mean_symbol};
 use tilting::Tilted;
 
+/// Formulas with more distinct parts are left as they come out of the derivation.
+const LARGEST_READABLE: usize = 250;
+
 /// A moment in closed form.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Moment {
@@ -108,7 +111,7 @@ impl Moments {
             .gaussian_mean(formula)
             .or_else(|| self.equation_mean(formula));
         let found = found.map(|m| Moment {
-            value: self.model.pool.simplify(m.value),
+            value: self.readable(m.value),
             ..m
         });
         self.means.borrow_mut().insert(formula, found.clone());
@@ -127,7 +130,7 @@ impl Moments {
         let (left, right) = (self.mean(a)?, self.mean(b)?);
         let value = pool.sub(product.value, pool.mul(left.value, right.value));
         Some(Moment {
-            value: pool.simplify(value),
+            value: self.readable(value),
             source: product.source,
         })
     }
@@ -147,7 +150,7 @@ impl Moments {
             }
         }
         Some(Moment {
-            value: pool.simplify(pool.sum(terms)),
+            value: self.readable(pool.sum(terms)),
             source,
         })
     }
@@ -223,9 +226,18 @@ impl Moments {
                     return None;
                 }
                 let reason =
-                    integrability::martingale_part(&chart.system, &chart.system.expand(inside))?;
+                    integrability::martingale_part(&chart.system, inside)?;
                 Some(reason.to_owned())
             })
+    }
+
+    /// The formula as a person would write it, unless it is too large for anyone to read.
+    fn readable(&self, value: Expr) -> Expr {
+        let pool = &self.model.pool;
+        if pool.size(value) > LARGEST_READABLE {
+            return value;
+        }
+        pool.simplify(value)
     }
 
     fn gaussian_mean(&self, formula: Expr) -> Option<Moment> {

@@ -1,0 +1,6 @@
+//! Ito's rule, moments and claims, held against published and independently computed values.
+
+mod claims;
+mod common;
+mod ito;
+mod moments;
