@@ -102,7 +102,11 @@ fn the_claims_of_the_shipped_models_catch_their_twins() {
     // The sluice is reflected, and nothing is proved or refuted beyond the reflection; the quanto drift
     // of the island's rate is in none of the ferry's claims, since the shilling brought home is a
     // martingale whatever the rate does.
-    assert_eq!(missed, ["ferry_currency", "sluice_level"], "caught {caught}");
+    assert_eq!(
+        missed,
+        ["ferry_currency", "sluice_level"],
+        "caught {caught}"
+    );
 }
 
 /// A model for claims about most things.

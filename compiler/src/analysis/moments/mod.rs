@@ -225,8 +225,7 @@ impl Moments {
                 if !chart.ends_hold(&self.dynamics, inside) {
                     return None;
                 }
-                let reason =
-                    integrability::martingale_part(&chart.system, inside)?;
+                let reason = integrability::martingale_part(&chart.system, inside)?;
                 Some(reason.to_owned())
             })
     }
