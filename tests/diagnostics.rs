@@ -9,6 +9,7 @@ use std::path::{Path, PathBuf};
 
 use driftwright::diagnostic::{Code, Diagnostic, Diagnostics, human, json};
 use driftwright::front;
+use driftwright::pipeline::compile;
 use driftwright::source::SourceFile;
 
 fn root() -> PathBuf {
@@ -33,9 +34,8 @@ fn check(path: &Path) -> (SourceFile, Vec<Diagnostic>) {
         Ok(loaded) => SourceFile::new(name, loaded.text()),
         Err(diagnostic) => return (SourceFile::new(name, ""), vec![diagnostic]),
     };
-    let mut diagnostics = Diagnostics::new();
-    front::read(&source, &mut diagnostics);
-    (source, diagnostics.finish())
+    let diagnostics = compile(&source).diagnostics;
+    (source, diagnostics)
 }
 
 #[test]
