@@ -55,12 +55,12 @@ impl MappedText {
             return Self::plain(text, start + quotes);
         }
         let span = Span::new(start + quotes, start + raw.len() - quotes);
-        let (walked, table) = walk(inner, raw.starts_with('"'), span.start);
-        let places = if walked == text {
-            Places::Table(table)
-        } else {
-            Places::Whole
-        };
+        // Whether line ends of two characters become one is the TOML parser's choice: try both.
+        let walks = [true, false].map(|join| walk(inner, raw.starts_with('"'), join, span.start));
+        let places = walks
+            .into_iter()
+            .find(|(walked, _)| walked == text)
+            .map_or(Places::Whole, |(_, table)| Places::Table(table));
         Self {
             text: text.to_owned(),
             span,
@@ -93,15 +93,16 @@ impl MappedText {
     }
 }
 
-/// Decodes the inside of a TOML string and notes where each byte comes from.
-fn walk(inner: &str, escapes: bool, start: usize) -> (String, Vec<(usize, usize)>) {
+/// Decodes the inside of a TOML string and notes where each byte comes from. `join` makes one character
+/// of a line end of two.
+fn walk(inner: &str, escapes: bool, join: bool, start: usize) -> (String, Vec<(usize, usize)>) {
     let mut text = String::with_capacity(inner.len());
     let mut table = Vec::with_capacity(inner.len());
     let mut at = first_line_break(inner);
     while let Some(next) = inner[at..].chars().next() {
         let (decoded, length) = match next {
             '\\' if escapes => escape(&inner[at..]),
-            '\r' if inner[at..].starts_with("\r\n") => (Some('\n'), 2),
+            '\r' if join && inner[at..].starts_with("\r\n") => (Some('\n'), 2),
             other => (Some(other), other.len_utf8()),
         };
         if let Some(c) = decoded {
@@ -184,6 +185,8 @@ mod tests {
     fn windows_line_ends_are_one_character() {
         let text = mapped("'''mu\r\n+ 1'''", "mu\n+ 1");
         assert_eq!(text.place(3..4), (107..108).into());
+        let kept = mapped("'''\r\nmu\r\n+ 1'''", "mu\r\n+ 1");
+        assert_eq!(kept.place(4..5), (109..110).into());
     }
 
     #[test]

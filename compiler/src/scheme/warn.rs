@@ -92,14 +92,17 @@ fn open_end(
     let span = declared.domain_span.unwrap_or(declared.span);
     let name = &declared.name;
     let warning = |message: String| Some(Diagnostic::warning(Code::OpenEndReached, span, message));
+    let close = "close the end with a bracket and say with `at_edge` what happens there";
     match classify(model, dynamics, state, side) {
         End::NotReached => None,
         End::Reached if bound == Bound::Infinite => warning(format!(
             "{name} reaches {end} in finite time: its solution explodes"
-        )),
+        ))
+        .map(|w| w.hint("check the sign of the fastest growing term of the drift")),
         // Far out the rules are short of logarithms and exponentials; silence there is no claim.
         End::Undecided(_) if bound == Bound::Infinite => None,
-        End::Reached => warning(format!("{name} reaches the open end {end} of its domain")),
+        End::Reached => warning(format!("{name} reaches the open end {end} of its domain"))
+            .map(|w| w.hint(close)),
         End::Undecided(Some(margin)) => warning(format!(
             "{name} reaches the open end {end} of its domain unless {} >= 0",
             pool.format(margin)
@@ -112,6 +115,7 @@ fn open_end(
         }),
         End::Undecided(None) => warning(format!(
             "it could not be decided whether {name} reaches the open end {end} of its domain"
-        )),
+        ))
+        .map(|w| w.hint(close)),
     }
 }

@@ -10,7 +10,8 @@ use crate::symbolic::Witness;
 pub(super) fn refutation(model: &Model, claim: &Claim, result: &ClaimResult) -> Diagnostic {
     let pool = &model.pool;
     let message = format!("claim `{}` is wrong: {}", claim.name, result.reason);
-    let mut diagnostic = Diagnostic::error(Code::ClaimRefuted, place(claim), message);
+    let mut diagnostic = Diagnostic::error(Code::ClaimRefuted, place(claim), message)
+        .hint("mend the claim, or the model if the claim is what was meant");
     let Some(difference) = result.difference else {
         return diagnostic;
     };
