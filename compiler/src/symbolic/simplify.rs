@@ -1,6 +1,8 @@
 //! An equal formula in a shape a person would write.
 
+use super::function::Function;
 use super::node::{Expr, Node, Rational};
+use super::normal::Mode;
 use super::pool::Pool;
 
 impl Pool {
@@ -22,6 +24,24 @@ impl Pool {
         if let Some(known) = known {
             return known;
         }
+        let best = self
+            .constant_value(e)
+            .unwrap_or_else(|| self.lightest_shape(e));
+        self.inner.borrow_mut().simplified.insert(e, best);
+        best
+    }
+
+    /// The number a formula with functions in it is by algebra, if it is one.
+    fn constant_value(&self, e: Expr) -> Option<Expr> {
+        let plain = |f: Function| matches!(f, Function::Exp | Function::Log);
+        let call = |part: &Expr| matches!(&*self.node(*part), Node::Call(f, _) if !plain(*f));
+        if !self.postorder(e).iter().any(call) {
+            return None;
+        }
+        Some(self.number(self.normal(e, Mode::Proof).as_constant()?))
+    }
+
+    fn lightest_shape(&self, e: Expr) -> Expr {
         let parts = self.simplify_parts(e);
         let mut best = (self.weight(parts), parts);
         for shape in self.shapes(parts) {
@@ -32,7 +52,6 @@ impl Pool {
                 best = (weight, shape);
             }
         }
-        self.inner.borrow_mut().simplified.insert(e, best.1);
         best.1
     }
 

@@ -8,9 +8,9 @@ use super::poly::{Monomial, Poly};
 
 impl Normalizer<'_> {
     /// The fraction as a formula: expanded numerator over the factors of the denominator.
-    pub(super) fn to_expr(&self, fraction: &Fraction) -> Expr {
+    pub(super) fn formula(&self, fraction: &Fraction) -> Expr {
         let (numerator, below) = self.oriented(fraction);
-        self.pool.mul(self.poly_to_expr(&numerator), below)
+        self.pool.mul(self.poly_formula(&numerator), below)
     }
 
     /// The numerator, and the inverse of the denominator as a formula: each factor with a positive
@@ -18,11 +18,11 @@ impl Normalizer<'_> {
     pub(super) fn oriented(&self, fraction: &Fraction) -> (Poly, Expr) {
         let mut negative = false;
         let factors = fraction.denominator.iter().map(|(factor, times)| {
-            let base = self.poly_to_expr(factor);
+            let base = self.poly_formula(factor);
             let turned = self.leads_negative(base);
             negative ^= turned && times % 2 == 1;
             let base = if turned {
-                self.poly_to_expr(&factor.negated())
+                self.poly_formula(&factor.negated())
             } else {
                 base
             };
@@ -53,23 +53,23 @@ impl Normalizer<'_> {
         matches!(&*self.pool.node(e), Node::Sum(terms) if self.leads_negative(terms[0]))
     }
 
-    pub(super) fn poly_to_expr(&self, poly: &Poly) -> Expr {
+    pub(super) fn poly_formula(&self, poly: &Poly) -> Expr {
         self.pool.sum(
             poly.0
                 .iter()
-                .map(|(monomial, coefficient)| self.term_to_expr(monomial, coefficient)),
+                .map(|(monomial, coefficient)| self.term_formula(monomial, coefficient)),
         )
     }
 
-    fn term_to_expr(&self, monomial: &Monomial, coefficient: &Rational) -> Expr {
+    fn term_formula(&self, monomial: &Monomial, coefficient: &Rational) -> Expr {
         self.pool.mul(
             self.pool.number(coefficient.clone()),
-            self.monomial_to_expr(monomial),
+            self.monomial_formula(monomial),
         )
     }
 
     /// A product of powers; exponentials are put together.
-    pub(super) fn monomial_to_expr(&self, monomial: &Monomial) -> Expr {
+    pub(super) fn monomial_formula(&self, monomial: &Monomial) -> Expr {
         let pool = self.pool;
         let mut exponents = Vec::new();
         let mut factors = Vec::new();

@@ -59,7 +59,7 @@ impl Normalizer<'_> {
                 .add_term(rest, coefficient.clone());
         }
         let over = |numerator: Poly| {
-            self.to_expr(&Fraction {
+            self.formula(&Fraction {
                 numerator,
                 denominator: fraction.denominator.clone(),
             })
@@ -116,11 +116,11 @@ impl Normalizer<'_> {
             Some(
                 groups
                     .into_iter()
-                    .map(|(n, poly)| (n, self.poly_to_expr(&poly)))
+                    .map(|(n, poly)| (n, self.poly_formula(&poly)))
                     .collect(),
             )
         };
-        let power = self.monomial_to_expr(&Monomial::of(kernel, unit));
+        let power = self.monomial_formula(&Monomial::of(kernel, unit));
         Some(OneKernel {
             kernel: power,
             numerator: sort(numerator)?,

@@ -24,7 +24,7 @@ impl Normalizer<'_> {
                     numerator,
                     denominator: argument.denominator.clone(),
                 };
-                self.plain_exponential(self.to_expr(&one), exponent)?
+                self.plain_exponential(self.formula(&one), exponent)?
             };
             result = self.multiply(&result, &factor)?;
         }
@@ -37,7 +37,7 @@ impl Normalizer<'_> {
 
     /// `exp(monomial)^exponent`.
     fn exponential_of_term(&self, monomial: &Monomial, exponent: Exponent) -> Option<Fraction> {
-        let argument = self.monomial_to_expr(monomial);
+        let argument = self.monomial_formula(monomial);
         match &monomial.0[..] {
             [(kernel, power)] if *power == Exponent::ONE => {
                 if let Node::Call(Function::Log, inner) = &*self.pool.node(*kernel) {
@@ -53,7 +53,7 @@ impl Normalizer<'_> {
     /// `exp(i*angle)^exponent` for an angle that is a single kernel.
     fn rotation(&self, monomial: &Monomial, exponent: Exponent) -> Option<Fraction> {
         let imaginary = self.imaginary();
-        let argument = self.monomial_to_expr(monomial);
+        let argument = self.monomial_formula(monomial);
         let rest = monomial.without(imaginary);
         let angle = match &rest.0[..] {
             [(kernel, power)] if *power == Exponent::ONE => *kernel,

@@ -39,7 +39,8 @@ impl Fraction {
         self.numerator.is_zero()
     }
 
-    pub(super) fn as_constant(&self) -> Option<Rational> {
+    /// The value, if it is a number.
+    pub(crate) fn as_constant(&self) -> Option<Rational> {
         if self.denominator.is_empty() {
             self.numerator.as_constant()
         } else {

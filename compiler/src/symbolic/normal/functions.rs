@@ -94,13 +94,13 @@ impl Normalizer<'_> {
         use Function::*;
         let normal: Vec<Expr> = arguments
             .iter()
-            .map(|&a| self.to_expr(&self.normal(a)))
+            .map(|&a| self.formula(&self.normal(a)))
             .collect();
         let argument = normal[0];
         if arguments.len() == 1 && self.leads_negative(argument) {
             let positive = self.pool.neg(argument);
             let mirrored =
-                self.settled_call(e, function, &[self.to_expr(&self.normal(positive))])?;
+                self.settled_call(e, function, &[self.formula(&self.normal(positive))])?;
             match function {
                 Sin | Tan | Asin | Atan | Sinh | Tanh | Asinh | Atanh | Erf | Sign => {
                     return Some(mirrored.negated());
@@ -152,7 +152,7 @@ impl Normalizer<'_> {
         if self.pool.sign(x).is_non_negative() {
             return self.power(x, &Rational::from_parts(1.into(), 3u8.into()));
         }
-        let argument = self.to_expr(&self.normal(x));
+        let argument = self.formula(&self.normal(x));
         if self.is_complex(argument) {
             return Some(self.kernel(self.pool.call(Function::Cbrt, &[argument])));
         }
@@ -167,7 +167,7 @@ impl Normalizer<'_> {
         let mut result = root.scaled(&split.coefficient.signum());
         for (base, exponent) in &split.factors {
             let poly = self.base_poly(base);
-            let kernel = self.pool.call(Function::Cbrt, &[self.poly_to_expr(&poly)]);
+            let kernel = self.pool.call(Function::Cbrt, &[self.poly_formula(&poly)]);
             self.register(kernel, Rule::new(3, poly));
             result = self.multiply(&result, &self.kernel_power(kernel, *exponent)?)?;
         }
@@ -187,7 +187,7 @@ impl Normalizer<'_> {
         if sign.is_non_positive() {
             return Some(normal.negated());
         }
-        let argument = self.to_expr(&normal);
+        let argument = self.formula(&normal);
         if self.is_complex(argument) {
             return Some(self.kernel(self.pool.call(Function::Abs, &[argument])));
         }

@@ -153,7 +153,7 @@ fn univariate(a: &IntegerPoly, variable: usize) -> Vec<u64> {
 }
 
 fn modulo(value: &IBig) -> u64 {
-    let size = u64::try_from(value.unsigned_abs() % PRIME).unwrap_or(0);
+    let size = value.unsigned_abs() % PRIME;
     if *value < IBig::ZERO && size != 0 {
         PRIME - size
     } else {

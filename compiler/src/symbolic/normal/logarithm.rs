@@ -21,7 +21,7 @@ impl Normalizer<'_> {
             terms.push(self.log_of_even(base, *exponent)?);
         }
         if let Some(mixed) = &parts.mixed {
-            terms.push(self.log_kernel(self.poly_to_expr(mixed)));
+            terms.push(self.log_kernel(self.poly_formula(mixed)));
         }
         terms
             .iter()
@@ -46,7 +46,7 @@ impl Normalizer<'_> {
                 Node::Call(Function::Exp, argument) => Some((*self.normal(argument[0])).clone()),
                 _ => Some(self.log_kernel(*kernel)),
             },
-            Base::Sum(poly) => Some(self.log_kernel(self.poly_to_expr(poly))),
+            Base::Sum(poly) => Some(self.log_kernel(self.poly_formula(poly))),
         }
     }
 
@@ -56,7 +56,7 @@ impl Normalizer<'_> {
             let size = self.size_kernel(base)?;
             return Some(self.log_kernel(size).scaled(&exponent.to_rational()));
         }
-        let square = self.pool.square(self.poly_to_expr(&self.base_poly(base)));
+        let square = self.pool.square(self.poly_formula(&self.base_poly(base)));
         let half = exponent.to_rational() / Rational::from(2);
         Some(self.log_kernel(square).scaled(&half))
     }

@@ -79,14 +79,14 @@ impl Normalizer<'_> {
         ))?)?;
         let poly = self.base_poly(base);
         let square = self.poly_product(&poly, &poly)?;
-        let kernel = self.pool.square(self.poly_to_expr(&poly));
+        let kernel = self.pool.square(self.poly_formula(&poly));
         self.kernel_power(self.under_root(kernel, &square)?, half)
     }
 
     /// The absolute value of a factor as a kernel whose square is that of the factor.
     pub(super) fn size_kernel(&self, base: &Base) -> Option<Expr> {
         let poly = self.base_poly(base);
-        let kernel = self.pool.call(Function::Abs, &[self.poly_to_expr(&poly)]);
+        let kernel = self.pool.call(Function::Abs, &[self.poly_formula(&poly)]);
         if !matches!(&*self.pool.node(kernel), Node::Call(Function::Abs, _)) {
             return None;
         }

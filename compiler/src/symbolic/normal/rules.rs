@@ -108,7 +108,7 @@ impl Normalizer<'_> {
 
     /// A sum as a kernel under a root; none if it prints as something that is no sum.
     pub(super) fn root_kernel(&self, poly: &Poly) -> Option<Expr> {
-        let kernel = self.poly_to_expr(poly);
+        let kernel = self.poly_formula(poly);
         self.under_root(kernel, poly)
     }
 

@@ -3,6 +3,7 @@
 use std::cmp::Reverse;
 use std::collections::BTreeMap;
 
+use super::super::function::Function;
 use super::super::node::{Expr, Node, Rational};
 use super::Normalizer;
 use super::exponent::Exponent;
@@ -26,11 +27,13 @@ impl Normalizer<'_> {
     /// and with kernels taken out of groups of terms.
     pub(in super::super) fn shapes(&self, fraction: &Fraction) -> Vec<Expr> {
         let (numerator, below) = self.oriented(fraction);
-        let mut shapes = vec![self.poly_to_expr(&numerator)];
+        let mut shapes = vec![self.poly_formula(&numerator)];
         if numerator.0.len() > 1 {
-            self.outside(&numerator, &mut shapes, &|poly| self.poly_to_expr(poly));
+            self.outside(&numerator, &mut shapes, &|poly| self.poly_formula(poly));
             if numerator.0.len() <= MAX_TERMS {
-                shapes.push(self.in_factors(&numerator));
+                if !self.takes_out_decay(&numerator.common_monomial(), &numerator) {
+                    shapes.push(self.in_factors(&numerator));
+                }
                 for preference in [Preference::States, Preference::Parameters] {
                     self.outside(&numerator, &mut shapes, &|poly| {
                         self.grouped(poly, preference)
@@ -51,11 +54,14 @@ impl Normalizer<'_> {
         let Some((number, monomial, factor)) = self.factored(poly) else {
             return;
         };
+        if self.takes_out_decay(&monomial, poly) {
+            return;
+        }
         let negative = factor.0.values().all(|c| *c < Rational::ZERO)
             || (number < Rational::ZERO && factor.0.values().any(|c| *c < Rational::ZERO));
         let sign = Rational::from(if negative { -1 } else { 1 });
         let (number, factor) = (number * &sign, factor.scaled(&sign));
-        let monomial = self.monomial_to_expr(&monomial);
+        let monomial = self.monomial_formula(&monomial);
         let divisor = Rational::from_parts(1.into(), number.denominator().clone());
         let inner = shape(&factor.scaled(&divisor));
         let outer = self.pool.number(&number / &divisor);
@@ -68,20 +74,31 @@ impl Normalizer<'_> {
         }
     }
 
+    /// Whether a falling exponential would come out of terms that do not have it, which leaves rising
+    /// ones inside: nobody writes `exp(-x)*(exp(x) - 1)` for `1 - exp(-x)`.
+    fn takes_out_decay(&self, monomial: &Monomial, poly: &Poly) -> bool {
+        let exponential = |e: Expr| matches!(&*self.pool.node(e), Node::Call(Function::Exp, _));
+        let mut outside = monomial
+            .0
+            .iter()
+            .filter(|(kernel, e)| e.is_negative() && exponential(*kernel));
+        outside.any(|(kernel, _)| poly.0.keys().any(|m| !m.exponent(*kernel).is_negative()))
+    }
+
     /// The polynomial as a product of powers of factors, as far as square-free decomposition and
     /// contents find them.
     fn in_factors(&self, poly: &Poly) -> Expr {
         let (negative, powers) = poly.squarefree();
         let content = poly.positive_content();
         let mut number = if negative { -content } else { content };
-        let mut factors = vec![self.monomial_to_expr(&poly.common_monomial())];
+        let mut factors = vec![self.monomial_formula(&poly.common_monomial())];
         for (factor, times) in powers {
             let mut product = factor.clone();
             for part in factor.split_contents() {
                 if let Some(rest) = product.exact_quotient(&part) {
                     product = rest;
                 }
-                let turned = self.leads_negative(self.poly_to_expr(&part));
+                let turned = self.leads_negative(self.poly_formula(&part));
                 let part = if turned { part.negated() } else { part };
                 if turned && times % 2 == 1 {
                     number = -number;
@@ -110,7 +127,7 @@ impl Normalizer<'_> {
     /// Takes the kernel that occurs in most terms out of those, and goes on with both parts.
     fn grouped(&self, poly: &Poly, preference: Preference) -> Expr {
         let Some((kernel, exponent)) = self.most_frequent(poly, preference) else {
-            return self.poly_to_expr(poly);
+            return self.poly_formula(poly);
         };
         let (mut inside, mut outside) = (Poly::zero(), Poly::zero());
         let power = Monomial::of(kernel, exponent);
@@ -123,7 +140,11 @@ impl Normalizer<'_> {
         }
         let mut inner = Vec::new();
         self.outside(&inside, &mut inner, &|poly| self.grouped(poly, preference));
-        let group = self.pool.mul(self.monomial_to_expr(&power), inner[0]);
+        let inner = inner
+            .first()
+            .copied()
+            .unwrap_or_else(|| self.grouped(&inside, preference));
+        let group = self.pool.mul(self.monomial_formula(&power), inner);
         if outside.is_zero() {
             group
         } else {

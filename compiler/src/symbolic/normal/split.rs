@@ -143,7 +143,7 @@ impl Normalizer<'_> {
     fn base_expr(&self, base: &Base) -> Expr {
         match base {
             Base::Kernel(kernel) => *kernel,
-            Base::Sum(poly) => self.poly_to_expr(poly),
+            Base::Sum(poly) => self.poly_formula(poly),
         }
     }
 

@@ -42,6 +42,19 @@ mu*(1 - x) - sigma^2*x*(1 - x)^2 => (1 - x)*(mu + sigma^2*x*(x - 1))
 normal_pdf(x)*x - x*normal_pdf(x) => 0
 (exp(2*a*t) - 1)/(2*a) => (exp(2*a*t) - 1)/(2*a)
 max(x - 40, 0) => max(x - 40, 0)
+kappa*(theta - u)/(u*(1 - u)) + sigma^2*u*(1 - u)/2*(1/(1 - u)^2 - 1/u^2) => (kappa*(theta - u) + sigma^2*(u - 1/2))/(u*(1 - u))
+-r*exp(-r*t)*S + mu*S*exp(-r*t) => (mu - r)*exp(-r*t)*S
+a*X*Y + b*X*Y + c*p*q*X*Y => (a + b + c*p*q)*X*Y
+(2*x)*(-a*x) + (2*y)*(-a*y) + sigma^2 + sigma^2 => 2*(sigma^2 - a*(x^2 + y^2))
+x/sqrt(x^2 + y^2)*a*x + y/sqrt(x^2 + y^2)*a*y => a*sqrt(x^2 + y^2)
+S^(1 - a)*mu + (1 - a)*(-a)*S^(-a - 1)*sigma^2*S^(2*a)/2*0 => mu*S^(1 - a)
+(1 - a)*S^(-a)*mu*S + (1 - a)*(-a)*S^(-a - 1)*sigma^2*S^(2*a)/2 => mu*(1 - a)*S^(1 - a) + a*sigma^2*(a - 1)*S^(a - 1)/2
+2*kappa*theta*S - 2*kappa*S^2 + sigma^2*S => S*(sigma^2 + 2*kappa*(theta - S))
+theta*(1 - exp(-kappa*t)) + x*exp(-kappa*t) => theta*(1 - exp(-kappa*t)) + exp(-kappa*t)*x
+theta + (x - theta)*exp(-kappa*t) => theta + exp(-kappa*t)*(x - theta)
+sigma^2/(2*kappa)*(1 - exp(-2*kappa*t)) => sigma^2*(1 - exp(-2*kappa*t))/(2*kappa)
+cosh(x)*tanh(x)/sinh(x) => 1
+S*(mu - sigma^2/2) + sigma^2*S/2 => mu*S
 ";
 
 #[test]
