@@ -2,7 +2,7 @@
 
 use std::collections::BTreeMap;
 
-use crate::symbolic::{Bound, Expr, Interval, Pool, Symbol, Truth};
+use crate::symbolic::{Bound, Expr, Function, Interval, Node, Pool, Symbol, Truth};
 
 /// The answer to "is this formula free of these symbols?".
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -31,7 +31,7 @@ pub fn free_of(pool: &Pool, e: Expr, symbols: &[Symbol]) -> Freedom {
     let Some(&first) = mentioned.first() else {
         return Freedom::Free(simple);
     };
-    if pool.has_kink(simple).is_some() {
+    if kink_in(pool, simple, symbols).is_some() {
         return Freedom::DependsOn(first);
     }
     for &symbol in &mentioned {
@@ -42,6 +42,18 @@ pub fn free_of(pool: &Pool, e: Expr, symbols: &[Symbol]) -> Freedom {
         }
     }
     at_reference(pool, simple, &mentioned)
+}
+
+/// A function with a kink (`abs`, `min`, `max`, `sign`) whose argument depends on one of the symbols.
+pub fn kink_in(pool: &Pool, e: Expr, symbols: &[Symbol]) -> Option<Function> {
+    pool.has_kink(e)?;
+    let moved = |part: Expr| symbols.iter().any(|&s| pool.depends_on(part, s));
+    pool.postorder(e)
+        .into_iter()
+        .find_map(|part| match &*pool.node(part) {
+            Node::Call(function, _) if !function.is_smooth() && moved(part) => Some(*function),
+            _ => None,
+        })
 }
 
 /// The value of a formula known to be constant in `symbols`, read off at a point inside their ranges

@@ -1,7 +1,7 @@
 //! The noise of a single state: constant in a coordinate, or why in none.
 
 use super::coordinate::Candidate;
-use super::free::{Freedom, free_of};
+use super::free::{Freedom, free_of, kink_in};
 use crate::model::Model;
 use crate::symbolic::{Bound, Expr, Pool, Symbol};
 
@@ -15,14 +15,10 @@ pub(super) fn constant_noise(
 ) -> Option<Vec<Expr>> {
     let slope = pool.derivative(coordinate.forward, state);
     let constant = |&b: &Expr| match free_of(pool, pool.mul(b, slope), states) {
-        Freedom::Free(c) if pool.has_kink(b).is_none() || !mentions(pool, b, states) => Some(c),
+        Freedom::Free(c) if kink_in(pool, b, states).is_none() => Some(c),
         _ => None,
     };
     noise.iter().map(constant).collect()
-}
-
-fn mentions(pool: &Pool, e: Expr, states: &[Symbol]) -> bool {
-    states.iter().any(|&s| pool.depends_on(e, s))
 }
 
 /// Why no coordinate makes the noise of a state constant, and what the author can do.

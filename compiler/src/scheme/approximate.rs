@@ -9,10 +9,11 @@ use super::{Coordinate, Group, Kind, Law, Method, Order, SchemeName, overrides, 
 use crate::analysis::commute::{Clash, clash};
 use crate::analysis::coordinate::through;
 use crate::analysis::dependence::{mentioned, sources};
+use crate::analysis::free::kink_in;
 use crate::calculus::Dynamics;
 use crate::model::{AtEdge, Model};
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Bound, Expr, Function};
+use crate::symbolic::{Bound, Expr, Function, Symbol};
 
 /// What the choice among approximate schemes rests on.
 pub(super) struct Context<'a> {
@@ -155,10 +156,9 @@ impl Context<'_> {
 
     fn kink(&self, state: usize) -> Option<Function> {
         let process = &self.coordinates[state].process;
-        let coefficients = process.diffusion.iter().copied().chain([process.drift]);
-        coefficients
-            .filter(|&e| self.mentions_states(e))
-            .find_map(|e| self.model.pool.has_kink(e))
+        let states: Vec<Symbol> = self.model.states.iter().map(|s| s.symbol).collect();
+        let mut coefficients = process.diffusion.iter().copied().chain([process.drift]);
+        coefficients.find_map(|e| kink_in(&self.model.pool, e, &states))
     }
 
     fn is_ruled(&self, state: usize) -> bool {

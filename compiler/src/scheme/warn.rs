@@ -1,6 +1,6 @@
 //! What the author should know of a model's coordinates and open ends.
 
-use super::Group;
+use super::{Group, Law};
 use crate::analysis::asymptotics::Side;
 use crate::analysis::boundary::{End, classify};
 use crate::analysis::coordinate::through;
@@ -51,8 +51,8 @@ fn turns(model: &Model, state: usize) -> bool {
     values.iter().any(|&v| v > 0.0) && values.iter().any(|&v| v < 0.0)
 }
 
-/// Warns of open ends that are reached, or may be, by states that are not exact: an exact law's
-/// coordinate goes to infinity there.
+/// Warns of open ends that are reached, or may be. A random state with an exact law cannot get there:
+/// its coordinate goes to infinity.
 pub(super) fn open_ends(
     model: &Model,
     dynamics: &Dynamics,
@@ -61,7 +61,7 @@ pub(super) fn open_ends(
 ) {
     for &state in groups
         .iter()
-        .filter(|g| !g.is_exact())
+        .filter(|g| !g.is_exact() || g.law == Some(Law::Deterministic))
         .flat_map(|g| &g.states)
     {
         let domain = model.states[state].domain;

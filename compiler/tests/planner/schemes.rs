@@ -428,3 +428,19 @@ fn a_correlation_that_moves_keeps_a_pair_from_one_exact_draw() {
         "{reasons:?}"
     );
 }
+
+#[test]
+fn a_kink_in_parameters_alone_is_a_constant() {
+    let planned = two(&state("X", "-max(kappa, theta)*X", "W = \"abs(mu)\"", ""));
+    assert!(only(&planned).is_exact(), "{:?}", only(&planned).reasons);
+}
+
+#[test]
+fn a_deterministic_state_that_leaves_its_open_domain_is_warned_of() {
+    let text = |drift: &str| {
+        format!("[states.x]\ninitial = \"1\"\ndrift = \"{drift}\"\ndomain = \"(0, inf)\"\n")
+    };
+    let reached = |p: &Planned| p.found.iter().any(|d| d.code == Code::OpenEndReached);
+    assert!(reached(&two(&text("-kappa"))));
+    assert!(!reached(&two(&text("theta - kappa*x"))));
+}

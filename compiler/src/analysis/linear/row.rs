@@ -5,7 +5,7 @@ use std::collections::BTreeMap;
 use super::Row;
 use super::eliminate::{Choice, Finder};
 use crate::analysis::dependence::mentioned;
-use crate::analysis::free::{Freedom, free_of};
+use crate::analysis::free::{Freedom, free_of, kink_in};
 use crate::analysis::sample;
 use crate::symbolic::Expr;
 
@@ -20,7 +20,7 @@ impl Finder<'_> {
         let drift = choice.process.drift;
         let shown = self.shown(choice);
         let mentioned = mentioned(self.model, drift);
-        if !mentioned.is_empty() && pool.has_kink(drift).is_some() {
+        if kink_in(pool, drift, &self.symbols).is_some() {
             return Err(format!("the drift of {shown} has a kink"));
         }
         let mut slopes = BTreeMap::new();
