@@ -120,7 +120,7 @@ impl<'a> Lexer<'a> {
 
 /// What the author of an unusual character may have meant.
 fn replacement(c: char) -> &'static str {
-    let text = match c {
+    match c {
         '²' => "write `^2`",
         '³' => "write `^3`",
         '·' | '×' | '⋅' | '∙' | '∗' => "write `*` for a product",
@@ -135,8 +135,7 @@ fn replacement(c: char) -> &'static str {
         '=' => "a formula stands without `=`; inequalities are written <, <=, >, >=",
         '_' => "names start with a letter",
         _ => "remove it",
-    };
-    text
+    }
 }
 
 fn number_error(error: NumberError, text: &str, span: Span) -> Diagnostic {

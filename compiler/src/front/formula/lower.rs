@@ -3,6 +3,7 @@
 use std::collections::BTreeSet;
 
 use super::ast::{Ast, AstKind, Factor, Term};
+use super::functions::{other_name, outside_domain};
 use super::parser::parse;
 use crate::diagnostic::{Code, Diagnostic};
 use crate::front::suggest::did_you_mean;
@@ -199,7 +200,8 @@ impl Lowering<'_> {
         }
         let values: Vec<Option<Expr>> = arguments.iter().map(|a| self.formula(a)).collect();
         let values = values.into_iter().collect::<Option<Vec<Expr>>>()?;
-        if let Some(domain) = self.outside_domain(function, values[0]) {
+        let number = self.pool.as_number(values[0]);
+        if let Some(domain) = number.and_then(|value| outside_domain(function, value)) {
             let message = format!("`{name}` has no real value here");
             return self.undefined(
                 ast.span,
@@ -208,26 +210,6 @@ impl Lowering<'_> {
             );
         }
         Some(self.pool.call(function, &values))
-    }
-
-    /// The domain of a function, where a number given to it lies outside.
-    fn outside_domain(&self, function: Function, argument: Expr) -> Option<&'static str> {
-        let value = self.pool.as_number(argument)?;
-        let (zero, one) = (Rational::ZERO, Rational::ONE);
-        let within = -one.clone()..=one.clone();
-        match function {
-            Function::Log if value <= zero => Some("positive"),
-            Function::Sqrt if value < zero => Some("0 or positive"),
-            Function::Asin | Function::Acos if !within.contains(&value) => Some("between -1 and 1"),
-            Function::Acosh if value < one => Some("1 or more"),
-            Function::Atanh if value <= -one.clone() || value >= one => {
-                Some("strictly between -1 and 1")
-            }
-            Function::NormalQuantile if value <= zero || value >= one => {
-                Some("strictly between 0 and 1")
-            }
-            _ => None,
-        }
     }
 
     fn undefined(&mut self, span: Span, message: &str, hint: &str) -> Option<Expr> {
@@ -249,41 +231,4 @@ impl Lowering<'_> {
         diagnostic
             .hint(hint.unwrap_or_else(|| "`check --explain DW0206` lists the functions".to_owned()))
     }
-}
-
-/// Functions by the names other languages give them.
-fn other_name(name: &str) -> Option<String> {
-    let text = match name {
-        "ln" => "`log` is the natural logarithm",
-        "log10" => "write `log(x)/log(10)`",
-        "log2" => "write `log(x)/log(2)`",
-        "log1p" => "write `log(1 + x)`",
-        "expm1" => "write `exp(x) - 1`",
-        "pow" => "powers are written `x^y`",
-        "fabs" => "write `abs(x)`",
-        "arcsin" => "write `asin(x)`",
-        "arccos" => "write `acos(x)`",
-        "arctan" => "write `atan(x)`",
-        "sgn" => "write `sign(x)`",
-        "erfc" => "write `1 - erf(x)`",
-        "Phi" | "norm_cdf" => "write `normal_cdf(x)`",
-        _ => return None,
-    };
-    Some(text.to_owned())
-}
-
-/// The first function with a kink, and where its name stands.
-pub(crate) fn kink_at(ast: &Ast) -> Option<(Function, Span)> {
-    let mut found = None;
-    ast.walk(&mut |node| {
-        if let AstKind::Call {
-            name, name_span, ..
-        } = &node.kind
-            && let Some(function) = Function::from_name(name)
-            && !function.is_smooth()
-        {
-            found.get_or_insert((function, *name_span));
-        }
-    });
-    found
 }

@@ -6,16 +6,18 @@
 //! [`Expr`]: crate::symbolic::Expr
 
 mod ast;
+mod functions;
 mod interval;
 mod lexer;
 mod lower;
 mod number;
 mod parser;
+mod unexpected;
 
 pub use ast::{Ast, AstKind, Factor, Term};
+pub(crate) use functions::kink_at;
 pub use interval::{IntervalAst, IntervalEnd, parse_interval};
 pub(crate) use lexer::is_name;
-pub(crate) use lower::kink_at;
 pub use lower::{Names, lower, parse_in_pool};
 pub use number::{NumberError, decimal};
 pub use parser::{MAX_DEPTH, parse, parse_inequality};

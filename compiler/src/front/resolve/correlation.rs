@@ -14,18 +14,18 @@ use crate::symbolic::Expr;
 /// Slack for rounding: pivots above minus this count as zero.
 const SLACK: f64 = 1e-10;
 
+/// Two drivers and the formula of their correlation.
+type DeclaredPair = (usize, usize, Formula);
+
 impl Resolver<'_> {
     /// The matrix and the declared pairs.
-    pub(super) fn correlation(
-        &mut self,
-        raw: &RawModel,
-    ) -> (Vec<Vec<Expr>>, Vec<(usize, usize, Formula)>) {
+    pub(super) fn correlation(&mut self, raw: &RawModel) -> (Vec<Vec<Expr>>, Vec<DeclaredPair>) {
         let size = raw.drivers.len();
         let (zero, one) = (self.pool.zero(), self.pool.one());
         let mut matrix: Vec<Vec<Expr>> = (0..size)
             .map(|i| (0..size).map(|j| if i == j { one } else { zero }).collect())
             .collect();
-        let mut declared: Vec<(usize, usize, Formula)> = Vec::new();
+        let mut declared: Vec<DeclaredPair> = Vec::new();
         for correlation in &raw.correlations {
             let Some((i, j)) = self.pair(raw, correlation, &declared) else {
                 continue;
@@ -60,7 +60,7 @@ impl Resolver<'_> {
         &mut self,
         raw: &RawModel,
         correlation: &RawCorrelation,
-        declared: &[(usize, usize, Formula)],
+        declared: &[DeclaredPair],
     ) -> Option<(usize, usize)> {
         let [first, second] = &correlation.drivers;
         let i = self.driver(&raw.drivers, first);
@@ -113,7 +113,7 @@ impl Resolver<'_> {
     }
 
     /// Three or more drivers can have entries within bounds and no joint law all the same.
-    fn check_semidefinite(&mut self, matrix: &[Vec<Expr>], declared: &[(usize, usize, Formula)]) {
+    fn check_semidefinite(&mut self, matrix: &[Vec<Expr>], declared: &[DeclaredPair]) {
         let mut literal = true;
         let mut values = vec![vec![0.0; matrix.len()]; matrix.len()];
         for (i, row) in matrix.iter().enumerate() {

@@ -13,6 +13,7 @@ mod scope;
 mod single;
 mod states;
 mod unused;
+mod view;
 
 pub use place::Place;
 pub use single::read_formula;

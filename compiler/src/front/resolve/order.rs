@@ -31,13 +31,20 @@ pub(super) fn order(definitions: &[Definition<'_>], diagnostics: &mut Diagnostic
         uses: &uses,
         marks: vec![Mark::New; uses.len()],
         order: Vec::new(),
+        circles: Vec::new(),
     };
     for start in 0..uses.len() {
-        sorter.visit(start, &mut |circle| {
-            diagnostics.push(report(definitions, circle))
-        });
+        sorter.visit(start);
     }
-    let Sorter { marks, order, .. } = sorter;
+    let Sorter {
+        marks,
+        order,
+        circles,
+        ..
+    } = sorter;
+    circles
+        .iter()
+        .for_each(|circle| diagnostics.push(report(definitions, circle)));
     order
         .into_iter()
         .filter(|&position| marks[position] == Mark::Done)
@@ -57,11 +64,13 @@ struct Sorter<'a> {
     uses: &'a [Vec<(usize, Span)>],
     marks: Vec<Mark>,
     order: Vec<usize>,
+    /// Each circle: its definitions, and in each the place that leads to the next.
+    circles: Vec<Vec<(usize, Span)>>,
 }
 
 impl Sorter<'_> {
     /// Depth first, with a stack of its own: chains of definitions may be long.
-    fn visit(&mut self, start: usize, report: &mut dyn FnMut(&[(usize, Span)])) {
+    fn visit(&mut self, start: usize) {
         if self.marks[start] != Mark::New {
             return;
         }
@@ -84,28 +93,23 @@ impl Sorter<'_> {
                     self.marks[used] = Mark::Open;
                     path.push((used, 0));
                 }
-                Mark::Open => self.circle(used, &path, report),
+                Mark::Open => self.circle(used, &path),
                 Mark::Done | Mark::InCircle => {}
             }
         }
     }
 
     /// The path from `from` to its end closes a circle.
-    fn circle(
-        &mut self,
-        from: usize,
-        path: &[(usize, usize)],
-        report: &mut dyn FnMut(&[(usize, Span)]),
-    ) {
+    fn circle(&mut self, from: usize, path: &[(usize, usize)]) {
         let start = path.iter().position(|(node, _)| *node == from).unwrap_or(0);
         let circle: Vec<(usize, Span)> = path[start..]
             .iter()
             .map(|&(node, next)| (node, self.uses[node][next - 1].1))
             .collect();
-        report(&circle);
-        for (node, _) in circle {
-            self.marks[node] = Mark::InCircle;
+        for (node, _) in &circle {
+            self.marks[*node] = Mark::InCircle;
         }
+        self.circles.push(circle);
     }
 }
 
