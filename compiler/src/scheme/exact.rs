@@ -9,7 +9,7 @@ use crate::symbolic::{Bound, Expr};
 
 /// One group for each connected component of the states that have a row.
 pub(super) fn groups(model: &Model, rows: &Rows) -> Vec<Group> {
-    let reached = reached(&model.pool, rows);
+    let reached = reached(rows);
     components(model, rows)
         .into_iter()
         .map(|states| group(model, rows, &reached, states))

@@ -17,8 +17,8 @@ use std::collections::BTreeMap;
 use super::coordinate::Candidate;
 use crate::calculus::{Dynamics, Process};
 use crate::model::Model;
+use crate::symbolic::Expr;
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Expr, Pool};
 use eliminate::Finder;
 
 /// A state whose coordinate is a row of a linear Gaussian system.
@@ -34,6 +34,8 @@ pub struct Row {
     pub constant: Expr,
     /// The coefficients of the drivers, constants.
     pub noise: Vec<Expr>,
+    /// The drivers whose coefficient is not zero.
+    pub drivers: Vec<usize>,
     /// Ito's rule on the coordinate, step by step.
     pub trace: Trace,
 }
@@ -89,18 +91,14 @@ fn noises_meet(model: &Model, left: &Row, right: &Row) -> bool {
 
 /// The correlations of the drivers of one row with those of another.
 fn pairs<'a>(model: &'a Model, left: &'a Row, right: &'a Row) -> impl Iterator<Item = Expr> + 'a {
-    let used = |row: &'a Row| {
-        let noise = row.noise.iter().enumerate();
-        noise
-            .filter(|&(_, &c)| !model.pool.is_zero_literal(c))
-            .map(|(j, _)| j)
-    };
-    used(left).flat_map(move |j| used(right).map(move |k| model.correlation[j][k]))
+    let correlations =
+        move |&j: &usize| right.drivers.iter().map(move |&k| model.correlation[j][k]);
+    left.drivers.iter().flat_map(correlations)
 }
 
 /// Which rows noise reaches, directly or through the drift.
-pub fn reached(pool: &Pool, rows: &Rows) -> Vec<bool> {
-    let noisy = |row: &Row| row.noise.iter().any(|&c| !pool.is_zero_literal(c));
+pub fn reached(rows: &Rows) -> Vec<bool> {
+    let noisy = |row: &Row| !row.drivers.is_empty();
     let mut reached: Vec<bool> = rows
         .iter()
         .map(|row| row.as_ref().is_ok_and(noisy))
@@ -120,7 +118,7 @@ pub fn reached(pool: &Pool, rows: &Rows) -> Vec<bool> {
 
 /// A state with a Gaussian coordinate that its domain cannot hold.
 fn confined(model: &Model, rows: &Rows) -> Option<(usize, String)> {
-    let reached = reached(&model.pool, rows);
+    let reached = reached(rows);
     let (state, row) = rows.iter().enumerate().find_map(|(i, row)| {
         let row = row.as_ref().ok()?;
         (reached[i] && !row.coordinate.onto_line).then_some((i, row))
