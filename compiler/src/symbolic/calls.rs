@@ -2,10 +2,10 @@
 
 use dashu_base::Abs;
 
-use super::build::exact_cube_root;
 use super::function::Function;
 use super::node::{Expr, Node, Rational};
 use super::pool::Pool;
+use super::power::exact_cube_root;
 
 impl Pool {
     /// `exp(a)`.

@@ -23,6 +23,7 @@ mod node;
 mod normal;
 mod order;
 mod pool;
+mod power;
 mod print;
 mod print_number;
 mod query;

@@ -125,7 +125,7 @@ impl Normalizer<'_> {
         if let (Some((monomial, coefficient)), true) =
             (a.numerator.as_term(), a.denominator.is_empty())
         {
-            let number = super::super::build::exact_power(coefficient, &Rational::from(n))?;
+            let number = super::super::power::exact_power(coefficient, &Rational::from(n))?;
             return Some(
                 self.monomial_power(monomial, Exponent::whole(n))?
                     .scaled(&number),

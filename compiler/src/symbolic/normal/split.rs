@@ -64,7 +64,7 @@ impl Split {
     }
 
     fn raised(self, n: &Rational) -> Option<Split> {
-        let coefficient = super::super::build::exact_power(&self.coefficient, n)?;
+        let coefficient = super::super::power::exact_power(&self.coefficient, n)?;
         let exponent = Exponent::from_rational(n)?;
         let factors = self
             .factors
