@@ -1,6 +1,6 @@
 //! Moments of the laws that the models lead to, from the literature.
 
-use statrs::distribution::{Continuous, ContinuousCDF, Normal};
+use statrs::distribution::{Continuous, Normal};
 
 /// The first three moments of a quantity, as far as a test knows them.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
@@ -53,7 +53,7 @@ impl Moments {
     }
 }
 
-/// The standard normal law (statrs).
+/// The standard normal law (statrs); its quantiles are good to about ten digits.
 ///
 /// # Panics
 /// Never: its parameters are fixed.
@@ -62,10 +62,10 @@ pub fn standard_normal() -> Normal {
     Normal::new(0.0, 1.0).expect("a standard normal law")
 }
 
-/// The standard normal distribution function.
+/// The standard normal distribution function, by the error function of libm.
 #[must_use]
 pub fn phi(x: f64) -> f64 {
-    standard_normal().cdf(x)
+    0.5 * libm::erfc(-x * std::f64::consts::FRAC_1_SQRT_2)
 }
 
 /// The standard normal density.

@@ -2,6 +2,8 @@
 //! paths, and families of tests with a threshold of their own.
 
 pub mod checks;
+pub mod interpret;
 pub mod laws;
 pub mod reference;
+pub mod sums;
 pub mod values;

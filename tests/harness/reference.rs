@@ -50,10 +50,21 @@ pub struct Source {
 pub struct CheckValue {
     /// What it is.
     pub quantity: String,
-    /// Where it is taken, for functions.
-    pub at: Option<f64>,
+    /// Where it is taken, for functions: a number, or several for a function of several.
+    pub at: Option<toml::Value>,
     /// The value.
     pub value: f64,
+}
+
+impl CheckValue {
+    /// Where it is taken.
+    ///
+    /// # Panics
+    /// If that is no single number.
+    #[must_use]
+    pub fn level(&self) -> f64 {
+        number(self.at.as_ref().expect("a place where it is taken"))
+    }
 }
 
 impl Reference {
@@ -127,7 +138,7 @@ impl Case {
         self.check
             .iter()
             .filter(move |c| c.quantity == quantity)
-            .map(|c| (c.at.unwrap_or(f64::NAN), c.value))
+            .map(|c| (c.level(), c.value))
     }
 
     /// An entry of the case outside `params`.

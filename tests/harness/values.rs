@@ -70,3 +70,19 @@ pub fn read(path: &str) -> String {
     let path = repository().join(path);
     std::fs::read_to_string(&path).unwrap_or_else(|e| panic!("{}: {e}", path.display()))
 }
+
+/// The names of the model files in a folder named from the top level of the repository, sorted.
+///
+/// # Panics
+/// If the folder cannot be read.
+#[must_use]
+pub fn model_names(folder: &str) -> Vec<String> {
+    let entries = std::fs::read_dir(repository().join(folder)).expect("a folder");
+    let paths = entries.map(|entry| entry.expect("an entry").path());
+    let mut names: Vec<String> = paths
+        .filter(|path| path.extension().is_some_and(|e| e == "toml"))
+        .filter_map(|path| Some(path.file_stem()?.to_str()?.to_string()))
+        .collect();
+    names.sort();
+    names
+}

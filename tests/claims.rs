@@ -1,0 +1,92 @@
+//! What the shipped models claim: nothing is refuted, and what is not proved is known here by name.
+
+use driftwright::analysis::claims::Verdict;
+use driftwright_tests::harness::interpret::compiled;
+use driftwright_tests::harness::values::{model_names, read};
+
+/// Claims that no exact law or closed moment equation decides; `verify` puts them to the test.
+const OPEN: [(&str, &str); 0] = [];
+
+/// Models that must be stepped by an exact law alone.
+const EXACT: [&str; 12] = [
+    "barley_two_factor",
+    "cooling_kiln",
+    "ferry_currency",
+    "glacier_melt",
+    "harbour_account",
+    "harbour_toll",
+    "market_share",
+    "orchard_spot",
+    "river_spread",
+    "salt_price",
+    "tide_gauge",
+    "twin_orchards",
+];
+
+#[test]
+fn claims_of_shipped_models_hold() {
+    let mut open = Vec::new();
+    let mut proved = 0;
+    for name in model_names("models") {
+        let compiled = compiled(&name, &read(&format!("models/{name}.toml")));
+        for claim in &compiled.claims {
+            match claim.verdict {
+                Verdict::Proved => proved += 1,
+                Verdict::Open => {
+                    open.push((name.clone(), claim.name.clone(), claim.reason.clone()))
+                }
+                Verdict::Refuted => unreachable!("a refuted claim is an error"),
+            }
+        }
+    }
+    let known = |(model, claim, _): &&(String, String, String)| {
+        !OPEN.contains(&(model.as_str(), claim.as_str()))
+    };
+    let surprising: Vec<_> = open.iter().filter(known).collect();
+    assert!(surprising.is_empty(), "open: {surprising:#?}");
+    assert_eq!(
+        open.len(),
+        OPEN.len(),
+        "a claim listed as open is proved: take it off the list"
+    );
+    assert!(proved > 80, "only {proved} claims");
+}
+
+#[test]
+fn exact_laws_are_found_where_they_are() {
+    for name in EXACT {
+        let compiled = compiled(name, &read(&format!("models/{name}.toml")));
+        for group in &compiled.plan.groups {
+            assert!(group.is_exact(), "{name}: {:?}", group.reasons);
+        }
+    }
+}
+
+/// A twin of each model with its claims: at least one of them is refuted, or the twin is not caught on paper and
+/// only the paths tell.
+#[test]
+fn wrong_terms_refute_claims() {
+    let mut refuted = Vec::new();
+    for name in model_names("models") {
+        let model = read(&format!("models/{name}.toml"));
+        let twin = read(&format!("tests/fixtures/twins/{name}.toml"));
+        let (_, claims) = model
+            .split_once("[claims]")
+            .expect("every model claims something");
+        let source =
+            driftwright::source::SourceFile::new(name.as_str(), format!("{twin}[claims]{claims}"));
+        let compilation = driftwright::pipeline::compile(&source);
+        if compilation.has_errors() {
+            refuted.push(name);
+        }
+    }
+    let silent: Vec<String> = model_names("models")
+        .into_iter()
+        .filter(|name| !refuted.contains(name))
+        .collect();
+    assert_eq!(
+        silent,
+        Vec::<String>::new(),
+        "twins whose claims still hold"
+    );
+}

@@ -1,0 +1,111 @@
+//! Analytic moments of the models with one random state and an exact law, from the sources named
+//! in the models' `about` and beside each law.
+
+use driftwright_tests::harness::laws::*;
+use driftwright_tests::harness::values::Values;
+
+use crate::cases::{At, Expected};
+
+/// Brownian motion with drift.
+pub(crate) fn harbour_toll(p: &Values, at: At) -> Expected {
+    let (mean, variance) = (
+        p.get("X0") + p.get("mu") * at.time,
+        p.get("sigma").powi(2) * at.time,
+    );
+    let a = p.get("a");
+    vec![
+        ("X", normal(mean, variance)),
+        ("square", squared_normal(mean, variance)),
+        ("wald", lognormal(a * mean, a * a * variance)),
+        (
+            "shortfall",
+            Moments::mean(bachelier_put(mean, variance, p.get("floor"))),
+        ),
+    ]
+}
+
+/// Geometric Brownian motion; the call's mean is the formula of Black & Scholes 1973.
+pub(crate) fn orchard_spot(p: &Values, at: At) -> Expected {
+    let (s0, mu, sigma) = (p.get("S0"), p.get("mu"), p.get("sigma"));
+    let variance = sigma * sigma * at.time;
+    let mean = s0.ln() + mu * at.time - variance / 2.0;
+    let forward = s0 * (mu * at.time).exp();
+    let call = (-mu * at.time).exp() * black_call(forward, p.get("strike"), variance);
+    vec![
+        ("S", lognormal(mean, variance)),
+        ("log_S", normal(mean, variance)),
+        ("square_root", lognormal(mean / 2.0, variance / 4.0)),
+        ("call", Moments::mean(call)),
+    ]
+}
+
+/// Ornstein-Uhlenbeck process.
+pub(crate) fn river_spread(p: &Values, at: At) -> Expected {
+    let (kappa, theta) = (p.get("kappa"), p.get("theta"));
+    let mean = ou_mean(p.get("X0"), theta, kappa, at.time);
+    let variance = ou_variance(kappa, p.get("sigma"), at.time);
+    let growth = (kappa * at.time).exp();
+    vec![
+        ("X", normal(mean, variance)),
+        (
+            "deviation",
+            normal(p.get("X0") - theta, growth * growth * variance),
+        ),
+        ("energy", squared_normal(mean - theta, variance)),
+        ("congested", indicator(phi(mean / variance.sqrt()))),
+    ]
+}
+
+/// The same process in disguise.
+pub(crate) fn tide_gauge(p: &Values, at: At) -> Expected {
+    let mean = ou_mean(p.get("Z0"), p.get("theta"), p.get("kappa"), at.time);
+    let variance = ou_variance(p.get("kappa"), p.get("sigma"), at.time);
+    vec![("Z", normal(mean, variance))]
+}
+
+/// Geometric Brownian motion under two correlated drivers, Stratonovich.
+pub(crate) fn glacier_melt(p: &Values, at: At) -> Expected {
+    let (v, w) = (p.get("sigma_V"), p.get("sigma_W"));
+    let variance = (v * v + 2.0 * p.get("rho") * v * w + w * w) * at.time;
+    let mean = p.get("Q0").ln() + p.get("mu") * at.time;
+    vec![
+        ("Q", lognormal(mean, variance)),
+        ("log_Q", normal(mean, variance)),
+    ]
+}
+
+/// Geometric Ornstein-Uhlenbeck process.
+pub(crate) fn salt_price(p: &Values, at: At) -> Expected {
+    let (kappa, sigma) = (p.get("kappa"), p.get("sigma"));
+    let alpha = p.get("mu") - sigma * sigma / (2.0 * kappa);
+    let mean = ou_mean(p.get("S0").ln(), alpha, kappa, at.time);
+    let variance = ou_variance(kappa, sigma, at.time);
+    vec![
+        ("S", lognormal(mean, variance)),
+        ("log_S", normal(mean, variance)),
+    ]
+}
+
+/// Logit-normal share; the share's own moments by quadrature over the driver.
+pub(crate) fn market_share(p: &Values, at: At) -> Expected {
+    let odds = p.get("p0") / (1.0 - p.get("p0"));
+    let mean = odds.ln() + p.get("mu") * at.time;
+    let variance = p.get("sigma").powi(2) * at.time;
+    vec![
+        (
+            "p",
+            image_of_normal(mean, variance, |u| 1.0 / (1.0 + (-u).exp())),
+        ),
+        ("log_odds", normal(mean, variance)),
+        ("odds", lognormal(mean, variance)),
+    ]
+}
+
+/// Brownian motion reflected at 0: the modulus of a Brownian motion.
+pub(crate) fn sluice_level(p: &Values, at: At) -> Expected {
+    let variance = p.get("sigma").powi(2) * at.time;
+    vec![
+        ("H", folded_normal(p.get("H0"), variance)),
+        ("square", squared_normal(p.get("H0"), variance)),
+    ]
+}

@@ -1,0 +1,10 @@
+//! The reference values in scope against the compiler and its simulators: transition laws (B), closed-form
+//! prices (C), exact discrete moments and strong errors of schemes (E). Each case names its source in `tests/reference/`.
+
+mod closed;
+mod estimate;
+mod laws;
+mod model;
+mod prices;
+mod rates;
+mod schemes;
