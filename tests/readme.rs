@@ -51,7 +51,10 @@ fn first_block_is_the_two_commands() {
     for part in ["mu - sigma^2/2", "exact", "lognormal", "mean", "42"] {
         assert!(screen.contains(part), "no {part} on the screen:\n{screen}");
     }
-    assert!(screen.lines().count() <= 60, "more than a screen:\n{screen}");
+    assert!(
+        screen.lines().count() <= 60,
+        "more than a screen:\n{screen}"
+    );
 }
 
 #[test]
@@ -83,7 +86,13 @@ fn own_crate_builds_and_runs() {
     // The mean is 42 exp(0.05) at one year.
     let analytic = 42.0 * 0.05_f64.exp();
     let last = output.lines().last().expect("two lines");
-    let mut numbers = last.split(|c: char| !(c.is_ascii_digit() || c == '.')).filter_map(|n| n.parse().ok());
-    let [_, mean, std_error]: [f64; 3] = std::array::from_fn(|_| numbers.next().expect("three numbers"));
-    assert!((mean - analytic).abs() < 4.0 * std_error, "{last} against {analytic}");
+    let mut numbers = last
+        .split(|c: char| !(c.is_ascii_digit() || c == '.'))
+        .filter_map(|n| n.parse().ok());
+    let [_, mean, std_error]: [f64; 3] =
+        std::array::from_fn(|_| numbers.next().expect("three numbers"));
+    assert!(
+        (mean - analytic).abs() < 4.0 * std_error,
+        "{last} against {analytic}"
+    );
 }

@@ -9,9 +9,13 @@ use std::time::Instant;
 use divan::Bencher;
 use driftwright_runtime::collect::Moments;
 use driftwright_runtime::{Grid, Run, Simulator, simulate};
-use driftwright_tests::built::orchard_spot::{self, OrchardSpot};
-use driftwright_tests::built::river_spread::{self, RiverSpread};
-use driftwright_tests::built::twin_orchards::{self, TwinOrchards};
+use orchard_spot::OrchardSpot;
+use river_spread::RiverSpread;
+use twin_orchards::TwinOrchards;
+
+include!(concat!(env!("OUT_DIR"), "/orchard_spot.rs"));
+include!(concat!(env!("OUT_DIR"), "/river_spread.rs"));
+include!(concat!(env!("OUT_DIR"), "/twin_orchards.rs"));
 
 const PATHS: u64 = 200_000;
 const STEPS: usize = 252;

@@ -11,7 +11,7 @@ use std::collections::BTreeMap;
 use driftwright_runtime::Simulator;
 use driftwright_tests::harness::checks::{Check, assert_family, failures};
 use driftwright_tests::harness::interpret::interpreter;
-use driftwright_tests::harness::values::{model_names, read};
+use driftwright_tests::harness::values::{Values, model_names, read};
 
 use cases::{CASES, Case, KELP};
 
@@ -19,6 +19,52 @@ use cases::{CASES, Case, KELP};
 trait Visit {
     /// Does it.
     fn visit<S: Simulator>(&mut self, name: &str, simulator: &S);
+}
+
+/// The modules the build script wrote; they are public for users who include them in a library.
+#[allow(unreachable_pub)]
+mod built {
+    macro_rules! every_model {
+        ($($module:ident $simulator:ident $path:literal $file:literal { $($name:literal $field:ident,)* })*) => {
+            $(include!(concat!(env!("OUT_DIR"), $file));)*
+        };
+    }
+    include!(concat!(env!("OUT_DIR"), "/every_model.rs"));
+}
+
+/// The modules the macro expands to.
+#[allow(unreachable_pub)]
+mod expanded {
+    macro_rules! every_model {
+        ($($module:ident $simulator:ident $path:literal $file:literal { $($name:literal $field:ident,)* })*) => {
+            $(driftwright_macros::model!($path);)*
+        };
+    }
+    include!(concat!(env!("OUT_DIR"), "/every_model.rs"));
+}
+
+/// Visits the simulators of the shipped models, at the models' own parameter values, of both routes.
+macro_rules! every_model {
+    ($($module:ident $simulator:ident $path:literal $file:literal { $($name:literal $field:ident,)* })*) => {
+        fn visit_shipped(built: &mut impl Visit, expanded: &mut impl Visit) {
+            $(if let Some(values) = shipped($path) {
+                let parameters = crate::built::$module::Parameters { $($field: values.get($name)),* };
+                let simulator = crate::built::$module::$simulator::new(parameters);
+                built.visit(stringify!($module), &simulator.expect("admissible values"));
+                let parameters = crate::expanded::$module::Parameters { $($field: values.get($name)),* };
+                let simulator = crate::expanded::$module::$simulator::new(parameters);
+                expanded.visit(stringify!($module), &simulator.expect("admissible values"));
+            })*
+        }
+    };
+}
+
+include!(concat!(env!("OUT_DIR"), "/every_model.rs"));
+
+/// The parameter values of a shipped model; none for a fixture.
+fn shipped(path: &str) -> Option<Values> {
+    let file = path.strip_prefix("../models/")?;
+    Some(Values::from_model_text(&read(&format!("models/{file}"))))
 }
 
 /// Collects the checks of every model.
@@ -65,13 +111,16 @@ fn case(name: &str) -> &'static Case {
 
 #[test]
 fn shipped_models_have_their_moments() {
-    let mut interpreted = Measure::new("interpreter", 101);
-    for name in model_names("models") {
-        let text = read(&format!("models/{name}.toml"));
-        let simulator = interpreter(&name, &text, &BTreeMap::new());
-        interpreted.visit(&name, &simulator);
-    }
-    let checks = interpreted.checks;
+    let mut built = Measure::new("build script", 101);
+    let mut expanded = Measure::new("macro", 202);
+    visit_shipped(&mut built, &mut expanded);
+    assert_eq!(
+        built.seen,
+        model_names("models"),
+        "every shipped model, once"
+    );
+    assert_eq!(built.seen, expanded.seen);
+    let checks = [built.checks, expanded.checks].concat();
     println!(
         "{} tests, |z| < {:.2}",
         checks.len(),

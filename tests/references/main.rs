@@ -3,6 +3,7 @@
 
 mod closed;
 mod estimate;
+mod extrapolated;
 mod laws;
 mod model;
 mod prices;
