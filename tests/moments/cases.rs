@@ -121,7 +121,7 @@ impl Case {
         let position = |name: &str| {
             outputs
                 .iter()
-                .position(|o| o == name)
+                .position(|output| output == name)
                 .unwrap_or_else(|| panic!("{}: no quantity {name}", self.name))
         };
         let mut centres = vec![0.0; outputs.len() * self.times.len()];

@@ -53,7 +53,7 @@ impl Estimates {
         let index = self
             .outputs
             .iter()
-            .position(|o| o == quantity)
+            .position(|output| output == quantity)
             .unwrap_or_else(|| panic!("{}: no quantity {quantity}", self.name));
         &self.powers[time * self.outputs.len() + index]
     }
