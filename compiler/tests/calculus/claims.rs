@@ -139,6 +139,93 @@ drift = "kappa*(theta - X)"
 diffusion = { B = "eta" }
 "#;
 
+/// Claims about readouts, with their wrong twins: prices of options on the orchard's spot.
+const OPTIONS: [(&str, &str, &str, &str); 5] = [
+    (
+        // Black and Scholes 1973, equation 13.
+        "call",
+        "exp(-mu*t)*max(S - strike, 0)",
+        "S0*normal_cdf((log(S0/strike) + (mu + sigma^2/2)*t)/(sigma*sqrt(t))) \
+         - strike*exp(-mu*t)*normal_cdf((log(S0/strike) + (mu - sigma^2/2)*t)/(sigma*sqrt(t)))",
+        "S0*normal_cdf((log(S0/strike) + (mu - sigma^2/2)*t)/(sigma*sqrt(t))) \
+         - strike*exp(-mu*t)*normal_cdf((log(S0/strike) + (mu - sigma^2/2)*t)/(sigma*sqrt(t)))",
+    ),
+    (
+        "put, by parity",
+        "exp(-mu*t)*max(strike - S, 0)",
+        "strike*exp(-mu*t)*(1 - normal_cdf((log(S0/strike) + (mu - sigma^2/2)*t)/(sigma*sqrt(t)))) \
+         - S0*(1 - normal_cdf((log(S0/strike) + (mu + sigma^2/2)*t)/(sigma*sqrt(t))))",
+        "S0 - strike*exp(-mu*t)",
+    ),
+    (
+        // Bachelier 1900, for a Brownian motion.
+        "option on a normal variable",
+        "max(log(S) - log(S0) - (mu - sigma^2/2)*t, 0)",
+        "sigma*sqrt(t)*normal_pdf(0)",
+        "sigma*sqrt(t)/2",
+    ),
+    (
+        "digital",
+        "(1 + sign(S - strike))/2",
+        "normal_cdf((log(S0/strike) + (mu - sigma^2/2)*t)/(sigma*sqrt(t)))",
+        "normal_cdf((log(S0/strike) + (mu + sigma^2/2)*t)/(sigma*sqrt(t)))",
+    ),
+    (
+        // The mean of a folded normal variable (Leone, Nelson and Nottingham 1961).
+        "absolute log return",
+        "abs(log(S/S0) - (mu - sigma^2/2)*t)",
+        "sigma*sqrt(2*t/pi)",
+        "sigma*sqrt(t)",
+    ),
+];
+
+#[test]
+fn prices_of_options_are_proved_and_wrong_ones_refuted() {
+    let model = MODEL.replace(
+        "[correlation]",
+        "strike = { value = 40, range = \"(0, inf)\" }\n[correlation]",
+    );
+    for (what, payoff, right, wrong) in OPTIONS {
+        for (price, due) in [(right, Verdict::Proved), (wrong, Verdict::Refuted)] {
+            let readout = format!("[readouts.payoff]\nformula = \"{payoff}\"\n");
+            let claims = format!("[claims]\nc = {{ mean_of = \"payoff\", is = \"{price}\" }}\n");
+            let compiled = compiled(&format!("{model}\n{readout}\n{claims}"));
+            let claim = &compiled.claims[0];
+            let derived = claim.derived.map(|e| compiled.model.pool.format(e));
+            assert_eq!(claim.verdict, due, "{what}: {} {derived:?}", claim.reason);
+        }
+    }
+}
+
+/// The right to exchange one orchard's crop for another's (Margrabe 1978).
+#[test]
+fn the_price_of_an_exchange_is_proved() {
+    let state = |name: &str, driver: &str, vol: &str| {
+        format!(
+            "[states.{name}]\ninitial = \"{name}0\"\ndrift = \"0\"\n\
+             diffusion = {{ {driver} = \"{vol}*{name}\" }}\ndomain = \"(0, inf)\"\n"
+        )
+    };
+    let d = |sign: &str| {
+        format!("normal_cdf((log(A0/B0) {sign} nu^2*t/2)/(nu*sqrt(t)))")
+            .replace("nu^2", "(a^2 + b^2 - 2*rho*a*b)")
+            .replace("nu", "sqrt(a^2 + b^2 - 2*rho*a*b)")
+    };
+    let text = format!(
+        "[model]\nname = \"case\"\ndrivers = [\"W\", \"V\"]\n[parameters]\n\
+         A0 = {{ value = 1, range = \"(0, inf)\" }}\nB0 = {{ value = 1, range = \"(0, inf)\" }}\n\
+         a = {{ value = 0.2, range = \"(0, inf)\" }}\nb = {{ value = 0.3, range = \"(0, inf)\" }}\n\
+         rho = {{ value = 0.4, range = \"(-1, 1)\" }}\n[correlation]\nW.V = \"rho\"\n{}{}\
+         [claims]\nc = {{ mean_of = \"max(A - B, 0)\", is = \"A0*{} - B0*{}\" }}\n",
+        state("A", "W", "a"),
+        state("B", "V", "b"),
+        d("+"),
+        d("-")
+    );
+    let claim = &compiled(&text).claims[0];
+    assert_eq!(claim.verdict, Verdict::Proved, "{}", claim.reason);
+}
+
 fn judged(claims: &str) -> (Compiled, ClaimResult) {
     let compiled = compiled(&format!("{MODEL}\n[claims]\n{claims}\n"));
     let claim = compiled.claims[0].clone();

@@ -184,6 +184,10 @@ impl<'a> Equations<'a> {
         if self.system.occurring(function).is_empty() {
             return Some(Combination::new());
         }
+        // Ito's rule lacks a local-time term where a formula has a kink.
+        if self.system.pool().has_kink(function).is_some() {
+            return None;
+        }
         martingale_part(&self.system, function)?;
         self.split(self.system.generator(function))
     }
@@ -208,7 +212,7 @@ impl<'a> Equations<'a> {
             let coefficient = parts.entry(function).or_insert_with(|| pool.zero());
             *coefficient = pool.add(*coefficient, pool.product(fixed));
         }
-        parts.retain(|_, c| !pool.is_zero_literal(*c) && !pool.is_zero(*c).is_yes());
+        parts.retain(|_, c| !pool.is_zero_literal(pool.expand(*c)));
         Some(parts)
     }
 }

@@ -96,11 +96,9 @@ impl ExpPoly {
     }
 
     fn push(&mut self, pool: &Pool, mut term: Term) {
-        term.rate = pool.simplify(term.rate);
-        let same = |t: &&mut Term| {
-            t.power == term.power
-                && (t.rate == term.rate || pool.equal(t.rate, term.rate) == Truth::Yes)
-        };
+        // Two spellings of one rate would only leave two terms where one would do.
+        term.rate = pool.expand(pool.simplify(term.rate));
+        let same = |t: &&mut Term| t.power == term.power && t.rate == term.rate;
         match self.terms.iter_mut().find(same) {
             Some(known) => known.coefficient = pool.add(known.coefficient, term.coefficient),
             None => self.terms.push(term),

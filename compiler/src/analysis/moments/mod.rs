@@ -3,7 +3,7 @@
 //!
 //! Two sources, tried in this order. *Laws*: states with an exact Gaussian law, for which the mean
 //! vector and covariance matrix of the coordinates are known, and functions of them that are sums of
-//! polynomials times exponentials. *Moment equations*: functions that the generator maps to finitely
+//! polynomials times exponentials, or positive parts of such. *Moment equations*: functions that the generator maps to finitely
 //! many others, where the stochastic integrals are proved to be true martingales and the coefficients
 //! keep the process in its domain. Nothing is returned on a guess.
 
@@ -15,6 +15,7 @@ mod exp_poly;
 mod gaussian;
 mod growth;
 mod integrability;
+mod kinks;
 mod law;
 mod square_root;
 mod tilting;
@@ -32,6 +33,7 @@ use crate::symbolic::{Expr, Symbol};
 use coordinates::{Change, Chart};
 use equations::Equations;
 use gaussian::{Gaussian, GaussianRow, covariance_symbol, mean_symbol};
+use kinks::Kinks;
 use tilting::Tilted;
 
 /// Formulas with more distinct parts are left as they come out of the derivation.
@@ -163,14 +165,12 @@ impl Moments {
         values: &BTreeMap<Symbol, f64>,
         t: f64,
     ) -> Option<f64> {
-        if let Some(read) = Tilted::read(&self.model, &self.gaussian, formula) {
-            let pool = &self.model.pool;
-            let mut at = self
-                .gaussian
-                .numbers(&self.model, &read.rows(), values, t)?;
+        if let Some(expectation) = self.expectation(formula) {
+            let rows = self.rows_of(formula);
+            let mut at = self.gaussian.numbers(&self.model, &rows, values, t)?;
             at.extend(values.iter().map(|(&s, &v)| (s, v)));
             at.insert(self.model.time, t);
-            return pool.eval_f64(read.expectation(pool, &self.gaussian), &at);
+            return self.model.pool.eval_f64(expectation, &at);
         }
         self.in_charts(formula, |equations, inside| {
             equations.number(inside, values, t)
@@ -241,9 +241,8 @@ impl Moments {
 
     fn gaussian_mean(&self, formula: Expr) -> Option<Moment> {
         let pool = &self.model.pool;
-        let read = Tilted::read(&self.model, &self.gaussian, formula)?;
-        let rows = read.rows();
-        let expectation = read.expectation(pool, &self.gaussian);
+        let expectation = self.expectation(formula)?;
+        let rows = self.rows_of(formula);
         let wanted = pool.symbols_of(expectation);
         let mut map = BTreeMap::new();
         for (n, &i) in rows.iter().enumerate() {
@@ -264,6 +263,25 @@ impl Moments {
             value,
             source: self.source_of(formula, &rows),
         })
+    }
+
+    /// `E[formula]` in the symbols that stand for means and covariances of the Gaussian coordinates.
+    fn expectation(&self, formula: Expr) -> Option<Expr> {
+        if let Some(read) = Tilted::read(&self.model, &self.gaussian, formula) {
+            return Some(read.expectation(&self.model.pool, &self.gaussian));
+        }
+        let (model, gaussian) = (&self.model, &self.gaussian);
+        Kinks { model, gaussian }.expectation(formula)
+    }
+
+    /// The Gaussian coordinates of the states in a formula, ascending.
+    fn rows_of(&self, formula: Expr) -> Vec<usize> {
+        let pool = &self.model.pool;
+        let occurs =
+            |row: &GaussianRow| pool.depends_on(formula, self.model.states[row.state].symbol);
+        (0..self.gaussian.rows.len())
+            .filter(|&i| occurs(&self.gaussian.rows[i]))
+            .collect()
     }
 
     /// The name of the law behind a formula of Gaussian coordinates.

@@ -67,21 +67,6 @@ impl Tilted {
             .map(|terms| Self { terms })
     }
 
-    /// The rows that occur, ascending.
-    pub(super) fn rows(&self) -> Vec<usize> {
-        let of = |m: &Monomial| {
-            m.powers
-                .keys()
-                .chain(m.slopes.keys())
-                .copied()
-                .collect::<Vec<_>>()
-        };
-        let mut rows: Vec<usize> = self.terms.iter().flat_map(of).collect();
-        rows.sort_unstable();
-        rows.dedup();
-        rows
-    }
-
     /// The expectation, in the symbols that stand for means and covariances.
     pub(super) fn expectation(&self, pool: &Pool, gaussian: &Gaussian) -> Expr {
         let terms = self.terms.iter().map(|m| m.expectation(pool, gaussian));

@@ -10,7 +10,7 @@ use super::view::View;
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Formula;
 use crate::source::Span;
-use crate::symbolic::{Expr, Function, Pool, Symbol, SymbolKind};
+use crate::symbolic::{Bound, Expr, Function, Interval, Pool, Symbol, SymbolKind};
 
 /// The kinds of names.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -57,6 +57,15 @@ impl Scope {
     /// A scope with nothing but `t` and `pi`.
     pub(super) fn new(pool: Pool) -> Self {
         let time = pool.symbol("t", SymbolKind::Time);
+        // Formulas in t are about what happens after the start.
+        let lower = Bound::Open(pool.zero());
+        pool.set_range(
+            time,
+            Interval {
+                lower,
+                upper: Bound::Infinite,
+            },
+        );
         Self {
             pool,
             time,
