@@ -1,0 +1,153 @@
+//! `verify`: what is right passes, what is wrong is seen.
+
+use serde_json::Value;
+
+use crate::harness::{Folder, altered, json, run};
+
+/// The closed form of the call in `orchard_spot` (Black and Scholes 1973, equation 13, for a price that
+/// grows at the rate of discount; from memory). The compiler knows no moments of a formula with a kink,
+/// so that the claim is open and only the simulation can tell.
+const BLACK_SCHOLES: &str = "S0*normal_cdf((log(S0/strike) + (mu + sigma^2/2)*t)/(sigma*sqrt(t))) \
+     - strike*exp(-mu*t)*normal_cdf((log(S0/strike) + (mu - sigma^2/2)*t)/(sigma*sqrt(t)))";
+
+fn with_call_claim(value: &str) -> String {
+    let claim = format!("[claims]\ncall_price = {{ mean_of = \"call\", is = \"{value}\" }}");
+    altered("orchard_spot.toml", "[claims]", &claim)
+}
+
+#[test]
+fn json_holds_the_contract() {
+    let found = json(&["verify", "models/orchard_spot.toml", "--format", "json"]);
+    assert_eq!(found["model"], "orchard_spot");
+    assert_eq!(found["passed"], true);
+    let checks = found["checks"].as_array().unwrap();
+    assert!(checks.len() >= 8);
+    for check in checks {
+        for key in ["quantity", "statistic", "source"] {
+            assert!(check[key].is_string(), "{check}");
+        }
+        for key in ["time", "analytic", "sample", "std_error", "z"] {
+            assert!(check[key].is_f64(), "{check}");
+        }
+        assert_eq!(check["passed"], true, "{check}");
+    }
+    let mean = checks
+        .iter()
+        .find(|c| c["quantity"] == "S" && c["statistic"] == "mean")
+        .unwrap();
+    // E[S] = S0 exp(mu t), Var[S] = S0^2 exp(2 mu t)(exp(sigma^2 t) - 1): Hull (2018), section 15.1.
+    let expected = 42.0 * 0.05_f64.exp();
+    assert!((mean["analytic"].as_f64().unwrap() - expected).abs() < 1e-10 * expected);
+    let error = expected * (0.04_f64.exp() - 1.0).sqrt() / 1e5_f64.sqrt();
+    assert!((mean["std_error"].as_f64().unwrap() - error).abs() < 1e-9 * error);
+}
+
+#[test]
+fn an_open_claim_is_put_to_the_test() {
+    let folder = Folder::new();
+    let right = folder.write("right.toml", &with_call_claim(BLACK_SCHOLES));
+    let found = json(&["verify", &right, "--format", "json"]);
+    assert_eq!(found["claims"]["call_price"], "open");
+    let checks = found["checks"].as_array().unwrap();
+    assert!(
+        checks
+            .iter()
+            .any(|c| c["claim"] == "call_price" && c["passed"] == true)
+    );
+}
+
+#[test]
+fn a_lost_correction_in_an_open_claim_is_seen() {
+    let folder = Folder::new();
+    let lost = BLACK_SCHOLES.replace("(mu - sigma^2/2)", "mu");
+    let wrong = folder.write("wrong.toml", &with_call_claim(&lost));
+    let ran = run(&["verify", &wrong, "--format", "json"]);
+    assert_eq!(ran.status, 1);
+    let found: Value = serde_json::from_str(&ran.out).unwrap();
+    assert_eq!(found["passed"], false);
+    for check in found["checks"].as_array().unwrap() {
+        assert_eq!(
+            check["passed"] == false,
+            check["claim"] == "call_price",
+            "{check}"
+        );
+    }
+    let human = run(&["verify", &wrong]);
+    assert!(
+        human.out.contains("FAILS") && human.out.contains("Not verified"),
+        "{}",
+        human.out
+    );
+}
+
+#[test]
+fn a_refuted_claim_fails_with_its_evidence() {
+    let folder = Folder::new();
+    let text = altered(
+        "orchard_spot.toml",
+        "is = \"mu - sigma^2/2\"",
+        "is = \"mu\"",
+    );
+    let ran = run(&[
+        "verify",
+        &folder.write("lost.toml", &text),
+        "--paths",
+        "20000",
+    ]);
+    assert_eq!(ran.status, 1);
+    assert!(
+        ran.out.contains("refuted") && ran.out.contains("Not verified"),
+        "{}",
+        ran.out
+    );
+}
+
+#[test]
+fn one_screen_shows_derivation_method_simulation_and_moments() {
+    let ran = run(&["verify", "models/orchard_spot.toml"]);
+    assert_eq!(ran.status, 0, "{}", ran.err);
+    for part in [
+        "Derivation",
+        "Ito correction -sigma^2/2",
+        "Method",
+        "lognormal",
+        "100,000 paths",
+        "analytic",
+        "All ",
+    ] {
+        assert!(ran.out.contains(part), "{part}: {}", ran.out);
+    }
+    assert!(
+        ran.out.lines().count() <= 60,
+        "{} lines",
+        ran.out.lines().count()
+    );
+    assert!(ran.out.lines().all(|line| line.chars().count() <= 100));
+}
+
+/// Euler's scheme with two steps is far off: the bias is shown, and what it explains is no failure.
+#[test]
+fn the_bias_of_a_coarse_step_is_shown_and_allowed_for() {
+    let folder = Folder::new();
+    let text = altered(
+        "orchard_spot.toml",
+        "domain    = \"(0, inf)\"",
+        "scheme    = \"euler_maruyama\"",
+    );
+    let text = text.replace("mu     = { value = 0.05", "mu     = { value = 0.5");
+    let (text, _) = text.split_once("[derived.log_S]").unwrap();
+    let model = folder.write("coarse.toml", text);
+    let found = json(&["verify", &model, "--steps", "8", "--format", "json"]);
+    let checks = found["checks"].as_array().unwrap();
+    let mean = checks.iter().find(|c| c["statistic"] == "mean").unwrap();
+    // E[X_N] = S0 (1 + mu h)^N for Euler's scheme (Kloeden and Platen 1992, section 9.7), against
+    // S0 exp(mu T).
+    let bias = 42.0 * ((1.0 + 0.5_f64 / 8.0).powi(8) - 0.5_f64.exp());
+    let estimated = mean["bias"].as_f64().unwrap();
+    assert!(
+        (estimated / bias - 1.0).abs() < 0.1,
+        "{estimated} against {bias}"
+    );
+    assert!(mean["z"].as_f64().unwrap() < -10.0, "{mean}");
+    assert_eq!(mean["passed"], true);
+}
