@@ -40,13 +40,12 @@ fn spoken(name: &str) -> String {
 }
 
 fn orders(group: &Group) -> String {
-    let order =
-        |o: &Option<crate::scheme::Order>| o.map_or("not known".to_owned(), |o| o.to_string());
-    format!(
-        "strong order {}, weak order {}",
-        order(&group.strong_order),
-        order(&group.weak_order)
-    )
+    match (group.strong_order, group.weak_order) {
+        (None, None) => "orders not known".to_owned(),
+        (Some(strong), None) => format!("strong order {strong}, weak order not known"),
+        (None, Some(weak)) => format!("strong order not known, weak order {weak}"),
+        (Some(strong), Some(weak)) => format!("strong order {strong}, weak order {weak}"),
+    }
 }
 
 /// One line about a group: what it is stepped by and why that is right.

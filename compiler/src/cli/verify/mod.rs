@@ -17,6 +17,7 @@ use super::args::{Format, VerifyArgs};
 use super::load::{Loaded, load_and_show};
 use super::run::Settings;
 use super::{Failure, Outcome, Status, output};
+use crate::analysis::claims::Verdict;
 use crate::pipeline::Compiled;
 use crate::report::text::{self, Style};
 
@@ -99,7 +100,8 @@ fn verify(
     };
     let targets = Targets::new(&analyst, &compiled.claims);
     let run = measure::measure(compiled, &targets, &settings)?;
-    let (checks, skipped) = measure::checks(&analyst, compiled, &targets, &settings, &run);
+    let (checks, mut skipped) = measure::checks(&analyst, compiled, &targets, &settings, &run);
+    skipped.extend(untested_claims(compiled, &checks));
     let threshold = judge::threshold(checks.len());
     let passed = checks.iter().all(|c| c.passed(threshold)) && loaded.status() == Status::Well;
     Ok(Verification {
@@ -110,4 +112,20 @@ fn verify(
         passed,
         run,
     })
+}
+
+/// Open claims that no check speaks of.
+fn untested_claims(compiled: &Compiled, checks: &[Check]) -> Vec<String> {
+    let tested = |name: &str| checks.iter().any(|c| c.claim.as_deref() == Some(name));
+    compiled
+        .claims
+        .iter()
+        .filter(|c| c.verdict == Verdict::Open && !tested(&c.name))
+        .map(|c| {
+            format!(
+                "the open claim {}: a sample has nothing to hold against it",
+                c.name
+            )
+        })
+        .collect()
 }

@@ -11,6 +11,9 @@ use crate::report::document::{Align, Inline, Mark, Table, Text, code, words};
 use crate::report::number::{grouped, significant, with_error};
 use crate::report::{self, Document};
 
+/// Rows of checks that a screen has room for.
+const SCREEN: usize = 20;
+
 /// `verify --format json`.
 pub(super) fn json(verification: &Verification, compiled: &Compiled) -> Value {
     let settings = &verification.settings;
@@ -111,12 +114,29 @@ fn table(verification: &Verification, model: &Model) -> Table {
             align,
         })
         .collect();
-    table.rows = verification
-        .checks
-        .iter()
+    table.rows = shown(verification)
+        .into_iter()
         .map(|c| row(c, verification.threshold, approximate))
         .collect();
     table
+}
+
+/// The checks that a screen has room for: where there are too many, those that fail, those of claims,
+/// and of the rest the means and, while they fit, the variances.
+fn shown(verification: &Verification) -> Vec<&Check> {
+    let keep = |statistics: &[&str]| -> Vec<&Check> {
+        let first = |c: &&Check| {
+            !c.passed(verification.threshold)
+                || c.claim.is_some()
+                || statistics.contains(&c.statistic)
+        };
+        verification.checks.iter().filter(first).collect()
+    };
+    let all: Vec<&Check> = verification.checks.iter().collect();
+    [all, keep(&["mean", "variance"])]
+        .into_iter()
+        .find(|list| list.len() <= SCREEN)
+        .unwrap_or_else(|| keep(&["mean"]))
 }
 
 fn row(check: &Check, threshold: f64, approximate: bool) -> Vec<Text> {
