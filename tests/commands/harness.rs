@@ -6,29 +6,29 @@ use std::process::{Command, Output};
 use serde_json::Value;
 
 /// What a call left behind.
-pub struct Ran {
+pub(crate) struct Ran {
     /// Exit status.
-    pub status: i32,
+    pub(crate) status: i32,
     /// Standard output.
-    pub out: String,
+    pub(crate) out: String,
     /// Standard error.
-    pub err: String,
+    pub(crate) err: String,
 }
 
 /// The root of the workspace, from which the binary is run.
-pub fn root() -> PathBuf {
+pub(crate) fn root() -> PathBuf {
     Path::new(env!("CARGO_MANIFEST_DIR")).join("..")
 }
 
 /// The binary, ready for arguments.
-pub fn binary() -> Command {
+pub(crate) fn binary() -> Command {
     let mut command = Command::new(env!("CARGO_BIN_EXE_driftwright"));
     command.current_dir(root()).env_remove("NO_COLOR");
     command
 }
 
 /// Runs the binary. No panic may ever reach a user.
-pub fn run(arguments: &[&str]) -> Ran {
+pub(crate) fn run(arguments: &[&str]) -> Ran {
     let output: Output = binary().args(arguments).output().unwrap();
     let ran = Ran {
         status: output.status.code().unwrap(),
@@ -40,35 +40,35 @@ pub fn run(arguments: &[&str]) -> Ran {
 }
 
 /// Runs the binary, expects success and JSON.
-pub fn json(arguments: &[&str]) -> Value {
+pub(crate) fn json(arguments: &[&str]) -> Value {
     let ran = run(arguments);
     assert_eq!(ran.status, 0, "{arguments:?}: {}", ran.err);
     serde_json::from_str(&ran.out).unwrap()
 }
 
 /// A folder of its own for a test, with a model file in it.
-pub struct Folder(tempfile::TempDir);
+pub(crate) struct Folder(tempfile::TempDir);
 
 impl Folder {
     /// An empty one.
-    pub fn new() -> Self {
+    pub(crate) fn new() -> Self {
         Self(tempfile::tempdir().unwrap())
     }
 
     /// The path of a file in it.
-    pub fn path(&self, name: &str) -> String {
+    pub(crate) fn path(&self, name: &str) -> String {
         self.0.path().join(name).display().to_string()
     }
 
     /// Writes a file into it and returns its path.
-    pub fn write(&self, name: &str, text: &str) -> String {
+    pub(crate) fn write(&self, name: &str, text: &str) -> String {
         let path = self.path(name);
         std::fs::write(&path, text).unwrap();
         path
     }
 
     /// The names of the files in it, in order.
-    pub fn files(&self) -> Vec<String> {
+    pub(crate) fn files(&self) -> Vec<String> {
         let entries = std::fs::read_dir(self.0.path()).unwrap();
         let mut names: Vec<String> = entries
             .map(|e| e.unwrap().file_name().into_string().unwrap())
@@ -79,14 +79,14 @@ impl Folder {
 }
 
 /// A shipped model with one piece of its text replaced.
-pub fn altered(model: &str, from: &str, to: &str) -> String {
+pub(crate) fn altered(model: &str, from: &str, to: &str) -> String {
     let text = std::fs::read_to_string(root().join("models").join(model)).unwrap();
     assert!(text.contains(from), "{model} does not contain {from}");
     text.replace(from, to)
 }
 
 /// Compares with a golden file; with `UPDATE_GOLDEN=1` in the environment it is written instead.
-pub fn golden(name: &str, text: &str) {
+pub(crate) fn golden(name: &str, text: &str) {
     let path = root().join("tests/golden").join(name);
     if std::env::var_os("UPDATE_GOLDEN").is_some() {
         std::fs::create_dir_all(path.parent().unwrap()).unwrap();
@@ -110,7 +110,7 @@ pub fn golden(name: &str, text: &str) {
 }
 
 /// The names of the shipped models, in order.
-pub fn models() -> Vec<String> {
+pub(crate) fn models() -> Vec<String> {
     let entries = std::fs::read_dir(root().join("models")).unwrap();
     let mut names: Vec<String> = entries
         .map(|e| e.unwrap().file_name().into_string().unwrap())

@@ -188,16 +188,16 @@ pub struct GenerateArgs {
 #[derive(Debug, Args)]
 pub struct RunArgs {
     /// Number of paths [default: 100000]
-    #[arg(long, value_name = "N", value_parser = parse::count)]
+    #[arg(long, value_name = "N", allow_negative_numbers = true, value_parser = parse::count)]
     pub paths: Option<u64>,
     /// End of the simulation, in the model's unit of time [default: 1, or the last of --times]
-    #[arg(long, value_name = "T", value_parser = parse::positive)]
+    #[arg(long, value_name = "T", allow_negative_numbers = true, value_parser = parse::positive)]
     pub horizon: Option<f64>,
     /// Cut the horizon into N equal steps [default: none for exact laws, 200 for approximate schemes]
     #[arg(long, value_name = "N", value_parser = parse::steps)]
     pub steps: Option<usize>,
     /// Observation times, separated by commas [default: the horizon alone]
-    #[arg(long, value_name = "T,...", value_delimiter = ',', value_parser = parse::time)]
+    #[arg(long, value_name = "T,...", value_delimiter = ',', allow_negative_numbers = true, value_parser = parse::time)]
     pub times: Option<Vec<f64>>,
     /// Seed of the random numbers [default: 0]
     #[arg(long, value_name = "N")]

@@ -45,9 +45,8 @@ pub(super) fn colour_on(stream: &impl IsTerminal) -> bool {
 pub(super) fn deliver(path: Option<&Path>, text: &str) -> Result<(), Failure> {
     let Some(path) = path else { return print(text) };
     let mut file = OutputFile::create(path)?;
-    file.write_all(text.as_bytes())
-        .map_err(|e| file.failure(&e))?;
-    file.commit()
+    file.write_text(text)?;
+    commit_all(vec![file])
 }
 
 /// A file in the making: written beside its target under another name, and given its name when it is
@@ -100,19 +99,37 @@ impl OutputFile {
         Failure(format!("cannot write {}: {error}", self.target.display()))
     }
 
-    /// Gives the file its name.
-    pub(super) fn commit(mut self) -> Result<(), Failure> {
-        if let Some(mut writer) = self.writer.take() {
-            writer.flush().map_err(|e| self.failure(&e))?;
-        }
-        if let Some(partial) = self.partial.take() {
-            fs::rename(&partial, &self.target).map_err(|e| {
-                let _ = fs::remove_file(&partial);
-                self.failure(&e)
-            })?;
-        }
-        Ok(())
+    /// Writes text.
+    pub(super) fn write_text(&mut self, text: &str) -> Result<(), Failure> {
+        self.write_all(text.as_bytes())
+            .map_err(|e| self.failure(&e))
     }
+
+    /// Brings everything that was written to the disk's keeper.
+    fn close(&mut self) -> Result<(), Failure> {
+        let flushed = self
+            .writer
+            .take()
+            .map_or(Ok(()), |mut writer| writer.flush());
+        flushed.map_err(|e| self.failure(&e))
+    }
+
+    /// Gives the file its name.
+    fn rename(mut self) -> Result<(), Failure> {
+        let Some(partial) = self.partial.take() else {
+            return Ok(());
+        };
+        fs::rename(&partial, &self.target).map_err(|e| {
+            let _ = fs::remove_file(&partial);
+            self.failure(&e)
+        })
+    }
+}
+
+/// Gives several files their names, when all of them are complete.
+pub(super) fn commit_all(mut files: Vec<OutputFile>) -> Result<(), Failure> {
+    files.iter_mut().try_for_each(OutputFile::close)?;
+    files.into_iter().try_for_each(OutputFile::rename)
 }
 
 impl Write for OutputFile {

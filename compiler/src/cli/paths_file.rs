@@ -1,12 +1,12 @@
 //! Files of paths: NPY and CSV, written in path order while the paths are made.
 
 use std::io::{self, Write};
-use std::path::{Path, PathBuf};
+use std::path::Path;
 
 use serde_json::Value;
 
 use super::Failure;
-use super::output::{OutputFile, deliver};
+use super::output::OutputFile;
 
 /// What a file of paths holds.
 #[derive(Clone, Debug)]
@@ -21,14 +21,13 @@ pub(super) struct Layout {
 
 /// A file of paths in the making.
 pub(super) struct PathsFile {
-    path: PathBuf,
     layout: Layout,
     form: Form,
 }
 
 enum Form {
     Csv(Box<csv::Writer<OutputFile>>),
-    Npy(OutputFile),
+    Npy(OutputFile, OutputFile),
 }
 
 impl PathsFile {
@@ -41,24 +40,22 @@ impl PathsFile {
         let form = if is_npy {
             file.write_all(&npy_header(&layout))
                 .map_err(|e| file.failure(&e))?;
-            Form::Npy(file)
+            let mut beside = path.as_os_str().to_owned();
+            beside.push(".json");
+            Form::Npy(file, OutputFile::create(Path::new(&beside))?)
         } else {
             let mut writer = csv::Writer::from_writer(file);
             let names = layout.quantities.iter().map(String::as_str);
             writer.write_record(["path", "time"].into_iter().chain(names))?;
             Form::Csv(Box::new(writer))
         };
-        Ok(Self {
-            path: path.to_owned(),
-            layout,
-            form,
-        })
+        Ok(Self { layout, form })
     }
 
     /// Appends paths from `first_path` on: values in C order, shape (paths, times, quantities).
     pub(super) fn append(&mut self, first_path: u64, values: &[f64]) -> io::Result<()> {
         match &mut self.form {
-            Form::Npy(file) => {
+            Form::Npy(file, _) => {
                 let bytes: Vec<u8> = values.iter().flat_map(|v| v.to_le_bytes()).collect();
                 file.write_all(&bytes)
             }
@@ -81,20 +78,18 @@ impl PathsFile {
         }
     }
 
-    /// Completes the file; beside an NPY file goes its description.
-    pub(super) fn finish(self, description: &Value) -> Result<(), Failure> {
+    /// The files, complete but not yet under their names; beside an NPY file goes its description.
+    pub(super) fn complete(self, description: &Value) -> Result<Vec<OutputFile>, Failure> {
         match self.form {
             Form::Csv(writer) => {
                 let file = writer
                     .into_inner()
                     .map_err(|e| Failure(e.error().to_string()))?;
-                file.commit()
+                Ok(vec![file])
             }
-            Form::Npy(file) => {
-                let mut beside = self.path.into_os_string();
-                beside.push(".json");
-                file.commit()?;
-                deliver(Some(Path::new(&beside)), &format!("{description:#}\n"))
+            Form::Npy(file, mut beside) => {
+                beside.write_text(&format!("{description:#}\n"))?;
+                Ok(vec![file, beside])
             }
         }
     }
@@ -120,6 +115,7 @@ fn npy_header(layout: &Layout) -> Vec<u8> {
 
 #[cfg(test)]
 mod tests {
+    use super::super::output::commit_all;
     use super::*;
 
     fn layout() -> Layout {
@@ -153,7 +149,7 @@ mod tests {
         let path = folder.path().join("x.npy");
         let mut file = PathsFile::create(&path, layout()).unwrap();
         file.append(7, &VALUES).unwrap();
-        file.finish(&Value::Null).unwrap();
+        commit_all(file.complete(&Value::Null).unwrap()).unwrap();
         let bytes = std::fs::read(&path).unwrap();
         let numbers: Vec<f64> = bytes[bytes.len() - 64..]
             .chunks(8)
@@ -169,7 +165,7 @@ mod tests {
         let path = folder.path().join("x.csv");
         let mut file = PathsFile::create(&path, layout()).unwrap();
         file.append(7, &VALUES).unwrap();
-        file.finish(&Value::Null).unwrap();
+        commit_all(file.complete(&Value::Null).unwrap()).unwrap();
         let text = std::fs::read_to_string(&path).unwrap();
         assert_eq!(
             text,

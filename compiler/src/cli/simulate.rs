@@ -9,7 +9,7 @@ use driftwright_runtime::{Grid, Run};
 use super::args::{Format, SimulateArgs};
 use super::fan_chart::{self, Caption, Fan};
 use super::load::{Loaded, load_and_show};
-use super::output::deliver;
+use super::output::{OutputFile, commit_all};
 use super::paths_file::{Layout, PathsFile};
 use super::progress;
 use super::run::{Part, Settings};
@@ -37,18 +37,18 @@ pub(super) fn run(args: &SimulateArgs) -> Outcome {
     }
     let session = Session::new(args, compiled)?;
     let mut file = session.open_paths_file(args.output.as_deref())?;
+    let chart = args.plot.as_deref().map(OutputFile::create).transpose()?;
     let sample = session.sample(&session.settings.grid()?, file.as_mut(), "simulating")?;
-    let chart = match &args.plot {
-        Some(path) => Some((path, session.chart(args, &sample)?)),
-        None => None,
-    };
+    let mut complete = Vec::new();
+    if let Some(mut file) = chart {
+        file.write_text(&session.chart(args, &sample)?)?;
+        complete.push(file);
+    }
     let json = summary::json(&sample, &session.settings, &compiled.model, &compiled.plan);
     if let Some(file) = file {
-        file.finish(&description(&sample, &session, &loaded))?;
+        complete.extend(file.complete(&description(&sample, &session, &loaded))?);
     }
-    if let Some((path, svg)) = chart {
-        deliver(Some(path), &svg)?;
-    }
+    commit_all(complete)?;
     match args.run.format {
         Format::Json => output::print(&format!("{json:#}\n"))?,
         Format::Human => {

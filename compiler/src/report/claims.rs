@@ -1,6 +1,6 @@
 //! Claims and their verdicts.
 
-use super::document::{Align, Equation, Inline, Mark, Table, Term, Text, code, words};
+use super::document::{Align, Equation, Inline, Mark, Table, Term, Text, code, prose, words};
 use super::{Derivation, Document, trace};
 use crate::analysis::claims::{ClaimResult, Verdict};
 use crate::model::{Claim, ClaimKind, Model};
@@ -78,7 +78,7 @@ pub(super) fn claims(document: &mut Document, derivation: &Derivation<'_>) {
             verdict.push(Inline::Words(" (a local martingale: proved)".into()));
         }
         if !result.reason.is_empty() {
-            verdict.push(Inline::Words(format!(": {}", result.reason)));
+            verdict.extend(prose(&format!(": {}", result.reason)));
         }
         document.list(vec![verdict]);
         document.equations(trace::equations(&working(derivation, claim, result)));

@@ -131,6 +131,19 @@ pub fn words(text: impl Into<String>) -> Text {
     vec![Inline::Words(text.into())]
 }
 
+/// A sentence of a pass as text: what it sets in backticks is text of the file.
+pub fn prose(text: &str) -> Text {
+    let parts = text
+        .split('`')
+        .enumerate()
+        .filter(|(_, part)| !part.is_empty());
+    let inline = |(i, part): (usize, &str)| match i % 2 {
+        0 => Inline::Words(part.to_owned()),
+        _ => Inline::Code(part.to_owned()),
+    };
+    parts.map(inline).collect()
+}
+
 /// A name of the file as text.
 pub fn code(text: impl Into<String>) -> Text {
     vec![Inline::Code(text.into())]

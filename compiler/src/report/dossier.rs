@@ -1,6 +1,6 @@
 //! The dossier: the derivation a reviewer reads from top to bottom.
 
-use super::document::{Inline, Mark, words};
+use super::document::{Inline, Mark, prose, words};
 use super::{Derivation, Document, claims, dynamics, methods, statement};
 use crate::calculus::Expansion;
 use crate::model::{Calculus, Model};
@@ -67,12 +67,13 @@ fn findings(document: &mut Document, derivation: &Derivation<'_>) {
             .iter()
             .map(|d| {
                 let mark = if d.is_error() { Mark::Bad } else { Mark::Open };
-                let mut text = vec![
-                    Inline::Marked(mark, format!("{} {}", d.severity.name(), d.code.id())),
-                    Inline::Words(format!(": {}", d.message)),
-                ];
+                let mut text = vec![Inline::Marked(
+                    mark,
+                    format!("{} {}", d.severity.name(), d.code.id()),
+                )];
+                text.extend(prose(&format!(": {}", d.message)));
                 if let Some(hint) = &d.hint {
-                    text.push(Inline::Words(format!(" ({hint})")));
+                    text.extend(prose(&format!(" ({hint})")));
                 }
                 text
             })

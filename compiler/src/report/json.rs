@@ -112,11 +112,7 @@ fn method(model: &Model, plan: &Plan, group: &Group) -> Value {
         .iter()
         .map(|&s| model.states[s].name.as_str())
         .collect();
-    let through: Map<String, Value> = group
-        .states
-        .iter()
-        .map(|&s| &plan.coordinates[s])
-        .filter(|c| !c.identity)
+    let through: Map<String, Value> = super::methods::changed(model, plan, group)
         .map(|c| {
             (
                 model.states[c.state].name.clone(),

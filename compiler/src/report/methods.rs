@@ -1,6 +1,6 @@
 //! How the states are stepped, and why.
 
-use super::document::{Align, Equation, Inline, Mark, Table, Term, code, words};
+use super::document::{Align, Equation, Inline, Mark, Table, Term, code, prose, words};
 use super::{Derivation, Document, trace};
 use crate::model::Model;
 use crate::scheme::{Coordinate, Group, Plan};
@@ -15,12 +15,17 @@ fn states(model: &Model, group: &Group) -> String {
 }
 
 /// The coordinates of a group that are not the states themselves.
-fn changed<'a>(plan: &'a Plan, group: &'a Group) -> impl Iterator<Item = &'a Coordinate> {
+pub(super) fn changed<'a>(
+    model: &'a Model,
+    plan: &'a Plan,
+    group: &'a Group,
+) -> impl Iterator<Item = &'a Coordinate> {
+    let itself = |c: &Coordinate| c.forward == model.pool.var(model.states[c.state].symbol);
     group
         .states
         .iter()
         .map(|&s| &plan.coordinates[s])
-        .filter(|c| !c.identity)
+        .filter(move |c| !itself(c))
 }
 
 /// A name such as `ornstein_uhlenbeck` as words.
@@ -60,7 +65,7 @@ pub fn method_line(model: &Model, plan: &Plan, group: &Group) -> String {
             orders(group)
         )
     };
-    let through: Vec<String> = changed(plan, group)
+    let through: Vec<String> = changed(model, plan, group)
         .map(|c| model.pool.format(c.forward))
         .collect();
     let becomes = group.becomes.map(|b| spoken(b.name()));
@@ -121,36 +126,49 @@ pub(super) fn methods(document: &mut Document, derivation: &Derivation<'_>) {
 
 fn maps(plan: &Plan, model: &Model, group: &Group) -> Vec<Equation> {
     let mut lines = Vec::new();
-    for coordinate in changed(plan, group) {
+    for coordinate in changed(model, plan, group) {
         let u = model.pool.symbol_name(coordinate.symbol).to_string();
         let state = model.states[coordinate.state].name.clone();
         let forward = vec![Term::Formula(coordinate.forward)];
         let inverse = vec![Term::Formula(coordinate.inverse)];
+        let process = &coordinate.process;
         lines.push(
             Equation::new(vec![Term::Name(u.clone())], forward).remark("simulated coordinate"),
         );
         lines.push(Equation::new(vec![Term::Name(state)], inverse).remark("and back"));
-        let process = &coordinate.process;
         lines.push(
             super::dynamics::equation(model, &u, process.drift, &process.diffusion)
                 .remark("its dynamics, by Ito's rule"),
         );
     }
+    // A state that is stepped itself may be read as another value, kept in its domain.
+    let read = group.states.iter().map(|&s| &plan.coordinates[s]);
+    let projected = read.filter(|c| {
+        let itself = model.pool.var(model.states[c.state].symbol);
+        c.forward == itself && c.inverse != itself
+    });
+    for coordinate in projected {
+        let state = vec![Term::Name(model.states[coordinate.state].name.clone())];
+        let inverse = vec![Term::Formula(coordinate.inverse)];
+        lines.push(Equation::new(state, inverse).remark("as it is read and observed"));
+    }
     lines
 }
 
 fn reasons(group: &Group) -> Vec<super::document::Text> {
-    let mut items: Vec<_> = group.reasons.iter().map(|r| words(r.clone())).collect();
+    let mut items: Vec<_> = group.reasons.iter().map(|r| prose(r)).collect();
     items.push(words(if group.preserves_domain {
         "Every step stays in the domain."
     } else {
         "A step can leave the domain; paths that do are counted and reported."
     }));
     for (scheme, why) in &group.rejected {
-        items.push(vec![
-            Inline::Marked(Mark::Strong, format!("Not {}", spoken(scheme.name()))),
-            Inline::Words(format!(": {why}")),
-        ]);
+        let mut item = vec![Inline::Marked(
+            Mark::Strong,
+            format!("Not {}", spoken(scheme.name())),
+        )];
+        item.extend(prose(&format!(": {why}")));
+        items.push(item);
     }
     items
 }

@@ -1,6 +1,9 @@
 //! What the author declared, as the dossier shows it: parameters, assumptions, correlations, readouts.
 
+use std::collections::BTreeMap;
+
 use super::document::{Align, Equation, Inline, Table, Term, code, words};
+use super::number::significant;
 use super::{Derivation, Document};
 use crate::model::{AtEdge, Model};
 use crate::symbolic::{Bound, Interval, Pool};
@@ -56,7 +59,12 @@ fn parameters(document: &mut Document, model: &Model) {
     ]);
     for p in &model.parameters {
         let value = match &p.value {
-            Some(value) => model.pool.format(model.pool.number(value.clone())),
+            Some(value) => {
+                let number = model
+                    .pool
+                    .eval_f64(model.pool.number(value.clone()), &BTreeMap::new());
+                significant(number.unwrap_or(f64::NAN), 12)
+            }
             None => "to be given".to_owned(),
         };
         table.row([

@@ -28,6 +28,9 @@ impl Default for Style {
 
 const INDENT: &str = "  ";
 
+/// Columns beyond which the left side of an equation gets a line of its own.
+const LEFT_SIDE: usize = 36;
+
 /// Columns beyond which an equation no longer sets the column of the remarks.
 const REMARKS_FROM: usize = 32;
 
@@ -159,7 +162,12 @@ impl Writer<'_> {
                 )
             })
             .collect();
-        let left = sides.iter().map(|(l, _)| width(l)).max().unwrap_or(0);
+        let fitting = |l: usize| Some(l).filter(|l| *l <= LEFT_SIDE);
+        let left = sides
+            .iter()
+            .filter_map(|(l, _)| fitting(width(l)))
+            .max()
+            .unwrap_or(0);
         let relation = equations
             .iter()
             .map(|e| width(e.relation))
@@ -177,6 +185,12 @@ impl Writer<'_> {
             .max()
             .unwrap_or(0);
         for ((equation, (l, _)), body) in equations.iter().zip(&sides).zip(&bodies) {
+            let mut l = l.as_str();
+            if width(l) > LEFT_SIDE {
+                // Too long to stand beside: the equation follows below.
+                self.line(&format!("{INDENT}{l}"));
+                l = "";
+            }
             let pad = " ".repeat(left - width(l));
             let lead = format!("{INDENT}{l}{pad} {:<relation$} ", equation.relation);
             self.equation(&lead, body, widest, hang, &equation.remark);

@@ -38,8 +38,23 @@ fn greedy(pieces: impl Iterator<Item = String>, columns: usize) -> Vec<String> {
     lines
 }
 
-/// Breaks a formula before its operators, outside brackets where that suffices.
+/// Breaks a formula: before its equality signs, then before its operators, outside brackets where that
+/// suffices.
 pub(super) fn formula(text: &str, columns: usize) -> Vec<String> {
+    if width(text) <= columns {
+        return vec![text.to_owned()];
+    }
+    let mut sides = text.split(" = ");
+    let first = sides.next().unwrap_or("");
+    let others = sides.map(|side| format!("= {side}"));
+    std::iter::once(first.to_owned())
+        .chain(others)
+        .flat_map(|side| sum(&side, columns))
+        .collect()
+}
+
+/// Breaks one side of an equation.
+fn sum(text: &str, columns: usize) -> Vec<String> {
     if width(text) <= columns {
         return vec![text.to_owned()];
     }
@@ -50,13 +65,13 @@ pub(super) fn formula(text: &str, columns: usize) -> Vec<String> {
     greedy(operands(text, usize::MAX).into_iter(), columns)
 }
 
-/// The formula cut before each spaced `+`, `-` or `=` that stands at most `depth` brackets deep.
+/// The formula cut before each spaced `+` or `-` that stands at most `depth` brackets deep.
 fn operands(text: &str, depth: usize) -> Vec<String> {
     let mut pieces = vec![String::new()];
     let mut level = 0_usize;
     let words: Vec<&str> = text.split(' ').collect();
     for (i, word) in words.iter().enumerate() {
-        let operator = matches!(*word, "+" | "-" | "=") && i > 0;
+        let operator = matches!(*word, "+" | "-") && i > 0;
         if operator && level <= depth {
             pieces.push((*word).to_owned());
         } else if let Some(piece) = pieces.last_mut() {
@@ -99,6 +114,7 @@ mod tests {
         let lines = formula("alpha*(b + c) + beta*(d - e) - gamma", 16);
         assert_eq!(lines, ["alpha*(b + c)", "+ beta*(d - e)", "- gamma"]);
         assert_eq!(formula("f(a + b + c + d)", 8), ["f(a + b", "+ c + d)"]);
+        assert_eq!(formula("a + b + c = d", 9), ["a + b + c", "= d"]);
     }
 
     #[test]

@@ -19,8 +19,9 @@ pub(super) enum Statistic {
     Covariance(usize),
     /// A quantile of an output: its level's index, and the law.
     Quantile(usize, usize, Box<NormalLaw>),
-    /// The largest difference from zero of an output that should vanish on every path.
-    Vanishing(usize),
+    /// The largest difference from zero of an output that should vanish on every path, beside an output
+    /// of the size that counts.
+    Vanishing(usize, usize),
 }
 
 /// Levels of the quantiles that are checked, with their names.
@@ -106,7 +107,7 @@ impl Analyst<'_> {
     /// Powers of a variable that is narrow beside its mean cancel digits: then none are given.
     fn standard(&self, formula: Expr, mean: f64, variance: f64, time: f64) -> Option<[f64; 4]> {
         let deviation = variance.sqrt();
-        if !(deviation > 0.01 * mean.abs()) {
+        if deviation <= 0.01 * mean.abs() || deviation.is_nan() {
             return None;
         }
         let pool = &self.model.pool;

@@ -1,6 +1,7 @@
 //! The runs behind the checks: once where every law is exact, else at two step lengths along the same
 //! paths.
 
+use driftwright_runtime::collect::Summary;
 use driftwright_runtime::{Run, Simulator};
 
 use super::expect::{Analyst, Expected, LEVELS, Statistic};
@@ -102,10 +103,10 @@ impl Measured {
                     own_error: f64::NAN,
                 }
             }
-            Statistic::Vanishing(output) => {
+            Statistic::Vanishing(output, _) => {
                 let s = summary(output);
                 Observed {
-                    value: s.maximum.max(-s.minimum),
+                    value: largest(s),
                     own_error: f64::NAN,
                 }
             }
@@ -158,7 +159,7 @@ struct Judge<'a> {
 impl Judge<'_> {
     fn check(&self, target: &Target, index: usize, time: f64) -> Option<Result<Check, String>> {
         let observed = self.run.observed(&target.statistic, index, (0, 0));
-        let expected = self.expected(target, observed.value, time)?;
+        let expected = self.expected(target, observed.value, index, time)?;
         let paths = self.settings.paths as f64;
         let statistic = name(&target.statistic);
         if paths < expected.paths_needed {
@@ -189,7 +190,7 @@ impl Judge<'_> {
         }))
     }
 
-    fn expected(&self, target: &Target, near: f64, time: f64) -> Option<Expected> {
+    fn expected(&self, target: &Target, near: f64, index: usize, time: f64) -> Option<Expected> {
         let known = |output: &usize| self.analyst.central(self.targets.outputs[*output], time);
         // What a claim says, with the error that analysis knows, where it does.
         let claimed = |value: Option<f64>, derived: Option<Expected>| {
@@ -224,14 +225,17 @@ impl Judge<'_> {
             Statistic::Quantile(_, level, law) => {
                 self.analyst.quantile(law, LEVELS[*level].0, near, time)
             }
-            Statistic::Vanishing(_) => None,
+            Statistic::Vanishing(..) => None,
         };
         match &target.origin {
             Origin::Derived(_) => derived,
             Origin::Claimed(formula) => claimed(self.analyst.number(*formula, time), derived),
             Origin::Constant => claimed(self.analyst.at_start(self.formula(target)?), derived),
             Origin::Zero => {
-                let scale = 1.0_f64.max(near.abs().min(1.0));
+                let Statistic::Vanishing(_, beside) = &target.statistic else {
+                    return None;
+                };
+                let scale = largest(&self.run.collected.moments[index][*beside]);
                 let unit_error = Some(VANISHING * scale * (self.settings.paths as f64).sqrt());
                 Some(Expected {
                     value: 0.0,
@@ -295,7 +299,7 @@ impl Judge<'_> {
             | Statistic::Variance(o)
             | Statistic::Skewness(o)
             | Statistic::Quantile(o, ..)
-            | Statistic::Vanishing(o) => vec![*o],
+            | Statistic::Vanishing(o, _) => vec![*o],
         };
         let model = &self.compiled.model;
         let plan = &self.compiled.plan;
@@ -311,6 +315,11 @@ impl Judge<'_> {
     }
 }
 
+/// The largest absolute value of a sample.
+fn largest(summary: &Summary) -> f64 {
+    summary.maximum.max(-summary.minimum)
+}
+
 /// The statistic's name in outputs.
 fn name(statistic: &Statistic) -> &'static str {
     match statistic {
@@ -319,6 +328,6 @@ fn name(statistic: &Statistic) -> &'static str {
         Statistic::Skewness(_) => "skewness",
         Statistic::Covariance(_) => "covariance",
         Statistic::Quantile(_, level, _) => LEVELS[*level].1,
-        Statistic::Vanishing(_) => "largest difference",
+        Statistic::Vanishing(..) => "largest difference",
     }
 }

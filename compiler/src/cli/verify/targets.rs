@@ -222,10 +222,16 @@ impl Targets {
                 self.law(analyst, output, &of.text, of.expr, name);
             }
             ClaimKind::DriftOf { of, .. } | ClaimKind::DiffusionOf { of, .. } if open => {
-                if let Some(difference) = result.difference {
+                if let (Some(difference), Some(claimed)) = (result.difference, result.claimed) {
                     let text = format!("{} derived - claimed", of.text);
                     let output = self.output(&text, difference);
-                    self.push(&of.text, Statistic::Vanishing(output), Origin::Zero, name);
+                    let beside = self.output(&format!("{} claimed", of.text), claimed);
+                    self.push(
+                        &of.text,
+                        Statistic::Vanishing(output, beside),
+                        Origin::Zero,
+                        name,
+                    );
                 }
             }
             _ => {}
