@@ -1,6 +1,6 @@
 //! The README's commands, run as they stand.
 
-use std::path::Path;
+use std::path::{Path, PathBuf};
 use std::process::{Command, Output};
 
 use driftwright_tests::harness::values::{read, repository};
@@ -13,12 +13,17 @@ fn blocks(text: &str, language: &str) -> Vec<String> {
     inside.collect()
 }
 
+/// The top level of the repository, spelt as cargo spells it, so that nothing is built twice.
+fn clone() -> PathBuf {
+    repository().canonicalize().expect("the repository")
+}
+
 /// Runs a script in a folder, building into a folder of the workspace's target directory.
 fn run(script: &str, folder: &Path, target: &str) -> Output {
     Command::new("bash")
         .args(["-euo", "pipefail", "-c", script])
         .current_dir(folder)
-        .env("CARGO_TARGET_DIR", repository().join("target").join(target))
+        .env("CARGO_TARGET_DIR", clone().join("target").join(target))
         .env("CARGO_NET_OFFLINE", "true")
         .env_remove("RUSTFLAGS")
         .output()
@@ -47,7 +52,7 @@ fn first_block_is_the_two_commands() {
     assert_eq!(commands[1], "cargo test --workspace --all-features");
     // The gate runs the second as it stands.
     assert!(read(".ci/run").lines().any(|line| line == commands[1]));
-    let screen = succeed(commands[0], &repository(), "");
+    let screen = succeed(commands[0], &clone(), "");
     for part in ["mu - sigma^2/2", "exact", "lognormal", "mean", "42"] {
         assert!(screen.contains(part), "no {part} on the screen:\n{screen}");
     }
@@ -65,7 +70,7 @@ fn first_model_compiles_and_its_claims_hold() {
     std::fs::write(folder.path().join("ferry_fuel.toml"), model).expect("a file");
     let tool = "cargo run -q --all-features --bin driftwright --manifest-path \"$REPOSITORY/Cargo.toml\" --";
     let commands = blocks(&readme, "sh")[1].replace("driftwright ", &format!("{tool} "));
-    let commands = format!("REPOSITORY='{}'\n{commands}", repository().display());
+    let commands = format!("REPOSITORY='{}'\n{commands}", clone().display());
     let output = succeed(&commands, folder.path(), "");
     assert!(output.contains("mu/2 - sigma^2/8"), "{output}");
     assert!(folder.path().join("fuel.svg").exists());
@@ -79,8 +84,7 @@ fn first_model_compiles_and_its_claims_hold() {
 #[test]
 fn own_crate_builds_and_runs() {
     let folder = tempfile::tempdir().expect("a folder");
-    let clone = repository().canonicalize().expect("the repository");
-    std::os::unix::fs::symlink(clone, folder.path().join("driftwright")).expect("a link");
+    std::os::unix::fs::symlink(clone(), folder.path().join("driftwright")).expect("a link");
     let script = &blocks(&read("README.md"), "sh")[2];
     let output = succeed(script, folder.path(), "readme");
     // The mean is 42 exp(0.05) at one year.
