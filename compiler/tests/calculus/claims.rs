@@ -1,7 +1,6 @@
 //! Claims: proofs of textbook results, refutations with a witness, and what must stay open.
 
 use std::collections::BTreeMap;
-use std::path::{Path, PathBuf};
 
 use driftwright::analysis::claims::{ClaimResult, Verdict};
 use driftwright::diagnostic::{Code, human};
@@ -9,105 +8,7 @@ use driftwright::pipeline::{Compiled, compile};
 use driftwright::source::SourceFile;
 use driftwright::symbolic::Symbol;
 
-use crate::common::{close, compile_text, compiled};
-
-fn root() -> PathBuf {
-    Path::new(env!("CARGO_MANIFEST_DIR")).join("..")
-}
-
-fn models() -> Vec<(String, String)> {
-    let mut files: Vec<PathBuf> = std::fs::read_dir(root().join("models"))
-        .expect("the models are there")
-        .map(|entry| entry.expect("it can be listed").path())
-        .filter(|path| path.extension().is_some_and(|e| e == "toml"))
-        .collect();
-    files.sort();
-    files
-        .into_iter()
-        .map(|path| {
-            let name = path
-                .file_stem()
-                .expect("a name")
-                .to_string_lossy()
-                .into_owned();
-            (
-                name,
-                std::fs::read_to_string(&path).expect("it can be read"),
-            )
-        })
-        .collect()
-}
-
-/// Claims of shipped models that no proof is due for, each with why.
-const OPEN: [(&str, &str); 1] = [
-    // Reflection adds a term at the sill that the equation does not show.
-    ("sluice_level", "noise"),
-];
-
-#[test]
-fn the_claims_of_the_shipped_models_are_proved() {
-    let mut failures = Vec::new();
-    for (model, text) in models() {
-        for claim in &compiled(&text).claims {
-            let due = match OPEN.contains(&(model.as_str(), claim.name.as_str())) {
-                true => Verdict::Open,
-                false => Verdict::Proved,
-            };
-            if claim.verdict != due {
-                let verdict = claim.verdict.name();
-                failures.push(format!(
-                    "{model}.{}: {verdict}: {}",
-                    claim.name, claim.reason
-                ));
-            }
-        }
-    }
-    assert!(
-        failures.is_empty(),
-        "{} failures:\n{}",
-        failures.len(),
-        failures.join("\n")
-    );
-}
-
-/// Each shipped model has a twin with one wrong term. Held against the claims of the right model the
-/// twin must be caught.
-#[test]
-fn the_claims_of_the_shipped_models_catch_their_twins() {
-    let mut missed = Vec::new();
-    let mut caught = 0;
-    for (name, text) in models() {
-        let path = root()
-            .join("tests/fixtures/twins")
-            .join(format!("{name}.toml"));
-        let Ok(twin) = std::fs::read_to_string(path) else {
-            continue;
-        };
-        let claims = text
-            .split_once("[claims]")
-            .expect("shipped models have claims")
-            .1;
-        let (compiled, shown) = compile_text(&format!("{twin}\n[claims]{claims}"));
-        let compiled = compiled.unwrap_or_else(|| panic!("{name}\n{shown}"));
-        let refuted = compiled
-            .claims
-            .iter()
-            .any(|c| c.verdict == Verdict::Refuted);
-        if refuted {
-            caught += 1;
-        } else {
-            missed.push(name);
-        }
-    }
-    // The sluice is reflected, and nothing is proved or refuted beyond the reflection; the quanto drift
-    // of the island's rate is in none of the ferry's claims, since the shilling brought home is a
-    // martingale whatever the rate does.
-    assert_eq!(
-        missed,
-        ["ferry_currency", "sluice_level"],
-        "caught {caught}"
-    );
-}
+use crate::common::{close, compiled};
 
 /// A model for claims about most things.
 const MODEL: &str = r#"
