@@ -21,3 +21,11 @@ pub mod report;
 pub mod scheme;
 pub mod source;
 pub mod symbolic;
+
+pub use diagnostic::{Code, Diagnostic, Severity};
+pub use model::{Model, SchemeName};
+pub use pipeline::{Compilation, Compiled, compile};
+pub use program::Program;
+pub use scheme::Plan;
+pub use source::{SourceFile, Span};
+pub use symbolic::{Expr, Pool};

@@ -5,6 +5,10 @@
 //! hash-consing keeps that cheap. The front fills this type and nothing else builds one, so that later
 //! passes need not check it again.
 
+mod scheme_name;
+
+pub use scheme_name::SchemeName;
+
 use crate::source::{SourceFile, Span};
 use crate::symbolic::{Expr, Interval, Pool, Rational, Symbol};
 
@@ -168,7 +172,7 @@ pub struct State {
     /// Coordinate to simulate in, in this state, t and parameters.
     pub through: Option<Formula>,
     /// Scheme the author asked for, as written, with its place.
-    pub scheme: Option<(crate::scheme::SchemeName, Span)>,
+    pub scheme: Option<(SchemeName, Span)>,
     /// Where its name stands.
     pub span: Span,
 }

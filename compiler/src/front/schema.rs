@@ -5,7 +5,7 @@
 use serde_json::{Map, Value, json};
 
 use super::raw::keys;
-use crate::scheme::SchemeName;
+use crate::model::SchemeName;
 
 /// The schema, in the 2020-12 dialect.
 ///

@@ -8,7 +8,6 @@
 mod approximate;
 mod edges;
 mod exact;
-mod name;
 mod noise;
 mod overrides;
 mod plan;
@@ -22,7 +21,7 @@ use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostics;
 use crate::model::Model;
 
-pub use name::SchemeName;
+pub use crate::model::SchemeName;
 pub use plan::{
     Becomes, Component, Coordinate, EdgeRule, Group, Kind, Law, LinearGaussian, Method,
     NoiseComponent, NoisePlan, Order, Plan, RowNoise, StateStep,

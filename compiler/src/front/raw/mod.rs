@@ -12,8 +12,8 @@ mod quantities;
 use super::formula::{Ast, IntervalAst};
 use super::tree::Table;
 use crate::diagnostic::Diagnostics;
+use crate::model::SchemeName;
 use crate::model::{AtEdge, Calculus, Relation};
-use crate::scheme::SchemeName;
 use crate::source::Span;
 use crate::symbolic::Rational;
 

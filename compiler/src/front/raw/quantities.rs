@@ -5,7 +5,7 @@ use super::{Name, PerDriver, RawEdge, RawNamed, RawState, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front::tree::{Entry, Table, Value, ValueKind};
 use crate::model::AtEdge;
-use crate::scheme::SchemeName;
+use crate::model::SchemeName;
 use crate::source::Span;
 
 /// `[states.X]`

@@ -48,7 +48,7 @@ impl SchemeName {
     /// The name as model files and reports spell it.
     ///
     /// ```
-    /// use driftwright::scheme::SchemeName;
+    /// use driftwright::model::SchemeName;
     /// assert_eq!(SchemeName::StrongTaylor15.name(), "strong_taylor_1_5");
     /// ```
     pub fn name(self) -> &'static str {
@@ -69,7 +69,7 @@ impl SchemeName {
     /// The scheme with this name, if there is one.
     ///
     /// ```
-    /// use driftwright::scheme::SchemeName;
+    /// use driftwright::model::SchemeName;
     /// assert_eq!(SchemeName::from_name("milstein"), Some(SchemeName::Milstein));
     /// assert_eq!(SchemeName::from_name("milstien"), None);
     /// ```
