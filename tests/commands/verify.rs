@@ -4,16 +4,13 @@ use serde_json::Value;
 
 use crate::harness::{Folder, altered, json, run};
 
-/// The mean of a smooth threshold: for Y normal with mean m and variance s^2,
-/// E[normal_cdf(Y/b)] = normal_cdf(m/sqrt(b^2 + s^2)) (Owen 1980, "A table of normal integrals", number
-/// 10,010.8; from memory). The compiler has no rule for it, so that the claim is open and only the
-/// simulation can tell.
-const THRESHOLD: &str = "normal_cdf((log(S0/strike) + (mu - sigma^2/2)*t)/sqrt(0.04 + sigma^2*t))";
+/// The mean of a sine: for Y normal with mean m and variance s^2, E[sin(Y)] = exp(-s^2/2) sin(m), the
+/// imaginary part of the characteristic function (Lukacs 1970, "Characteristic Functions", table 1; from
+/// memory). The compiler has no rule for it, so that the claim is open and only the simulation can tell.
+const SINE: &str = "exp(-sigma^2*t/2)*sin(log(S0) + (mu - sigma^2/2)*t)";
 
-fn with_threshold_claim(value: &str) -> String {
-    let claim = format!(
-        "[claims]\nthreshold = {{ mean_of = \"normal_cdf(log(S/strike)/0.2)\", is = \"{value}\" }}"
-    );
+fn with_sine_claim(value: &str) -> String {
+    let claim = format!("[claims]\nsine = {{ mean_of = \"sin(log(S))\", is = \"{value}\" }}");
     altered("orchard_spot.toml", "[claims]", &claim)
 }
 
@@ -47,22 +44,22 @@ fn json_holds_the_contract() {
 #[test]
 fn an_open_claim_is_put_to_the_test() {
     let folder = Folder::new();
-    let right = folder.write("right.toml", &with_threshold_claim(THRESHOLD));
+    let right = folder.write("right.toml", &with_sine_claim(SINE));
     let found = json(&["verify", &right, "--format", "json"]);
-    assert_eq!(found["claims"]["threshold"], "open");
+    assert_eq!(found["claims"]["sine"], "open");
     let checks = found["checks"].as_array().unwrap();
     assert!(
         checks
             .iter()
-            .any(|c| c["claim"] == "threshold" && c["passed"] == true)
+            .any(|c| c["claim"] == "sine" && c["passed"] == true)
     );
 }
 
 #[test]
 fn a_lost_correction_in_an_open_claim_is_seen() {
     let folder = Folder::new();
-    let lost = THRESHOLD.replace("(mu - sigma^2/2)", "mu");
-    let wrong = folder.write("wrong.toml", &with_threshold_claim(&lost));
+    let lost = SINE.replace("(mu - sigma^2/2)", "mu");
+    let wrong = folder.write("wrong.toml", &with_sine_claim(&lost));
     let ran = run(&["verify", &wrong, "--format", "json"]);
     assert_eq!(ran.status, 1);
     let found: Value = serde_json::from_str(&ran.out).unwrap();
@@ -70,7 +67,7 @@ fn a_lost_correction_in_an_open_claim_is_seen() {
     for check in found["checks"].as_array().unwrap() {
         assert_eq!(
             check["passed"] == false,
-            check["claim"] == "threshold",
+            check["claim"] == "sine",
             "{check}"
         );
     }
