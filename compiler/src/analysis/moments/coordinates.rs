@@ -8,7 +8,7 @@ use super::integrability::ends_hold;
 use crate::analysis::coordinate::{Candidate, through};
 use crate::calculus::{Dynamics, Process, System};
 use crate::model::Model;
-use crate::symbolic::{Expr, Function, Node, Symbol, SymbolKind};
+use crate::symbolic::{Expr, Function, Node, Sign, Symbol, SymbolKind};
 
 /// A coordinate that may stand for a state: `u = forward(x)`, `x = inverse(u)`.
 #[derive(Clone, Debug)]
@@ -127,28 +127,62 @@ impl<'a> Chart<'a> {
 /// `log(x)` as the coordinate of every state that stands alone under a logarithm in the formula.
 pub(super) fn logarithms(model: &Model, formula: Expr) -> Vec<Change> {
     let pool = &model.pool;
+    changes(model, formula, "log", |part| match &*pool.node(part) {
+        Node::Call(Function::Log, arguments) => Some((arguments[0], part)),
+        _ => None,
+    })
+    .map(|(state, symbol, forward)| Change {
+        state,
+        symbol,
+        forward,
+        inverse: pool.exp(pool.var(symbol)),
+    })
+    .collect()
+}
+
+/// `1/x` as the coordinate of every state that has a negative power in the formula: equations such as
+/// the logistic one are linear in the reciprocal (Kloeden and Platen 1992, section 4.4, from memory).
+pub(super) fn reciprocals(model: &Model, formula: Expr) -> Vec<Change> {
+    let pool = &model.pool;
+    let reciprocal = |e: Expr| pool.div(pool.one(), e);
+    changes(model, formula, "1/", |part| match &*pool.node(part) {
+        Node::Power(base, exponent) if pool.sign(*exponent) == Sign::Negative => {
+            Some((*base, reciprocal(*base)))
+        }
+        _ => None,
+    })
+    .map(|(state, symbol, forward)| Change {
+        state,
+        symbol,
+        forward,
+        inverse: reciprocal(pool.var(symbol)),
+    })
+    .collect()
+}
+
+/// The states that stand alone inside a part of the formula which `read` takes apart into what stands
+/// there and the coordinate; each with the coordinate's symbol and formula.
+fn changes(
+    model: &Model,
+    formula: Expr,
+    name: &str,
+    read: impl Fn(Expr) -> Option<(Expr, Expr)>,
+) -> impl Iterator<Item = (usize, Symbol, Expr)> {
+    let pool = &model.pool;
     let mut found = BTreeMap::new();
     for part in pool.postorder(formula) {
-        let Node::Call(Function::Log, arguments) = &*pool.node(part) else {
+        let Some((inside, forward)) = read(part) else {
             continue;
         };
-        let Node::Symbol(symbol) = &*pool.node(arguments[0]) else {
+        let Node::Symbol(symbol) = &*pool.node(inside) else {
             continue;
         };
         if let Some(state) = model.state_of(*symbol) {
-            let name = format!("log[{}]", pool.symbol_name(*symbol));
-            let u = pool.symbol(&name, SymbolKind::Auxiliary);
-            let inverse = pool.exp(pool.var(u));
-            found.insert(
-                state,
-                Change {
-                    state,
-                    symbol: u,
-                    forward: part,
-                    inverse,
-                },
-            );
+            let name = format!("{name}[{}]", pool.symbol_name(*symbol));
+            found.insert(state, (pool.symbol(&name, SymbolKind::Auxiliary), forward));
         }
     }
-    found.into_values().collect()
+    found
+        .into_iter()
+        .map(|(state, (symbol, forward))| (state, symbol, forward))
 }

@@ -345,12 +345,18 @@ impl Moments {
         })
     }
 
-    /// Coordinates worth trying for a formula: the states, logarithms it takes, planned coordinates.
+    /// Coordinates worth trying for a formula: the states, logarithms and reciprocals it takes, planned
+    /// coordinates.
     fn charts(&self, formula: Expr) -> Vec<Chart<'_>> {
         let chart = |changes: &[Change]| Chart::new(&self.model, &self.dynamics.states, changes);
         let mut charts = vec![chart(&[])];
         let logarithms = coordinates::logarithms(&self.model, formula);
-        for changes in [logarithms.as_slice(), self.changes.as_slice()] {
+        let reciprocals = coordinates::reciprocals(&self.model, formula);
+        for changes in [
+            logarithms.as_slice(),
+            reciprocals.as_slice(),
+            self.changes.as_slice(),
+        ] {
             if !changes.is_empty() {
                 charts.push(chart(changes));
             }
