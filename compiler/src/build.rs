@@ -1,10 +1,9 @@
 //! What a user's build script calls: models to Rust source in the build directory.
 //!
+//! In `main` of `build.rs`:
+//!
 //! ```no_run
-//! // build.rs
-//! fn main() {
-//!     driftwright::build::models(["models/orchard_spot.toml"]);
-//! }
+//! driftwright::build::models(["models/orchard_spot.toml"]);
 //! ```
 //!
 //! and where the simulator is used:

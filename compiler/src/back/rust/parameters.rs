@@ -12,7 +12,7 @@ impl Generator<'_> {
         let constructor = if required.is_empty() {
             self.default_values()
         } else {
-            self.from_required()
+            self.constructor()
         };
         let required = if required.is_empty() {
             TokenStream::new()
@@ -71,7 +71,7 @@ impl Generator<'_> {
         }
     }
 
-    fn from_required(&self) -> TokenStream {
+    fn constructor(&self) -> TokenStream {
         let values = self.initialisers();
         quote! {
             impl Parameters {
