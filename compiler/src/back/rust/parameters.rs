@@ -12,7 +12,7 @@ impl Generator<'_> {
         let constructor = if required.is_empty() {
             self.default_values()
         } else {
-            self.constructor()
+            self.new_from_required()
         };
         let required = if required.is_empty() {
             TokenStream::new()
@@ -71,7 +71,7 @@ impl Generator<'_> {
         }
     }
 
-    fn constructor(&self) -> TokenStream {
+    fn new_from_required(&self) -> TokenStream {
         let values = self.initialisers();
         quote! {
             impl Parameters {
