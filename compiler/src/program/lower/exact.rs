@@ -3,7 +3,8 @@
 use std::collections::{BTreeMap, BTreeSet};
 
 use super::Lowering;
-use super::noise::{Mixture, Noise, Transition, elapsed, is_diagonal};
+use super::noise::{Mixture, Noise, Transition};
+use super::rows::{elapsed, is_diagonal};
 use crate::program::op::ValueId;
 use crate::scheme::{Component, Group, LinearGaussian, RowNoise};
 

@@ -9,7 +9,9 @@ mod constructor;
 mod exact;
 mod noise;
 mod observe;
+mod rows;
 mod runge_kutta;
+mod system;
 
 use std::collections::BTreeMap;
 

@@ -1,0 +1,4 @@
+// The macro takes a string.
+driftwright_macros::model!(savings);
+
+fn main() {}

@@ -1,0 +1,4 @@
+// A parenthesis is not closed.
+driftwright_macros::model!("open_parenthesis.toml");
+
+fn main() {}

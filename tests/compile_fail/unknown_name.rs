@@ -1,0 +1,4 @@
+// A formula names something the model does not declare.
+driftwright_macros::model!("unknown_name.toml");
+
+fn main() {}
