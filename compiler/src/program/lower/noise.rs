@@ -13,9 +13,8 @@ use super::rows::{
     rows,
 };
 use super::system::System;
-use crate::program::op::{Op, ValueId};
-use crate::scheme::{Component, LinearGaussian, Method};
-use crate::symbolic::{Expr, Function};
+use crate::program::op::ValueId;
+use crate::scheme::{Component, LinearGaussian};
 
 /// A combination of sources of normal draws: (source, coefficient), the coefficients the same on all
 /// paths.
