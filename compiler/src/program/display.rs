@@ -135,8 +135,16 @@ fn describe(check: &Check, program: &Program) -> String {
 }
 
 fn ends(range: &super::Range) -> String {
-    let end = |bound: super::Bound| bound.value().map_or("inf".to_owned(), |id| id.to_string());
+    let end = |bound: super::Bound, infinite: &str| {
+        bound
+            .value()
+            .map_or(infinite.to_owned(), |id| id.to_string())
+    };
     let open = if range.lower.is_closed() { '[' } else { '(' };
     let close = if range.upper.is_closed() { ']' } else { ')' };
-    format!("{open}{}, {}{close}", end(range.lower), end(range.upper))
+    format!(
+        "{open}{}, {}{close}",
+        end(range.lower, "-inf"),
+        end(range.upper, "inf")
+    )
 }

@@ -293,7 +293,12 @@ impl Formulas<'_> {
             }
         }
         let mut total: Option<ValueId> = None;
-        for (singles, products) in by_rate.into_values() {
+        for (mut singles, mut products) in by_rate.into_values() {
+            if total.is_none() {
+                // Starting from what is added spares the negation of what is subtracted.
+                singles.sort_by_key(|term| term.negative);
+                products.sort_by_key(|term| term.negative);
+            }
             for term in singles.into_iter().chain(products) {
                 total = Some(self.accumulate(total, &term));
             }
