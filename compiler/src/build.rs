@@ -61,9 +61,11 @@ pub fn model(path: &Path, shown: &str) -> Result<Built, String> {
     let source = match front::load(path) {
         Ok(file) => SourceFile::new(shown, file.text()),
         Err(mut diagnostic) => {
-            diagnostic.message = diagnostic
-                .message
-                .replace(&path.display().to_string(), shown);
+            let full = path.display().to_string();
+            diagnostic.message = diagnostic.message.replace(&full, shown);
+            let hint = diagnostic.hint.take();
+            diagnostic.hint =
+                hint.map(|hint| hint.replace("the current directory", "the package's root"));
             return Err(human(&SourceFile::new(shown, ""), &[diagnostic], false));
         }
     };
