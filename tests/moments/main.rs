@@ -22,7 +22,6 @@ trait Visit {
 }
 
 /// The modules the build script wrote; they are public for users who include them in a library.
-#[allow(unreachable_pub)]
 mod built {
     macro_rules! every_model {
         ($($module:ident $simulator:ident $path:literal $file:literal { $($name:literal $field:ident,)* })*) => {
@@ -33,7 +32,6 @@ mod built {
 }
 
 /// The modules the macro expands to.
-#[allow(unreachable_pub)]
 mod expanded {
     macro_rules! every_model {
         ($($module:ident $simulator:ident $path:literal $file:literal { $($name:literal $field:ident,)* })*) => {

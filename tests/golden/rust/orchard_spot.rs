@@ -3,7 +3,10 @@
 
 #[forbid(unsafe_code)]
 #[allow(
+    dead_code,
     non_snake_case,
+    unreachable_pub,
+    clippy::approx_constant,
     clippy::doc_markdown,
     clippy::excessive_precision,
     clippy::inline_always,

@@ -73,10 +73,15 @@ impl<'a> Generator<'a> {
         let parameters = self.parameters();
         let constructor = self.constructor();
         let simulator = self.simulator();
+        // A module is written for any use: a crate that includes it privately, uses part of it, forbids
+        // the pedantic lints, or has a parameter that happens to be near 2 pi must see no warning.
         quote! {
             #[forbid(unsafe_code)]
             #[allow(
+                dead_code,
                 non_snake_case,
+                unreachable_pub,
+                clippy::approx_constant,
                 clippy::doc_markdown,
                 clippy::excessive_precision,
                 clippy::inline_always,
