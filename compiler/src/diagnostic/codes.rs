@@ -208,4 +208,22 @@ parameters and states at which they differ are shown."
 SchemeRefused "DW0601" "scheme cannot be used"
 "The scheme asked for does not fit the state: `exact` needs a known law, `milstein` needs noise that
 commutes. Leave the key out to have one chosen."
+
+UnitMismatch "DW0701" "units that do not fit"
+"Terms of a sum, both sides of a claim or an assumption, an initial value and its state have one unit.
+A drift has the state's unit per unit of time, a diffusion the state's unit per square root of it, a
+correlation none. Units not declared are found from the formulas. A number added takes the unit that
+fits, so does a number in a product unless it is whole and at most 10. Both units are shown, and where
+they come from: look for a missing factor, or mend the units declared."
+
+UnitOfArgument "DW0702" "argument that is not a pure number"
+"`exp`, `sin`, `normal_cdf` and their like, and exponents, take pure numbers: divide by a quantity of the
+same unit. `log` takes a quantity too and is the logarithm of its number in the unit declared, as in the
+log of a price; `exp` leads back, so its value may stand for a quantity. `t` alone, as in
+`sin(2*pi*t)`, is the number of time units."
+
+UnreadableUnit "DW0703" "unit that cannot be read"
+"Units are products, quotients and powers of names: EUR/t, 1/year^(1/2), kg*m^2/s^2. Fractions as exponents
+stand in parentheses. Names may hold any characters but * / ^ ( ) and spaces; side by side they are
+a product that binds tighter than `/`. `1` and `rad` are pure numbers. The unit shown is not checked."
 }

@@ -11,6 +11,7 @@ mod schema;
 mod suggest;
 pub mod text;
 mod tree;
+mod units;
 
 pub use load::load;
 pub use resolve::{Place, read_formula};
@@ -45,6 +46,7 @@ pub fn read(source: &SourceFile, diagnostics: &mut Diagnostics) -> Option<Model>
         return None;
     }
     let raw = raw::read(&root, diagnostics);
+    units::check(&raw, diagnostics);
     let model = resolve::resolve(raw, source, diagnostics);
     (diagnostics.error_count() == before).then_some(model)
 }

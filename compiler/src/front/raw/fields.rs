@@ -75,6 +75,15 @@ impl<'a, 'd> Fields<'a, 'd> {
         string(value, key, self.diagnostics).map(|text| text.text().to_owned())
     }
 
+    /// Text for people, with its place.
+    pub(super) fn placed_text(&mut self, key: &str) -> Option<Name> {
+        let value = &self.get(key)?.value;
+        string(value, key, self.diagnostics).map(|text| Name {
+            text: text.text().to_owned(),
+            span: text.span(),
+        })
+    }
+
     /// A formula, where the key is there.
     pub(super) fn formula(&mut self, key: &str) -> Option<RawFormula> {
         let value = &self.get(key)?.value;

@@ -38,7 +38,7 @@ pub(super) struct RawModel {
     pub(super) name: Option<String>,
     pub(super) title: Option<String>,
     pub(super) about: Option<String>,
-    pub(super) time_unit: Option<String>,
+    pub(super) time_unit: Option<Name>,
     pub(super) calculus: Option<Calculus>,
     pub(super) drivers: Vec<Name>,
     pub(super) parameters: Vec<RawParameter>,
@@ -56,7 +56,7 @@ pub(super) struct RawModel {
 pub(super) struct RawParameter {
     pub(super) name: Name,
     pub(super) value: Option<(Rational, Span)>,
-    pub(super) unit: Option<String>,
+    pub(super) unit: Option<Name>,
     pub(super) about: Option<String>,
     pub(super) range: Option<IntervalAst>,
 }
@@ -93,7 +93,7 @@ pub(super) enum PerDriver {
 pub(super) struct RawState {
     pub(super) name: Name,
     pub(super) about: Option<String>,
-    pub(super) unit: Option<String>,
+    pub(super) unit: Option<Name>,
     pub(super) initial: Option<RawFormula>,
     pub(super) drift: Option<RawFormula>,
     pub(super) diffusion: Option<PerDriver>,
@@ -121,7 +121,7 @@ pub(super) struct RawNamed {
     pub(super) name: Name,
     pub(super) formula: Option<RawFormula>,
     pub(super) about: Option<String>,
-    pub(super) unit: Option<String>,
+    pub(super) unit: Option<Name>,
 }
 
 /// A claim whose parts could all be read.

@@ -30,7 +30,7 @@ pub(super) fn read(root: &mut Fields<'_, '_>, raw: &mut RawModel) {
         .and_then(|name| model_name(name, fields.diagnostics));
     raw.title = fields.text("title");
     raw.about = fields.text("about");
-    raw.time_unit = fields.text("time_unit");
+    raw.time_unit = fields.placed_text("time_unit");
     raw.calculus = fields.get("calculus").and_then(|entry| {
         let word = choice(&entry.value, "calculus", keys::CALCULI, fields.diagnostics)?;
         Some([Calculus::Ito, Calculus::Stratonovich][word])

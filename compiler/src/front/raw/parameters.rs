@@ -35,7 +35,7 @@ fn parameter(entry: &Entry, diagnostics: &mut Diagnostics) -> RawParameter {
             parameter.value = fields.get("value").and_then(|e| {
                 number(&e.value, fields.diagnostics).map(|value| (value, e.value.span))
             });
-            parameter.unit = fields.text("unit");
+            parameter.unit = fields.placed_text("unit");
             parameter.about = fields.text("about");
             parameter.range = fields.interval("range");
         }

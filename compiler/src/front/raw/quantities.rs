@@ -38,7 +38,7 @@ fn state(entry: &Entry, diagnostics: &mut Diagnostics) -> RawState {
     };
     let mut fields = Fields::new(table, "a state", keys::STATE, diagnostics).at(entry.key_span);
     state.about = fields.text("about");
-    state.unit = fields.text("unit");
+    state.unit = fields.placed_text("unit");
     state.initial = fields.required_formula("initial");
     state.drift = fields.required_formula("drift");
     let diffusion = fields.get("diffusion");
@@ -143,7 +143,7 @@ fn named_entry(entry: &Entry, diagnostics: &mut Diagnostics) -> RawNamed {
         name,
         formula,
         about: fields.text("about"),
-        unit: fields.text("unit"),
+        unit: fields.placed_text("unit"),
     }
 }
 

@@ -15,6 +15,7 @@ mod states;
 mod unused;
 mod view;
 
+pub(super) use order::{Definition, order};
 pub use place::Place;
 pub use single::read_formula;
 
@@ -64,7 +65,7 @@ pub(super) fn resolve(raw: RawModel, source: &SourceFile, diagnostics: &mut Diag
         name: raw.name.unwrap_or_default(),
         title: raw.title,
         about: raw.about,
-        time_unit: raw.time_unit,
+        time_unit: raw.time_unit.map(|unit| unit.text),
         calculus: raw.calculus.unwrap_or(Calculus::Ito),
         drivers: raw
             .drivers

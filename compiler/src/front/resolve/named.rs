@@ -56,7 +56,7 @@ impl Resolver<'_> {
             name: raw.name.text.clone(),
             formula: formula.unwrap_or_else(|| self.placeholder()),
             about: raw.about.clone(),
-            unit: raw.unit.clone(),
+            unit: raw.unit.as_ref().map(|unit| unit.text.clone()),
             span: raw.name.span,
         });
         named.collect()

@@ -6,14 +6,17 @@ use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::source::Span;
 
 /// A definition: its name and the names it uses, with their places.
-pub(super) struct Definition<'a> {
-    pub(super) name: &'a str,
-    pub(super) uses: Vec<(&'a str, Span)>,
+pub(in crate::front) struct Definition<'a> {
+    pub(in crate::front) name: &'a str,
+    pub(in crate::front) uses: Vec<(&'a str, Span)>,
 }
 
 /// Positions of the definitions, each after those it uses. What stands in a circle is reported and
 /// left out; uses of names that are not among the definitions do not count.
-pub(super) fn order(definitions: &[Definition<'_>], diagnostics: &mut Diagnostics) -> Vec<usize> {
+pub(in crate::front) fn order(
+    definitions: &[Definition<'_>],
+    diagnostics: &mut Diagnostics,
+) -> Vec<usize> {
     let mut by_name = BTreeMap::new();
     for (position, definition) in definitions.iter().enumerate() {
         by_name.entry(definition.name).or_insert(position);

@@ -73,7 +73,7 @@ impl Resolver<'_> {
             name: raw.name.text.clone(),
             symbol,
             value: raw.value.as_ref().map(|(value, _)| value.clone()),
-            unit: raw.unit.clone(),
+            unit: raw.unit.as_ref().map(|unit| unit.text.clone()),
             about: raw.about.clone(),
             range,
             span: raw.name.span,

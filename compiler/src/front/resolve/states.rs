@@ -55,7 +55,7 @@ impl Resolver<'_> {
             name: raw.name.text.clone(),
             symbol,
             about: raw.about.clone(),
-            unit: raw.unit.clone(),
+            unit: raw.unit.as_ref().map(|unit| unit.text.clone()),
             initial: initial.unwrap_or_else(|| self.placeholder()),
             drift: drift.unwrap_or_else(|| self.placeholder()),
             diffusion,
