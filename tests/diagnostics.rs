@@ -124,16 +124,6 @@ fn shipped_models_are_read_without_a_word() {
     }
 }
 
-/// A twin has one wrong term in a claim or coefficient, which algebra must find: its units are in order.
-#[test]
-fn units_of_the_twins_are_in_order() {
-    for path in toml_files(&root().join("tests/fixtures/twins")) {
-        let (source, diagnostics) = check(&path);
-        let of_units = diagnostics.iter().any(|d| d.code >= Code::UnitMismatch);
-        assert!(!of_units, "{}", human(&source, &diagnostics, false));
-    }
-}
-
 #[test]
 fn json_counts_lines_and_characters_from_one() {
     let text = "[model]\nname = \"a\"\n[parameters]\n\"σ\" = 1\n[states.X]\ninitial = \"1\"\ndrift = \"σ*τ\"\n";
