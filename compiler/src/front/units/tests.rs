@@ -71,7 +71,7 @@ fn coefficients_that_fit() {
         ("S0", "mu*S + sigma^2*S/2", "sigma*cbrt(S^2*K)"),
         ("S0", "sign(S - K)*mu*abs(S - K)", "sigma^3*S/mu"),
         ("S0", "sigma^2*S*(1 + 0.1*t)", "sigma*S"),
-        ("K*exp(a)", "mu*exp(a*level)", "sigma*S*normal_cdf(scaled)"),
+        ("K*exp(a)", "b*exp(a*level)", "sigma*S*normal_cdf(scaled)"),
     ];
     for (initial, drift, diffusion) in cases {
         let lines = state(initial, drift, diffusion);
