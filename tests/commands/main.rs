@@ -2,8 +2,11 @@
 
 mod check;
 mod derive;
+mod format;
 mod generate;
 mod harness;
+mod hostile;
 mod options;
+mod sarif;
 mod simulate;
 mod verify;

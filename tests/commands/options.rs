@@ -12,6 +12,7 @@ fn help_shows_examples() {
         "generate",
         "simulate",
         "verify",
+        "format",
         "schema",
         "completions",
     ] {

@@ -69,6 +69,14 @@ pub enum Command {
     /// from the two runs is shown beside each z-score and allowed for, never hidden.
     #[command(after_long_help = VERIFY_EXAMPLES)]
     Verify(VerifyArgs),
+    /// Write models in one canonical layout
+    ///
+    /// Orders tables and keys, aligns equality signs and puts spaces in formulas, in place. Comments
+    /// are kept, and what a model means is compared before and after, formula by formula: a file whose
+    /// meaning would change, or that has errors, is left as it is. Where one of several files cannot be
+    /// laid out, none is written.
+    #[command(after_long_help = FORMAT_EXAMPLES)]
+    Format(FormatArgs),
     /// Print the JSON Schema of the model file
     ///
     /// Editors that read JSON Schema complete and check model files with it.
@@ -85,6 +93,7 @@ const CHECK_EXAMPLES: &str = "\
 Examples:
   driftwright check models/*.toml
   driftwright check --format json model.toml
+  driftwright check --format sarif models/*.toml > findings.sarif
   driftwright check --explain DW0103";
 
 const DERIVE_EXAMPLES: &str = "\
@@ -112,6 +121,11 @@ Examples:
   driftwright verify model.toml --times 0.5,1,2 --paths 1e6
   driftwright verify model.toml --format json";
 
+const FORMAT_EXAMPLES: &str = "\
+Examples:
+  driftwright format models/*.toml
+  driftwright format --check models/*.toml";
+
 const SCHEMA_EXAMPLES: &str = "\
 Example:
   driftwright schema > driftwright.schema.json";
@@ -127,6 +141,17 @@ pub enum Format {
     Human,
     /// For programs
     Json,
+}
+
+/// Output formats of `check`.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub enum CheckFormat {
+    /// For people
+    Human,
+    /// For programs
+    Json,
+    /// SARIF 2.1.0, for services that show findings beside the code
+    Sarif,
 }
 
 /// Output formats of `derive`.
@@ -147,8 +172,8 @@ pub struct CheckArgs {
     #[arg(value_name = "FILE", required_unless_present = "explain")]
     pub files: Vec<PathBuf>,
     /// Output for people or for programs
-    #[arg(long, value_enum, default_value_t = Format::Human)]
-    pub format: Format,
+    #[arg(long, value_enum, default_value_t = CheckFormat::Human)]
+    pub format: CheckFormat,
     /// Treat warnings as errors
     #[arg(long)]
     pub deny_warnings: bool,
@@ -244,6 +269,17 @@ pub struct VerifyArgs {
     /// Paths, times, parameters, threads.
     #[command(flatten)]
     pub run: RunArgs,
+}
+
+/// `format`
+#[derive(Debug, Args)]
+pub struct FormatArgs {
+    /// Model files
+    #[arg(value_name = "FILE", required = true)]
+    pub files: Vec<PathBuf>,
+    /// Write nothing; exit with 1 when a file would change, and name it
+    #[arg(long)]
+    pub check: bool,
 }
 
 /// `schema`

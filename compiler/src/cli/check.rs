@@ -2,11 +2,12 @@
 
 use std::io;
 
-use super::args::{CheckArgs, Format};
+use super::args::{CheckArgs, CheckFormat};
 use super::load::{Loaded, load};
 use super::{Failure, Outcome, Status, output};
 use crate::analysis::claims::Verdict;
-use crate::diagnostic::{self, Code, Severity, explain, human};
+use crate::diagnostic::{self, Code, Diagnostic, Severity, explain, human};
+use crate::source::SourceFile;
 
 /// Checks the files, or explains a code.
 pub(super) fn run(args: &CheckArgs) -> Outcome {
@@ -15,7 +16,7 @@ pub(super) fn run(args: &CheckArgs) -> Outcome {
     }
     let files: Vec<Loaded> = args.files.iter().map(|path| load(path)).collect();
     match args.format {
-        Format::Human => {
+        CheckFormat::Human => {
             let colour = output::colour_on(&io::stdout());
             let mut text = String::new();
             for file in &files {
@@ -24,9 +25,11 @@ pub(super) fn run(args: &CheckArgs) -> Outcome {
             }
             output::print(&text)?;
         }
-        Format::Json => {
-            let found = files.iter().map(|f| (&f.source, f.diagnostics.as_slice()));
-            output::print(&format!("{:#}\n", diagnostic::json(found)))?;
+        CheckFormat::Json => {
+            output::print(&format!("{:#}\n", diagnostic::json(found(&files))))?;
+        }
+        CheckFormat::Sarif => {
+            output::print(&format!("{:#}\n", diagnostic::sarif(found(&files))))?;
         }
     }
     Ok(files
@@ -34,6 +37,10 @@ pub(super) fn run(args: &CheckArgs) -> Outcome {
         .map(|file| status(file, args.deny_warnings))
         .max()
         .unwrap_or(Status::Well))
+}
+
+fn found(files: &[Loaded]) -> impl Iterator<Item = (&SourceFile, &[Diagnostic])> {
+    files.iter().map(|f| (&f.source, f.diagnostics.as_slice()))
 }
 
 fn status(file: &Loaded, deny_warnings: bool) -> Status {

@@ -6,7 +6,9 @@ mod completions;
 mod coupled;
 mod derive;
 mod fan_chart;
+mod format;
 mod generate;
+mod interrupt;
 mod load;
 mod output;
 mod parse;
@@ -60,6 +62,7 @@ pub fn main() -> ExitCode {
         Command::Generate(args) => generate::run(args),
         Command::Simulate(args) => simulate::run(args),
         Command::Verify(args) => verify::run(args),
+        Command::Format(args) => format::run(args),
         Command::Schema(args) => schema::run(args),
         Command::Completions(args) => completions::run(args),
     };

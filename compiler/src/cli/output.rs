@@ -1,12 +1,13 @@
 //! Where output goes: standard output that may be closed early, and files that appear whole or not at
 //! all.
 
-use std::ffi::OsString;
+use std::fmt::Display;
 use std::fs::{self, File};
 use std::io::{self, BufWriter, ErrorKind, IsTerminal, Write};
 use std::path::{Path, PathBuf};
 
 use super::Failure;
+use super::interrupt::{self, Partial};
 
 /// Prints to standard output. A reader that has gone away is no failure: what it wanted, it has.
 pub(super) fn print(text: &str) -> Result<(), Failure> {
@@ -59,39 +60,40 @@ pub(super) struct OutputFile {
 
 impl OutputFile {
     /// Opens a file to become `path`. A device or a pipe is written directly: it cannot be replaced.
+    ///
+    /// Through a symbolic link the file behind it is replaced, not the link; one that leads nowhere is
+    /// refused, and so is a file that may not be written. A file that is replaced keeps its permissions.
     pub(super) fn create(path: &Path) -> Result<Self, Failure> {
-        let fail = |e: &io::Error| Failure(format!("cannot write {}: {e}", path.display()));
-        // Through a symbolic link the file behind it is replaced, not the link.
-        let target = fs::canonicalize(path).unwrap_or_else(|_| path.to_owned());
-        let kind = fs::metadata(&target);
-        if kind.as_ref().is_ok_and(fs::Metadata::is_dir) {
-            return Err(Failure(format!(
-                "cannot write {}: it is a directory",
-                path.display()
-            )));
+        let fail = |why: &dyn Display| Failure(format!("cannot write {}: {why}", path.display()));
+        let old = fs::metadata(path).ok();
+        if old.as_ref().is_some_and(fs::Metadata::is_dir) {
+            return Err(fail(&"it is a directory"));
         }
-        if kind.is_ok_and(|m| !m.is_file()) {
-            let file = File::options()
-                .write(true)
-                .open(&target)
-                .map_err(|e| fail(&e))?;
+        if old.as_ref().is_some_and(|m| !m.is_file()) {
+            let file = File::options().write(true).open(path);
             return Ok(Self {
-                target,
+                target: path.to_owned(),
                 partial: None,
-                writer: Some(BufWriter::new(file)),
+                writer: Some(BufWriter::new(file.map_err(|e| fail(&e))?)),
             });
         }
-        let mut name = OsString::from(".");
-        name.push(target.file_name().unwrap_or_default());
-        name.push(format!(".{}.partial", std::process::id()));
-        let partial = target.with_file_name(name);
-        let file = File::create(&partial).map_err(|e| fail(&e))?;
-        let writer = Some(BufWriter::with_capacity(1 << 18, file));
-        Ok(Self {
+        if old.is_none() && fs::symlink_metadata(path).is_ok() {
+            return Err(fail(&"it is a symbolic link that leads to no file"));
+        }
+        if old.as_ref().is_some_and(|m| m.permissions().readonly()) {
+            return Err(fail(&"it is read-only"));
+        }
+        let target = fs::canonicalize(path).unwrap_or_else(|_| path.to_owned());
+        let (partial, file) = beside(&target).map_err(|e| fail(&e))?;
+        let made = Self {
             target,
-            partial: Some(partial),
-            writer,
-        })
+            partial: Some(partial.clone()),
+            writer: Some(BufWriter::with_capacity(1 << 18, file)),
+        };
+        if let Some(old) = old {
+            fs::set_permissions(&partial, old.permissions()).map_err(|e| fail(&e))?;
+        }
+        Ok(made)
     }
 
     /// The failure that an error of writing is.
@@ -115,21 +117,46 @@ impl OutputFile {
     }
 
     /// Gives the file its name.
-    fn rename(mut self) -> Result<(), Failure> {
-        let Some(partial) = self.partial.take() else {
+    fn rename(&mut self, making: &mut Partial) -> Result<(), Failure> {
+        let Some(partial) = &self.partial else {
             return Ok(());
         };
-        fs::rename(&partial, &self.target).map_err(|e| {
-            let _ = fs::remove_file(&partial);
-            self.failure(&e)
-        })
+        fs::rename(partial, &self.target).map_err(|e| self.failure(&e))?;
+        making.forget(partial);
+        self.partial = None;
+        Ok(())
     }
 }
 
-/// Gives several files their names, when all of them are complete.
+/// A new file in the folder of `target`, under a name that nothing has.
+fn beside(target: &Path) -> io::Result<(PathBuf, File)> {
+    let mut making = interrupt::partial();
+    let mut number = 0;
+    loop {
+        let name = format!(".driftwright-{}-{number}.partial", std::process::id());
+        let path = target.with_file_name(name);
+        // Never through a name that is there already: it may be somebody's link.
+        match File::create_new(&path) {
+            Err(error) if error.kind() == ErrorKind::AlreadyExists && number < 1000 => number += 1,
+            Err(error) => return Err(error),
+            Ok(file) => {
+                making.add(&path);
+                return Ok((path, file));
+            }
+        }
+    }
+}
+
+/// Gives several files their names, when all of them are complete. An interrupt comes before the first
+/// or after the last.
 pub(super) fn commit_all(mut files: Vec<OutputFile>) -> Result<(), Failure> {
     files.iter_mut().try_for_each(OutputFile::close)?;
-    files.into_iter().try_for_each(OutputFile::rename)
+    let mut making = interrupt::partial();
+    let named = files
+        .iter_mut()
+        .try_for_each(|file| file.rename(&mut making));
+    drop(making);
+    named
 }
 
 impl Write for OutputFile {
@@ -149,7 +176,9 @@ impl Drop for OutputFile {
     fn drop(&mut self) {
         self.writer = None;
         if let Some(partial) = self.partial.take() {
-            let _ = fs::remove_file(partial);
+            let mut making = interrupt::partial();
+            let _ = fs::remove_file(&partial);
+            making.forget(&partial);
         }
     }
 }

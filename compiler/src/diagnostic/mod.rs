@@ -1,16 +1,19 @@
 //! What the tool tells people: one diagnostic type, one table of codes, renderers.
 //!
 //! A [`Diagnostic`] is data: a code, a place, what is wrong and what to do. Passes put them into a
-//! [`Diagnostics`] sink, so that one run finds as many as it can; [`human`] and [`json`] render them.
+//! [`Diagnostics`] sink, so that one run finds as many as it can; [`human`], [`json`] and [`sarif`]
+//! render them.
 
 mod codes;
 mod render_human;
 mod render_json;
+mod render_sarif;
 mod sink;
 
 pub use codes::{Code, explain};
 pub use render_human::human;
 pub use render_json::{diagnostic_json, json};
+pub use render_sarif::sarif;
 pub use sink::Diagnostics;
 
 use crate::source::Span;

@@ -4,6 +4,7 @@
 //! in one run. A part that was at fault is reported once; what depends on it stays silent.
 
 pub mod formula;
+pub mod layout;
 mod load;
 mod raw;
 mod resolve;

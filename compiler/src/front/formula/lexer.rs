@@ -8,14 +8,14 @@ use crate::symbolic::Rational;
 
 /// A token and its place in the file.
 #[derive(Clone, Debug)]
-pub(super) struct Token {
-    pub(super) kind: Kind,
-    pub(super) span: Span,
+pub(crate) struct Token {
+    pub(crate) kind: Kind,
+    pub(crate) span: Span,
 }
 
 /// The kinds of tokens.
 #[derive(Clone, Debug, PartialEq)]
-pub(super) enum Kind {
+pub(crate) enum Kind {
     Number(Rational),
     Name(String),
     /// `+ - * / ^ ( ) , [ ] < <= > >=`
@@ -31,7 +31,7 @@ const SIGNS: [&str; 14] = [
 ///
 /// # Errors
 /// One diagnostic a bad character or number, at most [`MAX_ERRORS`].
-pub(super) fn tokens(text: &MappedText) -> Result<Vec<Token>, Vec<Diagnostic>> {
+pub(crate) fn tokens(text: &MappedText) -> Result<Vec<Token>, Vec<Diagnostic>> {
     let mut lexer = Lexer {
         text,
         at: 0,

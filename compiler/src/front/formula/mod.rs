@@ -17,7 +17,7 @@ mod unexpected;
 pub use ast::{Ast, AstKind, Factor, Term};
 pub(crate) use functions::kink_at;
 pub use interval::{IntervalAst, IntervalEnd, parse_interval};
-pub(crate) use lexer::is_name;
+pub(crate) use lexer::{Kind as TokenKind, Token, is_name, tokens};
 pub use lower::{Names, lower, parse_in_pool};
 pub use number::{NumberError, decimal};
 pub use parser::{MAX_DEPTH, parse, parse_inequality};

@@ -16,7 +16,7 @@ pub(in crate::front) const FILE: &[&str] = &[
 pub(in crate::front) const MODEL: &[&str] =
     &["name", "title", "about", "time_unit", "calculus", "drivers"];
 /// A parameter.
-pub(in crate::front) const PARAMETER: &[&str] = &["value", "unit", "about", "range"];
+pub(in crate::front) const PARAMETER: &[&str] = &["value", "unit", "range", "about"];
 /// `[states.X]`
 pub(in crate::front) const STATE: &[&str] = &[
     "about",
@@ -32,7 +32,7 @@ pub(in crate::front) const STATE: &[&str] = &[
 /// `at_edge = { ... }`
 pub(in crate::front) const EDGES: &[&str] = &["lower", "upper"];
 /// `[derived.X]` and `[readouts.X]`
-pub(in crate::front) const NAMED: &[&str] = &["formula", "about", "unit"];
+pub(in crate::front) const NAMED: &[&str] = &["formula", "unit", "about"];
 /// A claim; the last is the claimed value.
 pub(in crate::front) const CLAIM: &[&str] = &[
     "drift_of",
