@@ -17,7 +17,7 @@ const SETS: u64 = 6;
 
 /// Constructs the built and the expanded simulator and the interpreter from the same values and compares
 /// them.
-pub fn model<B: Simulator, E: Simulator>(
+pub(crate) fn model<B: Simulator, E: Simulator>(
     path: &str,
     built: impl Fn(&Values) -> Result<B, ParameterError>,
     expanded: impl Fn(&Values) -> Result<E, ParameterError>,
