@@ -11,7 +11,7 @@ use crate::symbolic::Rational;
 pub enum NumberError {
     /// Not of the form `12.5e-3`.
     Malformed,
-    /// More than [`MAX_DIGITS`] digits.
+    /// More than `MAX_DIGITS` digits.
     TooLong,
     /// Its size does not fit a double precision number.
     OutOfRange,
