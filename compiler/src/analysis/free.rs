@@ -23,10 +23,11 @@ pub enum Freedom {
 /// vanish on one side of the kink only.
 pub fn free_of(pool: &Pool, e: Expr, symbols: &[Symbol]) -> Freedom {
     let simple = pool.simplify(e);
+    let present = pool.symbols_of(simple);
     let mentioned: Vec<Symbol> = symbols
         .iter()
         .copied()
-        .filter(|&s| pool.depends_on(simple, s))
+        .filter(|s| !present.is_empty() && present.binary_search(s).is_ok())
         .collect();
     let Some(&first) = mentioned.first() else {
         return Freedom::Free(simple);

@@ -1,6 +1,7 @@
 //! The noise of a single state: constant in a coordinate, or why in none.
 
 use super::coordinate::Candidate;
+use super::dependence::mentioned;
 use super::free::{Freedom, free_of, kink_in};
 use crate::model::Model;
 use crate::symbolic::{Bound, Expr, Pool, Symbol};
@@ -14,9 +15,14 @@ pub(super) fn constant_noise(
     states: &[Symbol],
 ) -> Option<Vec<Expr>> {
     let slope = pool.derivative(coordinate.forward, state);
-    let constant = |&b: &Expr| match free_of(pool, pool.mul(b, slope), states) {
-        Freedom::Free(c) if kink_in(pool, b, states).is_none() => Some(c),
-        _ => None,
+    let constant = |&b: &Expr| {
+        if pool.is_zero_literal(b) {
+            return Some(b);
+        }
+        match free_of(pool, pool.mul(b, slope), states) {
+            Freedom::Free(c) if kink_in(pool, b, states).is_none() => Some(c),
+            _ => None,
+        }
     };
     noise.iter().map(constant).collect()
 }
@@ -30,17 +36,12 @@ pub(super) fn why_no_coordinate(model: &Model, state: usize, noise: &[Expr]) -> 
             pool.format(through.expr)
         );
     }
-    for (other, b) in model
-        .states
-        .iter()
-        .flat_map(|s| noise.iter().map(move |&b| (s, b)))
-    {
-        if other.symbol != declared.symbol && pool.depends_on(b, other.symbol) {
-            return format!(
-                "its noise depends on {}, so that no coordinate of {} alone makes it constant",
-                other.name, declared.name
-            );
-        }
+    let others = noise.iter().flat_map(|&b| mentioned(model, b));
+    if let Some(other) = others.filter(|&j| j != state).min() {
+        return format!(
+            "its noise depends on {}, so that no coordinate of {} alone makes it constant",
+            model.states[other].name, declared.name
+        );
     }
     let own = noise.iter().copied().find(|&b| !pool.is_zero_literal(b));
     if let Some(reason) = own.and_then(|b| beyond_domain(model, state, b)) {

@@ -176,10 +176,12 @@ impl<'a> Rule<'a> {
 
     fn diffusion(&self, driver: usize) -> Expr {
         let pool = self.pool();
+        let coefficient = |i: usize| self.system.processes[i].diffusion[driver];
         let terms = self
             .first
             .iter()
-            .map(|&(i, slope)| pool.mul(slope, self.system.processes[i].diffusion[driver]));
+            .filter(|&&(i, _)| !pool.is_zero_literal(coefficient(i)))
+            .map(|&(i, slope)| pool.mul(slope, coefficient(i)));
         pool.sum(terms.collect::<Vec<_>>())
     }
 

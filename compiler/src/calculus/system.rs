@@ -1,5 +1,7 @@
 //! A system of processes in some coordinates, on which the generator acts.
 
+use std::borrow::Cow;
+
 use super::{Dynamics, Process};
 use crate::model::Model;
 use crate::symbolic::{Expr, Pool, Symbol};
@@ -13,22 +15,22 @@ pub struct System<'a> {
     /// The coordinates' symbols.
     pub symbols: Vec<Symbol>,
     /// Their Ito processes, in these symbols, time and parameters.
-    pub processes: Vec<Process>,
+    pub processes: Cow<'a, [Process]>,
 }
 
 impl<'a> System<'a> {
     /// The model's states as they were declared.
-    pub fn of_states(model: &'a Model, states: &[Process]) -> Self {
+    pub fn of_states(model: &'a Model, states: &'a [Process]) -> Self {
         let symbols = model.states.iter().map(|s| s.symbol).collect();
         Self {
             model,
             symbols,
-            processes: states.to_vec(),
+            processes: Cow::Borrowed(states),
         }
     }
 
     /// The model's states with their Ito dynamics.
-    pub fn of(model: &'a Model, dynamics: &Dynamics) -> Self {
+    pub fn of(model: &'a Model, dynamics: &'a Dynamics) -> Self {
         Self::of_states(model, &dynamics.states)
     }
 

@@ -7,6 +7,7 @@ use super::load::{Loaded, load};
 use super::{Failure, Outcome, Status, output};
 use crate::analysis::claims::Verdict;
 use crate::diagnostic::{self, Code, Diagnostic, Severity, explain, human};
+use crate::pipeline::Compiled;
 use crate::source::SourceFile;
 
 /// Checks the files, or explains a code.
@@ -87,16 +88,40 @@ fn summary(file: &Loaded) -> String {
                 ));
             }
         }
-        for group in &compiled.plan.groups {
-            let names: Vec<&str> = group
-                .states
-                .iter()
-                .map(|&s| compiled.model.states[s].name.as_str())
-                .collect();
-            parts.push(format!("{} by {}", names.join(", "), group.scheme.name()));
-        }
+        parts.extend(schemes(compiled));
     }
     format!("{}: {}\n", file.source.path(), parts.join("; "))
+}
+
+/// The states by the scheme that steps them, in the order in which the schemes first appear.
+fn schemes(compiled: &Compiled) -> Vec<String> {
+    let mut found: Vec<(&str, Vec<&str>)> = Vec::new();
+    for group in &compiled.plan.groups {
+        let scheme = group.scheme.name();
+        let names = group
+            .states
+            .iter()
+            .map(|&s| compiled.model.states[s].name.as_str());
+        match found.iter_mut().find(|(known, _)| *known == scheme) {
+            Some((_, all)) => all.extend(names),
+            None => found.push((scheme, names.collect())),
+        }
+    }
+    found
+        .iter()
+        .map(|(scheme, names)| format!("{} by {scheme}", shortened(names)))
+        .collect()
+}
+
+/// The names, of long lists the first few.
+fn shortened(names: &[&str]) -> String {
+    const SHOWN: usize = 3;
+    const WHOLE: usize = 8;
+    if names.len() <= WHOLE {
+        return names.join(", ");
+    }
+    let shown = names[..SHOWN].join(", ");
+    format!("{shown} and {} more", names.len() - SHOWN)
 }
 
 fn plural(count: usize, noun: &str) -> String {

@@ -75,8 +75,10 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
 /// Tells the algebra which values the coordinates take. A projected state's stored value may take any.
 fn announce_ranges(model: &Model, coordinates: &[Coordinate]) {
     let moved = |c: &&Coordinate| c.forward != model.pool.var(model.states[c.state].symbol);
-    for coordinate in coordinates.iter().filter(moved) {
-        let image = edges::image(model, coordinate.state, coordinate.forward);
-        model.pool.set_range(coordinate.symbol, image);
-    }
+    let images: Vec<_> = coordinates
+        .iter()
+        .filter(moved)
+        .map(|c| (c.symbol, edges::image(model, c.state, c.forward)))
+        .collect();
+    model.pool.set_ranges(images);
 }

@@ -39,6 +39,12 @@ pub(super) fn why(
     reasons.push(main_reason(context, choice, scheme));
     reasons.extend(states.iter().flat_map(|&i| ends(context, i)));
     reasons.extend(regularity(context, choice, method));
+    if let Some(budget) = model.pool.exceeded_budget() {
+        reasons.push(format!(
+            "The algebra's budget of {budget} term operations was exceeded: large products were kept as they \
+             stand, so that an exact law or a better scheme may have been missed."
+        ));
+    }
     reasons
 }
 

@@ -34,18 +34,18 @@ impl Pool {
     /// The value at 256 bits; none where [`Pool::eval_f64`] would have none, or where the result is
     /// out of all proportion.
     pub fn eval_big(&self, e: Expr, values: &BTreeMap<Symbol, Big>) -> Option<Big> {
-        self.eval_precise(e, values, PRECISION)
+        self.eval_precise(&[e], values, PRECISION)?.pop()
     }
 
     /// The value with every operation carried out at the given number of bits.
     pub(super) fn eval_precise(
         &self,
-        e: Expr,
+        formulas: &[Expr],
         values: &BTreeMap<Symbol, Big>,
         precision: usize,
-    ) -> Option<Big> {
+    ) -> Option<Vec<Big>> {
         let mut done: HashMap<Expr, Big> = HashMap::new();
-        for part in self.postorder(e) {
+        for part in self.postorder_of(formulas, |_| true) {
             let value = match &*self.node(part) {
                 Node::Number(value) => big::from_rational(value, precision),
                 Node::Pi => Big::pi(precision),
@@ -66,7 +66,7 @@ impl Pool {
             };
             done.insert(part, value.with_precision(precision).value());
         }
-        done.remove(&e)
+        formulas.iter().map(|e| done.get(e).cloned()).collect()
     }
 }
 

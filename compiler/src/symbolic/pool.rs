@@ -5,6 +5,7 @@ use std::collections::HashMap;
 use std::rc::Rc;
 
 use super::facts::Interval;
+use super::function::Function;
 use super::node::{Expr, Node, Rational, Symbol, SymbolKind};
 use super::normal::{Fraction, Mode, Rule};
 
@@ -38,7 +39,15 @@ pub(super) struct Entry {
     pub(super) degree: f64,
     /// How deep it nests; 0 without operands.
     pub(super) depth: u32,
+    /// Whether a function occurs in it that is not smooth.
+    pub(super) kinked: bool,
+    /// Whether a function other than exponentials and logarithms occurs in it.
+    pub(super) functional: bool,
 }
+
+/// Term operations that all normal forms of one model may take; afterwards only small products are
+/// multiplied out. A model with thousands of ordinary formulas stays far below.
+const ALGEBRA_BUDGET: u64 = 30_000_000;
 
 #[derive(Default)]
 pub(super) struct Inner {
@@ -50,6 +59,9 @@ pub(super) struct Inner {
     pub(super) normals: HashMap<(Expr, Mode), Rc<Fraction>>,
     pub(super) rules: HashMap<(Expr, Mode), Rc<Rule>>,
     pub(super) simplified: HashMap<Expr, Expr>,
+    pub(super) weights: HashMap<Expr, u64>,
+    /// Term operations that normal forms have taken so far, and whether a product was refused for it.
+    algebra: (u64, bool),
     pub(super) signs: HashMap<Expr, (super::Sign, usize)>,
     pub(super) derivatives: HashMap<(Expr, Symbol), Expr>,
 }
@@ -94,11 +106,24 @@ impl Pool {
     /// States where the values of a symbol lie. Signs, and the points at which formulas are compared,
     /// follow from it.
     pub fn set_range(&self, symbol: Symbol, range: Interval) {
+        self.set_ranges([(symbol, range)]);
+    }
+
+    /// As [`Pool::set_range`] for several symbols. What was worked out under other ranges is forgotten,
+    /// once for all of them.
+    pub fn set_ranges(&self, ranges: impl IntoIterator<Item = (Symbol, Interval)>) {
         let mut inner = self.inner.borrow_mut();
-        inner.symbols[symbol.0 as usize].range = range;
-        inner.signs.clear();
-        inner.normals.clear();
-        inner.simplified.clear();
+        let mut changed = false;
+        for (symbol, range) in ranges {
+            let known = &mut inner.symbols[symbol.0 as usize].range;
+            changed |= *known != range;
+            *known = range;
+        }
+        if changed {
+            inner.signs.clear();
+            inner.normals.clear();
+            inner.simplified.clear();
+        }
     }
 
     /// Where the values of a symbol lie; the whole line unless stated.
@@ -164,21 +189,58 @@ impl Pool {
 
     /// The value, if the formula is a number.
     pub fn as_number(&self, e: Expr) -> Option<Rational> {
+        self.number_is(e, Rational::clone)
+    }
+
+    /// Something about the value, if the formula is a number.
+    fn number_is<T>(&self, e: Expr, ask: impl Fn(&Rational) -> T) -> Option<T> {
         match &*self.inner.borrow().entries[e.0 as usize].node {
-            Node::Number(value) => Some(value.clone()),
+            Node::Number(value) => Some(ask(value)),
             _ => None,
         }
+    }
+
+    /// Takes term operations from the budget of the model's algebra; false when it cannot give that
+    /// many any more. Small steps are always granted, so that every formula keeps some normal form.
+    pub(super) fn may_spend(&self, operations: u64) -> bool {
+        const SMALL: u64 = 500;
+        let algebra = &mut self.inner.borrow_mut().algebra;
+        let granted = operations <= SMALL || algebra.0.saturating_add(operations) <= ALGEBRA_BUDGET;
+        if granted {
+            algebra.0 = algebra.0.saturating_add(operations);
+        } else {
+            algebra.1 = true;
+        }
+        granted
+    }
+
+    /// The budget of the model's algebra, in term operations, once something has been refused for it:
+    /// answers may have become *cannot tell* then.
+    pub fn exceeded_budget(&self) -> Option<u64> {
+        self.inner.borrow().algebra.1.then_some(ALGEBRA_BUDGET)
+    }
+
+    /// Term operations that the normal forms of this pool have taken so far: a measure of work that is
+    /// the same on every machine.
+    pub fn operations(&self) -> u64 {
+        self.inner.borrow().algebra.0
+    }
+
+    /// The number of distinct formulas in the pool: a measure of work that is the same on every
+    /// machine.
+    pub fn node_count(&self) -> usize {
+        self.inner.borrow().entries.len()
     }
 
     /// Whether the formula is the number 0. A formula that equals 0 by algebra needs
     /// [`Pool::is_zero`].
     pub fn is_zero_literal(&self, e: Expr) -> bool {
-        self.as_number(e).is_some_and(|n| n.is_zero())
+        self.number_is(e, Rational::is_zero) == Some(true)
     }
 
     /// Whether the formula is the number 1.
     pub fn is_one_literal(&self, e: Expr) -> bool {
-        self.as_number(e).is_some_and(|n| n.is_one())
+        self.number_is(e, Rational::is_one) == Some(true)
     }
 
     /// The handle of a node whose operands are already in the order the constructors give them.
@@ -188,6 +250,7 @@ impl Pool {
             return e;
         }
         let (rank, degree, depth) = inner.measure(&node);
+        let (kinked, functional) = inner.functions(&node);
         let e =
             Expr(u32::try_from(inner.entries.len()).expect("fewer than 2^32 formulas in a model"));
         let node = Rc::new(node);
@@ -196,6 +259,8 @@ impl Pool {
             rank,
             degree,
             depth,
+            kinked,
+            functional,
         });
         inner.ids.insert(node, e);
         e
@@ -205,6 +270,19 @@ impl Pool {
 impl Inner {
     pub(super) fn entry(&self, e: Expr) -> &Entry {
         &self.entries[e.0 as usize]
+    }
+
+    /// Whether functions that are not smooth, and others than exponentials and logarithms, occur.
+    fn functions(&self, node: &Node) -> (bool, bool) {
+        let (mut kinked, mut functional) = match node {
+            Node::Call(f, _) => (!f.is_smooth(), !matches!(f, Function::Exp | Function::Log)),
+            _ => (false, false),
+        };
+        node.for_each_child(|child| {
+            kinked |= self.entry(child).kinked;
+            functional |= self.entry(child).functional;
+        });
+        (kinked, functional)
     }
 
     /// Rank, degree and depth of a node from those of its operands.

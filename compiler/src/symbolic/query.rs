@@ -16,8 +16,20 @@ impl Pool {
     /// As [`Pool::postorder`], but not looking into parts for which `enter` is false (nor listing
     /// them).
     pub(super) fn postorder_where(&self, e: Expr, enter: impl Fn(Expr) -> bool) -> Vec<Expr> {
+        if !enter(e) {
+            return Vec::new();
+        }
+        self.postorder_of(&[e], enter)
+    }
+
+    /// As [`Pool::postorder_where`], for several formulas at once.
+    pub(super) fn postorder_of(
+        &self,
+        formulas: &[Expr],
+        enter: impl Fn(Expr) -> bool,
+    ) -> Vec<Expr> {
         let mut seen = HashSet::new();
-        let mut pending = vec![e];
+        let mut pending = formulas.to_vec();
         while let Some(next) = pending.pop() {
             if enter(next) && seen.insert(next) {
                 self.node(next).for_each_child(|child| pending.push(child));
@@ -36,6 +48,9 @@ impl Pool {
     /// The symbols in a formula, cached.
     pub(super) fn symbol_set(&self, e: Expr) -> Rc<[Symbol]> {
         let known = |part: Expr| self.inner.borrow().symbols_of.get(&part).cloned();
+        if let Some(symbols) = known(e) {
+            return symbols;
+        }
         for part in self.postorder_where(e, |part| known(part).is_none()) {
             let node = self.node(part);
             let symbols: Rc<[Symbol]> = if let Node::Symbol(symbol) = &*node {
@@ -64,6 +79,9 @@ impl Pool {
 
     /// A function in the formula that is not twice differentiable, if there is one.
     pub fn has_kink(&self, e: Expr) -> Option<Function> {
+        if !self.inner.borrow().entry(e).kinked {
+            return None;
+        }
         self.postorder(e)
             .into_iter()
             .find_map(|part| match &*self.node(part) {

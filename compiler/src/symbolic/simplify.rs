@@ -1,6 +1,5 @@
 //! An equal formula in a shape a person would write.
 
-use super::function::Function;
 use super::node::{Expr, Node, Rational};
 use super::normal::Mode;
 use super::pool::Pool;
@@ -20,22 +19,28 @@ impl Pool {
     /// assert_eq!(pool.format(pool.simplify(drift)), "mu - sigma^2/2");
     /// ```
     pub fn simplify(&self, e: Expr) -> Expr {
-        let known = self.inner.borrow().simplified.get(&e).copied();
-        if let Some(known) = known {
+        if let Some(known) = self.known_simple(e) {
             return known;
         }
-        let best = self
-            .constant_value(e)
-            .unwrap_or_else(|| self.lightest_shape(e));
-        self.inner.borrow_mut().simplified.insert(e, best);
-        best
+        // Operands first, so that deep formulas do not nest calls.
+        for part in self.postorder_where(e, |part| self.known_simple(part).is_none()) {
+            if self.known_simple(part).is_none() {
+                let best = self
+                    .constant_value(part)
+                    .unwrap_or_else(|| self.lightest_shape(part));
+                self.inner.borrow_mut().simplified.insert(part, best);
+            }
+        }
+        self.known_simple(e).unwrap_or(e)
+    }
+
+    fn known_simple(&self, e: Expr) -> Option<Expr> {
+        self.inner.borrow().simplified.get(&e).copied()
     }
 
     /// The number a formula with functions in it is by algebra, if it is one.
     fn constant_value(&self, e: Expr) -> Option<Expr> {
-        let plain = |f: Function| matches!(f, Function::Exp | Function::Log);
-        let call = |part: &Expr| matches!(&*self.node(*part), Node::Call(f, _) if !plain(*f));
-        if !self.postorder(e).iter().any(call) {
+        if !self.inner.borrow().entry(e).functional {
             return None;
         }
         Some(self.number(self.normal(e, Mode::Proof).as_constant()?))
@@ -44,7 +49,7 @@ impl Pool {
     fn lightest_shape(&self, e: Expr) -> Expr {
         let parts = self.simplify_parts(e);
         let mut best = (self.weight(parts), parts);
-        for shape in self.shapes(parts) {
+        for shape in self.shapes(parts, best.0) {
             // Of two equally light shapes the author's own stays.
             let shape = self.simplify_arguments(shape);
             let weight = self.weight(shape);
@@ -82,11 +87,11 @@ impl Pool {
         }
     }
 
-    /// How much there is to read: names count two, whole numbers and operators one.
+    /// How much there is to read: names count two, whole numbers and operators one. Remembered.
     fn weight(&self, e: Expr) -> u64 {
-        let mut weights = std::collections::HashMap::new();
-        for part in self.postorder(e) {
-            let of = |child: &Expr| -> u64 { weights[child] };
+        let known = |part: Expr| self.inner.borrow().weights.get(&part).copied();
+        for part in self.postorder_where(e, |part| known(part).is_none()) {
+            let of = |child: &Expr| known(*child).unwrap_or(0);
             let sum = |items: &[Expr]| {
                 items
                     .iter()
@@ -107,9 +112,9 @@ impl Pool {
                 }
                 Node::Call(_, items) => sum(items).saturating_add(2),
             };
-            weights.insert(part, weight);
+            self.inner.borrow_mut().weights.insert(part, weight);
         }
-        weights[&e]
+        known(e).unwrap_or(0)
     }
 
     /// A sign weighs less than a number, but before a sum more than inside it.

@@ -80,19 +80,14 @@ impl Pool {
             let Some(point) = sampler.point(&symbols) else {
                 continue;
             };
-            let Some(rough) = self.eval_precise(difference, &point, PRECISION) else {
+            let Some(roughly) = self.eval_precise(&[difference, a, b], &point, PRECISION) else {
                 continue;
             };
-            let Some(fine) = self.eval_precise(difference, &point, PRECISION + 128) else {
+            let Some(finely) = self.eval_precise(&[difference], &point, PRECISION + 128) else {
                 continue;
             };
-            let sides = (
-                self.eval_precise(a, &point, PRECISION),
-                self.eval_precise(b, &point, PRECISION),
-            );
-            let (Some(left), Some(right)) = sides else {
-                continue;
-            };
+            let [rough, left, right] = roughly.try_into().expect("one value a formula");
+            let [fine] = finely.try_into().expect("one value a formula");
             let size = fine.clone().abs();
             let error = (rough - fine).abs();
             let scale = left.clone().abs() + right.clone().abs();

@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 
 use super::{Row, Rows};
 use crate::analysis::coordinate::{Candidate, candidates};
-use crate::analysis::dependence::deterministic;
+use crate::analysis::dependence::{deterministic, mentioned};
 use crate::analysis::noise::{constant_noise, why_no_coordinate};
 use crate::calculus::{Dynamics, Process, expand};
 use crate::model::Model;
@@ -136,15 +136,11 @@ fn options(
     let declared = &model.states[state];
     let noise = &dynamics.states[state].diffusion;
     let pool = &model.pool;
-    let others: Vec<Symbol> = symbols
-        .iter()
-        .copied()
-        .filter(|&s| s != declared.symbol)
-        .collect();
+    let of_itself = |b: Expr| mentioned(model, b).into_iter().all(|j| j == state);
     let own = noise
         .iter()
         .copied()
-        .find(|&b| !pool.is_zero_literal(b) && !others.iter().any(|&s| pool.depends_on(b, s)));
+        .find(|&b| !pool.is_zero_literal(b) && of_itself(b));
     let mut found = candidates(model, declared, own);
     if calm {
         // Nothing random reaches it, so it need not live on the whole line: itself first.

@@ -52,7 +52,7 @@ pub(super) struct Chart<'a> {
 
 impl<'a> Chart<'a> {
     /// The states with some of them replaced.
-    pub(super) fn new(model: &'a Model, states: &[Process], changes: &[Change]) -> Self {
+    pub(super) fn new(model: &'a Model, states: &'a [Process], changes: &[Change]) -> Self {
         let pool = &model.pool;
         let mut system = System::of_states(model, states);
         let raw = system.clone();
@@ -64,7 +64,7 @@ impl<'a> Chart<'a> {
         for change in changes {
             let expansion = raw.expand(change.forward);
             system.symbols[change.state] = change.symbol;
-            system.processes[change.state] = expansion.process();
+            system.processes.to_mut()[change.state] = expansion.process();
             start.insert(change.symbol, pool.substitute(change.forward, &initial));
             inverse.insert(model.states[change.state].symbol, change.inverse);
         }

@@ -71,7 +71,7 @@ fn shifted<'a>(system: &System<'a>, closure: &[usize], slopes: &[Expr]) -> Syste
     for &i in closure {
         let gain = crate::calculus::bracket(system.model, &system.processes[i].diffusion, slopes);
         let drift = pool.add(system.processes[i].drift, gain);
-        moved.processes[i].drift = pool.expand(pool.simplify(drift));
+        moved.processes.to_mut()[i].drift = pool.expand(pool.simplify(drift));
     }
     moved
 }

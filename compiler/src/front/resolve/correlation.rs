@@ -1,5 +1,7 @@
 //! The correlation of the drivers.
 
+use std::collections::HashMap;
+
 use super::super::raw::{Name, RawCorrelation, RawModel};
 use super::super::suggest::did_you_mean;
 use super::Resolver;
@@ -17,6 +19,25 @@ const SLACK: f64 = 1e-10;
 /// Two drivers and the formula of their correlation.
 type DeclaredPair = (usize, usize, Formula);
 
+/// Where drivers, and pairs that are declared already, stand.
+struct Places<'a> {
+    drivers: HashMap<&'a str, usize>,
+    pairs: HashMap<(usize, usize), usize>,
+}
+
+impl<'a> Places<'a> {
+    fn new(raw: &'a RawModel) -> Self {
+        let mut drivers = HashMap::new();
+        for (i, driver) in raw.drivers.iter().enumerate() {
+            drivers.entry(driver.text.as_str()).or_insert(i);
+        }
+        Self {
+            drivers,
+            pairs: HashMap::new(),
+        }
+    }
+}
+
 impl Resolver<'_> {
     /// The matrix and the declared pairs.
     pub(super) fn correlation(&mut self, raw: &RawModel) -> (Vec<Vec<Expr>>, Vec<DeclaredPair>) {
@@ -26,10 +47,13 @@ impl Resolver<'_> {
             .map(|i| (0..size).map(|j| if i == j { one } else { zero }).collect())
             .collect();
         let mut declared: Vec<DeclaredPair> = Vec::new();
+        let mut places = Places::new(raw);
         for correlation in &raw.correlations {
-            let Some((i, j)) = self.pair(raw, correlation, &declared) else {
+            let earlier = |place: usize| declared[place].2.span;
+            let Some((i, j)) = self.pair(raw, correlation, &places, earlier) else {
                 continue;
             };
+            places.pairs.insert((i, j), declared.len());
             let formula =
                 self.scope
                     .formula(&correlation.formula, Place::Correlation, self.diagnostics);
@@ -60,11 +84,15 @@ impl Resolver<'_> {
         &mut self,
         raw: &RawModel,
         correlation: &RawCorrelation,
-        declared: &[DeclaredPair],
+        places: &Places<'_>,
+        span_of: impl Fn(usize) -> Span,
     ) -> Option<(usize, usize)> {
         let [first, second] = &correlation.drivers;
-        let i = self.driver(&raw.drivers, first);
-        let j = self.driver(&raw.drivers, second);
+        let mut index = |name: &Name| {
+            let known = places.drivers.get(name.text.as_str()).copied();
+            known.or_else(|| self.driver(&raw.drivers, name))
+        };
+        let (i, j) = (index(first), index(second));
         let (i, j) = (i?, j?);
         if i == j {
             let message = format!("`{}` with itself has correlation 1", first.text);
@@ -73,15 +101,14 @@ impl Resolver<'_> {
                 .push(diagnostic.hint("remove the line, or name another driver"));
             return None;
         }
-        let earlier = declared.iter().find(|(a, b, _)| (*a, *b) == (j, i));
-        if let Some((_, _, formula)) = earlier {
+        if let Some(&earlier) = places.pairs.get(&(j, i)) {
             let message = format!(
                 "`{}` and `{}` are correlated twice",
                 first.text, second.text
             );
             self.diagnostics.push(
                 Diagnostic::error(Code::CorrelationPair, first.span.to(second.span), message)
-                    .label(formula.span, "first here")
+                    .label(span_of(earlier), "first here")
                     .hint("keep one of the two, the order of a pair does not matter"),
             );
             return None;

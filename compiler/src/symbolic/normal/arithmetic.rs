@@ -49,6 +49,9 @@ impl Normalizer<'_> {
 
     /// A product of polynomials, reduced.
     pub(super) fn poly_product(&self, a: &Poly, b: &Poly) -> Option<Poly> {
+        if !self.pool.may_spend(a.product_cost(b)) {
+            return None;
+        }
         self.reduce(a.raw_product(b)?)
     }
 
@@ -102,14 +105,15 @@ impl Normalizer<'_> {
         )
     }
 
-    /// A polynomial as number, monomial and a factor fit for a denominator; none for zero.
+    /// A polynomial as number, monomial and a factor fit for a denominator; none for zero, and
+    /// where the common denominator of its numbers is over budget.
     pub(super) fn factored(&self, a: &Poly) -> Option<(Rational, Monomial, Poly)> {
         if a.is_zero() {
             return None;
         }
         let monomial = a.common_monomial();
         let bare = a.times_monomial(&monomial.inverse()?)?;
-        let mut coefficient = bare.positive_content();
+        let mut coefficient = bare.positive_content()?;
         if bare.leading_coefficient() < Rational::ZERO {
             coefficient = -coefficient;
         }

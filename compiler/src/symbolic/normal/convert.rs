@@ -61,7 +61,7 @@ impl Variables {
 
     pub(super) fn convert(&self, poly: &Poly) -> Option<Converted> {
         let monomial = poly.common_monomial();
-        let number = poly.positive_content();
+        let number = poly.positive_content()?;
         let inverse = monomial.inverse()?;
         let mut whole = IntegerPoly::default();
         for (m, coefficient) in &poly.0 {

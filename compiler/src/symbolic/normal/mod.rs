@@ -69,13 +69,14 @@ impl Pool {
         Normalizer { pool: self, mode }.normal(e)
     }
 
-    /// Equal formulas in shapes a person might write, read off the normal form that keeps functions.
-    pub(super) fn shapes(&self, e: Expr) -> Vec<Expr> {
+    /// Equal formulas in shapes a person might write, read off the normal form that keeps functions;
+    /// none where all must weigh more than `limit`.
+    pub(super) fn shapes(&self, e: Expr, limit: u64) -> Vec<Expr> {
         let normalizer = Normalizer {
             pool: self,
             mode: Mode::Light,
         };
-        normalizer.shapes(&normalizer.normal(e))
+        normalizer.shapes(&normalizer.normal(e), limit)
     }
 
     /// The coefficients of a polynomial in some symbols, by exponents in the order of `symbols`; none

@@ -2,7 +2,7 @@
 
 use std::collections::BTreeMap;
 
-use dashu_base::{Gcd, UnsignedAbs};
+use dashu_base::{BitTest, Gcd, UnsignedAbs};
 use dashu_int::{IBig, UBig};
 
 use super::super::node::{Expr, Rational};
@@ -10,6 +10,10 @@ use super::exponent::Exponent;
 
 /// A product of two polynomials may touch this many pairs of terms.
 const MAX_PAIRS: usize = 60_000;
+
+/// The common denominator of a polynomial may have this many bits: a thousand terms over different
+/// denominators of the usual size.
+const MAX_DENOMINATOR_BITS: usize = 16_384;
 
 /// A product of kernels: each with its exponent, which is not zero, sorted by kernel.
 #[derive(Clone, PartialEq, Eq, Hash, PartialOrd, Ord, Debug, Default)]
@@ -226,8 +230,16 @@ impl Poly {
         Monomial(list.filter(|(_, e)| !e.is_zero()).collect())
     }
 
-    /// The positive number whose removal leaves coprime whole coefficients.
-    pub(super) fn positive_content(&self) -> Rational {
+    /// Term operations that a product with another polynomial takes: kernels that are read.
+    pub(super) fn product_cost(&self, other: &Poly) -> u64 {
+        let terms = |p: &Poly| p.0.len() as u64;
+        let kernels = |p: &Poly| p.0.keys().map(|m| m.0.len() as u64 + 1).sum::<u64>();
+        terms(self) * kernels(other) + terms(other) * kernels(self)
+    }
+
+    /// The positive number whose removal leaves coprime whole coefficients; none where their common
+    /// denominator is over budget.
+    pub(super) fn positive_content(&self) -> Option<Rational> {
         let mut numerator: Option<UBig> = None;
         let mut denominator = UBig::ONE;
         for coefficient in self.0.values() {
@@ -238,10 +250,13 @@ impl Poly {
             });
             let bottom = coefficient.denominator();
             denominator = &denominator / (&denominator).gcd(bottom) * bottom;
+            if denominator.bit_len() > MAX_DENOMINATOR_BITS {
+                return None;
+            }
         }
-        numerator.map_or(Rational::ONE, |top| {
+        Some(numerator.map_or(Rational::ONE, |top| {
             Rational::from_parts(IBig::from(top), denominator)
-        })
+        }))
     }
 
     /// The coefficient of the last monomial.

@@ -24,15 +24,18 @@ enum Preference {
 
 impl Normalizer<'_> {
     /// Equal formulas in different shapes: expanded, with a common monomial taken out, in factors,
-    /// and with kernels taken out of groups of terms.
-    pub(in super::super) fn shapes(&self, fraction: &Fraction) -> Vec<Expr> {
+    /// and with kernels taken out of groups of terms. None where all must weigh more than `limit`.
+    pub(in super::super) fn shapes(&self, fraction: &Fraction, limit: u64) -> Vec<Expr> {
+        if fraction.numerator.0.len() > MAX_TERMS && least_weight(&fraction.numerator) > limit {
+            return Vec::new();
+        }
         let (numerator, below) = self.oriented(fraction);
         let mut shapes = vec![self.poly_formula(&numerator)];
         if numerator.0.len() > 1 {
             self.outside(&numerator, &mut shapes, &|poly| self.poly_formula(poly));
             if numerator.0.len() <= MAX_TERMS {
                 if !self.takes_out_decay(&numerator.common_monomial(), &numerator) {
-                    shapes.push(self.in_factors(&numerator));
+                    shapes.extend(self.in_factors(&numerator));
                 }
                 for preference in [Preference::States, Preference::Parameters] {
                     self.outside(&numerator, &mut shapes, &|poly| {
@@ -87,9 +90,9 @@ impl Normalizer<'_> {
 
     /// The polynomial as a product of powers of factors, as far as square-free decomposition and
     /// contents find them.
-    fn in_factors(&self, poly: &Poly) -> Expr {
+    fn in_factors(&self, poly: &Poly) -> Option<Expr> {
         let (negative, powers) = poly.squarefree();
-        let content = poly.positive_content();
+        let content = poly.positive_content()?;
         let mut number = if negative { -content } else { content };
         let mut factors = vec![self.monomial_formula(&poly.common_monomial())];
         for (factor, times) in powers {
@@ -120,8 +123,8 @@ impl Normalizer<'_> {
             *factor = self.pool.sum([self.pool.neg(*factor)]);
             number = -number;
         }
-        self.pool
-            .product(factors.into_iter().chain([self.pool.number(number)]))
+        let number = self.pool.number(number);
+        Some(self.pool.product(factors.into_iter().chain([number])))
     }
 
     /// Takes the kernel that occurs in most terms out of those, and goes on with both parts.
@@ -167,4 +170,11 @@ impl Normalizer<'_> {
             .max_by_key(|((kernel, _), count)| (preferred(*kernel), *count, Reverse(*kernel)));
         best.map(|(power, _)| power)
     }
+}
+
+/// What the terms of a sum weigh at the very least, with a common monomial taken out.
+fn least_weight(poly: &Poly) -> u64 {
+    let common = poly.common_monomial().0.len();
+    let term = |m: &Monomial| m.0.len().saturating_sub(common).max(1) as u64;
+    poly.0.keys().map(term).sum()
 }
