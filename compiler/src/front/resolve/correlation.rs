@@ -57,7 +57,7 @@ impl Resolver<'_> {
             let formula =
                 self.scope
                     .formula(&correlation.formula, Place::Correlation, self.diagnostics);
-            let formula = formula.unwrap_or_else(|| self.placeholder());
+            let formula = formula.unwrap_or_else(|| self.stand_in());
             self.check_bounds(&formula);
             (matrix[i][j], matrix[j][i]) = (formula.expr, formula.expr);
             declared.push((i, j, formula));

@@ -110,7 +110,7 @@ impl Resolver<'_> {
     }
 
     /// Stands where a formula was at fault.
-    fn placeholder(&self) -> Formula {
+    fn stand_in(&self) -> Formula {
         Formula {
             expr: self.pool.zero(),
             text: String::new(),

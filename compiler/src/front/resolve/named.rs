@@ -54,7 +54,7 @@ impl Resolver<'_> {
         }
         let named = raw.iter().zip(formulas).map(|(raw, formula)| Named {
             name: raw.name.text.clone(),
-            formula: formula.unwrap_or_else(|| self.placeholder()),
+            formula: formula.unwrap_or_else(|| self.stand_in()),
             about: raw.about.clone(),
             unit: raw.unit.as_ref().map(|unit| unit.text.clone()),
             span: raw.name.span,
