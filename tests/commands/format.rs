@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use driftwright::front::layout::format;
 use driftwright::source::SourceFile;
 use proptest::prelude::*;
+use proptest::test_runner::RngSeed;
 
 use crate::harness::{Folder, models, root, run};
 
@@ -101,7 +102,12 @@ fn disarranged(text: &str, order: &[u8], spaces: &[u8], windows: bool) -> String
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig::with_cases(40))]
+    #![proptest_config(ProptestConfig {
+        cases: 40,
+        rng_seed: RngSeed::Fixed(1),
+        failure_persistence: None,
+        ..ProptestConfig::default()
+    })]
 
     #[test]
     fn one_layout_comes_of_many(

@@ -6,7 +6,11 @@ use dashu_int::{IBig, UBig};
 use super::node::{Expr, Node, Rational};
 use super::pool::Pool;
 
-/// Numbers are folded up to this many bits; a larger power stays as it is written.
+/// A power of two numbers is folded up to this many bits, about 300 digits above or below the bar: what
+/// does not fit a double precision number is easier to read as the power it was written as.
+const MAX_FOLDED_BITS: usize = 1_000;
+
+/// Powers of numbers inside a normal form are worked out up to this many bits.
 const MAX_BITS: u64 = 20_000;
 
 impl Pool {
@@ -52,10 +56,9 @@ impl Pool {
             && c > Rational::ZERO
         {
             let root = self.numeric_power(&c, n);
-            if self.as_number(root).is_some() {
+            if let Some(root) = self.as_number(root) {
                 let rest = self.intern(Node::Power(self.without_coefficient(factors), exponent));
-                return self
-                    .finish_product(self.as_number(root).unwrap_or(Rational::ONE), vec![rest]);
+                return self.finish_product(root, vec![rest]);
             }
         }
         self.intern(Node::Power(base, exponent))
@@ -63,7 +66,14 @@ impl Pool {
 
     /// A power of two numbers, folded where the result is a number of reasonable size.
     fn numeric_power(&self, base: &Rational, exponent: &Rational) -> Expr {
-        exact_power(base, exponent).map_or_else(
+        let folded = exact_power(base, exponent).filter(|value| {
+            value
+                .numerator()
+                .bit_len()
+                .max(value.denominator().bit_len())
+                <= MAX_FOLDED_BITS
+        });
+        folded.map_or_else(
             || {
                 let (base, exponent) = (self.number(base.clone()), self.number(exponent.clone()));
                 self.intern(Node::Power(base, exponent))

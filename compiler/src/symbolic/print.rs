@@ -6,7 +6,7 @@ use std::collections::HashMap;
 use super::function::Function;
 use super::node::{Expr, Node, Rational};
 use super::pool::Pool;
-use super::print_number::{digits, splits};
+use super::print_number::{digits, parts, splits};
 
 /// How tightly a piece of text binds; a looser piece needs parentheses inside a tighter one.
 #[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
@@ -111,11 +111,11 @@ impl Pool {
                         value.clone()
                     };
                     if splits(&size) {
-                        let (top, bottom) = (size.numerator(), size.denominator());
+                        let (top, bottom) = parts(&size);
                         if !size.numerator().is_one() {
-                            above.push(top.to_string());
+                            above.push(top);
                         }
-                        below.push(bottom.to_string());
+                        below.push(bottom);
                     } else if !size.is_one() {
                         above.push(digits(&size).0);
                     }

@@ -1,5 +1,7 @@
 //! An equal formula in a shape a person would write.
 
+use dashu_base::BitTest;
+
 use super::node::{Expr, Node, Rational};
 use super::normal::Mode;
 use super::pool::Pool;
@@ -99,8 +101,8 @@ impl Pool {
                     .fold(items.len() as u64 - 1, u64::saturating_add)
             };
             let weight = match &*self.node(part) {
-                Node::Number(value) if value.is_int() => 1,
-                Node::Number(_) => 3,
+                Node::Number(value) if value.is_int() => 1 + length_weight(value),
+                Node::Number(value) => 3 + length_weight(value),
                 Node::Pi | Node::Symbol(_) => 2,
                 Node::Sum(items) => sum(items),
                 Node::Product(items) => sum(items).saturating_add_signed(self.sign_weight(items)),
@@ -127,4 +129,10 @@ impl Pool {
             _ => 0,
         }
     }
+}
+
+/// What a number weighs beyond one that is easily read: as many as its groups of 16 bits past 64.
+fn length_weight(value: &Rational) -> u64 {
+    let bits = value.numerator().bit_len() + value.denominator().bit_len();
+    (bits.saturating_sub(128) / 16) as u64
 }

@@ -55,6 +55,33 @@ fn printing_reads_as_written() {
     }
 }
 
+/// Beyond double precision there are no literals: a power stays one, other numbers are put together.
+#[test]
+fn numbers_too_long_for_a_literal_read_back() {
+    let p = super::pool();
+    let shown = |text: &str| p.format(super::parse(&p, text));
+    assert_eq!(shown("((11)^(-3))^((10)^(2))"), "(1/1331)^100");
+    assert_eq!(shown("x*11^300/13^300"), "11^300*x/13^300");
+    assert_eq!(shown("7*1e300*1e300"), "(7*1e300*1e300)");
+    for text in [
+        "((11)^(-3))^((10)^(2))",
+        "(11/13)^300",
+        "x/1e307/1e307",
+        "1e300*1e300*1e300*1e300*1e300*x",
+        "1e307*1e307 + 1/3",
+        "(1e307 + 7)*(1e307 + 3)*(1e307 + 9)*(1e307 + 11)/(1e307 + 1)",
+        "(1e300 + 0.05)*(1e300 + 3)",
+        "-1e300*1e300 - x",
+        "x^(1e300*1e300 + 1/2)",
+    ] {
+        let e = super::parse(&p, text);
+        for form in [e, p.simplify(e)] {
+            let printed = p.format(form);
+            assert_eq!(super::parse(&p, &printed), form, "{text} as {printed}");
+        }
+    }
+}
+
 #[test]
 fn derivative_of_a_long_sum_is_fast() {
     let p = Pool::new();
