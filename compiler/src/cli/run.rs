@@ -7,6 +7,7 @@ use driftwright_runtime::{ArithmeticClass, Grid, Run};
 
 use super::Failure;
 use super::args::RunArgs;
+use crate::front::{composed, did_you_mean};
 use crate::model::Model;
 use crate::report::number::{grouped, significant};
 use crate::scheme::Plan;
@@ -200,10 +201,11 @@ fn parameters(model: &Model, set: &[(String, f64)]) -> Result<BTreeMap<String, f
         }
     }
     for (name, value) in set {
-        if !model.parameters.iter().any(|p| p.name == *name) {
-            return Err(unknown(model, name));
+        let name = composed(name);
+        if !model.parameters.iter().any(|p| p.name == name) {
+            return Err(unknown(model, &name));
         }
-        values.insert(name.clone(), *value);
+        values.insert(name, *value);
     }
     let missing: Vec<&str> = model
         .parameters
@@ -232,13 +234,8 @@ fn parameters(model: &Model, set: &[(String, f64)]) -> Result<BTreeMap<String, f
 
 fn unknown(model: &Model, name: &str) -> Failure {
     let names = model.parameters.iter().map(|p| p.name.as_str());
-    let close = names
-        .clone()
-        .map(|candidate| (strsim::damerau_levenshtein(candidate, name), candidate))
-        .filter(|(distance, candidate)| *distance <= 1 + candidate.chars().count() / 4)
-        .min();
-    let hint = match close {
-        Some((_, candidate)) => format!("did you mean `{candidate}`?"),
+    let hint = match did_you_mean(name, names.clone()) {
+        Some(hint) => hint,
         None if model.parameters.is_empty() => "it has none".to_owned(),
         None => format!("it has {}", names.collect::<Vec<_>>().join(", ")),
     };

@@ -98,6 +98,11 @@ UnknownChoice "DW0108" "unknown choice"
 "The key takes one of a few words: `calculus` is \"ito\" or \"stratonovich\", `at_edge` is \"absorb\",
 \"reflect\" or \"as_equation\", `scheme` names a scheme, `law_of` claims name a law."
 
+LookAlike "DW0109" "names that look alike"
+"Two different names of the file look the same, such as the micro sign and the Greek mu, or a Latin and
+a Cyrillic a: a reader cannot tell which one a formula uses. Rename one, or use one character for both.
+Names that differ only in how their accents are composed are one name."
+
 FormulaSyntax "DW0201" "formula cannot be read"
 "The formula breaks off or something stands where it cannot. Formulas are made of + - * / ^,
 parentheses, numbers, names and function calls; products need a `*`."
@@ -176,6 +181,16 @@ UnusedParameter "DW0307" "parameter without use"
 UnusedDriver "DW0308" "driver without use"
 "No diffusion uses the Brownian motion. Remove it, or look for the term that is missing."
 
+AssumptionImplied "DW0309" "assumption that adds nothing"
+"The inequality follows from the ranges of the parameters, or from other assumptions: it rules nothing
+out. Remove it, or look for a slip in it or in the ranges. What is shown is proved: the inequality is a
+sum of positive multiples of the others, or of one sign on the ranges."
+
+AssumptionContradicted "DW0310" "assumption that can never hold"
+"The inequality contradicts the ranges of the parameters, or other assumptions: no values of the
+parameters satisfy them all, and whatever is proved under them would be empty. Look for a sign or a
+relation the wrong way round."
+
 BadEdge "DW0401" "behaviour at an end that is not closed"
 "`at_edge` says what a state does at a closed end of its domain. An open end is never reached, so
 there is nothing to say. Two closed ends may differ: { lower = \"...\", upper = \"...\" }."
@@ -197,6 +212,16 @@ OpenEndReached "DW0405" "open end that may be reached"
 not be decided: the derivation holds until then, and paths that get there are counted. Close the end
 and say what happens there with `at_edge`, or add the assumption that keeps the state away."
 
+InitialOnEdge "DW0406" "start on an end that is never left"
+"The state starts on a closed end of its domain and stays there for ever, because the end absorbs or
+because drift and diffusion both vanish there. Start it inside the domain, or mend the drift. A start
+on an end that the state leaves, by reflection or by its drift, is fine."
+
+ClosedEndCrossed "DW0407" "equation that leads across a closed end"
+"The domain includes its end, but the diffusion does not vanish there, or the drift points outward, and
+no `at_edge` stops the paths: they leave the domain and are counted as failures. Say \"absorb\" or
+\"reflect\", widen the domain, or mend the formula so that it keeps the state inside."
+
 MalformedClaim "DW0501" "claim cannot be read"
 "A claim has one of drift_of, diffusion_of, martingale, mean_of, variance_of, covariance_of or law_of,
 and, except martingale, the claimed value under `is`."
@@ -204,6 +229,10 @@ and, except martingale, the claimed value under `is`."
 ClaimRefuted "DW0502" "claim is wrong"
 "The claim contradicts what the compiler derived. Both sides, their difference and values of the
 parameters and states at which they differ are shown."
+
+EmptyClaim "DW0503" "claim that says nothing about the model"
+"What the claim is about holds no state, only t and parameters: the claim would be true whatever drifts
+and diffusions are. Name a state, or a quantity that depends on one."
 
 SchemeRefused "DW0601" "scheme cannot be used"
 "The scheme asked for does not fit the state: `exact` needs a known law, `milstein` needs noise that

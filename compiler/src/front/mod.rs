@@ -6,6 +6,7 @@
 pub mod formula;
 pub mod layout;
 mod load;
+mod names;
 mod raw;
 mod resolve;
 mod schema;
@@ -15,8 +16,12 @@ mod tree;
 mod units;
 
 pub use load::load;
+#[cfg(feature = "cli")]
+pub(crate) use names::composed;
 pub use resolve::{Place, read_formula};
 pub use schema::json_schema;
+#[cfg(feature = "cli")]
+pub(crate) use suggest::did_you_mean;
 
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Model;

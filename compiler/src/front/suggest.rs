@@ -1,20 +1,31 @@
 //! "Did you mean": the nearest of the names that exist.
 
-/// A hint that names the nearest of `known`, if one is near enough to be meant.
-pub(super) fn did_you_mean<'a>(
+use super::names::{appearance, code_points};
+
+/// A hint that names the nearest of `known`, if one is near enough to be meant. One that looks the same
+/// is told apart by its code points.
+pub(crate) fn did_you_mean<'a>(
     name: &str,
     known: impl IntoIterator<Item = &'a str>,
 ) -> Option<String> {
-    nearest(name, known).map(|best| format!("did you mean `{best}`?"))
+    let best = nearest(name, known)?;
+    if best != name && appearance(best) == appearance(name) {
+        let (best_points, points) = (code_points(best), code_points(name));
+        return Some(format!(
+            "`{best}` with {best_points} looks the same as this with {points}: use one character for both"
+        ));
+    }
+    Some(format!("did you mean `{best}`?"))
 }
 
-/// The nearest of `known`: a third of the letters may differ, one of a short name; case counts little.
+/// The nearest of `known`: a third of the letters may differ, one of a short name; case counts little,
+/// and letters that look alike are the same.
 pub(super) fn nearest<'a>(name: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
-    let folded = name.to_lowercase();
+    let folded = appearance(name).to_lowercase();
     let limit = (name.chars().count() / 3).max(1);
     let mut best: Option<(usize, &str)> = None;
     for candidate in known {
-        let other = candidate.to_lowercase();
+        let other = appearance(candidate).to_lowercase();
         let distance = strsim::damerau_levenshtein(&folded, &other);
         // Of a single letter only the case can be wrong: it is near to too many others.
         let near = distance <= limit && (distance == 0 || distance < folded.chars().count());
@@ -49,6 +60,8 @@ mod tests {
             ("rho", None),
             ("m", None),
             ("MU", Some("mu")),
+            ("\u{43c}u", Some("mu")),
+            ("k\u{430}ppa", Some("kappa")),
         ] {
             assert_eq!(nearest(name, known), expected, "{name}");
         }

@@ -6,6 +6,7 @@
 //! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
 mod approximate;
+mod closed_ends;
 mod edges;
 mod exact;
 mod noise;
@@ -33,6 +34,7 @@ pub use plan::{
 /// reached go to `diagnostics`; the plan is complete in any case.
 pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -> Plan {
     warn::coordinates(model, diagnostics);
+    closed_ends::warn(model, dynamics, diagnostics);
     let rows = linear::find(model, dynamics, &overrides::excluded(model));
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| step::step_coordinate(model, dynamics, i))

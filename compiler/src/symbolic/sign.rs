@@ -222,6 +222,8 @@ fn end_sign(at_end: Sign, end: Bound, strict: bool) -> Sign {
 fn power_sign(base: Sign, exponent: Sign, number: Option<&Rational>) -> Sign {
     let inverse = exponent == Sign::Negative;
     match number {
+        // A division by zero has no sign, and no limit either that both sides share.
+        _ if inverse && base == Sign::Zero => Sign::Unknown,
         Some(n) if n.is_int() => {
             let even = !n.numerator().bit(0);
             match base {

@@ -76,7 +76,7 @@ struct Court<'a> {
 }
 
 /// Judges every claim of a model, in the file's order. Each refuted one also becomes an error with
-/// both sides, the difference and a witness.
+/// both sides, the difference and a witness, each empty one a warning.
 pub fn judge(
     model: &Model,
     dynamics: &Dynamics,
@@ -92,9 +92,13 @@ pub fn judge(
     };
     let judged = model.claims.iter().map(|claim| {
         let result = court.judge(claim);
-        if result.verdict == Verdict::Refuted {
-            diagnostics.push(report::refutation(model, claim, &result));
-        }
+        let finding = match result.verdict {
+            Verdict::Refuted => Some(report::refutation(model, claim, &result)),
+            Verdict::Proved | Verdict::Open => report::says_nothing(model, claim),
+        };
+        finding
+            .into_iter()
+            .for_each(|finding| diagnostics.push(finding));
         result
     });
     judged.collect()

@@ -1,10 +1,10 @@
-//! The diagnostic for a refuted claim.
+//! The diagnostics for refuted claims and for claims that say nothing.
 
 use super::ClaimResult;
 use crate::diagnostic::{Code, Diagnostic};
-use crate::model::{Claim, ClaimKind, Model};
+use crate::model::{Claim, ClaimKind, Formula, Model};
 use crate::source::Span;
-use crate::symbolic::Witness;
+use crate::symbolic::{SymbolKind, Witness};
 
 /// An error at what is claimed, with both sides, the difference and a point where they differ.
 pub(super) fn refutation(model: &Model, claim: &Claim, result: &ClaimResult) -> Diagnostic {
@@ -26,6 +26,35 @@ pub(super) fn refutation(model: &Model, claim: &Claim, result: &ClaimResult) -> 
     match &result.witness {
         Some(witness) => diagnostic.note(describe(model, witness)),
         None => diagnostic,
+    }
+}
+
+/// A warning of a claim about a formula that no state enters: it holds whatever the model is.
+pub(super) fn says_nothing(model: &Model, claim: &Claim) -> Option<Diagnostic> {
+    let fixed = |f: &&Formula| {
+        let simple = model.pool.simplify(f.expr);
+        !model.pool.depends_on_kind(simple, SymbolKind::State)
+    };
+    let of = subjects(&claim.kind).into_iter().find(fixed)?;
+    let message = format!("claim `{}` says nothing about the model", claim.name);
+    Some(
+        Diagnostic::warning(Code::EmptyClaim, of.span, message)
+            .label(of.span, "no state enters this")
+            .note("it would hold whatever drifts and diffusions are")
+            .hint("name a state, or a quantity that depends on one"),
+    )
+}
+
+/// What a claim is about.
+fn subjects(kind: &ClaimKind) -> Vec<&Formula> {
+    match kind {
+        ClaimKind::DriftOf { of, .. }
+        | ClaimKind::DiffusionOf { of, .. }
+        | ClaimKind::Martingale { of }
+        | ClaimKind::MeanOf { of, .. }
+        | ClaimKind::VarianceOf { of, .. }
+        | ClaimKind::LawOf { of, .. } => vec![of],
+        ClaimKind::CovarianceOf { of, .. } => of.iter().collect(),
     }
 }
 

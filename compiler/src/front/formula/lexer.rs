@@ -1,7 +1,10 @@
 //! Characters to tokens.
 
+use unicode_normalization::char::is_combining_mark;
+
 use super::number::{NumberError, decimal};
 use crate::diagnostic::{Code, Diagnostic};
+use crate::front::names::composed;
 use crate::front::text::MappedText;
 use crate::source::Span;
 use crate::symbolic::Rational;
@@ -74,7 +77,7 @@ impl<'a> Lexer<'a> {
             self.number(rest);
         } else if is_letter(first) {
             let name = name_at(rest);
-            self.push(name.len(), Kind::Name(name.to_owned()));
+            self.push(name.len(), Kind::Name(composed(name)));
         } else if let Some(sign) = SIGNS.into_iter().find(|sign| rest.starts_with(sign)) {
             self.push(sign.len(), Kind::Sign(sign));
         } else {
@@ -193,13 +196,17 @@ fn is_letter(c: char) -> bool {
     c.is_alphabetic()
 }
 
-/// The longest name at the start of `rest`.
+fn is_part(c: char) -> bool {
+    is_letter(c) || c.is_ascii_digit() || c == '_'
+}
+
+/// The longest name at the start of `rest`, with accents that are yet to be composed.
 fn name_at(rest: &str) -> &str {
-    let part = |c: char| is_letter(c) || c.is_ascii_digit() || c == '_';
+    let part = |c: char| is_part(c) || is_combining_mark(c);
     &rest[..rest.find(|c| !part(c)).unwrap_or(rest.len())]
 }
 
-/// Whether the whole text is one name.
+/// Whether the whole text, composed, is one name.
 pub(crate) fn is_name(text: &str) -> bool {
-    text.starts_with(is_letter) && name_at(text).len() == text.len()
+    text.starts_with(is_letter) && text.chars().all(is_part)
 }

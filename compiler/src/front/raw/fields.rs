@@ -3,6 +3,7 @@
 use super::{Name, RawFormula};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front::formula::{self, IntervalAst, parse_interval};
+use crate::front::names::composed;
 use crate::front::suggest::{nearest, one_of};
 use crate::front::text::MappedText;
 use crate::front::tree::{Entry, Table, Value, ValueKind};
@@ -205,7 +206,7 @@ fn unknown_key(entry: &Entry, what: &str, known: &[&str]) -> Diagnostic {
 /// use it do not report it again. `reserved` names are refused where that is set.
 pub(super) fn declared(entry: &Entry, reserved: bool, diagnostics: &mut Diagnostics) -> Name {
     let name = Name {
-        text: entry.key.clone(),
+        text: composed(&entry.key),
         span: entry.key_span,
     };
     check(&name, reserved, diagnostics);

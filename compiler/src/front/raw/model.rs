@@ -3,6 +3,7 @@
 use super::fields::{Fields, check, choice, string};
 use super::{Name, RawModel, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
+use crate::front::names::composed;
 use crate::front::text::MappedText;
 use crate::front::tree::{Entry, ValueKind};
 use crate::model::Calculus;
@@ -94,7 +95,7 @@ fn drivers(entry: &Entry, diagnostics: &mut Diagnostics) -> Vec<Name> {
         .collect();
     let names = texts.into_iter().map(|text| {
         let name = Name {
-            text: text.text().to_owned(),
+            text: composed(text.text()),
             span: text.span(),
         };
         check(&name, true, diagnostics);

@@ -6,6 +6,7 @@ use super::fields::{Fields, as_table, declared, formula_of, keep, string};
 use super::{Name, RawAssumption, RawCorrelation, RawParameter, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front::formula::{self, NumberError, decimal};
+use crate::front::names::composed;
 use crate::front::tree::{Entry, Value, ValueKind};
 use crate::symbolic::Rational;
 
@@ -154,7 +155,7 @@ pub(super) fn correlations(root: &mut Fields<'_, '_>) -> Vec<RawCorrelation> {
 
 fn key_name(entry: &Entry) -> Name {
     Name {
-        text: entry.key.clone(),
+        text: composed(&entry.key),
         span: entry.key_span,
     }
 }

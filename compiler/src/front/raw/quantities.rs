@@ -3,6 +3,7 @@
 use super::fields::{Fields, as_table, choice, declared, formula_of, string};
 use super::{Name, PerDriver, RawEdge, RawNamed, RawState, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
+use crate::front::names::composed;
 use crate::front::tree::{Entry, Table, Value, ValueKind};
 use crate::model::AtEdge;
 use crate::model::SchemeName;
@@ -64,7 +65,7 @@ pub(super) fn per_driver(
     };
     let formulas = table.entries.iter().filter_map(|entry| {
         let name = Name {
-            text: entry.key.clone(),
+            text: composed(&entry.key),
             span: entry.key_span,
         };
         Some((name, formula_of(&entry.value, key, diagnostics)?))

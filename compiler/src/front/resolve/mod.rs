@@ -1,5 +1,6 @@
 //! Names to meanings: from the declarations to the typed model.
 
+mod assumptions;
 mod claims;
 mod coordinate;
 mod correlation;
@@ -19,8 +20,11 @@ pub(super) use order::{Definition, order};
 pub use place::Place;
 pub use single::read_formula;
 
-use super::raw::RawModel;
-use crate::diagnostic::Diagnostics;
+use std::collections::BTreeMap;
+
+use super::names::{appearance, code_points};
+use super::raw::{Name, RawModel};
+use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::{Calculus, Driver, Formula, Model};
 use crate::source::{SourceFile, Span};
 use crate::symbolic::Pool;
@@ -104,8 +108,30 @@ impl Resolver<'_> {
             .chain(readouts)
             .collect();
         all.sort_by_key(|(_, name)| name.span);
+        self.look_alikes(all.iter().map(|(_, name)| *name));
         for (kind, name) in all {
             self.scope.declare(kind, name, self.diagnostics);
+        }
+    }
+
+    /// Warns of different names that look the same.
+    fn look_alikes<'n>(&mut self, names: impl Iterator<Item = &'n Name>) {
+        let mut seen: BTreeMap<String, &Name> = BTreeMap::new();
+        for name in names {
+            let first = *seen.entry(appearance(&name.text)).or_insert(name);
+            if first.text != name.text {
+                let message = format!(
+                    "`{}` ({}) looks like another name of the file",
+                    name.text,
+                    code_points(&name.text)
+                );
+                let other = format!("a different name: {}", code_points(&first.text));
+                self.diagnostics.push(
+                    Diagnostic::warning(Code::LookAlike, name.span, message)
+                        .label(first.span, other)
+                        .hint("rename one of the two, or write both with the same characters"),
+                );
+            }
         }
     }
 

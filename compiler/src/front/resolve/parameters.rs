@@ -1,13 +1,12 @@
-//! Parameters and the assumptions between them.
+//! Parameters and their ranges.
 
-use super::super::raw::{RawAssumption, RawParameter};
+use super::super::raw::RawParameter;
 use super::Resolver;
 use super::intervals::{ends, show};
-use super::numbers::{Basis, short};
 use super::order::{Definition, order};
 use super::place::Place;
 use crate::diagnostic::{Code, Diagnostic};
-use crate::model::{Assumption, Parameter, Relation};
+use crate::model::Parameter;
 use crate::symbolic::{Interval, SymbolKind};
 
 impl Resolver<'_> {
@@ -78,68 +77,5 @@ impl Resolver<'_> {
             range,
             span: raw.name.span,
         }
-    }
-
-    /// `[assumptions]`
-    pub(super) fn assumptions(&mut self, raw: &[RawAssumption]) -> Vec<Assumption> {
-        raw.iter()
-            .filter_map(|assumption| self.assumption(assumption))
-            .collect()
-    }
-
-    fn assumption(&mut self, raw: &RawAssumption) -> Option<Assumption> {
-        let left = self
-            .scope
-            .lower(&raw.left, Place::Assumption, self.diagnostics);
-        let right = self
-            .scope
-            .lower(&raw.right, Place::Assumption, self.diagnostics);
-        let (left, right) = (left?, right?);
-        let difference = self.pool.sub(left, right);
-        match self.numbers.value(difference) {
-            Some((_, Basis::Literal)) => {
-                let message = "the assumption does not depend on any parameter";
-                self.diagnostics.push(
-                    Diagnostic::error(Code::BadAssumption, raw.span, message)
-                        .hint("compare formulas in the parameters, or remove it"),
-                );
-            }
-            Some((value, Basis::Defaults)) if !holds(raw.relation, value) => {
-                let at = |e| {
-                    self.numbers
-                        .value(e)
-                        .map_or(String::new(), |(value, _)| short(value))
-                };
-                let message = format!(
-                    "the assumption `{}` fails at the default values: {} against {}",
-                    raw.name.text,
-                    at(left),
-                    at(right)
-                );
-                self.diagnostics.push(
-                    Diagnostic::warning(Code::AssumptionFails, raw.span, message)
-                        .hint("change the default values, or the assumption"),
-                );
-            }
-            _ => {}
-        }
-        Some(Assumption {
-            name: raw.name.text.clone(),
-            left,
-            relation: raw.relation,
-            right,
-            text: raw.text.clone(),
-            span: raw.span,
-        })
-    }
-}
-
-/// Whether `difference relation 0`.
-fn holds(relation: Relation, difference: f64) -> bool {
-    match relation {
-        Relation::Less => difference < 0.0,
-        Relation::LessEqual => difference <= 0.0,
-        Relation::Greater => difference > 0.0,
-        Relation::GreaterEqual => difference >= 0.0,
     }
 }

@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 
+use super::parse;
 use crate::symbolic::{Bound, Function, Interval, Pool, Sign, SymbolKind, Truth};
 
 #[test]
@@ -136,4 +137,14 @@ fn sign_follows_from_ranges() {
         Sign::Negative
     );
     assert_eq!(p.sign(p.sub(p.var(x), p.one())), Sign::Unknown);
+}
+
+#[test]
+fn a_formula_without_value_at_an_end_has_no_sign_there() {
+    let p = super::pool();
+    for text in ["q - a^2/(2*p)", "1 - 1/p", "q + a/p", "1 - 1/(2*u)"] {
+        assert_eq!(p.sign(parse(&p, text)), Sign::Unknown, "{text}");
+    }
+    assert_eq!(p.sign(parse(&p, "1/p - 1 + 1")), Sign::Positive);
+    assert_eq!(p.sign(parse(&p, "1 - 1/(1 + p)")), Sign::Positive);
 }

@@ -2,6 +2,7 @@
 
 mod basics;
 mod identities;
+mod inequalities;
 mod inverse;
 mod near_misses;
 mod properties;

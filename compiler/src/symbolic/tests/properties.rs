@@ -6,7 +6,7 @@ use proptest::prelude::*;
 use proptest::test_runner::RngSeed;
 
 use super::{parse, pool};
-use crate::symbolic::{Expr, Pool, Symbol, Truth};
+use crate::symbolic::{Expr, Pool, Sign, Symbol, Truth};
 
 /// A random formula as text in the language.
 fn formula() -> impl Strategy<Value = String> {
@@ -111,6 +111,37 @@ proptest! {
                     let result = close_at(&pool, e, other, &point(&pool, shift));
                     prop_assert!(result.is_ok(), "{} as {}: {:?}", text, pool.format(other), result);
                 }
+            }
+        }
+    }
+
+    /// What is said of a sign holds at every point of the ranges, near their ends and far out too.
+    #[test]
+    fn signs_hold_wherever_there_is_a_value(
+        text in formula(),
+        size in -6..7i32,
+        (x, y, p, u) in (-2.0..2.0f64, -2.0..2.0f64, 0.1..2.0f64, 0.01..0.99f64),
+    ) {
+        let pool = pool();
+        if let Ok(e) = crate::front::formula::parse_in_pool(&pool, &text) {
+            let scale = 10f64.powi(size);
+            let near = if size < 0 { u * scale } else { u };
+            let values = [("x", x * scale), ("y", y), ("p", p * scale), ("u", near)];
+            let values = values
+                .into_iter()
+                .map(|(name, v)| (pool.find_symbol(name).expect("a symbol"), v))
+                .collect();
+            if let Some(value) = pool.eval_big(e, &big(&values)) {
+                let value = value.to_f64().value();
+                let holds = match pool.sign(e) {
+                    Sign::Positive => value > 0.0,
+                    Sign::NonNegative => value >= 0.0,
+                    Sign::Zero => value == 0.0,
+                    Sign::NonPositive => value <= 0.0,
+                    Sign::Negative => value < 0.0,
+                    Sign::Unknown => true,
+                };
+                prop_assert!(holds || value.abs() < 1e-40, "{}: {:?}, yet {}", text, pool.sign(e), value);
             }
         }
     }
