@@ -14,6 +14,8 @@ mod big_normal;
 mod build;
 mod calls;
 mod derivative;
+mod enclose;
+mod enclosure;
 mod evaluate;
 mod expand;
 mod facts;
@@ -36,6 +38,7 @@ mod substitute;
 #[cfg(test)]
 mod tests;
 pub mod trace;
+mod undo;
 mod zero;
 
 pub use big::Big;

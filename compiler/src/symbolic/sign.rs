@@ -5,6 +5,7 @@ use std::collections::BTreeMap;
 
 use dashu_base::BitTest;
 
+use super::big::{self, PRECISION};
 use super::facts::{Bound, Sign};
 use super::function::Function;
 use super::node::{Expr, Node, Rational, Symbol};
@@ -79,7 +80,7 @@ impl Pool {
     }
 
     /// The sign, replacing sums by their values at ends of ranges at most `budget` deep.
-    fn bounded_sign(&self, e: Expr, budget: usize) -> Sign {
+    pub(super) fn bounded_sign(&self, e: Expr, budget: usize) -> Sign {
         let known = |part: &Expr| self.inner.borrow().signs.get(part).copied();
         if let Some((sign, spent)) = known(&e)
             && spent >= budget
@@ -111,6 +112,7 @@ impl Pool {
             Node::Symbol(symbol) => self.symbol_sign(*symbol, budget),
             Node::Sum(terms) => match terms.iter().map(sign).reduce(Sign::plus) {
                 Some(known) if known != Sign::Unknown => known,
+                _ if self.inner.borrow().entry(e).rank == 0 => self.constant_sign(e),
                 _ => self.sign_from_ends(e, budget),
             },
             Node::Product(factors) => factors.iter().map(sign).fold(Sign::Positive, Sign::times),
@@ -120,6 +122,33 @@ impl Pool {
                 self.as_number(*exponent).as_ref(),
             ),
             Node::Call(function, a) => self.call_sign(*function, a, budget),
+        }
+    }
+
+    /// The sign of a number that is written as a formula, from its digits; zero shows as unknown.
+    fn constant_sign(&self, e: Expr) -> Sign {
+        match self.constant_value_at(e, PRECISION) {
+            Some(value) if big::is_negative(&value) => Sign::Negative,
+            Some(_) => Sign::Positive,
+            None => Sign::Unknown,
+        }
+    }
+
+    /// The sign of a circular function, from where its argument lies.
+    fn circular_sign(&self, function: Function, argument: Expr, budget: usize) -> Sign {
+        if budget == 0 {
+            return Sign::Unknown;
+        }
+        let enclosure = self.enclosure(argument, budget - 1);
+        let sine = enclosure.sign_of_sine();
+        let cosine = enclosure.quarter_turn_on().sign_of_sine();
+        match function {
+            Function::Sin => sine,
+            Function::Cos => cosine,
+            // Where the tangent has a value the cosine is not zero.
+            _ if cosine.is_non_negative() => sine,
+            _ if cosine.is_non_positive() => sine.negate(),
+            _ => Sign::Unknown,
         }
     }
 
@@ -147,7 +176,7 @@ impl Pool {
 
     /// The sign of a formula that is monotone in a symbol, from its value at an end of the range.
     fn sign_from_ends(&self, e: Expr, budget: usize) -> Sign {
-        if budget == 0 || self.inner.borrow().entry(e).rank == 0 {
+        if budget == 0 {
             return Sign::Unknown;
         }
         for &symbol in self.symbol_set(e).iter() {
@@ -205,7 +234,8 @@ impl Pool {
             | F::Erf
             | F::Sign => a,
             F::Max | F::Min => choice_sign(function, a, self.known_sign(arguments[1])),
-            F::Log | F::Sin | F::Cos | F::Tan | F::NormalQuantile => Sign::Unknown,
+            F::Sin | F::Cos | F::Tan => self.circular_sign(function, arguments[0], budget),
+            F::Log | F::NormalQuantile => Sign::Unknown,
         }
     }
 }

@@ -45,6 +45,16 @@ impl Truth {
     }
 }
 
+/// What points inside the ranges show of two formulas.
+enum Search {
+    /// A point where they differ.
+    Found(Witness),
+    /// A point where only one of them has a value, and none where they differ: `log(x^2)` is `2*log(x)`
+    /// for positive x alone, and nobody has declared x to be positive.
+    DomainsDiffer,
+    Nothing,
+}
+
 impl Pool {
     /// Whether the formula is 0 wherever it has a value.
     pub fn is_zero(&self, e: Expr) -> Truth {
@@ -56,7 +66,12 @@ impl Pool {
         if self.equal_by_algebra(a, b) {
             return Truth::Yes;
         }
-        self.refute(a, b).map_or(Truth::CannotTell, Truth::No)
+        // Most of what the normal form does not prove is false: a point is found quickly.
+        match self.look_for_witness(a, b) {
+            Search::Found(witness) => Truth::No(witness),
+            Search::Nothing if self.equal_by_undoing(a, b) => Truth::Yes,
+            _ => Truth::CannotTell,
+        }
     }
 
     /// Whether the normal form proves that two formulas agree wherever both have a value.
@@ -67,9 +82,10 @@ impl Pool {
             .any(|mode| self.normal(difference, mode).is_zero())
     }
 
-    /// A point inside the ranges at which the two differ for certain: the difference comes out the
-    /// same at 256 and at 384 bits, so it is not rounding, and is not small beside the two sides.
-    fn refute(&self, a: Expr, b: Expr) -> Option<Witness> {
+    /// Looks for a point inside the ranges at which the two differ for certain: the difference comes
+    /// out the same at 256 and at 384 bits, so it is not rounding, and is not small beside the two sides.
+    fn look_for_witness(&self, a: Expr, b: Expr) -> Search {
+        let mut found = Search::Nothing;
         let difference = self.sub(a, b);
         let mut symbols = self.symbols_of(a);
         symbols.extend(self.symbols_of(b));
@@ -81,6 +97,10 @@ impl Pool {
                 continue;
             };
             let Some(roughly) = self.eval_precise(&[difference, a, b], &point, PRECISION) else {
+                let exists = |e| self.eval_big(e, &point).is_some();
+                if exists(a) != exists(b) {
+                    found = Search::DomainsDiffer;
+                }
                 continue;
             };
             let Some(finely) = self.eval_precise(&[difference], &point, PRECISION + 128) else {
@@ -88,23 +108,28 @@ impl Pool {
             };
             let [rough, left, right] = roughly.try_into().expect("one value a formula");
             let [fine] = finely.try_into().expect("one value a formula");
-            let size = fine.clone().abs();
-            let error = (rough - fine).abs();
             let scale = left.clone().abs() + right.clone().abs();
-            if error * tolerance(10) < size && scale < size * tolerance(30) {
+            if is_settled(&rough, &fine) && scale < fine.abs() * tolerance(30) {
                 let point = symbols
                     .iter()
                     .map(|&s| (s, big::to_f64(&point[&s])))
                     .collect();
-                return Some(Witness {
+                return Search::Found(Witness {
                     point,
                     left: big::to_f64(&left),
                     right: big::to_f64(&right),
                 });
             }
         }
-        None
+        found
     }
+}
+
+/// Whether two evaluations of one number, the second with more bits, show that it is not zero: they
+/// agree to ten digits.
+pub(super) fn is_settled(rough: &Big, fine: &Big) -> bool {
+    let (size, error) = (fine.clone().abs(), (rough - fine).abs());
+    error * tolerance(10) < size
 }
 
 /// `10^decimals`.

@@ -176,7 +176,9 @@ impl Normalizer<'_> {
                 continue;
             }
             match self.common_part(&numerator, &kept, &factor) {
-                Some((part, rest)) => {
+                Some((number, part, rest)) => {
+                    let power = isize::try_from(times).ok()?;
+                    numerator = numerator.scaled(&(Rational::ONE / number.pow(power)));
                     insert(&mut pending, Rc::new(part), times);
                     insert(&mut pending, Rc::new(rest), times);
                     // A factor found in what was kept has to be split there too.
@@ -192,20 +194,23 @@ impl Normalizer<'_> {
         })
     }
 
-    /// A factor in two parts, of which the first also divides the numerator or a factor kept.
+    /// A factor as a number, which is 1 or -1, times two parts, of which the first also divides the
+    /// numerator or a factor kept.
     fn common_part(
         &self,
         numerator: &Poly,
         kept: &Denominator,
         factor: &Poly,
-    ) -> Option<(Poly, Poly)> {
+    ) -> Option<(Rational, Poly, Poly)> {
         let others = std::iter::once(numerator).chain(kept.iter().map(|(f, _)| &**f));
         others.filter(|other| *other != factor).find_map(|other| {
             let common = factor.gcd(other)?;
             let rest = factor.exact_quotient(&common)?;
-            let (_, _, common) = self.factored(&common)?;
-            let (_, _, rest) = self.factored(&rest)?;
-            (!common.is_one() && !rest.is_one()).then_some((common, rest))
+            // Each part has a positive last coefficient then, their product need not have one.
+            let (number, left, common) = self.factored(&common)?;
+            let (other, right, rest) = self.factored(&rest)?;
+            let split = left.is_one() && right.is_one() && !common.is_one() && !rest.is_one();
+            split.then_some((number * other, common, rest))
         })
     }
 }

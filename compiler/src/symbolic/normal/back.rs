@@ -1,16 +1,47 @@
 //! From a normal form back to a formula.
 
+use std::rc::Rc;
+
 use super::super::function::Function;
 use super::super::node::{Expr, Node, Rational};
-use super::Normalizer;
 use super::fraction::Fraction;
 use super::poly::{Monomial, Poly};
+use super::{Mode, Normalizer};
 
 impl Normalizer<'_> {
     /// The fraction as a formula: expanded numerator over the factors of the denominator.
     pub(super) fn formula(&self, fraction: &Fraction) -> Expr {
         let (numerator, below) = self.oriented(fraction);
         self.pool.mul(self.poly_formula(&numerator), below)
+    }
+
+    /// The fraction as the argument of a function: for proofs with its denominator multiplied out, so
+    /// that equal fractions are one formula.
+    pub(super) fn argument(&self, fraction: &Fraction) -> Expr {
+        let single = |(_, times): &(_, u32)| *times == 1;
+        if self.mode == Mode::Light
+            || (fraction.denominator.len() < 2 && fraction.denominator.iter().all(single))
+        {
+            return self.formula(fraction);
+        }
+        let multiplied = self.multiplied_out(fraction);
+        self.formula(multiplied.as_ref().unwrap_or(fraction))
+    }
+
+    /// The fraction with one factor in its denominator.
+    pub(super) fn multiplied_out(&self, fraction: &Fraction) -> Option<Fraction> {
+        let mut product = Poly::one();
+        for (factor, times) in &fraction.denominator {
+            for _ in 0..*times {
+                product = self.poly_product(&product, factor)?;
+            }
+        }
+        let (coefficient, monomial, factor) = self.factored(&product)?;
+        let numerator = fraction.numerator.times_monomial(&monomial.inverse()?)?;
+        Some(Fraction {
+            numerator: numerator.scaled(&(Rational::ONE / coefficient)),
+            denominator: vec![(Rc::new(factor), 1)],
+        })
     }
 
     /// The numerator, and the inverse of the denominator as a formula: each factor with a positive

@@ -79,6 +79,15 @@ impl Exponent {
         })
     }
 
+    /// One over it; none for zero.
+    pub(super) fn inverse(self) -> Option<Exponent> {
+        Exponent::reduced(
+            i128::from(self.denominator) * i128::from(self.numerator.signum()),
+            i128::from(self.numerator.unsigned_abs()),
+        )
+        .filter(|_| self.numerator != 0)
+    }
+
     pub(super) fn is_zero(self) -> bool {
         self.numerator == 0
     }

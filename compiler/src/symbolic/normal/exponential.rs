@@ -2,10 +2,10 @@
 
 use super::super::function::Function;
 use super::super::node::{Expr, Node, Rational};
-use super::Normalizer;
 use super::exponent::Exponent;
 use super::fraction::Fraction;
 use super::poly::{Monomial, Poly};
+use super::{Mode, Normalizer, Rule};
 
 /// Multiples of an inverse trigonometric function that are expanded.
 const MAX_MULTIPLE: i64 = 16;
@@ -14,6 +14,11 @@ impl Normalizer<'_> {
     /// `exp(argument)`: the product over the terms of the argument.
     pub(super) fn exponential(&self, argument: &Fraction) -> Option<Fraction> {
         let mut result = Fraction::polynomial(Poly::one());
+        let multiplied = match self.mode {
+            Mode::Proof if !argument.denominator.is_empty() => self.multiplied_out(argument),
+            _ => None,
+        };
+        let argument = multiplied.as_ref().unwrap_or(argument);
         for (monomial, coefficient) in &argument.numerator.0 {
             let exponent = Exponent::from_rational(coefficient)?;
             let factor = if argument.denominator.is_empty() {
@@ -59,11 +64,22 @@ impl Normalizer<'_> {
             [(kernel, power)] if *power == Exponent::ONE => *kernel,
             _ => return self.plain_exponential(argument, exponent),
         };
-        let multiple = exponent.as_whole().filter(|n| n.abs() <= MAX_MULTIPLE);
-        match (&*self.pool.node(angle), multiple) {
-            (Node::Pi, _) => self.half_turns(exponent),
-            (Node::Call(function @ (Function::Asin | Function::Atan), inner), Some(n)) => {
-                self.whole_power(&self.inverse_rotation(*function, inner[0])?, n)
+        let (count, rest) = exponent.divided_by(Exponent::ONE)?;
+        match &*self.pool.node(angle) {
+            Node::Pi => self.half_turns(exponent),
+            Node::Call(function @ (Function::Asin | Function::Atan), inner)
+                if count.abs() <= MAX_MULTIPLE =>
+            {
+                let turn = self.inverse_rotation(*function, inner[0])?;
+                let whole = self.whole_power(&turn, count)?;
+                if rest.is_zero() {
+                    return Some(whole);
+                }
+                let kernel = self.pool.exp(argument);
+                if turn.denominator.is_empty() {
+                    self.register(kernel, Rule::new(1, turn.numerator));
+                }
+                self.multiply(&whole, &Fraction::monomial(Monomial::of(kernel, rest)))
             }
             _ => self.plain_exponential(argument, exponent),
         }

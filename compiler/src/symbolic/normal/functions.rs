@@ -21,6 +21,12 @@ impl Normalizer<'_> {
             Log => self.log(arguments[0]),
             Cbrt => self.cube_root(arguments[0]),
             Abs => self.size(arguments[0]),
+            Sign if self.pool.sign(arguments[0]).is_positive() => {
+                Some(Fraction::constant(Rational::ONE))
+            }
+            Sign if self.pool.sign(arguments[0]) == super::super::Sign::Negative => {
+                Some(Fraction::constant(Rational::from(-1)))
+            }
             _ if self.mode == Mode::Proof => match self.rewritten(function, arguments) {
                 Some(other) => Some((*self.normal(other)).clone()),
                 None => self.proof_function(e, function, arguments),
@@ -33,7 +39,10 @@ impl Normalizer<'_> {
     fn rewritten(&self, function: Function, arguments: &[Expr]) -> Option<Expr> {
         use Function::*;
         let p = self.pool;
-        let x = arguments[0];
+        let x = match function {
+            Cosh => self.without_size(arguments[0]),
+            _ => arguments[0],
+        };
         let one = p.one();
         let half = p.ratio(1, 2);
         let exp = |sign: i64| p.exp(p.mul(p.int(sign), x));
@@ -43,7 +52,7 @@ impl Normalizer<'_> {
             Cosh => p.mul(half, p.add(exp(1), exp(-1))),
             Tanh => p.div(p.sub(exp(2), one), p.add(exp(2), one)),
             Asinh => p.log(p.add(x, root(1))),
-            Acosh => p.log(p.add(x, p.mul(p.sqrt(p.sub(x, one)), p.sqrt(p.add(x, one))))),
+            Acosh => p.log(p.add(x, root(-1))),
             Atanh => p.mul(half, p.sub(p.log(p.add(one, x)), p.log(p.sub(one, x)))),
             Tan => p.div(p.call(Sin, &[x]), p.call(Cos, &[x])),
             Acos => p.sub(p.mul(half, p.pi()), p.call(Asin, &[x])),
@@ -68,8 +77,18 @@ impl Normalizer<'_> {
 
     fn proof_function(&self, e: Expr, function: Function, arguments: &[Expr]) -> Option<Fraction> {
         match function {
-            Function::Sin | Function::Cos => self.circular(function, arguments[0]),
+            Function::Sin => self.circular(function, arguments[0]),
+            Function::Cos => self.circular(function, self.without_size(arguments[0])),
+            Function::NormalQuantile => self.quantile(e, arguments[0]),
             _ => self.plain_call(e, function, arguments),
+        }
+    }
+
+    /// What an even function may take for its argument: `cos(abs(x))` is `cos(x)`.
+    fn without_size(&self, x: Expr) -> Expr {
+        match &*self.pool.node(x) {
+            Node::Call(Function::Abs, inner) => inner[0],
+            _ => x,
         }
     }
 
@@ -88,19 +107,44 @@ impl Normalizer<'_> {
         Some(self.multiply(&difference, &i)?.scaled(&half))
     }
 
+    /// The quantile function is odd about 1/2, and undoes the distribution function.
+    fn quantile(&self, e: Expr, level: Expr) -> Option<Fraction> {
+        let normal = self.normal(level);
+        let one = Fraction::constant(Rational::ONE);
+        let opposite = self.add(&one, &normal.negated())?;
+        let half = Rational::from_parts(1.into(), 2u8.into());
+        let above = self.add(&normal, &Fraction::constant(-half))?;
+        if above.is_zero() {
+            return Some(Fraction::constant(Rational::ZERO));
+        }
+        let (level, opposite) = (self.argument(&normal), self.argument(&opposite));
+        if let Node::Call(Function::NormalCdf, _) = &*self.pool.node(level) {
+            return self.settled_call(e, Function::NormalQuantile, &[level]);
+        }
+        let is_tail = matches!(
+            &*self.pool.node(opposite),
+            Node::Call(Function::NormalCdf, _)
+        );
+        if is_tail || self.leads_negative(self.argument(&above)) {
+            let mirrored = self.settled_call(e, Function::NormalQuantile, &[opposite])?;
+            return Some(mirrored.negated());
+        }
+        self.settled_call(e, Function::NormalQuantile, &[level])
+    }
+
     /// A call that stays one: of normalised arguments, with the sign taken out of odd and even
     /// functions.
     fn plain_call(&self, e: Expr, function: Function, arguments: &[Expr]) -> Option<Fraction> {
         use Function::*;
         let normal: Vec<Expr> = arguments
             .iter()
-            .map(|&a| self.formula(&self.normal(a)))
+            .map(|&a| self.argument(&self.normal(a)))
             .collect();
         let argument = normal[0];
         if arguments.len() == 1 && self.leads_negative(argument) {
             let positive = self.pool.neg(argument);
             let mirrored =
-                self.settled_call(e, function, &[self.formula(&self.normal(positive))])?;
+                self.settled_call(e, function, &[self.argument(&self.normal(positive))])?;
             match function {
                 Sin | Tan | Asin | Atan | Sinh | Tanh | Asinh | Atanh | Erf | Sign => {
                     return Some(mirrored.negated());
@@ -189,7 +233,12 @@ impl Normalizer<'_> {
         }
         let argument = self.formula(&normal);
         if self.is_complex(argument) {
-            return Some(self.kernel(self.pool.call(Function::Abs, &[argument])));
+            let kernel = self.pool.call(Function::Abs, &[argument]);
+            let square = self.multiply(&normal, &normal)?;
+            if square.denominator.is_empty() {
+                self.register(kernel, Rule::new(2, square.numerator));
+            }
+            return Some(self.kernel(kernel));
         }
         let split = self.split(x)?;
         let mut result = Fraction::constant(split.coefficient.clone() * split.coefficient.signum());

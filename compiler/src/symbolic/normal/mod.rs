@@ -24,6 +24,7 @@ mod coefficients;
 mod convert;
 mod exponent;
 mod exponential;
+mod factor;
 mod fraction;
 mod functions;
 mod gcd;

@@ -84,19 +84,44 @@ impl Normalizer<'_> {
     }
 
     /// `exp(i*pi)^exponent`. Multiples of a twelfth are made of `exp(i*pi/3) = (1 + i*sqrt(3))/2` and
-    /// `exp(-i*pi/4) = (1 - i)/sqrt(2)`; others are a kernel whose first power is -1.
+    /// `exp(-i*pi/4) = (1 - i)/sqrt(2)`, those of a sixtieth also of
+    /// `exp(i*pi/5) = (1 + sqrt(5) + i*sqrt(10 - 2*sqrt(5)))/4`; in others what is beyond a multiple of a
+    /// twelfth is a power of a kernel.
     pub(super) fn half_turns(&self, exponent: Exponent) -> Option<Fraction> {
+        let p = self.pool;
         let i = self.imaginary();
-        if let Some(twelfths) = exponent.times(Exponent::whole(12))?.as_whole() {
-            let p = self.pool;
-            let third = p.mul(p.ratio(1, 2), p.add(p.one(), p.mul(i, p.sqrt(p.int(3)))));
-            let fourth = p.div(p.sub(p.one(), i), p.sqrt(p.int(2)));
-            let turn = p.pow(p.mul(third, fourth), p.int(twelfths.rem_euclid(24)));
-            return Some((*self.normal(turn)).clone());
+        let third = p.mul(p.ratio(1, 2), p.add(p.one(), p.mul(i, p.sqrt(p.int(3)))));
+        let fourth = p.div(p.sub(p.one(), i), p.sqrt(p.int(2)));
+        let twelfth = p.mul(third, fourth);
+        let turn = |count: i64| p.pow(twelfth, p.int(count.rem_euclid(24)));
+        let (count, rest) = exponent.divided_by(Exponent::whole(12).inverse()?)?;
+        if rest.is_zero() {
+            return Some((*self.normal(turn(count))).clone());
         }
-        let kernel = self.pool.exp(self.pool.mul(i, self.pool.pi()));
-        self.register(kernel, Rule::new(1, Poly::constant(Rational::from(-1))));
-        self.kernel_power(kernel, exponent)
+        if let Some(sixtieths) = exponent.times(Exponent::whole(60))?.as_whole() {
+            // sixtieths/60 = count/12 + fifths/5
+            let fifths = (3 * (sixtieths % 5)).rem_euclid(5);
+            let root = p.sqrt(p.int(5));
+            let sine = p.sqrt(p.sub(p.int(10), p.mul(p.int(2), root)));
+            let fifth = p.sum([p.one(), root, p.mul(i, sine)]);
+            let fifth = p.pow(p.mul(p.ratio(1, 4), fifth), p.int(fifths));
+            let product = p.mul(turn((sixtieths - 12 * fifths) / 5), fifth);
+            return Some((*self.normal(product)).clone());
+        }
+        let kernel = p.exp(p.mul(i, p.pi()));
+        let replacement = self.normal(twelfth);
+        let modulus = Exponent::whole(12).inverse()?;
+        self.register(
+            kernel,
+            Rule {
+                modulus,
+                ..Rule::new(1, replacement.numerator.clone())
+            },
+        );
+        self.multiply(
+            &self.normal(turn(count)),
+            &Fraction::monomial(Monomial::of(kernel, rest)),
+        )
     }
 
     /// The number as a kernel under a root.

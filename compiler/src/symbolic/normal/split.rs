@@ -4,10 +4,10 @@ use dashu_base::Abs;
 
 use super::super::facts::Sign;
 use super::super::node::{Expr, Node, Rational};
-use super::Normalizer;
 use super::exponent::Exponent;
 use super::fraction::Fraction;
 use super::poly::{Monomial, Poly};
+use super::{Mode, Normalizer};
 
 /// A factor of a product.
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -121,13 +121,18 @@ impl Normalizer<'_> {
         let (turned, factors) = poly.squarefree();
         let mut negative = turned;
         for (factor, m) in factors {
-            let (coefficient, monomial, factor) = self.factored(&factor)?;
-            debug_assert!(monomial.is_one());
-            negative ^= coefficient < Rational::ZERO && m % 2 == 1;
-            split.include(
-                Base::Sum(factor),
-                Exponent::whole(i64::from(m).checked_mul(times)?),
-            )?;
+            let (turned, parts) = match self.mode {
+                Mode::Proof => factor.rational_factors(),
+                Mode::Light => (false, vec![factor]),
+            };
+            negative ^= turned && m % 2 == 1;
+            for part in parts {
+                let (coefficient, monomial, part) = self.factored(&part)?;
+                debug_assert!(monomial.is_one());
+                negative ^= coefficient < Rational::ZERO && m % 2 == 1;
+                let exponent = Exponent::whole(i64::from(m).checked_mul(times)?);
+                split.include(Base::Sum(part), exponent)?;
+            }
         }
         if negative && times % 2 != 0 {
             split.coefficient = -std::mem::take(&mut split.coefficient);

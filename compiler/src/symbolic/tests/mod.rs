@@ -1,10 +1,9 @@
 //! Tests of the formula algebra.
 
 mod basics;
-mod identities;
+mod equations;
 mod inequalities;
 mod inverse;
-mod near_misses;
 mod properties;
 mod shapes;
 mod soundness;
@@ -44,10 +43,4 @@ pub(super) fn pool() -> Pool {
 /// The formula a text stands for.
 pub(super) fn parse(pool: &Pool, text: &str) -> Expr {
     parse_in_pool(pool, text).unwrap_or_else(|errors| panic!("{text}: {errors:?}"))
-}
-
-/// The two sides of an equation in a table of equations.
-pub(super) fn sides(pool: &Pool, equation: &str) -> (Expr, Expr) {
-    let (left, right) = equation.split_once('=').expect("an equation");
-    (parse(pool, left), parse(pool, right))
 }
