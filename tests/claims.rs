@@ -8,8 +8,9 @@ use driftwright_tests::harness::values::{model_names, read};
 const OPEN: [(&str, &str); 1] = [("sluice_level", "noise")];
 
 /// Models that must be stepped by an exact law alone.
-const EXACT: [&str; 12] = [
+const EXACT: [&str; 14] = [
     "barley_two_factor",
+    "cider_forward",
     "cooling_kiln",
     "ferry_currency",
     "glacier_melt",
@@ -17,6 +18,7 @@ const EXACT: [&str; 12] = [
     "harbour_toll",
     "market_share",
     "orchard_spot",
+    "peat_season",
     "river_spread",
     "salt_price",
     "tide_gauge",

@@ -141,6 +141,13 @@ pub enum StepError {
         /// What came out.
         value: f64,
     },
+    /// The coefficients of an exact law could not be integrated over a step.
+    Unresolved {
+        /// Time at the start of the step.
+        start: f64,
+        /// Length of the step.
+        length: f64,
+    },
 }
 
 impl fmt::Display for StepError {
@@ -154,6 +161,12 @@ impl fmt::Display for StepError {
             StepError::NotFinite { name, value } => write!(
                 f,
                 "{name} is {value}: the coefficients overflow or leave their domain"
+            ),
+            StepError::Unresolved { start, length } => write!(
+                f,
+                "the coefficients between t = {start} and t = {} could not be integrated to rounding accuracy: \
+                 they are singular there, or decay so fast that the law needs shorter steps",
+                start + length
             ),
         }
     }

@@ -1,6 +1,6 @@
 //! Transition laws and Cholesky factors against the crate `nalgebra`, and closed forms.
 
-use driftwright_runtime::gauss::{cholesky, linear_transition};
+use driftwright_runtime::gauss::{cholesky, linear_transition, moving_transition};
 use driftwright_runtime::random::{threefry2x64_20, uniform};
 use driftwright_runtime::{StepError, math};
 use nalgebra::DMatrix;
@@ -165,4 +165,134 @@ fn cholesky_at_the_edge() {
     assert!(cholesky(2, &[1.0, f64::NAN, f64::NAN, 1.0], &mut factor).is_err());
     cholesky(2, &[0.0, 0.0, 0.0, 4.0], &mut factor).expect("a state without noise");
     assert_eq!(factor[..4], [0.0, 0.0, 0.0, 2.0]);
+}
+
+/// The law of one row over `[start, start + h]` with coefficients `(a, alpha, q)` of time.
+fn moving(
+    start: f64,
+    h: f64,
+    coefficients: impl Fn(f64) -> [f64; 3],
+) -> Result<[f64; 3], StepError> {
+    let (mut e, mut shift, mut variance) = ([0.0], [0.0], [0.0]);
+    let write = |t: f64, out: &mut [f64]| out.copy_from_slice(&coefficients(t));
+    moving_transition(1, start, h, write, &mut e, &mut shift, &mut variance)?;
+    Ok([e[0], shift[0], variance[0]])
+}
+
+fn close(ours: [f64; 3], truth: [f64; 3], what: &str) {
+    for (ours, truth) in ours.into_iter().zip(truth) {
+        let bound = 1e-13 * truth.abs().max(1.0);
+        assert!(
+            (ours - truth).abs() <= bound,
+            "{what}: {ours} instead of {truth}"
+        );
+    }
+}
+
+/// Coefficients that do not move: the law of `linear_transition`.
+#[test]
+fn a_moving_law_that_stands_still_is_the_constant_one() {
+    for dim in 1..=4 {
+        let stream = 60 + dim as u64;
+        let a = random_matrix(dim, stream);
+        let root = random_matrix(dim, stream + 10);
+        let (q, alpha) = (&root * root.transpose(), random_matrix(dim, stream + 20));
+        let alpha = &alpha.as_slice()[..dim];
+        let zeros = || (vec![0.0; dim * dim], vec![0.0; dim], vec![0.0; dim * dim]);
+        let (mut still, mut moved) = (zeros(), zeros());
+        let (a, q) = (rows(&a), rows(&q));
+        linear_transition(
+            dim,
+            &a,
+            alpha,
+            &q,
+            0.7,
+            &mut still.0,
+            &mut still.1,
+            &mut still.2,
+        )
+        .expect("moderate rates");
+        let all = [a.as_slice(), alpha, q.as_slice()].concat();
+        let write = |_: f64, out: &mut [f64]| out.copy_from_slice(&all);
+        moving_transition(
+            dim,
+            2.0,
+            0.7,
+            write,
+            &mut moved.0,
+            &mut moved.1,
+            &mut moved.2,
+        )
+        .expect("moderate rates");
+        let pairs = [(still.0, moved.0), (still.1, moved.1), (still.2, moved.2)];
+        for (still, moved) in pairs {
+            let largest = still.iter().fold(1.0_f64, |m, x| m.max(x.abs()));
+            for (s, m) in still.iter().zip(&moved) {
+                assert!(
+                    (s - m).abs() < 1e-13 * largest,
+                    "dimension {dim}: {m} instead of {s}"
+                );
+            }
+        }
+    }
+}
+
+/// Integrals by hand: a Brownian bridge on its way to 1, seasons over whole years, powers of time.
+#[test]
+fn moving_laws_in_closed_form() {
+    use std::f64::consts::TAU;
+    // dX = -X/(1 - t) dt + dW from s to s + h: the factor is (1 - s - h)/(1 - s), the variance
+    // h (1 - s - h)/(1 - s) (Karatzas and Shreve 1991, section 5.6.B).
+    let bridge = |t: f64| [-1.0 / (1.0 - t), 0.0, 1.0];
+    for (s, h) in [(0.0, 0.9), (0.5, 0.499), (0.2, 0.1)] {
+        let left = (1.0 - s - h) / (1.0 - s);
+        close(
+            moving(s, h, bridge).unwrap(),
+            [left, 0.0, h * left],
+            "bridge",
+        );
+    }
+    // dX = k (m cos(2 pi t) - X) dt + s dW over whole years, where every year looks the same:
+    // int_0^h exp(-k (h - u)) k m cos(w u) du = m k^2/(k^2 + w^2) (1 - exp(-k h)).
+    for (k, h) in [(0.8, 1.0), (0.8, 12.0), (0.3, 60.0), (5.0, 60.0)] {
+        let season = |t: f64| [-k, k * 0.7 * (TAU * t).cos(), 0.09];
+        let (decay, gain) = ((-k * h).exp(), 0.7 * k * k / (k * k + TAU * TAU));
+        let variance = 0.09 * (1.0 - decay * decay) / (2.0 * k);
+        close(
+            moving(0.0, h, season).unwrap(),
+            [decay, gain * (1.0 - decay), variance],
+            "season",
+        );
+    }
+    // dX = -2 t X dt + t dW: exp(h^2 - ...) with int_s^T exp(-2 (T^2 - u^2)) u^2 du has no closed form;
+    // with volatility sqrt(t) the variance is (1 - exp(-2 (T^2 - s^2)))/4.
+    let growing = |t: f64| [-2.0 * t, 2.0 * t, t];
+    let (s, end) = (0.5, 2.0_f64);
+    let factor = (s * s - end * end).exp();
+    close(
+        moving(s, end - s, growing).unwrap(),
+        [factor, 1.0 - factor, 0.25 * (1.0 - factor * factor)],
+        "growing",
+    );
+    // A jump in the volatility and a kink in the drift.
+    let broken = |t: f64| [0.0, (t - 0.3).abs(), if t < 0.7 { 1.0 } else { 4.0 }];
+    close(
+        moving(0.0, 1.0, broken).unwrap(),
+        [1.0, 0.5 * (0.09 + 0.49), 0.7 + 4.0 * 0.3],
+        "broken",
+    );
+}
+
+/// A singularity within the step is refused in words, an overflow too.
+#[test]
+fn moving_laws_that_do_not_exist() {
+    let bridge = |t: f64| [-1.0 / (1.0 - t), 0.0, 1.0];
+    let past = moving(0.5, 1.0, bridge).unwrap_err();
+    assert_eq!(
+        past.to_string(),
+        "the coefficients between t = 0.5 and t = 1.5 could not be integrated to rounding accuracy: \
+         they are singular there, or decay so fast that the law needs shorter steps"
+    );
+    assert!(moving(0.0, 1.0, |_| [1e4, 0.0, 1.0]).is_err());
+    assert!(moving(0.0, 1.0, |_| [f64::NAN, 0.0, 1.0]).is_err());
 }

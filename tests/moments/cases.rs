@@ -59,13 +59,15 @@ const fn stepped(
 }
 
 /// Every shipped model but the kelp stock, whose moments need extrapolation.
-pub(crate) const CASES: [Case; 18] = [
+pub(crate) const CASES: [Case; 20] = [
     exact("harbour_toll", [0.25, 1.0, 3.0], scalar::harbour_toll),
     exact("orchard_spot", [0.25, 1.0, 3.0], scalar::orchard_spot),
     exact("river_spread", [0.2, 1.0, 4.0], scalar::river_spread),
     exact("tide_gauge", [0.2, 0.9, 3.0], scalar::tide_gauge),
     exact("glacier_melt", [0.5, 1.0, 4.0], scalar::glacier_melt),
     exact("salt_price", [0.25, 1.0, 5.0], scalar::salt_price),
+    exact("cider_forward", [0.5, 2.0, 4.0], scalar::cider_forward),
+    exact("peat_season", [0.3, 1.0, 2.7], scalar::peat_season),
     exact("market_share", [0.5, 2.0, 6.0], scalar::market_share),
     exact("twin_orchards", [0.25, 1.0, 2.0], systems::twin_orchards),
     exact("ferry_currency", [0.5, 2.0, 5.0], systems::ferry_currency),

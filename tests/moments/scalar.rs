@@ -86,6 +86,33 @@ pub(crate) fn salt_price(p: &Values, at: At) -> Expected {
     ]
 }
 
+/// Log-normal forward price whose variance is the integral of its squared volatility.
+pub(crate) fn cider_forward(p: &Values, at: At) -> Expected {
+    let (sigma, kappa) = (p.get("sigma"), p.get("kappa"));
+    let faded = |time: f64| (-2.0 * kappa * (p.get("delivery") - time)).exp();
+    let variance = sigma * sigma * (faded(at.time) - faded(0.0)) / (2.0 * kappa);
+    let mean = p.get("F0").ln() - 0.5 * variance;
+    vec![
+        ("F", lognormal(mean, variance)),
+        ("log_F", normal(mean, variance)),
+    ]
+}
+
+/// A season and an Ornstein-Uhlenbeck process around it, in the logarithm.
+pub(crate) fn peat_season(p: &Values, at: At) -> Expected {
+    let season = |time: f64| {
+        let phase = std::f64::consts::TAU * time / p.get("year");
+        p.get("level") + p.get("swing") * phase.cos()
+    };
+    let apart = ou_mean(p.get("P0").ln() - season(0.0), 0.0, p.get("kappa"), at.time);
+    let variance = ou_variance(p.get("kappa"), p.get("sigma"), at.time);
+    let mean = season(at.time) + apart;
+    vec![
+        ("P", lognormal(mean, variance)),
+        ("log_P", normal(mean, variance)),
+    ]
+}
+
 /// Logit-normal share; the share's own moments by quadrature over the driver.
 pub(crate) fn market_share(p: &Values, at: At) -> Expected {
     let odds = p.get("p0") / (1.0 - p.get("p0"));

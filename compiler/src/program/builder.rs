@@ -96,6 +96,10 @@ impl Builder {
         self.intern(Op::Length, Rate::Step)
     }
 
+    pub(super) fn instant(&mut self) -> ValueId {
+        self.intern(Op::Instant, Rate::Instant)
+    }
+
     pub(super) fn time(&mut self) -> ValueId {
         self.intern(Op::Time, Rate::Observation)
     }
@@ -236,7 +240,12 @@ impl Builder {
             .map(|id| self.rate(id))
             .max()
             .unwrap_or(Rate::Setup);
-        self.intern(op, rate.max(Rate::Setup))
+        let rate = match op {
+            // What it reads at instants it has integrated.
+            Op::MovingTransition { .. } => Rate::Step,
+            _ => rate.max(Rate::Setup),
+        };
+        self.intern(op, rate)
     }
 
     pub(super) fn extract(&mut self, matrix: ValueId, index: usize) -> ValueId {

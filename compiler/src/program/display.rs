@@ -54,6 +54,7 @@ impl Program {
             Op::Start => "start".to_owned(),
             Op::Length => "length".to_owned(),
             Op::Time => "time".to_owned(),
+            Op::Instant => "instant".to_owned(),
             Op::State(slot) => format!("state {}", self.slots[*slot].name),
             Op::Noise(source) => format!("noise {source}"),
             Op::Unary(op, a) => format!("{} {a}", op.runtime_name().unwrap_or("neg")),
@@ -80,6 +81,19 @@ impl Program {
                 length,
             } => format!(
                 "transition {dim} a {} alpha {} q {} length {length}",
+                list(a),
+                list(alpha),
+                list(q)
+            ),
+            Op::MovingTransition {
+                dim,
+                a,
+                alpha,
+                q,
+                start,
+                length,
+            } => format!(
+                "moving_transition {dim} a {} alpha {} q {} start {start} length {length}",
                 list(a),
                 list(alpha),
                 list(q)

@@ -20,6 +20,8 @@ mod sweep;
 mod tests;
 mod verify;
 
+use std::collections::BTreeSet;
+
 pub use checks::{Bound, Check, Range};
 pub use functions::{BinaryOp, UnaryOp};
 pub use lower::lower;
@@ -155,6 +157,18 @@ impl Program {
     /// All ids, operands first.
     pub fn ids(&self) -> impl Iterator<Item = ValueId> + use<> {
         (0..self.values.len() as u32).map(ValueId)
+    }
+
+    /// The values that a law needs at every instant it integrates over, operands first.
+    pub fn instant_values(&self, law: ValueId) -> Vec<ValueId> {
+        let at_instants = |id: &ValueId| self.value(*id).rate == Rate::Instant;
+        let mut needed = BTreeSet::new();
+        let mut pending = vec![law];
+        while let Some(id) = pending.pop() {
+            let operands = self.value(id).op.operands().into_iter();
+            pending.extend(operands.filter(at_instants).filter(|&o| needed.insert(o)));
+        }
+        needed.into_iter().collect()
     }
 
     /// Whether a coefficient or an observation depends on time itself, not only on the length of a step.

@@ -59,6 +59,8 @@ pub enum Op {
     Length,
     /// Time of the observation.
     Time,
+    /// Time of an instant within a step.
+    Instant,
     /// A state slot: at the start of the step, or at the observation.
     State(usize),
     /// A standard normal draw of the step, by the index of its source.
@@ -103,7 +105,23 @@ pub enum Op {
         /// Length of the step.
         length: ValueId,
     },
-    /// One number out of a [`Op::Cholesky`] or [`Op::Transition`].
+    /// As [`Op::Transition`], with coefficients that depend on time: `a`, `alpha` and `q` may be of rate
+    /// [`Rate::Instant`](super::Rate::Instant).
+    MovingTransition {
+        /// Coordinates.
+        dim: usize,
+        /// Drift matrix, row by row.
+        a: Box<[ValueId]>,
+        /// Constant drift.
+        alpha: Box<[ValueId]>,
+        /// Covariance rate, row by row.
+        q: Box<[ValueId]>,
+        /// Start of the step.
+        start: ValueId,
+        /// Length of the step.
+        length: ValueId,
+    },
+    /// One number out of a matrix operation.
     Extract(ValueId, usize),
 }
 
@@ -116,6 +134,7 @@ impl Op {
             | Self::Start
             | Self::Length
             | Self::Time
+            | Self::Instant
             | Self::State(_)
             | Self::Noise(_) => Vec::new(),
             Self::Unary(_, a) | Self::Extract(a, _) => vec![*a],
@@ -139,6 +158,17 @@ impl Op {
                 let matrices = a.iter().chain(alpha).chain(q).copied();
                 matrices.chain([*length]).collect()
             }
+            Self::MovingTransition {
+                a,
+                alpha,
+                q,
+                start,
+                length,
+                ..
+            } => {
+                let matrices = a.iter().chain(alpha).chain(q).copied();
+                matrices.chain([*start, *length]).collect()
+            }
         }
     }
 
@@ -146,13 +176,28 @@ impl Op {
     pub fn width(&self) -> usize {
         match self {
             Self::Cholesky { dim, .. } => dim * dim,
-            Self::Transition { dim, .. } => 2 * dim * dim + dim,
+            Self::Transition { dim, .. } | Self::MovingTransition { dim, .. } => {
+                2 * dim * dim + dim
+            }
             _ => 1,
         }
     }
 
     /// Whether the result is a whole matrix, which only [`Op::Extract`] may read.
     pub fn is_aggregate(&self) -> bool {
-        matches!(self, Self::Cholesky { .. } | Self::Transition { .. })
+        matches!(
+            self,
+            Self::Cholesky { .. } | Self::Transition { .. } | Self::MovingTransition { .. }
+        )
+    }
+
+    /// Whether an operand is a coefficient that the operation integrates over a step.
+    pub(super) fn integrates(&self, operand: ValueId) -> bool {
+        match self {
+            Self::MovingTransition { a, alpha, q, .. } => {
+                a.iter().chain(alpha).chain(q).any(|&id| id == operand)
+            }
+            _ => false,
+        }
     }
 }

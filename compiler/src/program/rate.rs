@@ -14,6 +14,9 @@ pub enum Rate {
     Step,
     /// Once per observation time, the same on every path.
     Observation,
+    /// At every instant at which the coefficients of a step are asked for while its law is integrated,
+    /// the same on every path. Only a law reads such a value.
+    Instant,
     /// In every step on every path.
     StepLane,
     /// At every observation on every path.
@@ -22,11 +25,12 @@ pub enum Rate {
 
 impl Rate {
     /// Every rate, from the slowest to the fastest.
-    pub const ALL: [Self; 6] = [
+    pub const ALL: [Self; 7] = [
         Self::Constant,
         Self::Setup,
         Self::Step,
         Self::Observation,
+        Self::Instant,
         Self::StepLane,
         Self::ObservationLane,
     ];
@@ -40,7 +44,9 @@ impl Rate {
     pub fn may_read(self, operand: Self) -> bool {
         match self {
             Self::Constant | Self::Setup => operand <= self,
-            Self::Step | Self::Observation => operand <= Self::Setup || operand == self,
+            Self::Step | Self::Observation | Self::Instant => {
+                operand <= Self::Setup || operand == self
+            }
             Self::StepLane => operand <= Self::Step || operand == self,
             Self::ObservationLane => {
                 operand <= Self::Setup || operand == Self::Observation || operand == self
@@ -56,6 +62,7 @@ impl fmt::Display for Rate {
             Self::Setup => "setup",
             Self::Step => "step",
             Self::Observation => "observation",
+            Self::Instant => "instant",
             Self::StepLane => "step lane",
             Self::ObservationLane => "observation lane",
         })

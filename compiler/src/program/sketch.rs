@@ -192,6 +192,7 @@ impl Sketch {
             alpha: row(self, alpha),
             c: c.iter().map(|r| row(self, r)).collect(),
             noise: noise.to_vec(),
+            moving: false,
         };
         self.group(
             states,

@@ -131,6 +131,21 @@ impl Op {
                 q: all(q),
                 length: f(length),
             },
+            Self::MovingTransition {
+                dim,
+                a,
+                alpha,
+                q,
+                start,
+                length,
+            } => Self::MovingTransition {
+                dim,
+                a: all(a),
+                alpha: all(alpha),
+                q: all(q),
+                start: f(start),
+                length: f(length),
+            },
             Self::Extract(a, index) => Self::Extract(f(a), index),
             leaf => leaf,
         }

@@ -48,7 +48,8 @@ impl Program {
                 return Err(format!("reads {operand}, which stands after it"));
             }
             let read = self.value(operand);
-            if !value.rate.may_read(read.rate) {
+            let integrated = read.rate == Rate::Instant && value.op.integrates(operand);
+            if !integrated && !value.rate.may_read(read.rate) {
                 return Err(format!(
                     "of rate {} reads {operand} of rate {}",
                     value.rate, read.rate
@@ -77,6 +78,7 @@ impl Program {
             Op::Parameter(_) => rate == Rate::Setup,
             Op::Start | Op::Length => rate == Rate::Step,
             Op::Time => rate == Rate::Observation,
+            Op::Instant => rate == Rate::Instant,
             Op::State(_) => rate.is_lane(),
             Op::Noise(_) => rate == Rate::StepLane,
             _ => true,
@@ -92,6 +94,9 @@ impl Program {
         let sound = match op {
             Op::Cholesky { dim, covariance } => covariance.len() == dim * dim && !rate.is_lane(),
             Op::Transition {
+                dim, a, alpha, q, ..
+            }
+            | Op::MovingTransition {
                 dim, a, alpha, q, ..
             } => {
                 a.len() == dim * dim

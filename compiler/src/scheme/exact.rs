@@ -3,6 +3,7 @@
 use super::{Becomes, Group, Kind, Law, LinearGaussian, Method, RowNoise, SchemeName};
 use crate::analysis::free::{Freedom, free_of};
 use crate::analysis::linear::{Row, Rows, components, reached};
+use crate::calculus::bracket;
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
 use crate::symbolic::{Bound, Expr};
@@ -41,7 +42,7 @@ fn group(model: &Model, rows: &Rows, reached: &[bool], states: Vec<usize>) -> Gr
             linear_form(model, rows, row),
         );
     }
-    let reasons = reasons(model, rows, &members, law);
+    let reasons = reasons(model, rows, &members, law, system.moving);
     Group {
         states,
         kind: Kind::Exact,
@@ -64,7 +65,8 @@ fn group(model: &Model, rows: &Rows, reached: &[bool], states: Vec<usize>) -> Gr
 fn system(model: &Model, members: &[(usize, &Row)], reached: &[bool]) -> LinearGaussian {
     let pool = &model.pool;
     let entry = |row: &Row, j: usize| row.slopes.get(&j).copied().unwrap_or_else(|| pool.zero());
-    let noise = |i: usize, row: &Row| match (reached[i], row.slopes.is_empty()) {
+    let moving = is_moving(model, members);
+    let noise = |i: usize, row: &Row| match (reached[i], row.slopes.is_empty() && !moving) {
         (false, _) => RowNoise::None,
         (true, true) => RowNoise::Increments,
         (true, false) => RowNoise::Convolution,
@@ -77,7 +79,21 @@ fn system(model: &Model, members: &[(usize, &Row)], reached: &[bool]) -> LinearG
         alpha: members.iter().map(|&(_, row)| row.constant).collect(),
         c: members.iter().map(|&(_, row)| row.noise.clone()).collect(),
         noise: members.iter().map(|&(i, row)| noise(i, row)).collect(),
+        moving,
     }
+}
+
+/// Whether a coefficient of a system, or a correlation of its rows' noises, depends on time.
+fn is_moving(model: &Model, members: &[(usize, &Row)]) -> bool {
+    let rows = || members.iter().map(|&(_, row)| row);
+    let rates =
+        rows().flat_map(|left| rows().map(move |right| bracket(model, &left.noise, &right.noise)));
+    let drifts = rows().flat_map(|row| row.slopes.values().copied().chain([row.constant]));
+    let noises = rows().flat_map(|row| row.noise.iter().copied());
+    drifts
+        .chain(noises)
+        .chain(rates)
+        .any(|e| model.pool.depends_on(e, model.time))
 }
 
 /// The law of the states themselves, given that their coordinates are Gaussian.
@@ -126,17 +142,41 @@ fn linear_form(model: &Model, rows: &Rows, row: &Row) -> Expr {
     pool.sum(terms.chain([row.constant]).collect::<Vec<_>>())
 }
 
-fn reasons(model: &Model, rows: &Rows, members: &[(usize, &Row)], law: Law) -> Vec<String> {
+fn reasons(
+    model: &Model,
+    rows: &Rows,
+    members: &[(usize, &Row)],
+    law: Law,
+    moving: bool,
+) -> Vec<String> {
     let mut reasons: Vec<String> = members
         .iter()
         .map(|&(_, row)| equation(model, rows, row))
         .collect();
     let closing = match (members.len(), law) {
+        (1, Law::Deterministic) if moving => {
+            "This is a linear equation without noise whose coefficients depend on time alone: each step is its \
+             solution, integrated to rounding accuracy."
+        }
+        (_, Law::Deterministic) if moving => {
+            "These are linear equations without noise whose coefficients depend on time alone: each step is their \
+             solution, integrated to rounding accuracy."
+        }
         (1, Law::Deterministic) => {
             "This is a linear equation with constant coefficients and no noise: each step is its exact solution."
         }
         (_, Law::Deterministic) => {
             "These are linear equations with constant coefficients and no noise: each step is their exact solution."
+        }
+        (1, _) if moving => {
+            "Its drift is linear, and its coefficients and its noise depend on time alone, so that each step is drawn \
+             from the normal law of the transition, whose mean and variance are integrated over the step to \
+             rounding accuracy: there is no discretisation error."
+        }
+        (_, _) if moving => {
+            "The drift is linear, and coefficients, noise and correlations depend on time alone, so that each step is \
+             one draw from the joint normal law of the transition, whose means and covariances are integrated over \
+             the step to rounding accuracy: there is no discretisation error."
         }
         (1, _) => {
             "Its drift is linear with constant coefficients and its noise is constant, so that each step is \

@@ -217,7 +217,7 @@ pub enum Method {
     RungeKutta4(Vec<(usize, Expr)>),
 }
 
-/// `du = (a u + alpha) dt + c dW` with `a`, `alpha`, `c` free of states and time.
+/// `du = (a u + alpha) dt + c dW` with `a`, `alpha`, `c` free of states.
 ///
 /// Rows and columns of `a`, entries of `alpha` and rows of `c` follow [`Group::states`]; the columns of
 /// `c` are the model's drivers, in its order.
@@ -231,6 +231,8 @@ pub struct LinearGaussian {
     pub c: Vec<Vec<Expr>>,
     /// Where the Gaussian part of each row comes from.
     pub noise: Vec<RowNoise>,
+    /// Whether a coefficient, or a correlation of the rows' noises, depends on time.
+    pub moving: bool,
 }
 
 /// Where the Gaussian part of a row of a linear Gaussian system comes from.
@@ -238,7 +240,7 @@ pub struct LinearGaussian {
 pub enum RowNoise {
     /// No driver reaches the row.
     None,
-    /// The row of `a` is zero: the Gaussian part is `sum_j c_j (W_j(t+h) - W_j(t))`, out of the raw
+    /// The row of `a` is zero, nothing of the system depends on time: the Gaussian part is `sum_j c_j (W_j(t+h) - W_j(t))`, out of the raw
     /// increments.
     Increments,
     /// A component of its own, a [`Component::Convolution`].

@@ -413,20 +413,15 @@ fn the_authors_coordinate_is_stepped_and_its_exact_law_used() {
 }
 
 #[test]
-fn a_correlation_that_moves_keeps_a_pair_from_one_exact_draw() {
+fn a_correlation_that_moves_is_part_of_one_exact_draw() {
     let text = state("X", "mu", "W = \"sigma\"", "") + &state("Y", "mu", "B = \"eta\"", "");
-    let planned = plan(&(TWO_DRIVERS.replace("\"rho\"", "\"rho*exp(-t)\"") + &text));
-    assert!(planned.plan.groups.iter().any(|g| !g.is_exact()));
-    let reasons: Vec<_> = planned
-        .plan
-        .groups
-        .iter()
-        .flat_map(|g| &g.reasons)
-        .collect();
-    assert!(
-        reasons.iter().any(|r| r.contains("correlation")),
-        "{reasons:?}"
-    );
+    for (rho, moves) in [("rho*exp(-t)", true), ("rho", false)] {
+        let planned = plan(&(TWO_DRIVERS.replace("\"rho\"", &format!("\"{rho}\"")) + &text));
+        let Method::LinearGaussian(system) = &only(&planned).method else {
+            panic!("{:?}", only(&planned).reasons)
+        };
+        assert_eq!(system.moving, moves);
+    }
 }
 
 #[test]

@@ -4,9 +4,11 @@
 //! unfused arithmetic on one thread, so its results are the same bits everywhere.
 
 mod cholesky;
+mod moving;
 mod transition;
 
 pub use cholesky::cholesky;
+pub use moving::moving_transition;
 pub use transition::linear_transition;
 
 /// `out = left * right` for square matrices.

@@ -1,10 +1,11 @@
 //! Which states follow a linear Gaussian system, in coordinates of their own.
 //!
-//! With `u_i = F_i(x_i)` by Ito's rule `du_i = mu_i dt + sum_j c_ij dW_j`. The states whose `c_ij`
-//! are constants and whose `mu_i` are `sum_j A_ij u_j + alpha_i` with constants `A`, `alpha` have a
-//! Gaussian transition that can be drawn exactly. `A_ij` is read off as `(d mu_i/dx_j)/F_j'(x_j)`;
-//! that it and the rest are constant is proved by algebra, never guessed, and the finished row is
-//! compared once more, by normal form and by numbers.
+//! With `u_i = F_i(x_i, t)` by Ito's rule `du_i = mu_i dt + sum_j c_ij dW_j`. The states whose `c_ij`
+//! are free of the states and whose `mu_i` are `sum_j A_ij u_j + alpha_i` with `A`, `alpha` free of them
+//! have a Gaussian transition that can be drawn exactly (Karatzas and Shreve 1991, section 5.6; the
+//! coefficients may depend on time). `A_ij` is read off as `(d mu_i/dx_j)/F_j'(x_j)`; that it and the
+//! rest are free of the states is proved by algebra, never guessed, and the finished row is compared
+//! once more, by normal form and by numbers.
 //!
 //! The largest set of such states is found by elimination: a state that fails takes with it those
 //! whose drift needs it, and only those.
@@ -30,9 +31,9 @@ pub struct Row {
     pub process: Process,
     /// The non-zero entries of its row of `A`, by state.
     pub slopes: BTreeMap<usize, Expr>,
-    /// The constant part of its drift.
+    /// The part of its drift that is free of the states.
     pub constant: Expr,
-    /// The coefficients of the drivers, constants.
+    /// The coefficients of the drivers, free of the states.
     pub noise: Vec<Expr>,
     /// The drivers whose coefficient is not zero.
     pub drivers: Vec<usize>,
@@ -50,7 +51,7 @@ pub fn find(model: &Model, dynamics: &Dynamics, excluded: &BTreeMap<usize, Strin
     let mut finder = Finder::new(model, dynamics, excluded);
     loop {
         let rows = finder.settle();
-        match confined(model, &rows).or_else(|| moving_correlation(model, &rows)) {
+        match confined(model, &rows) {
             Some((state, reason)) => finder.exclude(state, reason),
             None => return rows,
         }
@@ -132,31 +133,4 @@ fn confined(model: &Model, rows: &Rows) -> Option<(usize, String)> {
             model.states[state].name
         ),
     ))
-}
-
-/// A state of a group in which a correlation changes with time.
-fn moving_correlation(model: &Model, rows: &Rows) -> Option<(usize, String)> {
-    let (pool, time) = (&model.pool, model.time);
-    for group in components(model, rows) {
-        let members = || {
-            group
-                .iter()
-                .filter_map(|&i| Some((i, rows[i].as_ref().ok()?)))
-        };
-        for (i, left) in members() {
-            for (_, right) in members() {
-                if let Some(rho) = pairs(model, left, right).find(|&r| pool.depends_on(r, time)) {
-                    let rho = pool.format(rho);
-                    return Some((
-                        i,
-                        format!(
-                            "the correlation {rho} of its drivers depends on time; exact transitions are \
-                         drawn for constant correlations"
-                        ),
-                    ));
-                }
-            }
-        }
-    }
-    None
 }

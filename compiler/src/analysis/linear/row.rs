@@ -71,7 +71,7 @@ impl Finder<'_> {
         })
     }
 
-    /// `e` as a formula in the parameters alone, or why it is none.
+    /// `e` as a formula in time and the parameters alone, or why it is none.
     fn constant(&self, e: Expr, refusal: impl Fn(&str) -> String) -> Result<Expr, String> {
         let pool = &self.model.pool;
         match free_of(pool, e, &self.symbols) {
@@ -79,10 +79,6 @@ impl Finder<'_> {
             Freedom::CannotTell(symbol) => Err(format!(
                 "{} (this could not be decided)",
                 refusal(&pool.symbol_name(symbol))
-            )),
-            Freedom::Free(value) if pool.depends_on(value, self.model.time) => Err(format!(
-                "the coefficient {} depends on time; exact transitions are drawn for constant coefficients",
-                pool.format(value)
             )),
             Freedom::Free(value) => Ok(value),
         }

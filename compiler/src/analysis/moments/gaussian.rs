@@ -8,6 +8,8 @@
 use std::cell::RefCell;
 use std::collections::BTreeMap;
 
+use driftwright_runtime::gauss::{linear_transition, moving_transition};
+
 use super::exp_poly::ExpPoly;
 use crate::calculus::bracket;
 use crate::model::Model;
@@ -103,9 +105,15 @@ impl Gaussian {
         let row = &self.rows[i];
         let mut forcing = ExpPoly::read(pool, model.time, row.alpha)?;
         for &(k, coefficient) in row.a.iter().filter(|&&(k, _)| k != i) {
-            forcing.add_scaled(pool, coefficient, &self.mean_terms(model, k)?);
+            let coefficient = ExpPoly::read(pool, model.time, coefficient)?;
+            forcing.add_product(pool, &coefficient, &self.mean_terms(model, k)?);
         }
-        ExpPoly::solve(pool, self.own_rate(pool, i), &forcing, self.start(model, i))
+        ExpPoly::solve(
+            pool,
+            self.own_rate(model, i)?,
+            &forcing,
+            self.start(model, i),
+        )
     }
 
     fn covariance_terms(&self, model: &Model, i: usize, j: usize) -> Option<ExpPoly> {
@@ -129,24 +137,19 @@ impl Gaussian {
         let mut forcing = ExpPoly::read(pool, model.time, pool.simplify(rate))?;
         for (row, other) in [(i, j), (j, i)] {
             for &(k, coefficient) in self.rows[row].a.iter().filter(|&&(k, _)| k != row) {
-                let terms = self.covariance_terms(model, k, other)?;
-                forcing.add_scaled(pool, coefficient, &terms);
+                let coefficient = ExpPoly::read(pool, model.time, coefficient)?;
+                forcing.add_product(pool, &coefficient, &self.covariance_terms(model, k, other)?);
             }
         }
-        let rate = pool.add(self.own_rate(pool, i), self.own_rate(pool, j));
+        let rate = pool.add(self.own_rate(model, i)?, self.own_rate(model, j)?);
         ExpPoly::solve(pool, rate, &forcing, pool.zero())
     }
 
-    /// The diagonal entry of `a`.
-    fn own_rate(&self, pool: &Pool, i: usize) -> Expr {
-        pool.sum(
-            self.rows[i]
-                .a
-                .iter()
-                .filter(|&&(k, _)| k == i)
-                .map(|&(_, a)| a)
-                .collect::<Vec<_>>(),
-        )
+    /// The diagonal entry of `a`; none where it depends on time.
+    fn own_rate(&self, model: &Model, i: usize) -> Option<Expr> {
+        let own = self.rows[i].a.iter().filter(|&&(k, _)| k == i);
+        let rate = model.pool.sum(own.map(|&(_, a)| a).collect::<Vec<_>>());
+        (!model.pool.depends_on(rate, model.time)).then_some(rate)
     }
 
     /// The rows that the given ones depend on, themselves included, ascending.
@@ -167,8 +170,9 @@ impl Gaussian {
         self.closure(&[i]).iter().all(quiet)
     }
 
-    /// Means and covariances of the given rows at time `t` as numbers, by the matrix exponential; the
-    /// values are keyed by the stand-in symbols of [`mean_symbol`] and [`covariance_symbol`].
+    /// Means and covariances of the given rows at time `t` as numbers, by the matrix exponential or, where
+    /// coefficients depend on time, by integrating them; the values are keyed by the stand-in symbols of
+    /// [`mean_symbol`] and [`covariance_symbol`].
     pub(super) fn numbers(
         &self,
         model: &Model,
@@ -179,31 +183,28 @@ impl Gaussian {
         let pool = &model.pool;
         let closure = self.closure(rows);
         let n = closure.len();
-        let number = |e: Expr| pool.eval_f64(e, values);
-        let mut a = vec![0.0; n * n];
-        let (mut alpha, mut q, mut start) = (vec![0.0; n], vec![0.0; n * n], vec![0.0; n]);
-        for (r, &i) in closure.iter().enumerate() {
-            alpha[r] = number(self.rows[i].alpha)?;
-            start[r] = number(self.start(model, i))?;
-            for &(k, coefficient) in &self.rows[i].a {
-                a[r * n + closure.binary_search(&k).ok()?] += number(coefficient)?;
-            }
-            for (s, &j) in closure.iter().enumerate() {
-                q[r * n + s] = number(bracket(model, &self.rows[i].c, &self.rows[j].c))?;
-            }
-        }
+        let formulas = self.coefficients(model, &closure)?;
         let (mut e, mut shift, mut spread) = (vec![0.0; n * n], vec![0.0; n], vec![0.0; n * n]);
-        driftwright_runtime::gauss::linear_transition(
-            n,
-            &a,
-            &alpha,
-            &q,
-            t,
-            &mut e,
-            &mut shift,
-            &mut spread,
-        )
-        .ok()?;
+        if formulas.iter().any(|&f| pool.depends_on(f, model.time)) {
+            let evaluate = |instant: f64, out: &mut [f64]| {
+                let mut at = values.clone();
+                at.insert(model.time, instant);
+                for (out, &formula) in out.iter_mut().zip(&formulas) {
+                    *out = pool.eval_f64(formula, &at).unwrap_or(f64::NAN);
+                }
+            };
+            moving_transition(n, 0.0, t, evaluate, &mut e, &mut shift, &mut spread).ok()?;
+        } else {
+            let number = |&f: &Expr| pool.eval_f64(f, values);
+            let numbers = formulas.iter().map(number).collect::<Option<Vec<f64>>>()?;
+            let (a, rest) = numbers.split_at(n * n);
+            let (alpha, q) = rest.split_at(n);
+            linear_transition(n, a, alpha, q, t, &mut e, &mut shift, &mut spread).ok()?;
+        }
+        let start = closure
+            .iter()
+            .map(|&i| pool.eval_f64(self.start(model, i), values));
+        let start = start.collect::<Option<Vec<f64>>>()?;
         let mut found = BTreeMap::new();
         for (r, &i) in closure.iter().enumerate() {
             let moved: f64 = (0..n).map(|s| e[r * n + s] * start[s]).sum();
@@ -214,6 +215,24 @@ impl Gaussian {
             }
         }
         Some(found)
+    }
+
+    /// `a`, `alpha` and `c R c'` of the given rows, one after the other.
+    fn coefficients(&self, model: &Model, closure: &[usize]) -> Option<Vec<Expr>> {
+        let (pool, n) = (&model.pool, closure.len());
+        let mut a = vec![pool.zero(); n * n];
+        for (r, &i) in closure.iter().enumerate() {
+            for &(k, coefficient) in &self.rows[i].a {
+                let place = r * n + closure.binary_search(&k).ok()?;
+                a[place] = pool.add(a[place], coefficient);
+            }
+        }
+        let alpha = closure.iter().map(|&i| self.rows[i].alpha);
+        let pairs = closure
+            .iter()
+            .flat_map(|&i| closure.iter().map(move |&j| (i, j)));
+        let rates = pairs.map(|(i, j)| bracket(model, &self.rows[i].c, &self.rows[j].c));
+        Some(a.into_iter().chain(alpha).chain(rates).collect())
     }
 }
 

@@ -177,6 +177,17 @@ impl Moments {
         })
     }
 
+    /// Where [`Moments::numeric_mean`] of a formula, or of its powers, comes from.
+    pub fn numeric_source(&self, formula: Expr) -> String {
+        match self.expectation(formula) {
+            Some(_) => {
+                let law = self.source_of(formula, &self.rows_of(formula));
+                format!("{law}, integrated as numbers")
+            }
+            None => "moment equations, solved as numbers".to_owned(),
+        }
+    }
+
     /// The variance of a formula at time `t` as a number.
     pub fn numeric_variance(
         &self,

@@ -65,7 +65,7 @@ impl Uniform {
             let op = &program.value(id).op;
             let place = self.first[id.index()];
             if op.is_aggregate() {
-                let result = self.matrix(op)?;
+                let result = self.matrix(program, id)?;
                 self.numbers[place..place + result.len()].copy_from_slice(&result);
             } else {
                 self.numbers[place] = self.scalar(op, times);
@@ -78,7 +78,7 @@ impl Uniform {
         match *op {
             Op::Const(number) => number.value(),
             Op::Parameter(index) => self.parameters[index],
-            Op::Start | Op::Time => start,
+            Op::Start | Op::Time | Op::Instant => start,
             Op::Length => length,
             Op::Unary(op, a) => op.apply::<Unfused>(self.get(a)),
             Op::Binary(op, a, b) => op.apply::<Unfused>(self.get(a), self.get(b)),
@@ -95,13 +95,18 @@ impl Uniform {
                 otherwise
             }),
             Op::Extract(of, index) => self.numbers[self.first[of.index()] + index],
-            Op::State(_) | Op::Noise(_) | Op::Cholesky { .. } | Op::Transition { .. } => {
+            Op::State(_)
+            | Op::Noise(_)
+            | Op::Cholesky { .. }
+            | Op::Transition { .. }
+            | Op::MovingTransition { .. } => {
                 unreachable!("the verifier lets no lane and no matrix in here")
             }
         }
     }
 
-    fn matrix(&self, op: &Op) -> Result<Vec<f64>, StepError> {
+    fn matrix(&self, program: &Program, id: ValueId) -> Result<Vec<f64>, StepError> {
+        let op = &program.value(id).op;
         let all = |ids: &[ValueId]| ids.iter().map(|&id| self.get(id)).collect::<Vec<f64>>();
         let mut result = vec![0.0; op.width()];
         match op {
@@ -129,9 +134,54 @@ impl Uniform {
                     covariance,
                 )?;
             }
+            Op::MovingTransition {
+                dim,
+                a,
+                alpha,
+                q,
+                start,
+                length,
+            } => {
+                let coefficients = [&a[..], alpha, q].concat();
+                self.moving(
+                    program,
+                    id,
+                    *dim,
+                    &coefficients,
+                    [*start, *length],
+                    &mut result,
+                )?;
+            }
             _ => unreachable!("only matrix operations are matrices"),
         }
         Ok(result)
+    }
+
+    /// The law of a system whose coefficients are evaluated anew at every instant it asks for.
+    fn moving(
+        &self,
+        program: &Program,
+        id: ValueId,
+        dim: usize,
+        coefficients: &[ValueId],
+        [start, length]: [ValueId; 2],
+        result: &mut [f64],
+    ) -> Result<(), StepError> {
+        let values = program.instant_values(id);
+        let mut instant = self.clone();
+        let evaluate = |time: f64, out: &mut [f64]| {
+            for &id in &values {
+                let value = instant.scalar(&program.value(id).op, [time, 0.0]);
+                instant.numbers[instant.first[id.index()]] = value;
+            }
+            for (out, &id) in out.iter_mut().zip(coefficients) {
+                *out = instant.get(id);
+            }
+        };
+        let (e, rest) = result.split_at_mut(dim * dim);
+        let (shift, covariance) = rest.split_at_mut(dim);
+        let [start, length] = [self.get(start), self.get(length)];
+        gauss::moving_transition(dim, start, length, evaluate, e, shift, covariance)
     }
 
     fn check(&self, program: &Program, check: &Check) -> Result<(), ParameterError> {

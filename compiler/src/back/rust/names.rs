@@ -103,11 +103,11 @@ fn value_names(program: &Program, shared: &Unique) -> Vec<Ident> {
     assign(Rate::Constant, &mut setup);
     assign(Rate::Setup, &mut setup);
     for rates in [
-        [Rate::Step, Rate::StepLane],
-        [Rate::Observation, Rate::ObservationLane],
+        [Rate::Step, Rate::Instant, Rate::StepLane].as_slice(),
+        &[Rate::Observation, Rate::ObservationLane],
     ] {
         let mut scope = setup.clone();
-        rates.into_iter().for_each(|rate| assign(rate, &mut scope));
+        rates.iter().for_each(|&rate| assign(rate, &mut scope));
     }
     names
         .into_iter()
@@ -121,6 +121,7 @@ fn value_hint(program: &Program, id: ValueId) -> String {
         (Op::State(slot), _) => format!("state_{}", snake(&program.slots[*slot].name)),
         (Op::Start, _) => "start_of_step".to_owned(),
         (Op::Length, _) => "length_of_step".to_owned(),
+        (Op::Instant, _) => "instant_of_step".to_owned(),
         (Op::Time, _) => "time_of_observation".to_owned(),
         (_, Some(hint)) => snake(hint),
         (_, None) => format!("v{}", id.index()),

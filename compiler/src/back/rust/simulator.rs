@@ -84,8 +84,9 @@ impl Generator<'_> {
     /// `step_values` or `observation_values`.
     fn uniform(&self, rate: Rate) -> TokenStream {
         let program = self.program;
-        let read = program
-            .section(rate)
+        let laws = program.section(rate);
+        let read = laws
+            .flat_map(|id| program.instant_values(id).into_iter().chain([id]))
             .flat_map(|id| program.value(id).op.operands());
         let bindings = self.bindings(read);
         let statements = self.statements(program.section(rate), Place::Uniform);

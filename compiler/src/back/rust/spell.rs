@@ -21,7 +21,7 @@ pub(super) enum Place {
 pub(super) fn has_statement(op: &Op) -> bool {
     !matches!(
         op,
-        Op::Const(_) | Op::Parameter(_) | Op::Start | Op::Length | Op::Time
+        Op::Const(_) | Op::Parameter(_) | Op::Start | Op::Length | Op::Time | Op::Instant
     )
 }
 
@@ -55,6 +55,7 @@ impl Generator<'_> {
             Op::Start => quote! { start },
             Op::Length => quote! { length },
             Op::Time => quote! { time },
+            Op::Instant => quote! { instant },
             _ => {
                 let name = self.names.value(id);
                 quote! { #name }
@@ -88,6 +89,14 @@ impl Generator<'_> {
                 q,
                 length,
             } => self.transition(name, *dim, [a, alpha, q], *length),
+            Op::MovingTransition {
+                dim,
+                a,
+                alpha,
+                q,
+                start,
+                length,
+            } => self.moving_transition(id, *dim, [a, alpha, q], [*start, *length]),
             op => {
                 let expression = self.expression(op, place);
                 quote! { let #name = #expression; }
@@ -221,10 +230,46 @@ impl Generator<'_> {
         }
     }
 
+    /// The coefficients in a closure, computed at every instant that the law asks for.
+    fn moving_transition(
+        &self,
+        id: ValueId,
+        dim: usize,
+        matrices: [&[ValueId]; 3],
+        times: [ValueId; 2],
+    ) -> TokenStream {
+        let name = self.names.value(id);
+        let (size, dim) = (
+            Literal::usize_unsuffixed(dim * dim),
+            Literal::usize_unsuffixed(dim),
+        );
+        let [start, length] = times.map(|id| self.read(id));
+        let values = self.program.instant_values(id);
+        let statements = self.statements(values.into_iter(), Place::Uniform);
+        let coefficients = self.reads(&matrices.concat());
+        quote! {
+            let mut #name = ([0.0; #size], [0.0; #dim], [0.0; #size]);
+            runtime::gauss::moving_transition(
+                #dim,
+                #start,
+                #length,
+                |instant, coefficients| {
+                    #statements
+                    coefficients.copy_from_slice(&[#(#coefficients),*]);
+                },
+                &mut #name.0,
+                &mut #name.1,
+                &mut #name.2,
+            )?;
+        }
+    }
+
     fn extract(&self, of: ValueId, index: usize) -> TokenStream {
         let name = self.names.value(of);
         let index_of = Literal::usize_unsuffixed;
-        let Op::Transition { dim, .. } = self.program.value(of).op else {
+        let (Op::Transition { dim, .. } | Op::MovingTransition { dim, .. }) =
+            self.program.value(of).op
+        else {
             let index = index_of(index);
             return quote! { #name[#index] };
         };

@@ -89,7 +89,7 @@ impl Targets {
 
     fn quantity(&mut self, analyst: &Analyst<'_>, output: usize, name: &str, formula: Expr) {
         let closed = analyst.moments.mean(formula).map(|m| m.source);
-        let source = closed.unwrap_or_else(|| "moment equations, solved as numbers".to_owned());
+        let source = closed.unwrap_or_else(|| analyst.moments.numeric_source(formula));
         for statistic in [
             Statistic::Mean(output),
             Statistic::Variance(output),
@@ -128,9 +128,9 @@ impl Targets {
                     self.model.states[i].name, self.model.states[j].name
                 );
                 let found = analyst.moments.covariance(self.outputs[i], self.outputs[j]);
-                let source = found.map_or("moment equations, solved as numbers".to_owned(), |m| {
-                    m.source
-                });
+                let product = self.model.pool.mul(self.outputs[i], self.outputs[j]);
+                let source = found.map(|m| m.source);
+                let source = source.unwrap_or_else(|| analyst.moments.numeric_source(product));
                 let pair = self.pair(i, j);
                 self.push(
                     &name,

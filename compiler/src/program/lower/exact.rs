@@ -4,7 +4,7 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use super::Lowering;
 use super::noise::{Mixture, Noise, Transition};
-use super::rows::{elapsed, is_diagonal};
+use super::rows::{elapsed, is_decoupled};
 use crate::program::op::ValueId;
 use crate::scheme::{Component, Group, LinearGaussian, RowNoise};
 
@@ -18,7 +18,7 @@ impl Lowering<'_> {
         noise: &Noise,
         next: &mut BTreeMap<usize, ValueId>,
     ) {
-        let transition = if is_diagonal(self, system) {
+        let transition = if is_decoupled(self, system) {
             None
         } else {
             let known = noise.transitions.get(&index).copied();

@@ -1,8 +1,8 @@
 //! From the planner's decisions to the step program.
 //!
-//! Formulas are lowered in one of three environments: the constructor (parameters), a step (time at its
-//! start, its length, the stored coordinates, the drivers' increments) and an observation (its time,
-//! the stored coordinates).
+//! Formulas are lowered in one of four environments: the constructor (parameters), a step (time at its
+//! start, its length, the stored coordinates, the drivers' increments), an instant within a step (its
+//! time) and an observation (its time, the stored coordinates).
 
 mod approximate;
 mod constructor;
@@ -76,6 +76,7 @@ struct Lowering<'a> {
     parameters: BTreeMap<Symbol, ValueId>,
     setup: Environment,
     step: Environment,
+    instant: Environment,
     observation: Environment,
     notes: Vec<Note>,
 }
@@ -98,12 +99,14 @@ impl<'a> Lowering<'a> {
             setup: Environment::new(parameters.clone()),
             parameters,
             step: Environment::default(),
+            instant: Environment::default(),
             observation: Environment::default(),
             notes: Vec::new(),
         };
         let start = lowering.builder.start();
         let coordinates = lowering.coordinates(Phase::Step);
         lowering.step = lowering.step_environment(start, coordinates);
+        lowering.instant = lowering.instant_environment();
         lowering.observation = lowering.observation_environment();
         lowering
     }
@@ -134,6 +137,12 @@ impl<'a> Lowering<'a> {
         Environment::new(bindings)
     }
 
+    fn instant_environment(&mut self) -> Environment {
+        let mut bindings = self.parameters.clone();
+        bindings.insert(self.model.time, self.builder.instant());
+        Environment::new(bindings)
+    }
+
     fn observation_environment(&mut self) -> Environment {
         let mut bindings = self.parameters.clone();
         bindings.extend(self.coordinates(Phase::Observation));
@@ -153,6 +162,16 @@ impl<'a> Lowering<'a> {
 
     fn in_step(&mut self, formula: Expr) -> ValueId {
         let environment = &mut self.step;
+        Formulas {
+            pool: &self.model.pool,
+            builder: &mut self.builder,
+            environment,
+        }
+        .lower(formula)
+    }
+
+    fn at_instant(&mut self, formula: Expr) -> ValueId {
+        let environment = &mut self.instant;
         Formulas {
             pool: &self.model.pool,
             builder: &mut self.builder,

@@ -9,8 +9,8 @@ use std::collections::BTreeMap;
 
 use super::Lowering;
 use super::rows::{
-    Row, blocks, coupled_groups, covariance_rate, decoupled_covariance, elapsed, linear, position,
-    rows,
+    Row, blocks, coupled_groups, covariance_rate, decoupled_covariance, elapsed, has_moving_law,
+    linear, position, rows,
 };
 use super::system::System;
 use crate::program::op::ValueId;
@@ -76,7 +76,7 @@ impl Noise {
 
     fn block(&mut self, lowering: &mut Lowering<'_>, rows: &[Row], block: &[usize]) {
         let coupled = coupled_groups(lowering, rows, block);
-        let covariance = if coupled.is_empty() {
+        let covariance = if coupled.is_empty() && !has_moving_law(lowering, rows, block) {
             if self.decoupled_shortcut(lowering, rows, block) {
                 return;
             }

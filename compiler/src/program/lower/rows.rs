@@ -59,15 +59,24 @@ pub(super) fn position(lowering: &Lowering<'_>, group: usize, state: usize) -> u
         .expect("the state belongs to the group")
 }
 
-/// Whether a system's rows do not read one another.
-pub(super) fn is_diagonal(lowering: &Lowering<'_>, system: &LinearGaussian) -> bool {
+impl Lowering<'_> {
+    /// Whether one of these formulas depends on time.
+    pub(super) fn any_moves(&self, formulas: impl IntoIterator<Item = Expr>) -> bool {
+        let depends = |e| self.model.pool.depends_on(e, self.model.time);
+        formulas.into_iter().any(depends)
+    }
+}
+
+/// Whether a system's rows do not read one another and stand still: their laws are formulas.
+pub(super) fn is_decoupled(lowering: &Lowering<'_>, system: &LinearGaussian) -> bool {
     let pool = &lowering.model.pool;
     let rows = system.a.iter().enumerate();
-    rows.into_iter().all(|(i, row)| {
-        row.iter()
-            .enumerate()
-            .all(|(k, &e)| i == k || pool.is_zero_literal(e))
-    })
+    !system.moving
+        && rows.into_iter().all(|(i, row)| {
+            row.iter()
+                .enumerate()
+                .all(|(k, &e)| i == k || pool.is_zero_literal(e))
+        })
 }
 
 pub(super) fn coupled_groups(lowering: &Lowering<'_>, rows: &[Row], block: &[usize]) -> Vec<usize> {
@@ -80,10 +89,20 @@ pub(super) fn coupled_groups(lowering: &Lowering<'_>, rows: &[Row], block: &[usi
     groups
 }
 
+/// Whether an exact law shares the block with drivers whose correlation to it depends on time.
+pub(super) fn has_moving_law(lowering: &Lowering<'_>, rows: &[Row], block: &[usize]) -> bool {
+    let law = |&i: &usize| matches!(rows[i].component, Component::Convolution { .. });
+    let moves = |i: usize, k: usize| {
+        let (c, d) = (&rows[i].coefficients, &rows[k].coefficients);
+        lowering.any_moves([covariance_rate(lowering, c, d)])
+    };
+    block.iter().any(law) && block.iter().any(|&i| block.iter().any(|&k| moves(i, k)))
+}
+
 fn coupled_group(lowering: &Lowering<'_>, row: &Row) -> Option<usize> {
     match row.component {
         Component::Convolution { group, .. } => linear(lowering, group)
-            .filter(|system| !is_diagonal(lowering, system))
+            .filter(|system| !is_decoupled(lowering, system))
             .map(|_| group),
         Component::Increment { .. } => None,
     }

@@ -38,33 +38,60 @@ impl System {
         }
     }
 
+    /// The law of a step as a matrix operation, and its dimension. Where a coefficient depends on time
+    /// the coefficients are computed at every instant that the law asks for.
     pub(super) fn transition(&self, lowering: &mut Lowering<'_>) -> (ValueId, usize) {
         let dim = self.len();
-        let zero = lowering.builder.number(0.0);
-        let mut a = vec![zero; dim * dim];
+        let rates = self.covariance_rates(lowering);
+        let formulas = self.a.iter().map(|&(.., entry)| entry);
+        let formulas = formulas
+            .chain(self.alpha.iter().copied().flatten())
+            .chain(rates.iter().copied());
+        let moving = lowering.any_moves(formulas);
+        let mut value = |formula: Expr| match moving {
+            true => lowering.at_instant(formula),
+            false => lowering.in_step(formula),
+        };
+        let mut entries: Vec<Option<ValueId>> = vec![None; dim * dim];
         for &(i, k, entry) in &self.a {
-            a[i * dim + k] = lowering.in_step(entry);
+            entries[i * dim + k] = Some(value(entry));
         }
-        let alpha: Vec<ValueId> = self
+        let alpha: Vec<Option<ValueId>> = self
             .alpha
             .iter()
-            .map(|alpha| alpha.map_or(zero, |alpha| lowering.in_step(alpha)))
+            .map(|alpha| alpha.map(&mut value))
             .collect();
-        let mut q = Vec::with_capacity(dim * dim);
-        for i in 0..dim {
-            for k in 0..dim {
-                let rate = covariance_rate(lowering, &self.c[i], &self.c[k]);
-                q.push(lowering.in_step(rate));
+        let q = rates.into_iter().map(&mut value).collect();
+        let zero = lowering.builder.number(0.0);
+        let or_zero =
+            |values: Vec<Option<ValueId>>| values.into_iter().map(|v| v.unwrap_or(zero)).collect();
+        let (a, alpha) = (or_zero(entries), or_zero(alpha));
+        let (start, length) = (lowering.builder.start(), lowering.builder.length());
+        let op = if moving {
+            Op::MovingTransition {
+                dim,
+                a,
+                alpha,
+                q,
+                start,
+                length,
             }
-        }
-        let length = lowering.builder.length();
-        let op = Op::Transition {
-            dim,
-            a: a.into(),
-            alpha: alpha.into(),
-            q: q.into(),
-            length,
+        } else {
+            Op::Transition {
+                dim,
+                a,
+                alpha,
+                q,
+                length,
+            }
         };
         (lowering.builder.matrix(op), dim)
+    }
+
+    /// `c R c'`, row by row.
+    fn covariance_rates(&self, lowering: &Lowering<'_>) -> Vec<Expr> {
+        let rows = self.c.iter();
+        rows.flat_map(|c| self.c.iter().map(|d| covariance_rate(lowering, c, d)))
+            .collect()
     }
 }
