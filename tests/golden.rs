@@ -36,18 +36,21 @@ fn golden(file: &str, text: &str) {
     assert!(expected == text, "{} differs in length", path.display());
 }
 
-/// Models whose generated Rust is kept: one exact law, one coupled exact law, one approximate scheme.
-const RUST: [&str; 3] = [
+/// Models whose generated Rust is kept: one exact law, one coupled, one whose
+/// coefficients move with time, one approximate scheme.
+const RUST: [&str; 4] = [
     "models/orchard_spot.toml",
     "models/harbour_account.toml",
     "models/honey_market.toml",
+    "models/peat_season.toml",
 ];
 
 /// Models whose step program is kept: what must not change unnoticed, since it decides every bit.
-const PROGRAMS: [&str; 4] = [
+const PROGRAMS: [&str; 5] = [
     "models/orchard_spot.toml",
     "models/twin_orchards.toml",
     "models/honey_market.toml",
+    "models/peat_season.toml",
     "tests/fixtures/models/seasons.toml",
 ];
 

@@ -66,7 +66,7 @@ pub mod harbour_account {
     #[derive(Clone, Debug)]
     pub struct HarbourAccount {
         parameters: Parameters,
-        v11: f64,
+        v10: f64,
         v12: f64,
         v13: f64,
     }
@@ -112,10 +112,10 @@ pub mod harbour_account {
                 0.0,
                 runtime::Interval::new(f64::NEG_INFINITY, false, f64::INFINITY, false),
             )?;
-            let v11 = -kappa;
+            let v10 = -kappa;
             let v12 = kappa * theta;
             let v13 = sigma * sigma;
-            Ok(Self { parameters, v11, v12, v13 })
+            Ok(Self { parameters, v10, v12, v13 })
         }
 
         /// The parameters it was constructed with.
@@ -162,13 +162,13 @@ pub mod harbour_account {
             length: f64,
             values: &mut [f64],
         ) -> Result<(), runtime::StepError> {
-            let v11 = self.v11;
+            let v10 = self.v10;
             let v12 = self.v12;
             let v13 = self.v13;
             let mut v14 = ([0.0; 4], [0.0; 2], [0.0; 4]);
             runtime::gauss::linear_transition(
                 2,
-                &[v11, 0.0, 1.0, 0.0],
+                &[v10, 0.0, 1.0, 0.0],
                 &[v12, 0.0],
                 &[v13, 0.0, 0.0, 0.0],
                 length,
