@@ -1,8 +1,8 @@
 //! Leading terms: how a formula behaves as an auxiliary symbol goes to zero from above.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, HashMap};
 
-use crate::symbolic::{Bound, Expr, Function, Node, Pool, Rational, Symbol, SymbolKind};
+use crate::symbolic::{Bound, Expr, Function, Limit, Node, Pool, Rational, Symbol, SymbolKind};
 
 /// The leading term of a formula.
 #[derive(Clone, Debug, PartialEq)]
@@ -54,28 +54,137 @@ pub fn at_end(pool: &Pool, e: Expr, x: Symbol, end: Bound, side: Side) -> Leadin
         (None, Side::Upper) => pool.div(pool.one(), xi),
     };
     let near = pool.substitute(e, &BTreeMap::from([(x, place)]));
-    match leading(pool, pool.simplify(near), symbol) {
-        Leading::Unknown => leading(pool, pool.expand(near), symbol),
+    let mut rules = Rules {
+        pool,
+        xi: symbol,
+        known: HashMap::new(),
+        level: 0,
+    };
+    if pool.is_heavy(near) {
+        pool.exceed(Limit::Asymptotics);
+        return rules.leading(near);
+    }
+    match rules.leading(pool.simplify(near)) {
+        Leading::Unknown => rules.leading(pool.expand(near)),
         known => known,
     }
 }
 
-fn leading(pool: &Pool, e: Expr, xi: Symbol) -> Leading {
-    if !pool.depends_on(e, xi) {
-        return constant(pool, e);
-    }
-    match &*pool.node(e) {
-        Node::Symbol(_) => Leading::Term {
-            coefficient: pool.one(),
-            exponent: Rational::ONE,
-        },
-        Node::Product(factors) => product(pool, factors, xi),
-        Node::Sum(terms) => sum(pool, terms, xi),
-        Node::Power(base, exponent) => power(pool, *base, *exponent, xi),
-        Node::Call(function, arguments) if arguments.len() == 1 => {
-            call(pool, *function, leading(pool, arguments[0], xi))
+/// The rules, with the parts that have been looked at: a shared part is looked at once.
+struct Rules<'a> {
+    pool: &'a Pool,
+    xi: Symbol,
+    known: HashMap<Expr, Leading>,
+    level: u64,
+}
+
+impl Rules<'_> {
+    fn leading(&mut self, e: Expr) -> Leading {
+        if let Some(known) = self.known.get(&e) {
+            return known.clone();
         }
-        _ => Leading::Unknown,
+        if self.level == Limit::Asymptotics.amount() {
+            self.pool.exceed(Limit::Asymptotics);
+            return Leading::Unknown;
+        }
+        self.level += 1;
+        let found = self.node(e);
+        self.level -= 1;
+        self.known.insert(e, found.clone());
+        found
+    }
+
+    fn node(&mut self, e: Expr) -> Leading {
+        let pool = self.pool;
+        if !pool.depends_on(e, self.xi) {
+            return constant(pool, e);
+        }
+        match &*pool.node(e) {
+            Node::Symbol(_) => Leading::Term {
+                coefficient: pool.one(),
+                exponent: Rational::ONE,
+            },
+            Node::Product(factors) => self.product(factors),
+            Node::Sum(terms) => self.sum(terms),
+            Node::Power(base, exponent) => self.power(*base, *exponent),
+            Node::Call(function, arguments) if arguments.len() == 1 => {
+                call(pool, *function, self.leading(arguments[0]))
+            }
+            _ => Leading::Unknown,
+        }
+    }
+
+    fn product(&mut self, factors: &[Expr]) -> Leading {
+        let pool = self.pool;
+        let mut coefficients = Vec::new();
+        let mut total = Rational::ZERO;
+        for &factor in factors {
+            match self.leading(factor) {
+                Leading::Term {
+                    coefficient,
+                    exponent,
+                } => {
+                    coefficients.push(coefficient);
+                    total += exponent;
+                }
+                other => return other,
+            }
+        }
+        Leading::Term {
+            coefficient: pool.simplify(pool.product(coefficients)),
+            exponent: total,
+        }
+    }
+
+    fn sum(&mut self, terms: &[Expr]) -> Leading {
+        let pool = self.pool;
+        let mut lowest: Option<(Rational, Vec<Expr>)> = None;
+        for &term in terms {
+            let (coefficient, exponent) = match self.leading(term) {
+                Leading::Term {
+                    coefficient,
+                    exponent,
+                } => (coefficient, exponent),
+                Leading::Zero => continue,
+                Leading::Unknown => return Leading::Unknown,
+            };
+            match &mut lowest {
+                Some((least, all)) if exponent == *least => all.push(coefficient),
+                Some((least, _)) if exponent > *least => {}
+                _ => lowest = Some((exponent, vec![coefficient])),
+            }
+        }
+        let Some((exponent, coefficients)) = lowest else {
+            return Leading::Zero;
+        };
+        let coefficient = pool.simplify(pool.sum(coefficients));
+        if pool.is_zero(coefficient).is_no() {
+            Leading::Term {
+                coefficient,
+                exponent,
+            }
+        } else {
+            // The leading terms cancel: the next ones were dropped on the way.
+            Leading::Unknown
+        }
+    }
+
+    fn power(&mut self, base: Expr, exponent: Expr) -> Leading {
+        let pool = self.pool;
+        let Some(power) = pool.as_number(exponent) else {
+            return Leading::Unknown;
+        };
+        match self.leading(base) {
+            Leading::Term {
+                coefficient,
+                exponent: inner,
+            } if power.is_int() || pool.sign(coefficient).is_non_negative() => Leading::Term {
+                coefficient: pool.pow(coefficient, exponent),
+                exponent: inner * power,
+            },
+            Leading::Zero if power > Rational::ZERO => Leading::Zero,
+            _ => Leading::Unknown,
+        }
     }
 }
 
@@ -87,76 +196,6 @@ fn constant(pool: &Pool, e: Expr) -> Leading {
             coefficient: e,
             exponent: Rational::ZERO,
         }
-    }
-}
-
-fn product(pool: &Pool, factors: &[Expr], xi: Symbol) -> Leading {
-    let mut coefficients = Vec::new();
-    let mut total = Rational::ZERO;
-    for &factor in factors {
-        match leading(pool, factor, xi) {
-            Leading::Term {
-                coefficient,
-                exponent,
-            } => {
-                coefficients.push(coefficient);
-                total += exponent;
-            }
-            other => return other,
-        }
-    }
-    Leading::Term {
-        coefficient: pool.simplify(pool.product(coefficients)),
-        exponent: total,
-    }
-}
-
-fn sum(pool: &Pool, terms: &[Expr], xi: Symbol) -> Leading {
-    let mut lowest: Option<(Rational, Vec<Expr>)> = None;
-    for &term in terms {
-        let (coefficient, exponent) = match leading(pool, term, xi) {
-            Leading::Term {
-                coefficient,
-                exponent,
-            } => (coefficient, exponent),
-            Leading::Zero => continue,
-            Leading::Unknown => return Leading::Unknown,
-        };
-        match &mut lowest {
-            Some((least, all)) if exponent == *least => all.push(coefficient),
-            Some((least, _)) if exponent > *least => {}
-            _ => lowest = Some((exponent, vec![coefficient])),
-        }
-    }
-    let Some((exponent, coefficients)) = lowest else {
-        return Leading::Zero;
-    };
-    let coefficient = pool.simplify(pool.sum(coefficients));
-    if pool.is_zero(coefficient).is_no() {
-        Leading::Term {
-            coefficient,
-            exponent,
-        }
-    } else {
-        // The leading terms cancel: the next ones were dropped on the way.
-        Leading::Unknown
-    }
-}
-
-fn power(pool: &Pool, base: Expr, exponent: Expr, xi: Symbol) -> Leading {
-    let Some(power) = pool.as_number(exponent) else {
-        return Leading::Unknown;
-    };
-    match leading(pool, base, xi) {
-        Leading::Term {
-            coefficient,
-            exponent: inner,
-        } if power.is_int() || pool.sign(coefficient).is_non_negative() => Leading::Term {
-            coefficient: pool.pow(coefficient, exponent),
-            exponent: inner * power,
-        },
-        Leading::Zero if power > Rational::ZERO => Leading::Zero,
-        _ => Leading::Unknown,
     }
 }
 

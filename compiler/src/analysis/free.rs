@@ -22,6 +22,12 @@ pub enum Freedom {
 /// ...) that still mentions a symbol after simplification is never free of it: its derivative may
 /// vanish on one side of the kink only.
 pub fn free_of(pool: &Pool, e: Expr, symbols: &[Symbol]) -> Freedom {
+    let moves = |&&symbol: &&Symbol| {
+        pool.depends_on(e, symbol) && pool.is_plainly_not_zero(pool.derivative(e, symbol))
+    };
+    if let Some(&symbol) = symbols.iter().find(moves) {
+        return Freedom::DependsOn(symbol);
+    }
     let simple = pool.simplify(e);
     let present = pool.symbols_of(simple);
     let mentioned: Vec<Symbol> = symbols

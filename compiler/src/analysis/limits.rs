@@ -3,6 +3,9 @@
 //! Used for one question: does a strictly monotone map take a domain onto the whole line? A limit
 //! that the rules do not settle is "unknown", and nothing is then claimed.
 
+use std::collections::HashMap;
+
+use crate::symbolic::Limit as Budget;
 use crate::symbolic::{Expr, Function, Node, Pool, Rational, Sign, Symbol};
 
 /// A limit in the extended reals.
@@ -40,21 +43,84 @@ impl Limit {
 
 /// The limit of `e` as `x` goes to `end` from inside its range.
 pub fn limit(pool: &Pool, e: Expr, x: Symbol, end: Limit) -> Limit {
-    if !pool.depends_on(e, x) {
-        return Limit::Value(e);
-    }
-    match &*pool.node(e) {
-        Node::Symbol(_) => end,
-        Node::Sum(terms) => sum(pool, terms.iter().map(|&term| limit(pool, term, x, end))),
-        Node::Product(factors) => product(
-            pool,
-            factors.iter().map(|&factor| limit(pool, factor, x, end)),
-        ),
-        Node::Power(base, exponent) => power(pool, *base, *exponent, x, end),
-        Node::Call(function, arguments) if arguments.len() == 1 => {
-            call(pool, *function, limit(pool, arguments[0], x, end))
+    let mut rules = Rules {
+        pool,
+        x,
+        end,
+        known: HashMap::new(),
+        level: 0,
+    };
+    rules.limit(e)
+}
+
+/// The rules, with the parts that have been looked at: a shared part is looked at once.
+struct Rules<'a> {
+    pool: &'a Pool,
+    x: Symbol,
+    end: Limit,
+    known: HashMap<Expr, Limit>,
+    level: u64,
+}
+
+impl Rules<'_> {
+    fn limit(&mut self, e: Expr) -> Limit {
+        if let Some(&known) = self.known.get(&e) {
+            return known;
         }
-        _ => Limit::Unknown,
+        if self.level == Budget::Asymptotics.amount() {
+            self.pool.exceed(Budget::Asymptotics);
+            return Limit::Unknown;
+        }
+        self.level += 1;
+        let found = self.node(e);
+        self.level -= 1;
+        self.known.insert(e, found);
+        found
+    }
+
+    fn node(&mut self, e: Expr) -> Limit {
+        let pool = self.pool;
+        if !pool.depends_on(e, self.x) {
+            return Limit::Value(e);
+        }
+        match &*pool.node(e) {
+            Node::Symbol(_) => self.end,
+            Node::Sum(terms) => sum(pool, terms.iter().map(|&term| self.limit(term))),
+            Node::Product(factors) => {
+                product(pool, factors.iter().map(|&factor| self.limit(factor)))
+            }
+            Node::Power(base, exponent) => self.power(*base, *exponent),
+            Node::Call(function, arguments) if arguments.len() == 1 => {
+                call(pool, *function, self.limit(arguments[0]))
+            }
+            _ => Limit::Unknown,
+        }
+    }
+
+    fn power(&mut self, base: Expr, exponent: Expr) -> Limit {
+        let pool = self.pool;
+        if pool.depends_on(exponent, self.x) {
+            return Limit::Unknown;
+        }
+        let rises = match pool.sign(exponent) {
+            Sign::Positive => true,
+            Sign::Negative => false,
+            _ => return Limit::Unknown,
+        };
+        match (self.limit(base), rises) {
+            (Limit::PlusInfinity, true) => Limit::PlusInfinity,
+            (Limit::MinusInfinity | Limit::Infinity, true) => Limit::Infinity,
+            (Limit::PlusInfinity | Limit::MinusInfinity | Limit::Infinity, false) => {
+                Limit::Value(pool.zero())
+            }
+            (Limit::Value(value), true) => Limit::Value(pool.pow(value, exponent)),
+            (Limit::Value(value), false) => match pool.sign(value) {
+                Sign::Zero => reciprocal_of_zero(pool, base),
+                Sign::Positive | Sign::Negative => Limit::Value(pool.pow(value, exponent)),
+                _ => Limit::Unknown,
+            },
+            (Limit::Unknown, _) => Limit::Unknown,
+        }
     }
 }
 
@@ -95,31 +161,6 @@ fn product(pool: &Pool, factors: impl Iterator<Item = Limit>) -> Limit {
         Sign::Positive => infinite,
         Sign::Negative => infinite.negated(),
         _ => Limit::Unknown,
-    }
-}
-
-fn power(pool: &Pool, base: Expr, exponent: Expr, x: Symbol, end: Limit) -> Limit {
-    if pool.depends_on(exponent, x) {
-        return Limit::Unknown;
-    }
-    let rises = match pool.sign(exponent) {
-        Sign::Positive => true,
-        Sign::Negative => false,
-        _ => return Limit::Unknown,
-    };
-    match (limit(pool, base, x, end), rises) {
-        (Limit::PlusInfinity, true) => Limit::PlusInfinity,
-        (Limit::MinusInfinity | Limit::Infinity, true) => Limit::Infinity,
-        (Limit::PlusInfinity | Limit::MinusInfinity | Limit::Infinity, false) => {
-            Limit::Value(pool.zero())
-        }
-        (Limit::Value(value), true) => Limit::Value(pool.pow(value, exponent)),
-        (Limit::Value(value), false) => match pool.sign(value) {
-            Sign::Zero => reciprocal_of_zero(pool, base),
-            Sign::Positive | Sign::Negative => Limit::Value(pool.pow(value, exponent)),
-            _ => Limit::Unknown,
-        },
-        (Limit::Unknown, _) => Limit::Unknown,
     }
 }
 

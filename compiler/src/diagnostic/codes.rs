@@ -121,7 +121,7 @@ without a partner."
 
 NestedTooDeep "DW0205" "formula nested too deep"
 "Parentheses, calls, powers and signs may stand inside one another up to 200 levels. Name the inner
-parts in `[where]`."
+parts in `[where]`. With all definitions put in, a formula may nest up to 5000 levels."
 
 NotAFunction "DW0206" "function that does not exist, or is not called"
 "A name is followed by parentheses and is not a function, or a function stands without its argument.

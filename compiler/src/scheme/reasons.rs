@@ -39,12 +39,8 @@ pub(super) fn why(
     reasons.push(main_reason(context, choice, scheme));
     reasons.extend(states.iter().flat_map(|&i| ends(context, i)));
     reasons.extend(regularity(context, choice, method));
-    if let Some(budget) = model.pool.exceeded_budget() {
-        reasons.push(format!(
-            "The algebra's budget of {budget} term operations was exceeded: large products were kept as they \
-             stand, so that an exact law or a better scheme may have been missed."
-        ));
-    }
+    let exceeded = model.pool.exceeded().into_iter();
+    reasons.extend(exceeded.map(|limit| format!("A budget was exceeded: {limit}.")));
     reasons
 }
 

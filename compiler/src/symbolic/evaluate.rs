@@ -1,17 +1,17 @@
 //! Evaluation of formulas at a point, in double and in high precision.
 
-use std::collections::{BTreeMap, HashMap};
+use std::collections::BTreeMap;
 
 use super::big::{self, Big, PRECISION};
 use super::function::Function;
 use super::node::{Expr, Node, Symbol};
-use super::pool::Pool;
+use super::pool::{Pool, Table};
 
 impl Pool {
     /// The value in double precision; none where a symbol has no value or the formula has none (a
     /// division by zero, the logarithm of a negative number, an overflow).
     pub fn eval_f64(&self, e: Expr, values: &BTreeMap<Symbol, f64>) -> Option<f64> {
-        let mut done: HashMap<Expr, f64> = HashMap::new();
+        let mut done: Table<Expr, f64> = Table::default();
         for part in self.postorder(e) {
             let value = match &*self.node(part) {
                 Node::Number(value) => value.to_f64().value(),
@@ -44,7 +44,7 @@ impl Pool {
         values: &BTreeMap<Symbol, Big>,
         precision: usize,
     ) -> Option<Vec<Big>> {
-        let mut done: HashMap<Expr, Big> = HashMap::new();
+        let mut done: Table<Expr, Big> = Table::default();
         for part in self.postorder_of(formulas, |_| true) {
             let value = match &*self.node(part) {
                 Node::Number(value) => big::from_rational(value, precision),

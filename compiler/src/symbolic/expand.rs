@@ -1,18 +1,14 @@
 //! Expansion of products and whole powers of sums.
 
-use std::collections::HashMap;
-
+use super::limit::Limit;
 use super::node::{Expr, Node, Rational};
-use super::pool::Pool;
-
-/// A product that would have more terms than this stays a product.
-const MAX_TERMS: usize = 2_000;
+use super::pool::{Pool, Table};
 
 impl Pool {
     /// The formula with products of sums multiplied out, up to a budget of terms: what would grow
     /// beyond it stays as it is.
     pub fn expand(&self, e: Expr) -> Expr {
-        let mut done: HashMap<Expr, Expr> = HashMap::new();
+        let mut done: Table<Expr, Expr> = Table::default();
         for part in self.postorder(e) {
             let rebuilt = self.rebuild(&self.node(part), |child| done[&child]);
             let image = self.expand_node(rebuilt);
@@ -55,12 +51,17 @@ impl Pool {
             _ => vec![e],
         };
         let (left, right) = (terms(a), terms(b));
-        (left.len().saturating_mul(right.len()) <= MAX_TERMS).then(|| {
+        let pairs = left.len().saturating_mul(right.len());
+        if pairs as u64 > Limit::Expansion.amount() {
+            self.exceed(Limit::Expansion);
+            return None;
+        }
+        Some(
             self.sum(
                 left.iter()
                     .flat_map(|&l| right.iter().map(move |&r| (l, r)))
                     .map(|(l, r)| self.mul(l, r)),
-            )
-        })
+            ),
+        )
     }
 }

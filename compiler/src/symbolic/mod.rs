@@ -9,6 +9,7 @@
 //! high-precision evaluation is a refutation with a witness, and everything else is
 //! [`Truth::CannotTell`].
 
+mod ball;
 mod big;
 mod big_normal;
 mod build;
@@ -22,6 +23,7 @@ mod facts;
 mod function;
 mod inequality;
 mod invert;
+mod limit;
 mod node;
 mod normal;
 mod order;
@@ -29,6 +31,8 @@ mod pool;
 mod power;
 mod print;
 mod print_number;
+mod print_parts;
+mod probe;
 mod query;
 mod sample;
 mod sign;
@@ -45,6 +49,7 @@ pub use big::Big;
 pub use facts::{Bound, Interval, Sign};
 pub use function::Function;
 pub use inequality::Inequality;
+pub use limit::Limit;
 pub use node::{Expr, Node, Rational, Symbol, SymbolKind};
 pub use pool::Pool;
 pub use zero::{Truth, Witness};

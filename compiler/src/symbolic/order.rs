@@ -6,7 +6,7 @@
 
 use std::cmp::Ordering;
 
-use super::node::{Expr, Node};
+use super::node::{Expr, Node, Symbol};
 use super::pool::{Inner, Pool};
 
 impl Pool {
@@ -23,16 +23,43 @@ impl Pool {
     }
 }
 
+/// What is left of a comparison after one step.
+enum Step {
+    Done(Ordering),
+    Terms(Expr, Expr),
+    Factors(Expr, Expr),
+}
+
 impl Inner {
     /// The order of terms in a sum; numeric coefficients count last.
     fn compare_terms(&self, a: Expr, b: Expr) -> Ordering {
-        if a == b {
-            return Ordering::Equal;
+        self.walk(Step::Terms(a, b))
+    }
+
+    /// The order of factors in a product: by base, then by exponent.
+    fn compare_factors(&self, a: Expr, b: Expr) -> Ordering {
+        self.walk(Step::Factors(a, b))
+    }
+
+    /// Follows the path down to the first difference, without nesting calls: formulas may be deep.
+    fn walk(&self, mut step: Step) -> Ordering {
+        loop {
+            step = match step {
+                Step::Done(order) => return order,
+                Step::Terms(a, b) | Step::Factors(a, b) if a == b => return Ordering::Equal,
+                Step::Terms(a, b) => self.terms(a, b),
+                Step::Factors(a, b) => self.factors(a, b),
+            }
         }
+    }
+
+    fn terms(&self, a: Expr, b: Expr) -> Step {
         let (left, right) = (self.entry(a), self.entry(b));
-        (left.rank.cmp(&right.rank))
-            .then(left.degree.total_cmp(&right.degree))
-            .then_with(|| self.compare_factor_lists(a, b))
+        let outside = (left.rank.cmp(&right.rank)).then(left.degree.total_cmp(&right.degree));
+        match outside {
+            Ordering::Equal => self.factor_lists(a, b),
+            order => Step::Done(order),
+        }
     }
 
     /// The factors of a term without its numeric coefficient.
@@ -46,43 +73,39 @@ impl Inner {
         }
     }
 
-    fn compare_factor_lists(&self, a: Expr, b: Expr) -> Ordering {
+    fn factor_lists(&self, a: Expr, b: Expr) -> Step {
         let (left, right) = (self.bare_factors(&a), self.bare_factors(&b));
-        for (&l, &r) in left.iter().zip(right) {
-            if l != r {
-                return self.compare_factors(l, r);
-            }
+        let different = left.iter().zip(right).find(|(l, r)| l != r);
+        if let Some((&l, &r)) = different {
+            return Step::Factors(l, r);
         }
         // The same factors: then only the coefficients differ.
-        left.len()
-            .cmp(&right.len())
-            .then_with(|| self.compare_coefficients(a, b))
+        match left.len().cmp(&right.len()) {
+            Ordering::Equal => self.coefficients(a, b),
+            order => Step::Done(order),
+        }
     }
 
-    fn compare_coefficients(&self, a: Expr, b: Expr) -> Ordering {
+    fn coefficients(&self, a: Expr, b: Expr) -> Step {
         let first = |e: Expr| match &*self.entry(e).node {
             Node::Product(factors) => Some(factors[0]),
             _ => None,
         };
         match (first(a), first(b)) {
-            (Some(a), Some(b)) if a != b => self.compare_factors(a, b),
-            (a, b) => a.is_some().cmp(&b.is_some()),
+            (Some(a), Some(b)) if a != b => Step::Factors(a, b),
+            (a, b) => Step::Done(a.is_some().cmp(&b.is_some())),
         }
     }
 
-    /// The order of factors in a product: by base, then by exponent.
-    fn compare_factors(&self, a: Expr, b: Expr) -> Ordering {
-        if a == b {
-            return Ordering::Equal;
-        }
+    fn factors(&self, a: Expr, b: Expr) -> Step {
         let (base_a, exponent_a) = self.base_and_exponent(a);
         let (base_b, exponent_b) = self.base_and_exponent(b);
         if base_a != base_b {
-            return self.compare_bases(base_a, base_b);
+            return self.bases(base_a, base_b);
         }
         match (exponent_a, exponent_b) {
-            (Some(x), Some(y)) => self.compare_terms(x, y),
-            (x, y) => x.is_some().cmp(&y.is_some()),
+            (Some(x), Some(y)) => Step::Terms(x, y),
+            (x, y) => Step::Done(x.is_some().cmp(&y.is_some())),
         }
     }
 
@@ -93,32 +116,33 @@ impl Inner {
         }
     }
 
-    fn compare_bases(&self, a: Expr, b: Expr) -> Ordering {
+    fn bases(&self, a: Expr, b: Expr) -> Step {
         let (left, right) = (self.entry(a), self.entry(b));
-        (left.rank.cmp(&right.rank))
+        let outside = (left.rank.cmp(&right.rank))
             .then_with(|| class(&left.node).cmp(&class(&right.node)))
-            .then_with(|| left.depth.cmp(&right.depth))
-            .then_with(|| match (&*left.node, &*right.node) {
-                (Node::Number(x), Node::Number(y)) => x.cmp(y),
-                (Node::Symbol(x), Node::Symbol(y)) => self.symbols[x.0 as usize]
-                    .name
-                    .cmp(&self.symbols[y.0 as usize].name),
-                (Node::Sum(x), Node::Sum(y)) => self.compare_lists(x, y),
-                (Node::Call(f, x), Node::Call(g, y)) => {
-                    f.cmp(g).then_with(|| self.compare_lists(x, y))
-                }
-                (Node::Product(_), Node::Product(_)) => self.compare_factor_lists(a, b),
-                _ => self.compare_factors(a, b),
-            })
-    }
-
-    fn compare_lists(&self, a: &[Expr], b: &[Expr]) -> Ordering {
-        for (&l, &r) in a.iter().zip(b) {
-            if l != r {
-                return self.compare_terms(l, r);
+            .then_with(|| left.depth.cmp(&right.depth));
+        match (outside, &*left.node, &*right.node) {
+            (Ordering::Equal, Node::Number(x), Node::Number(y)) => Step::Done(x.cmp(y)),
+            (Ordering::Equal, Node::Symbol(x), Node::Symbol(y)) => {
+                let name = |symbol: &Symbol| &self.symbols[symbol.0 as usize].name;
+                Step::Done(name(x).cmp(name(y)))
             }
+            (Ordering::Equal, Node::Sum(x), Node::Sum(y)) => lists(x, y),
+            (Ordering::Equal, Node::Call(f, x), Node::Call(g, y)) => match f.cmp(g) {
+                Ordering::Equal => lists(x, y),
+                order => Step::Done(order),
+            },
+            (Ordering::Equal, Node::Product(_), Node::Product(_)) => self.factor_lists(a, b),
+            (Ordering::Equal, ..) => Step::Factors(a, b),
+            (order, ..) => Step::Done(order),
         }
-        a.len().cmp(&b.len())
+    }
+}
+
+fn lists(a: &[Expr], b: &[Expr]) -> Step {
+    match a.iter().zip(b).find(|(l, r)| l != r) {
+        Some((&l, &r)) => Step::Terms(l, r),
+        None => Step::Done(a.len().cmp(&b.len())),
     }
 }
 

@@ -1,11 +1,13 @@
 //! The pool: hash-consing of nodes, interning of symbols, and the caches.
 
 use std::cell::RefCell;
-use std::collections::HashMap;
+use std::collections::{BTreeSet, HashMap};
 use std::rc::Rc;
 
+use super::ball::Ball;
 use super::facts::Interval;
 use super::function::Function;
+use super::limit::Limit;
 use super::node::{Expr, Node, Rational, Symbol, SymbolKind};
 use super::normal::{Fraction, Mode, Rule};
 
@@ -45,25 +47,29 @@ pub(super) struct Entry {
     pub(super) functional: bool,
 }
 
-/// Term operations that all normal forms of one model may take; afterwards only small products are
-/// multiplied out. A model with thousands of ordinary formulas stays far below.
-const ALGEBRA_BUDGET: u64 = 30_000_000;
+/// A table of what is known of formulas. Handles need no defence against chosen keys.
+pub(super) type Table<K, V> = HashMap<K, V, foldhash::fast::FixedState>;
 
 #[derive(Default)]
 pub(super) struct Inner {
     pub(super) entries: Vec<Entry>,
-    ids: HashMap<Rc<Node>, Expr>,
+    ids: Table<Rc<Node>, Expr>,
     pub(super) symbols: Vec<SymbolData>,
-    names: HashMap<Rc<str>, Symbol>,
-    pub(super) symbols_of: HashMap<Expr, Rc<[Symbol]>>,
-    pub(super) normals: HashMap<(Expr, Mode), Rc<Fraction>>,
-    pub(super) rules: HashMap<(Expr, Mode), Rc<Rule>>,
-    pub(super) simplified: HashMap<Expr, Expr>,
-    pub(super) weights: HashMap<Expr, u64>,
-    /// Term operations that normal forms have taken so far, and whether a product was refused for it.
-    algebra: (u64, bool),
-    pub(super) signs: HashMap<Expr, (super::Sign, usize)>,
-    pub(super) derivatives: HashMap<(Expr, Symbol), Expr>,
+    names: Table<Rc<str>, Symbol>,
+    pub(super) symbols_of: Table<Expr, Rc<[Symbol]>>,
+    pub(super) normals: Table<(Expr, Mode), Rc<Fraction>>,
+    pub(super) rules: Table<(Expr, Mode), Rc<Rule>>,
+    pub(super) simplified: Table<Expr, Expr>,
+    /// Formulas with the arguments of their functions simplified.
+    pub(super) rearranged: Table<Expr, Expr>,
+    /// Values at two fixed points.
+    pub(super) probes: Table<Expr, [Ball; 2]>,
+    pub(super) weights: Table<Expr, u64>,
+    /// Term operations that normal forms have taken so far.
+    algebra: u64,
+    exceeded: BTreeSet<Limit>,
+    pub(super) signs: Table<Expr, (super::Sign, usize)>,
+    pub(super) derivatives: Table<(Expr, Symbol), Expr>,
 }
 
 impl Default for Pool {
@@ -115,14 +121,18 @@ impl Pool {
         let mut inner = self.inner.borrow_mut();
         let mut changed = false;
         for (symbol, range) in ranges {
+            // Nothing is known yet of formulas with a symbol that stands in none.
+            let used = inner.ids.contains_key(&Node::Symbol(symbol));
             let known = &mut inner.symbols[symbol.0 as usize].range;
-            changed |= *known != range;
+            changed |= used && *known != range;
             *known = range;
         }
         if changed {
             inner.signs.clear();
             inner.normals.clear();
             inner.simplified.clear();
+            inner.rearranged.clear();
+            inner.probes.clear();
         }
     }
 
@@ -204,26 +214,39 @@ impl Pool {
     /// many any more. Small steps are always granted, so that every formula keeps some normal form.
     pub(super) fn may_spend(&self, operations: u64) -> bool {
         const SMALL: u64 = 500;
-        let algebra = &mut self.inner.borrow_mut().algebra;
-        let granted = operations <= SMALL || algebra.0.saturating_add(operations) <= ALGEBRA_BUDGET;
-        if granted {
-            algebra.0 = algebra.0.saturating_add(operations);
-        } else {
-            algebra.1 = true;
+        if operations > SMALL {
+            return self.may_spend_all(operations);
         }
-        granted
+        self.inner.borrow_mut().algebra += operations;
+        true
     }
 
-    /// The budget of the model's algebra, in term operations, once something has been refused for it:
-    /// answers may have become *cannot tell* then.
-    pub fn exceeded_budget(&self) -> Option<u64> {
-        self.inner.borrow().algebra.1.then_some(ALGEBRA_BUDGET)
+    /// As [`Pool::may_spend`], small steps counted like others.
+    pub(super) fn may_spend_all(&self, operations: u64) -> bool {
+        let spent = self.operations().saturating_add(operations);
+        if spent > Limit::Algebra.amount() {
+            self.exceed(Limit::Algebra);
+            return false;
+        }
+        self.inner.borrow_mut().algebra = spent;
+        true
+    }
+
+    /// Notes that something was left undone for a budget.
+    pub fn exceed(&self, limit: Limit) {
+        self.inner.borrow_mut().exceeded.insert(limit);
+    }
+
+    /// The budgets for which something has been left undone so far: answers may have become *cannot
+    /// tell* then, or formulas longer than need be.
+    pub fn exceeded(&self) -> Vec<Limit> {
+        self.inner.borrow().exceeded.iter().copied().collect()
     }
 
     /// Term operations that the normal forms of this pool have taken so far: a measure of work that is
     /// the same on every machine.
     pub fn operations(&self) -> u64 {
-        self.inner.borrow().algebra.0
+        self.inner.borrow().algebra
     }
 
     /// The number of distinct formulas in the pool: a measure of work that is the same on every

@@ -1,12 +1,11 @@
 //! Formulas as text: in the grammar of the model language, so that they parse again, and in the
 //! shape a person would write.
 
-use std::collections::HashMap;
-
 use super::function::Function;
 use super::node::{Expr, Node, Rational};
-use super::pool::Pool;
+use super::pool::{Pool, Table};
 use super::print_number::{digits, parts, splits};
+use super::print_parts::LONGEST_WHOLE;
 
 /// How tightly a piece of text binds; a looser piece needs parentheses inside a tighter one.
 #[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
@@ -19,14 +18,14 @@ enum Binding {
 
 /// A printed part: its text without a leading minus, the sign apart.
 #[derive(Clone)]
-struct Piece {
+pub(super) struct Piece {
     negative: bool,
-    text: String,
+    pub(super) text: String,
     binding: Binding,
 }
 
 impl Piece {
-    fn atom(text: impl Into<String>) -> Piece {
+    pub(super) fn atom(text: impl Into<String>) -> Piece {
         Piece {
             negative: false,
             text: text.into(),
@@ -35,7 +34,7 @@ impl Piece {
     }
 
     /// The text with its sign, as it stands alone or between commas.
-    fn alone(&self) -> String {
+    pub(super) fn alone(&self) -> String {
         if self.negative {
             format!("-{}", self.text)
         } else {
@@ -55,8 +54,15 @@ impl Piece {
 
 impl Pool {
     /// The formula as text that parses to the same value.
+    ///
+    /// A long formula is written with names for the parts it shares, explained behind it:
+    /// `p2^2 + p2 where p1 = ...; p2 = ...`. What is beyond the budget even then
+    /// ([`Limit::Printing`](super::Limit::Printing)) is cut, and says so.
     pub fn format(&self, e: Expr) -> String {
-        let mut pieces: HashMap<Expr, Piece> = HashMap::new();
+        if self.weight(e) > LONGEST_WHOLE {
+            return self.format_in_parts(e);
+        }
+        let mut pieces: Table<Expr, Piece> = Table::default();
         for part in self.postorder(e) {
             let piece = self.piece(part, &pieces);
             pieces.insert(part, piece);
@@ -64,7 +70,7 @@ impl Pool {
         pieces[&e].alone()
     }
 
-    fn piece(&self, e: Expr, done: &HashMap<Expr, Piece>) -> Piece {
+    pub(super) fn piece(&self, e: Expr, done: &Table<Expr, Piece>) -> Piece {
         match &*self.node(e) {
             Node::Number(value) => number_piece(value),
             Node::Pi => Piece::atom("pi"),
@@ -98,7 +104,7 @@ impl Pool {
     }
 
     /// A product as numerator and denominator.
-    fn product_piece(&self, factors: &[Expr], done: &HashMap<Expr, Piece>) -> Piece {
+    fn product_piece(&self, factors: &[Expr], done: &Table<Expr, Piece>) -> Piece {
         let mut negative = false;
         let (mut above, mut below) = (Vec::new(), Vec::new());
         for &factor in factors {
@@ -157,7 +163,7 @@ impl Pool {
     }
 
     /// `base^exponent` for a positive exponent, as it stands in a product.
-    fn power_text(&self, base: Expr, exponent: Rational, done: &HashMap<Expr, Piece>) -> String {
+    fn power_text(&self, base: Expr, exponent: Rational, done: &Table<Expr, Piece>) -> String {
         let base = &done[&base];
         if exponent.is_one() {
             return base.inside(Binding::Power);

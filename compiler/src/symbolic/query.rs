@@ -28,7 +28,7 @@ impl Pool {
         formulas: &[Expr],
         enter: impl Fn(Expr) -> bool,
     ) -> Vec<Expr> {
-        let mut seen = HashSet::new();
+        let mut seen: HashSet<Expr, foldhash::fast::FixedState> = HashSet::default();
         let mut pending = formulas.to_vec();
         while let Some(next) = pending.pop() {
             if enter(next) && seen.insert(next) {
@@ -88,6 +88,11 @@ impl Pool {
                 Node::Call(function, _) if !function.is_smooth() => Some(*function),
                 _ => None,
             })
+    }
+
+    /// How deep the formula nests; 0 for a number or a symbol.
+    pub fn depth(&self, e: Expr) -> u32 {
+        self.inner.borrow().entry(e).depth
     }
 
     /// The number of distinct nodes of a formula.

@@ -2,6 +2,7 @@
 
 use dashu_base::BitTest;
 
+use super::limit::Limit;
 use super::node::{Expr, Node, Rational};
 use super::normal::Mode;
 use super::pool::Pool;
@@ -42,7 +43,7 @@ impl Pool {
 
     /// The number a formula with functions in it is by algebra, if it is one.
     fn constant_value(&self, e: Expr) -> Option<Expr> {
-        if !self.inner.borrow().entry(e).functional {
+        if !self.inner.borrow().entry(e).functional || self.varies(e) {
             return None;
         }
         Some(self.number(self.normal(e, Mode::Proof).as_constant()?))
@@ -51,6 +52,10 @@ impl Pool {
     fn lightest_shape(&self, e: Expr) -> Expr {
         let parts = self.simplify_parts(e);
         let mut best = (self.weight(parts), parts);
+        if self.is_heavy(parts) {
+            self.exceed(Limit::Simplification);
+            return parts;
+        }
         for shape in self.shapes(parts, best.0) {
             // Of two equally light shapes the author's own stays.
             let shape = self.simplify_arguments(shape);
@@ -72,6 +77,15 @@ impl Pool {
 
     /// The same formula with the arguments of its functions and the bases of its roots simplified.
     fn simplify_arguments(&self, e: Expr) -> Expr {
+        let known = self.inner.borrow().rearranged.get(&e).copied();
+        known.unwrap_or_else(|| {
+            let result = self.rearrange(e);
+            self.inner.borrow_mut().rearranged.insert(e, result);
+            result
+        })
+    }
+
+    fn rearrange(&self, e: Expr) -> Expr {
         match &*self.node(e) {
             Node::Number(_) | Node::Pi | Node::Symbol(_) => e,
             node @ (Node::Sum(_) | Node::Product(_)) => {
@@ -89,8 +103,13 @@ impl Pool {
         }
     }
 
+    /// Whether the formula is too long for [`Pool::simplify`] to look for another shape of the whole.
+    pub fn is_heavy(&self, e: Expr) -> bool {
+        self.weight(e) > Limit::Simplification.amount()
+    }
+
     /// How much there is to read: names count two, whole numbers and operators one. Remembered.
-    fn weight(&self, e: Expr) -> u64 {
+    pub(super) fn weight(&self, e: Expr) -> u64 {
         let known = |part: Expr| self.inner.borrow().weights.get(&part).copied();
         for part in self.postorder_where(e, |part| known(part).is_none()) {
             let of = |child: &Expr| known(*child).unwrap_or(0);

@@ -1,9 +1,9 @@
 //! Replacement of symbols by formulas.
 
-use std::collections::{BTreeMap, HashMap};
+use std::collections::BTreeMap;
 
 use super::node::{Expr, Node, Symbol};
-use super::pool::Pool;
+use super::pool::{Pool, Table};
 
 impl Pool {
     /// The formula with each symbol in `values` replaced, all at once.
@@ -13,7 +13,7 @@ impl Pool {
                 .iter()
                 .any(|symbol| values.contains_key(symbol))
         };
-        let mut done: HashMap<Expr, Expr> = HashMap::new();
+        let mut done: Table<Expr, Expr> = Table::default();
         for part in self.postorder_where(e, touched) {
             let image = match &*self.node(part) {
                 Node::Symbol(symbol) => values[symbol],

@@ -3,6 +3,7 @@
 use dashu_base::Abs;
 
 use super::big::{self, Big, PRECISION};
+use super::limit::Limit;
 use super::node::{Expr, Symbol};
 use super::normal::Mode;
 use super::pool::Pool;
@@ -10,6 +11,10 @@ use super::sample::Sampler;
 
 /// Points tried before the answer is "cannot tell".
 const ATTEMPTS: usize = 24;
+
+/// Of formulas with more distinct parts than this the bounds of double precision are trusted; smaller
+/// ones are evaluated in high precision in any case.
+const LARGE: usize = 1_000;
 
 /// A point at which two formulas differ.
 #[derive(Clone, PartialEq, Debug)]
@@ -61,17 +66,36 @@ impl Pool {
         self.equal(e, self.zero())
     }
 
+    /// Whether double precision shows that the formula differs from 0 at some point: a cheap question,
+    /// of which only the answer `true` means something.
+    pub fn is_plainly_not_zero(&self, e: Expr) -> bool {
+        self.apart(e, self.zero()).is_some()
+    }
+
     /// Whether two formulas agree wherever both have a value.
     pub fn equal(&self, a: Expr, b: Expr) -> Truth {
-        if self.equal_by_algebra(a, b) {
+        if a == b {
+            return Truth::Yes;
+        }
+        // Where double precision tells the two apart no proof is looked for, only the witness.
+        let apart = self.apart(a, b);
+        if let Some(witness) = apart.clone().filter(|_| self.is_large(a, b)) {
+            return Truth::No(witness);
+        }
+        if apart.is_none() && self.equal_by_algebra(a, b) {
             return Truth::Yes;
         }
         // Most of what the normal form does not prove is false: a point is found quickly.
-        match self.look_for_witness(a, b) {
-            Search::Found(witness) => Truth::No(witness),
-            Search::Nothing if self.equal_by_undoing(a, b) => Truth::Yes,
+        match (self.look_for_witness(a, b), apart) {
+            (Search::Found(witness), _) | (_, Some(witness)) => Truth::No(witness),
+            (Search::Nothing, None) if self.equal_by_undoing(a, b) => Truth::Yes,
             _ => Truth::CannotTell,
         }
+    }
+
+    /// Whether evaluation in high precision would take long beside that in double precision.
+    fn is_large(&self, a: Expr, b: Expr) -> bool {
+        self.postorder_of(&[a, b], |_| true).len() > LARGE
     }
 
     /// Whether the normal form proves that two formulas agree wherever both have a value.
@@ -92,7 +116,10 @@ impl Pool {
         symbols.sort_unstable();
         symbols.dedup();
         let mut sampler = Sampler::new(self);
-        for _ in 0..ATTEMPTS {
+        let parts = self.postorder_of(&[difference, a, b], |_| true).len() as u64;
+        let affordable = Limit::Witness.amount() / (2 * parts).max(1);
+        let attempts = ATTEMPTS.min(affordable.max(1) as usize);
+        for _ in 0..attempts {
             let Some(point) = sampler.point(&symbols) else {
                 continue;
             };
@@ -120,6 +147,9 @@ impl Pool {
                     right: big::to_f64(&right),
                 });
             }
+        }
+        if attempts < ATTEMPTS {
+            self.exceed(Limit::Witness);
         }
         found
     }

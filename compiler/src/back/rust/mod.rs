@@ -12,6 +12,8 @@ mod parameters;
 mod simulator;
 mod spell;
 
+use std::collections::BTreeMap;
+
 use proc_macro2::{Literal, TokenStream};
 use quote::quote;
 
@@ -50,7 +52,8 @@ pub fn parameter_fields(program: &Program) -> Vec<String> {
 struct Generator<'a> {
     program: &'a Program,
     names: Names,
-    comments: bool,
+    /// The places of the notes that become comments, by value.
+    notes: BTreeMap<ValueId, Vec<usize>>,
 }
 
 impl<'a> Generator<'a> {
@@ -58,7 +61,11 @@ impl<'a> Generator<'a> {
         Self {
             program,
             names: Names::new(program),
-            comments,
+            notes: if comments {
+                notes(program)
+            } else {
+                BTreeMap::new()
+            },
         }
     }
 
@@ -129,29 +136,31 @@ impl<'a> Generator<'a> {
     /// Markers for the notes on a value, or on what moves its slot, replaced by comments once the source
     /// has been formatted.
     fn markers(&self, id: ValueId) -> TokenStream {
-        if !self.comments {
-            return TokenStream::new();
-        }
-        let indices = self
-            .program
-            .notes
-            .iter()
-            .enumerate()
-            .filter(|(_, note)| self.stands_at(note) == id);
-        let markers = indices.map(|(index, _)| {
+        let markers = self.notes.get(&id).into_iter().flatten().map(|&index| {
             let index = Literal::usize_unsuffixed(index);
             quote! { __note!(#index); }
         });
         quote! { #(#markers)* }
     }
+}
 
-    /// The value at whose statement a note stands: a value without one passes it on.
-    fn stands_at(&self, note: &Note) -> ValueId {
-        let op = &self.program.value(note.value).op;
-        if spell::has_statement(op) {
-            note.value
-        } else {
-            self.program.slots[note.slot].next
-        }
+/// The notes of a program by the value at whose statement they stand.
+fn notes(program: &Program) -> BTreeMap<ValueId, Vec<usize>> {
+    let mut found: BTreeMap<ValueId, Vec<usize>> = BTreeMap::new();
+    for (index, note) in program.notes.iter().enumerate() {
+        found
+            .entry(stands_at(program, note))
+            .or_default()
+            .push(index);
+    }
+    found
+}
+
+/// The value at whose statement a note stands: a value without one passes it on.
+fn stands_at(program: &Program, note: &Note) -> ValueId {
+    if spell::has_statement(&program.value(note.value).op) {
+        note.value
+    } else {
+        program.slots[note.slot].next
     }
 }

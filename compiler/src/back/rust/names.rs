@@ -1,6 +1,6 @@
 //! Names in generated code: the author's where Rust allows them, made unique where they meet.
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 use proc_macro2::{Ident, Span};
 
@@ -130,20 +130,28 @@ fn value_hint(program: &Program, id: ValueId) -> String {
 
 /// Names taken so far in a scope.
 #[derive(Clone, Default)]
-struct Unique(BTreeSet<String>);
+struct Unique {
+    taken: BTreeSet<String>,
+    /// The number to try next for a wish that has been met before.
+    next: BTreeMap<String, usize>,
+}
 
 impl Unique {
     fn reserving(names: impl IntoIterator<Item = &'static str>) -> Self {
-        Self(names.into_iter().map(str::to_owned).collect())
+        Self {
+            taken: names.into_iter().map(str::to_owned).collect(),
+            next: BTreeMap::new(),
+        }
     }
 
     fn add(&mut self, wish: &str) -> Ident {
-        let numbered = (2..).map(|n| format!("{wish}_{n}"));
-        let name = std::iter::once(wish.to_owned())
-            .chain(numbered)
-            .find(|name| !self.0.contains(name))
-            .expect("the numbers do not run out");
-        self.0.insert(name.clone());
+        let mut name = wish.to_owned();
+        let next = self.next.entry(wish.to_owned()).or_insert(2);
+        while self.taken.contains(&name) {
+            name = format!("{wish}_{next}");
+            *next += 1;
+        }
+        self.taken.insert(name.clone());
         identifier(&name)
     }
 }

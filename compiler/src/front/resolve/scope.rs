@@ -12,6 +12,9 @@ use crate::model::Formula;
 use crate::source::Span;
 use crate::symbolic::{Bound, Expr, Function, Interval, Pool, Symbol, SymbolKind};
 
+/// Levels to which a formula may nest once the definitions it uses have been put in.
+const MAX_COMPOSED_DEPTH: u32 = 5_000;
+
 /// The kinds of names.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Kind {
@@ -169,7 +172,13 @@ impl Scope {
         } else {
             None
         };
-        let failed = kink.is_some();
+        let deep = result
+            .as_ref()
+            .is_ok_and(|&expr| self.pool.depth(expr) > MAX_COMPOSED_DEPTH);
+        if deep {
+            diagnostics.push(too_deep(ast.span));
+        }
+        let failed = kink.is_some() || deep;
         if let Some((function, span, name)) = kink {
             diagnostics.push(kink_error(function, span, name, place));
         }
@@ -189,6 +198,14 @@ impl Scope {
             Some((function, span, Some(name.to_owned())))
         })
     }
+}
+
+fn too_deep(span: Span) -> Diagnostic {
+    let message = format!(
+        "the formula nests more than {MAX_COMPOSED_DEPTH} levels deep, with the definitions it uses put in"
+    );
+    Diagnostic::error(Code::NestedTooDeep, span, message)
+        .hint("make a state or a parameter of a quantity half way")
 }
 
 /// A function with a kink where Ito's rule is applied, in the formula itself or in a name it uses.

@@ -2,6 +2,7 @@
 
 use std::rc::Rc;
 
+use super::super::limit::Limit;
 use super::super::node::Rational;
 use super::Normalizer;
 use super::exponent::Exponent;
@@ -52,7 +53,7 @@ impl Normalizer<'_> {
         if !self.pool.may_spend(a.product_cost(b)) {
             return None;
         }
-        self.reduce(a.raw_product(b)?)
+        self.reduce(a.raw_product(b, self.pool)?)
     }
 
     pub(super) fn multiply(&self, a: &Fraction, b: &Fraction) -> Option<Fraction> {
@@ -72,7 +73,7 @@ impl Normalizer<'_> {
         for (factor, times) in other {
             if denominator
                 .iter()
-                .any(|(f, _)| *f != factor && f.gcd(&factor).is_some())
+                .any(|(f, _)| *f != factor && f.gcd(&factor, self.pool).is_some())
             {
                 insert(&mut denominator, factor, times);
                 return self.cancel(numerator, denominator);
@@ -113,7 +114,7 @@ impl Normalizer<'_> {
         }
         let monomial = a.common_monomial();
         let bare = a.times_monomial(&monomial.inverse()?)?;
-        let mut coefficient = bare.positive_content()?;
+        let mut coefficient = bare.positive_content(self.pool)?;
         if bare.leading_coefficient() < Rational::ZERO {
             coefficient = -coefficient;
         }
@@ -136,6 +137,7 @@ impl Normalizer<'_> {
             );
         }
         if n > MAX_POWER || power_terms(a.numerator.0.len(), n) > MAX_POWER_TERMS {
+            self.pool.exceed(Limit::Product);
             return None;
         }
         let mut numerator = Poly::one();
@@ -167,7 +169,7 @@ impl Normalizer<'_> {
                 return Some(Fraction::polynomial(numerator));
             }
             while times > 0
-                && let Some(quotient) = numerator.exact_quotient(&factor)
+                && let Some(quotient) = numerator.exact_quotient(&factor, self.pool)
             {
                 numerator = quotient;
                 times -= 1;
@@ -204,8 +206,8 @@ impl Normalizer<'_> {
     ) -> Option<(Rational, Poly, Poly)> {
         let others = std::iter::once(numerator).chain(kept.iter().map(|(f, _)| &**f));
         others.filter(|other| *other != factor).find_map(|other| {
-            let common = factor.gcd(other)?;
-            let rest = factor.exact_quotient(&common)?;
+            let common = factor.gcd(other, self.pool)?;
+            let rest = factor.exact_quotient(&common, self.pool)?;
             // Each part has a positive last coefficient then, their product need not have one.
             let (number, left, common) = self.factored(&common)?;
             let (other, right, rest) = self.factored(&rest)?;

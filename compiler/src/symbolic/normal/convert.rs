@@ -8,12 +8,10 @@ use std::collections::{BTreeMap, BTreeSet};
 use dashu_int::IBig;
 
 use super::super::node::{Expr, Rational};
+use super::super::pool::Pool;
 use super::exponent::{self, Exponent};
 use super::integer_poly::{Budget, IntegerPoly};
 use super::poly::{Monomial, Poly};
-
-/// Term operations one division or common divisor may take.
-const BUDGET: usize = 200_000;
 
 /// The largest exponent of a variable after roots have been made whole.
 const MAX_DEGREE: i64 = 10_000;
@@ -59,9 +57,9 @@ impl Variables {
         self.kernels.binary_search(&kernel).ok()
     }
 
-    pub(super) fn convert(&self, poly: &Poly) -> Option<Converted> {
+    pub(super) fn convert(&self, poly: &Poly, pool: &Pool) -> Option<Converted> {
         let monomial = poly.common_monomial();
-        let number = poly.positive_content()?;
+        let number = poly.positive_content(pool)?;
         let inverse = monomial.inverse()?;
         let mut whole = IntegerPoly::default();
         for (m, coefficient) in &poly.0 {
@@ -108,7 +106,7 @@ impl Poly {
 
     /// The exact quotient, if the division leaves nothing; negative exponents may appear in it only as
     /// a common monomial.
-    pub(super) fn exact_quotient(&self, divisor: &Poly) -> Option<Poly> {
+    pub(super) fn exact_quotient(&self, divisor: &Poly, pool: &Pool) -> Option<Poly> {
         if self.0.len() < 2 && divisor.0.len() > 1 {
             return None;
         }
@@ -117,21 +115,34 @@ impl Poly {
             return None;
         }
         let variables = Variables::of(&[self, divisor])?;
-        let (a, b) = (variables.convert(self)?, variables.convert(divisor)?);
-        let quotient = a.whole.exact_quotient(&b.whole, &mut Budget(BUDGET))?;
+        let (a, b) = (
+            variables.convert(self, pool)?,
+            variables.convert(divisor, pool)?,
+        );
+        let quotient = a
+            .whole
+            .exact_quotient(&b.whole, &mut Budget::share(pool, 1))?;
         let poly = variables.restore(&quotient)?.scaled(&(a.number / b.number));
         poly.times_monomial(&a.monomial.times(&b.monomial.inverse()?)?)
     }
 
     /// A common divisor that is more than a monomial; none if there is none, or none was found within
     /// the budget.
-    pub(super) fn gcd(&self, other: &Poly) -> Option<Poly> {
+    pub(super) fn gcd(&self, other: &Poly, pool: &Pool) -> Option<Poly> {
         if self.0.len() < 2 || other.0.len() < 2 || self.kernels().is_disjoint(&other.kernels()) {
             return None;
         }
         let variables = Variables::of(&[self, other])?;
-        let (a, b) = (variables.convert(self)?, variables.convert(other)?);
-        let common = super::gcd::gcd(&a.whole, &b.whole, variables.count(), &mut Budget(BUDGET))?;
+        let (a, b) = (
+            variables.convert(self, pool)?,
+            variables.convert(other, pool)?,
+        );
+        let common = super::gcd::gcd(
+            &a.whole,
+            &b.whole,
+            variables.count(),
+            &mut Budget::share(pool, 1),
+        )?;
         if common.is_constant() {
             None
         } else {
@@ -141,11 +152,12 @@ impl Poly {
 
     /// Factors whose product is the polynomial, up to a number and a monomial: what all coefficients
     /// by powers of some kernel share comes out.
-    pub(super) fn split_contents(&self) -> Vec<Poly> {
+    pub(super) fn split_contents(&self, pool: &Pool) -> Vec<Poly> {
+        let mut budget = Budget::share(pool, 4);
         let mut done = Vec::new();
         let mut pending = vec![self.clone()];
         while let Some(poly) = pending.pop() {
-            match poly.content_and_rest() {
+            match poly.content_and_rest(pool, &mut budget) {
                 Some((content, rest)) => pending.extend([content, rest]),
                 None => done.push(poly),
             }
@@ -154,16 +166,15 @@ impl Poly {
         done
     }
 
-    fn content_and_rest(&self) -> Option<(Poly, Poly)> {
+    fn content_and_rest(&self, pool: &Pool, budget: &mut Budget<'_>) -> Option<(Poly, Poly)> {
         let variables = Variables::of(&[self])?;
-        let whole = variables.convert(self)?.whole;
-        let mut budget = Budget(BUDGET);
+        let whole = variables.convert(self, pool)?.whole;
         (0..variables.count()).find_map(|variable| {
-            let content = super::gcd::content(&whole, variable, variables.count(), &mut budget)?;
+            let content = super::gcd::content(&whole, variable, variables.count(), budget)?;
             if content.is_constant() || whole.degree(variable) == 0 {
                 return None;
             }
-            let rest = whole.exact_quotient(&content, &mut budget)?;
+            let rest = whole.exact_quotient(&content, budget)?;
             Some((variables.restore(&content)?, variables.restore(&rest)?))
         })
     }

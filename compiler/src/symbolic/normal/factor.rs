@@ -7,12 +7,10 @@
 use dashu_base::UnsignedAbs;
 use dashu_int::{IBig, UBig};
 
+use super::super::pool::Pool;
 use super::convert::Variables;
 use super::integer_poly::{Budget, IntegerPoly};
 use super::poly::Poly;
-
-/// Term operations one factorisation may take.
-const BUDGET: usize = 20_000;
 
 /// Polynomials with more terms are left alone.
 const MAX_TERMS: usize = 40;
@@ -23,19 +21,19 @@ const MAX_END: u64 = 10_000;
 impl Poly {
     /// Whether the sign is turned, and factors that make the polynomial, up to its positive content and
     /// its common monomial. Over budget the polynomial itself is the only factor.
-    pub(super) fn rational_factors(&self) -> (bool, Vec<Poly>) {
-        self.factorised()
+    pub(super) fn rational_factors(&self, pool: &Pool) -> (bool, Vec<Poly>) {
+        self.factorised(pool)
             .unwrap_or_else(|| (false, vec![self.clone()]))
     }
 
-    fn factorised(&self) -> Option<(bool, Vec<Poly>)> {
+    fn factorised(&self, pool: &Pool) -> Option<(bool, Vec<Poly>)> {
         if self.0.len() > MAX_TERMS {
             return None;
         }
         let variables = Variables::of(&[self])?;
-        let whole = variables.convert(self)?.whole;
+        let whole = variables.convert(self, pool)?.whole;
         let turned = leading(&whole)? < &IBig::ZERO;
-        let mut budget = Budget(BUDGET);
+        let mut budget = Budget::share(pool, 10);
         let (mut done, mut pending) = (Vec::new(), vec![whole.primitive()]);
         while let Some(poly) = pending.pop() {
             match in_two(&poly, variables.count(), &mut budget) {
@@ -55,7 +53,7 @@ fn leading(poly: &IntegerPoly) -> Option<&IBig> {
 fn in_two(
     poly: &IntegerPoly,
     variables: usize,
-    budget: &mut Budget,
+    budget: &mut Budget<'_>,
 ) -> Option<(IntegerPoly, IntegerPoly)> {
     (0..variables).find_map(|variable| {
         let factor = quadratic_factor(poly, variable, budget)
@@ -70,7 +68,7 @@ fn in_two(
 fn quadratic_factor(
     poly: &IntegerPoly,
     variable: usize,
-    budget: &mut Budget,
+    budget: &mut Budget<'_>,
 ) -> Option<IntegerPoly> {
     let degree = poly.degree(variable);
     let half = degree / 2;
@@ -94,7 +92,7 @@ fn quadratic_factor(
 }
 
 /// The polynomial whose square it is, term by term from the leading one.
-fn square_root(poly: &IntegerPoly, budget: &mut Budget) -> Option<IntegerPoly> {
+fn square_root(poly: &IntegerPoly, budget: &mut Budget<'_>) -> Option<IntegerPoly> {
     let Some((exponents, value)) = poly.0.last_key_value() else {
         return Some(IntegerPoly::default());
     };
@@ -126,7 +124,11 @@ fn square_root(poly: &IntegerPoly, budget: &mut Budget) -> Option<IntegerPoly> {
 }
 
 /// `q*x - p` for a rational root p/q of a polynomial in one variable.
-fn linear_factor(poly: &IntegerPoly, variable: usize, budget: &mut Budget) -> Option<IntegerPoly> {
+fn linear_factor(
+    poly: &IntegerPoly,
+    variable: usize,
+    budget: &mut Budget<'_>,
+) -> Option<IntegerPoly> {
     let degree = poly.degree(variable);
     let alone = |exponents: &[u32]| {
         exponents

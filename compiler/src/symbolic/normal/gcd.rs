@@ -18,7 +18,7 @@ pub(super) fn gcd(
     a: &IntegerPoly,
     b: &IntegerPoly,
     variables: usize,
-    budget: &mut Budget,
+    budget: &mut Budget<'_>,
 ) -> Option<IntegerPoly> {
     if a.is_zero() {
         return Some(b.primitive());
@@ -51,6 +51,8 @@ pub(super) fn gcd(
             (m, n) => shared.push((m.min(n), variable)),
         }
     }
+    // Each look reads every variable of every term.
+    budget.spend((a.0.len() + b.0.len()) * variables.div_ceil(8) * shared.len())?;
     shared.retain(|&(_, variable)| may_share(a, b, variable));
     // A variable that the divisor lacks need not be in it; without any there is none.
     let Some(&(_, main)) = shared.iter().min() else {
@@ -89,7 +91,7 @@ pub(super) fn content(
     a: &IntegerPoly,
     variable: usize,
     variables: usize,
-    budget: &mut Budget,
+    budget: &mut Budget<'_>,
 ) -> Option<IntegerPoly> {
     let mut result = IntegerPoly::default();
     let mut coefficients: Vec<IntegerPoly> = a.coefficients(variable).into_values().collect();
@@ -108,7 +110,7 @@ fn pseudo_remainder(
     mut u: IntegerPoly,
     v: &IntegerPoly,
     main: usize,
-    budget: &mut Budget,
+    budget: &mut Budget<'_>,
 ) -> Option<IntegerPoly> {
     let degree = v.degree(main);
     let lead = v.coefficients(main).remove(&degree)?;

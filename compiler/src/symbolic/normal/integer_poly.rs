@@ -6,18 +6,37 @@ use std::collections::BTreeMap;
 use dashu_base::{Gcd, UnsignedAbs};
 use dashu_int::{IBig, UBig};
 
+use super::super::limit::Limit;
+use super::super::pool::Pool;
+
 /// Exponents of all variables to coefficient. The last key is the leading term in lexicographic
 /// order.
 #[derive(Clone, PartialEq, Eq, Debug, Default)]
 pub(super) struct IntegerPoly(pub(super) BTreeMap<Box<[u32]>, IBig>);
 
-/// What one computation may still spend, in term operations.
-pub(super) struct Budget(pub(super) usize);
+/// What one computation may still spend, in term operations. What it spends counts for the model too.
+pub(super) struct Budget<'a> {
+    left: u64,
+    pool: &'a Pool,
+}
 
-impl Budget {
+impl<'a> Budget<'a> {
+    /// A share of the budget of one division or common divisor.
+    pub(super) fn share(pool: &'a Pool, divisor: u64) -> Self {
+        Budget {
+            left: Limit::Division.amount() / divisor,
+            pool,
+        }
+    }
+
     pub(super) fn spend(&mut self, amount: usize) -> Option<()> {
-        self.0 = self.0.checked_sub(amount)?;
-        Some(())
+        let amount = amount as u64;
+        if amount > self.left {
+            self.pool.exceed(Limit::Division);
+            return None;
+        }
+        self.left -= amount;
+        self.pool.may_spend_all(amount).then_some(())
     }
 }
 
@@ -55,7 +74,11 @@ impl IntegerPoly {
         }
     }
 
-    pub(super) fn times(&self, other: &IntegerPoly, budget: &mut Budget) -> Option<IntegerPoly> {
+    pub(super) fn times(
+        &self,
+        other: &IntegerPoly,
+        budget: &mut Budget<'_>,
+    ) -> Option<IntegerPoly> {
         budget.spend(self.0.len() * other.0.len())?;
         let mut result = IntegerPoly::default();
         for (a, x) in &self.0 {
@@ -136,7 +159,7 @@ impl IntegerPoly {
     pub(super) fn exact_quotient(
         &self,
         divisor: &IntegerPoly,
-        budget: &mut Budget,
+        budget: &mut Budget<'_>,
     ) -> Option<IntegerPoly> {
         let (lead, lead_value) = divisor.0.last_key_value()?;
         let mut rest = self.clone();

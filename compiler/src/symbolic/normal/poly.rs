@@ -5,15 +5,10 @@ use std::collections::BTreeMap;
 use dashu_base::{BitTest, Gcd, UnsignedAbs};
 use dashu_int::{IBig, UBig};
 
+use super::super::limit::Limit;
 use super::super::node::{Expr, Rational};
+use super::super::pool::Pool;
 use super::exponent::Exponent;
-
-/// A product of two polynomials may touch this many pairs of terms.
-const MAX_PAIRS: usize = 60_000;
-
-/// The common denominator of a polynomial may have this many bits: a thousand terms over different
-/// denominators of the usual size.
-const MAX_DENOMINATOR_BITS: usize = 16_384;
 
 /// A product of kernels: each with its exponent, which is not zero, sorted by kernel.
 #[derive(Clone, PartialEq, Eq, Hash, PartialOrd, Ord, Debug, Default)]
@@ -186,9 +181,10 @@ impl Poly {
         self.scaled(&Rational::from(-1))
     }
 
-    /// The product as a list of terms, not yet collected; none if it is over budget.
-    pub(super) fn raw_product(&self, other: &Poly) -> Option<Poly> {
-        if self.0.len().saturating_mul(other.0.len()) > MAX_PAIRS {
+    /// The product, not yet reduced; none if it is over budget.
+    pub(super) fn raw_product(&self, other: &Poly, pool: &Pool) -> Option<Poly> {
+        if self.0.len().saturating_mul(other.0.len()) as u64 > Limit::Product.amount() {
+            pool.exceed(Limit::Product);
             return None;
         }
         let mut result = Poly::zero();
@@ -239,7 +235,7 @@ impl Poly {
 
     /// The positive number whose removal leaves coprime whole coefficients; none where their common
     /// denominator is over budget.
-    pub(super) fn positive_content(&self) -> Option<Rational> {
+    pub(super) fn positive_content(&self, pool: &Pool) -> Option<Rational> {
         let mut numerator: Option<UBig> = None;
         let mut denominator = UBig::ONE;
         for coefficient in self.0.values() {
@@ -250,7 +246,8 @@ impl Poly {
             });
             let bottom = coefficient.denominator();
             denominator = &denominator / (&denominator).gcd(bottom) * bottom;
-            if denominator.bit_len() > MAX_DENOMINATOR_BITS {
+            if denominator.bit_len() as u64 > Limit::Denominator.amount() {
+                pool.exceed(Limit::Denominator);
                 return None;
             }
         }

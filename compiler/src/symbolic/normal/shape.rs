@@ -91,14 +91,14 @@ impl Normalizer<'_> {
     /// The polynomial as a product of powers of factors, as far as square-free decomposition and
     /// contents find them.
     fn in_factors(&self, poly: &Poly) -> Option<Expr> {
-        let (negative, powers) = poly.squarefree();
-        let content = poly.positive_content()?;
+        let (negative, powers) = poly.squarefree(self.pool);
+        let content = poly.positive_content(self.pool)?;
         let mut number = if negative { -content } else { content };
         let mut factors = vec![self.monomial_formula(&poly.common_monomial())];
         for (factor, times) in powers {
             let mut product = factor.clone();
-            for part in factor.split_contents() {
-                if let Some(rest) = product.exact_quotient(&part) {
+            for part in factor.split_contents(self.pool) {
+                if let Some(rest) = product.exact_quotient(&part, self.pool) {
                     product = rest;
                 }
                 let turned = self.leads_negative(self.poly_formula(&part));

@@ -118,11 +118,11 @@ impl Normalizer<'_> {
         if poly.is_one() {
             return Some(());
         }
-        let (turned, factors) = poly.squarefree();
+        let (turned, factors) = poly.squarefree(self.pool);
         let mut negative = turned;
         for (factor, m) in factors {
             let (turned, parts) = match self.mode {
-                Mode::Proof => factor.rational_factors(),
+                Mode::Proof => factor.rational_factors(self.pool),
                 Mode::Light => (false, vec![factor]),
             };
             negative ^= turned && m % 2 == 1;

@@ -3,13 +3,11 @@
 
 use dashu_int::IBig;
 
+use super::super::pool::Pool;
 use super::convert::Variables;
 use super::gcd::{content, gcd};
 use super::integer_poly::{Budget, IntegerPoly};
 use super::poly::Poly;
-
-/// Term operations one decomposition may take.
-const BUDGET: usize = 100_000;
 
 /// Factors with their multiplicities.
 type Factors = Vec<(Poly, u32)>;
@@ -18,19 +16,19 @@ impl Poly {
     /// Whether the sign is turned, and factors with their multiplicities; together they make the
     /// polynomial, up to its positive content and its common monomial. Over budget the polynomial
     /// itself is the only factor.
-    pub(super) fn squarefree(&self) -> (bool, Factors) {
-        self.decompose()
+    pub(super) fn squarefree(&self, pool: &Pool) -> (bool, Factors) {
+        self.decompose(pool)
             .unwrap_or_else(|| (false, vec![(self.clone(), 1)]))
     }
 
-    fn decompose(&self) -> Option<(bool, Factors)> {
+    fn decompose(&self, pool: &Pool) -> Option<(bool, Factors)> {
         let variables = Variables::of(&[self])?;
-        let whole = variables.convert(self)?.whole;
+        let whole = variables.convert(self, pool)?.whole;
         let negative = whole
             .0
             .last_key_value()
             .is_some_and(|(_, value)| *value < IBig::ZERO);
-        let mut budget = Budget(BUDGET);
+        let mut budget = Budget::share(pool, 2);
         let mut found = Vec::new();
         decompose(
             whole.primitive(),
@@ -52,7 +50,7 @@ fn decompose(
     variable: usize,
     variables: usize,
     found: &mut Vec<(IntegerPoly, u32)>,
-    budget: &mut Budget,
+    budget: &mut Budget<'_>,
 ) -> Option<()> {
     if poly.is_constant() || variable == variables {
         return Some(());
