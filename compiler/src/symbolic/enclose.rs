@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 
 use super::big::{self, Big, PRECISION};
 use super::enclosure::{Enclosure, End};
-use super::facts::Bound;
+use super::facts::{Bound, Sign};
 use super::function::Function;
 use super::node::{Expr, Node, Rational};
 use super::pool::Pool;
@@ -100,7 +100,11 @@ impl Pool {
         for (turns, p, q) in below.chain([(0, 0, 1)]).chain(squares.iter().copied()) {
             let size = self.sqrt(self.ratio(p, q));
             let point = if turns < 0 { self.neg(size) } else { size };
-            let sign = self.bounded_sign(self.sub(argument, point), budget - 1);
+            let gap = self.sub(argument, point);
+            let sign = match self.bounded_sign(gap, budget - 1) {
+                Sign::Unknown => self.enclosure(gap, budget - 1).sign(),
+                known => known,
+            };
             if sign.is_non_negative() {
                 result.lower = Some(End::turns(turns, 12, sign.is_positive()));
             }

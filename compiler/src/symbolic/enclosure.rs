@@ -155,6 +155,19 @@ impl Enclosure {
             && fits(&self.upper, &other.upper, Ordering::Greater)
     }
 
+    /// The sign of what lies here.
+    pub(super) fn sign(&self) -> Sign {
+        [
+            Sign::Positive,
+            Sign::NonNegative,
+            Sign::Negative,
+            Sign::NonPositive,
+        ]
+        .into_iter()
+        .find(|&sign| self.is_within(&Enclosure::of_sign(sign)))
+        .unwrap_or(Sign::Unknown)
+    }
+
     /// The sign of the sine of what lies here.
     pub(super) fn sign_of_sine(&self) -> Sign {
         let Some(lower) = &self.lower else {

@@ -9,8 +9,8 @@ use super::function::Function;
 use super::node::{Expr, Node, Rational};
 use super::pool::Pool;
 
-/// Parts of an equation that are tried.
-const MAX_CANDIDATES: usize = 8;
+/// Parts of an equation that are tried, for each round that is left.
+const MAX_CANDIDATES: usize = 3;
 
 /// Distinct nodes of an equation beyond which this is not tried.
 const MAX_SIZE: usize = 300;
@@ -60,7 +60,7 @@ impl Pool {
                     return true;
                 }
                 tried += 1;
-                if tried == MAX_CANDIDATES {
+                if tried == MAX_CANDIDATES * rounds {
                     return false;
                 }
             }

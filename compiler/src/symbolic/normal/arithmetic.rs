@@ -70,15 +70,15 @@ impl Normalizer<'_> {
         let right = self.cancel(b.numerator.clone(), a.denominator.clone())?;
         let numerator = self.poly_product(&left.numerator, &right.numerator)?;
         let (mut denominator, other) = (left.denominator, right.denominator);
+        let mut share = false;
         for (factor, times) in other {
-            if denominator
+            share |= denominator
                 .iter()
-                .any(|(f, _)| *f != factor && f.gcd(&factor, self.pool).is_some())
-            {
-                insert(&mut denominator, factor, times);
-                return self.cancel(numerator, denominator);
-            }
+                .any(|(f, _)| *f != factor && f.gcd(&factor, self.pool).is_some());
             insert(&mut denominator, factor, times);
+        }
+        if share {
+            return self.cancel(numerator, denominator);
         }
         Some(Fraction {
             numerator,
