@@ -4,6 +4,8 @@ use std::borrow::Cow;
 
 use driftwright_runtime::{Arith, LANES, Lane, Shape, Simulator, Source, StepError, math};
 
+use crate::models::shape;
+
 /// Brownian motion from 1 that observes its logarithm (not a number below 0) and a flag,
 /// raised once it has been above 2. Steps longer than 32 are refused.
 #[derive(Clone, Copy, Debug)]
@@ -16,15 +18,12 @@ impl Simulator for Fragile {
     fn shape(&self) -> Shape<'_> {
         Shape {
             states: 2,
-            step_values: 1,
             step_scratch: 1,
-            sources: &SOURCES,
-            outputs: &OUTPUTS,
             observation_values: 1,
-            observation_scratch: 0,
             left_domain: Some(1),
             time_dependent: true,
             approximate: true,
+            ..shape(&SOURCES, &OUTPUTS)
         }
     }
 

@@ -19,22 +19,30 @@ pub(crate) const ORCHARD: Geometric = Geometric {
     sigma: 0.2,
 };
 
+/// The shape of a model of one state with one value a step, no scratch and no observation values.
+pub(crate) fn shape<'a>(sources: &'a [Source], outputs: &'a [Cow<'static, str>]) -> Shape<'a> {
+    Shape {
+        states: 1,
+        step_values: 1,
+        step_scratch: 0,
+        sources,
+        outputs,
+        observation_values: 0,
+        observation_scratch: 0,
+        left_domain: None,
+        time_dependent: false,
+        approximate: false,
+    }
+}
+
 static SOURCES: [Source; 1] = [Source::new("W")];
 static OUTPUTS: [Cow<'static, str>; 2] = [Cow::Borrowed("S"), Cow::Borrowed("log_S")];
 
 impl Simulator for Geometric {
     fn shape(&self) -> Shape<'_> {
         Shape {
-            states: 1,
             step_values: 2,
-            step_scratch: 0,
-            sources: &SOURCES,
-            outputs: &OUTPUTS,
-            observation_values: 0,
-            observation_scratch: 0,
-            left_domain: None,
-            time_dependent: false,
-            approximate: false,
+            ..shape(&SOURCES, &OUTPUTS)
         }
     }
 

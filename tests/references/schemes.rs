@@ -49,25 +49,35 @@ fn slope(case: &Case, coarse: (usize, &Estimates), fine: (usize, &Estimates)) ->
     }
 }
 
+/// Mean, second moment and mean square miss at each number of steps, and the slope of the miss from the
+/// first to the last.
+fn family(
+    case: &Case,
+    model: &ModelText,
+    steps: [usize; 3],
+    paths: u64,
+    second_moment: impl Fn(&Estimates, usize) -> Check,
+) -> Vec<Check> {
+    let runs = steps.map(|steps| (steps, run(case, model, steps, paths)));
+    let mut checks = Vec::new();
+    for (steps, paths) in &runs {
+        checks.push(paths.check(0, "X", value(case, "E[X_N]", *steps)));
+        checks.push(second_moment(paths, *steps));
+        let miss = value(case, "rms_strong_error", *steps).powi(2);
+        checks.push(paths.check(0, "miss", miss));
+    }
+    let [(coarse, first), _, (fine, last)] = &runs;
+    checks.push(slope(case, (*coarse, first), (*fine, last)));
+    checks
+}
+
 /// Paths for a log-normal second moment: 1e4 exp(4 u^2 T) at least.
 fn linear_family(id: &str, scheme: &str, paths: u64) -> Vec<Check> {
     let reference = Reference::load("E");
     let case = reference.by_id(id);
-    let model = linear(case, scheme);
-    let runs = [8, 16, 64].map(|steps| (steps, run(case, &model, steps, paths)));
-    let mut checks = Vec::new();
-    for (steps, paths) in &runs {
-        checks.push(paths.check(0, "X", value(case, "E[X_N]", *steps)));
-        checks.push(paths.check(0, "square", value(case, "E[X_N^2]", *steps)));
-        let miss = value(case, "rms_strong_error", *steps).powi(2);
-        checks.push(paths.check(0, "miss", miss));
-    }
-    checks.push(slope(
-        case,
-        (runs[0].0, &runs[0].1),
-        (runs[2].0, &runs[2].1),
-    ));
-    checks
+    let square =
+        |paths: &Estimates, steps| paths.check(0, "square", value(case, "E[X_N^2]", steps));
+    family(case, &linear(case, scheme), [8, 16, 64], paths, square)
 }
 
 #[test]
@@ -128,19 +138,9 @@ fn euler_with_additive_noise() {
         .state("X", "x0", "k*(th - X)", &[("W", "sg")], scheme)
         .state("Y", "x0", "k*(th - Y)", &[("W", "sg")], "")
         .readout("miss", "(X - Y)^2");
-    let runs = [4, 16, 64].map(|steps| (steps, run(case, &model, steps, 700_000)));
-    let mut checks = Vec::new();
-    for (steps, paths) in &runs {
-        checks.push(paths.check(0, "X", value(case, "E[X_N]", *steps)));
-        checks.push(paths.variance_check(0, "X", value(case, "Var[X_N]", *steps)));
-        let miss = value(case, "rms_strong_error", *steps).powi(2);
-        checks.push(paths.check(0, "miss", miss));
-    }
-    checks.push(slope(
-        case,
-        (runs[0].0, &runs[0].1),
-        (runs[2].0, &runs[2].1),
-    ));
+    let variance =
+        |paths: &Estimates, steps| paths.variance_check(0, "X", value(case, "Var[X_N]", steps));
+    let checks = family(case, &model, [4, 16, 64], 700_000, variance);
     assert_family(&checks);
 }
 
