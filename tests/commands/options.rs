@@ -2,7 +2,7 @@
 
 use std::process::Stdio;
 
-use crate::harness::{Folder, altered, binary, run};
+use crate::harness::{Folder, altered, binary, json, run};
 
 #[test]
 fn help_shows_examples() {
@@ -107,4 +107,24 @@ fn no_colour_and_no_progress_where_there_is_no_terminal() {
     let ran = run(&["verify", "models/orchard_spot.toml", "--paths", "20000"]);
     assert!(!ran.out.contains('\u{1b}') && !ran.err.contains('\u{1b}'));
     assert_eq!(ran.err, "");
+}
+
+/// `--set` names a parameter as the file does, however accents are composed; a name that only looks like
+/// one is told apart.
+#[test]
+fn names_on_the_command_line_are_composed() {
+    let folder = Folder::new();
+    let text = "[model]\nname = \"m\"\n[parameters]\n\"e\u{301}tape\" = 1\n\
+                [states.X]\ninitial = \"\u{e9}tape\"\ndrift = \"0\"\n";
+    let file = folder.write("m.toml", text);
+    for name in ["\u{e9}tape", "e\u{301}tape"] {
+        let set = format!("{name}=3");
+        let found = json(&[
+            "simulate", &file, "--paths", "2", "--set", &set, "--format", "json",
+        ]);
+        assert_eq!(found["quantities"]["X"]["mean"][0], 3.0);
+    }
+    let ran = run(&["simulate", &file, "--set", "\u{e9}t\u{430}pe=3"]);
+    assert_eq!(ran.status, 2);
+    assert!(ran.err.contains("U+0430"), "{}", ran.err);
 }

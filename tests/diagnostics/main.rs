@@ -4,6 +4,8 @@
 //! `.txt` beside it. `UPDATE_FIXTURES=1` rewrites the expected texts, for a person to read before they
 //! are committed.
 
+mod sarif;
+mod schema;
 mod warnings;
 
 use std::collections::BTreeSet;

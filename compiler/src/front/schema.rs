@@ -54,7 +54,8 @@ pub fn json_schema() -> Value {
     })
 }
 
-const NAME: &str = "^\\p{L}[\\p{L}0-9_]*$";
+/// Marks stand for accents that are yet to be composed with their letters.
+const NAME: &str = "^\\p{L}[\\p{L}\\p{M}0-9_]*$";
 
 fn model() -> Value {
     table(
@@ -96,11 +97,12 @@ fn correlation() -> Value {
 
 fn state() -> Value {
     let edge = json!({ "enum": keys::EDGE_WORDS });
-    let ends = table(
+    let mut ends = table(
         "What happens at each closed end.",
         &[],
         json!({ "lower": edge, "upper": edge }),
     );
+    ends["minProperties"] = json!(1);
     table(
         "A state and its equation.",
         &["initial", "drift"],

@@ -19,11 +19,12 @@ pub(crate) fn did_you_mean<'a>(
 }
 
 /// The nearest of `known`: a third of the letters may differ, one of a short name; case counts little,
-/// and letters that look alike are the same.
+/// and letters that look alike are the same. Else the only one that `name` is the beginning of.
 pub(super) fn nearest<'a>(name: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
     let folded = appearance(name).to_lowercase();
     let limit = (name.chars().count() / 3).max(1);
     let mut best: Option<(usize, &str)> = None;
+    let mut longer: Vec<&str> = Vec::new();
     for candidate in known {
         let other = appearance(candidate).to_lowercase();
         let distance = strsim::damerau_levenshtein(&folded, &other);
@@ -32,8 +33,15 @@ pub(super) fn nearest<'a>(name: &str, known: impl IntoIterator<Item = &'a str>) 
         if near && best.is_none_or(|(least, _)| distance < least) {
             best = Some((distance, candidate));
         }
+        if folded.len() >= 3 && other.starts_with(&folded) {
+            longer.push(candidate);
+        }
     }
-    best.map(|(_, candidate)| candidate)
+    let completed = match longer[..] {
+        [only] => Some(only),
+        _ => None,
+    };
+    best.map(|(_, candidate)| candidate).or(completed)
 }
 
 /// The list of choices as people write it: `a`, `b` or `c`.
@@ -60,6 +68,8 @@ mod tests {
             ("rho", None),
             ("m", None),
             ("MU", Some("mu")),
+            ("the", Some("theta")),
+            ("th", None),
             ("\u{43c}u", Some("mu")),
             ("k\u{430}ppa", Some("kappa")),
         ] {

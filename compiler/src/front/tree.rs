@@ -66,25 +66,60 @@ const MAX_ERRORS: usize = 5;
 pub(super) fn parse(source: &SourceFile, diagnostics: &mut Diagnostics) -> Table {
     let (document, errors) = DeTable::parse_recoverable(source.text());
     let mut shown: Vec<usize> = Vec::new();
+    let mut repeated = None;
     for error in &errors {
         let span = error.span().map(Span::from).unwrap_or_default();
         let line = source.position(span.start).line;
-        if shown.len() < MAX_ERRORS && !shown.contains(&line) {
-            shown.push(line);
-            diagnostics.push(syntax_error(source, error.message(), span));
+        if shown.len() >= MAX_ERRORS || shown.contains(&line) {
+            continue;
         }
+        let duplicate = error.message().contains("duplicate key");
+        // The keys below the header of a table that is given twice are given twice too.
+        if duplicate && repeated.is_some_and(|header| !another_header(source, header, span)) {
+            continue;
+        }
+        if duplicate && is_header(source, span) {
+            repeated = Some(span);
+        }
+        shown.push(line);
+        diagnostics.push(syntax_error(source, error.message(), span));
     }
     let span = document.span().into();
     table(source, document.into_inner(), span)
 }
 
+/// Whether a place is in the header of a table.
+fn is_header(source: &SourceFile, span: Span) -> bool {
+    let before = &source.text()[..span.start.min(source.text().len())];
+    let line = before.rsplit('\n').next().unwrap_or_default();
+    line.trim_start().starts_with('[')
+}
+
+/// Whether a place stands in a header, or below another one than `header`.
+fn another_header(source: &SourceFile, header: Span, span: Span) -> bool {
+    let between = source.text().get(header.end..span.end).unwrap_or_default();
+    between
+        .lines()
+        .skip(1)
+        .any(|line| line.trim_start().starts_with('['))
+}
+
 fn syntax_error(source: &SourceFile, message: &str, span: Span) -> Diagnostic {
-    let diagnostic = Diagnostic::error(Code::TomlSyntax, span, format!("TOML: {message}"));
+    let shown = match message {
+        "duplicate key" => format!("`{}` is given twice", source.slice(span)),
+        _ => format!("TOML: {message}"),
+    };
+    let diagnostic = Diagnostic::error(Code::TomlSyntax, span, shown);
     let next = source.text()[span.start.min(source.text().len())..]
         .chars()
         .next();
     let hint = match (message, next) {
         (text, _) if text.contains("duplicate key") => "each key may be given once in its table",
+        (text, _) if text.contains("carriage return") => "end lines with LF or CR LF",
+        (text, _) if text.contains("recur") => "nothing in a model nests this deep",
+        (text, _) if text.contains("expected `}`") => "close the table with `}`",
+        (text, _) if text.contains("expected `]`") => "close the list with `]`",
+        (_, Some(c)) if c.is_control() && c != '\n' && c != '\r' => "remove the control character",
         (_, Some(c)) if !c.is_ascii() => {
             "put keys with letters outside ASCII in quotes, and formulas too"
         }

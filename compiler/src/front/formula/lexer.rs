@@ -109,16 +109,37 @@ impl<'a> Lexer<'a> {
     }
 
     fn unknown(&mut self, c: char) {
+        let rest = self.rest();
+        if let Some(operator) = FOREIGN.iter().find(|operator| rest.starts_with(**operator)) {
+            let span = self.take(operator.len());
+            let message = format!("`{operator}` is not used in formulas");
+            let hint = "an assumption is one inequality, with <, <=, > or >=";
+            self.errors
+                .push(Diagnostic::error(Code::UnknownCharacter, span, message).hint(hint));
+            return;
+        }
         let span = self.take(c.len_utf8());
-        let shown = if c.is_control() {
-            c.escape_default().to_string()
+        let message = if is_invisible(c) {
+            format!(
+                "the invisible character U+{:04X} is not used in formulas",
+                u32::from(c)
+            )
         } else {
-            c.to_string()
+            format!("`{c}` is not used in formulas")
         };
-        let message = format!("`{shown}` is not used in formulas");
         let diagnostic = Diagnostic::error(Code::UnknownCharacter, span, message);
         self.errors.push(diagnostic.hint(replacement(c)));
     }
+}
+
+/// Operators of other languages.
+const FOREIGN: [&str; 4] = ["!=", "==", "&&", "||"];
+
+/// Characters that leave no trace, or change the direction of what follows.
+fn is_invisible(c: char) -> bool {
+    c.is_control()
+        || matches!(c, '\u{ad}' | '\u{200b}'..='\u{200f}' | '\u{202a}'..='\u{202e}'
+        | '\u{2060}'..='\u{2069}' | '\u{feff}')
 }
 
 /// What the author of an unusual character may have meant.
@@ -137,6 +158,9 @@ fn replacement(c: char) -> &'static str {
         '\'' | '"' => "a formula holds no quotes of its own",
         '=' => "a formula stands without `=`; inequalities are written <, <=, >, >=",
         '_' => "names start with a letter",
+        ';' => "arguments and the ends of an interval are separated by `,`",
+        '%' => "write 5 % as 0.05",
+        '$' | '\\' => "formulas are plain text: x^2, sqrt(x), sigma",
         _ => "remove it",
     }
 }

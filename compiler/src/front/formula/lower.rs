@@ -192,7 +192,11 @@ impl Lowering<'_> {
                 Function::Min | Function::Max if given > 2 => {
                     format!("nest the calls: `{name}(a, {name}(b, c))`")
                 }
-                _ => "decimals are written with a point, not a comma".to_owned(),
+                _ if given < wanted => format!("write `{name}(a, b)`"),
+                Function::Log if given == 2 => {
+                    "the logarithm to the base b is `log(x)/log(b)`".to_owned()
+                }
+                _ => format!("write `{name}(x)`; decimals have a point, not a comma"),
             };
             self.errors
                 .push(Diagnostic::error(Code::ArgumentCount, ast.span, message).hint(hint));

@@ -1,6 +1,7 @@
 //! `[claims]`.
 
-use super::fields::{Fields, as_table, choice, declared, formula_of, string};
+use super::declared::declared;
+use super::fields::{Fields, choice, formula_of, string, table_or};
 use super::quantities::per_driver;
 use super::{RawClaim, RawClaimKind, RawFormula, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
@@ -8,20 +9,28 @@ use crate::front::tree::{Entry, Value, ValueKind};
 
 /// `[claims]`: a table a claim.
 pub(super) fn read(root: &mut Fields<'_, '_>) -> Vec<RawClaim> {
-    let entries = root.table("claims").map_or(&[][..], |table| &table.entries);
+    let entries = root.entries("claims").into_iter();
     entries
-        .iter()
         .filter_map(|entry| claim(entry, root.diagnostics))
         .collect()
 }
 
 fn claim(entry: &Entry, diagnostics: &mut Diagnostics) -> Option<RawClaim> {
     let name = declared(entry, false, diagnostics);
-    let table = as_table(&entry.value, "a claim", diagnostics)?;
+    let hint = || {
+        format!(
+            "write {} = {{ mean_of = \"...\", is = \"...\" }}",
+            entry.key
+        )
+    };
+    let table = table_or(&entry.value, "a claim", hint, diagnostics)?;
     let mut fields = Fields::new(table, "a claim", keys::CLAIM, diagnostics).at(entry.key_span);
     let kinds = &keys::CLAIM[..keys::CLAIM.len() - 1];
-    let given: Vec<&Entry> = kinds.iter().filter_map(|kind| fields.get(kind)).collect();
-    let subject = match given[..] {
+    let given: Vec<(&str, &Entry)> = kinds
+        .iter()
+        .filter_map(|kind| Some((*kind, fields.get(kind)?)))
+        .collect();
+    let (key, subject) = match given[..] {
         [] => {
             // A misspelt key has been reported, and names the kind that was meant.
             if table.entries.iter().all(|e| e.key == "is") {
@@ -34,19 +43,16 @@ fn claim(entry: &Entry, diagnostics: &mut Diagnostics) -> Option<RawClaim> {
             return None;
         }
         [subject] => subject,
-        [first, second, ..] => {
-            let message = format!(
-                "a claim is of one kind, not `{}` and `{}`",
-                first.key, second.key
-            );
-            let diagnostic = Diagnostic::error(Code::MalformedClaim, second.key_span, message);
+        [(first, _), (second, entry), ..] => {
+            let message = format!("a claim is of one kind, not `{first}` and `{second}`");
+            let diagnostic = Diagnostic::error(Code::MalformedClaim, entry.key_span, message);
             fields
                 .diagnostics
                 .push(diagnostic.hint("make two claims of it"));
             return None;
         }
     };
-    let kind = kind(&mut fields, subject)?;
+    let kind = kind(&mut fields, key, subject)?;
     Some(RawClaim {
         name,
         kind,
@@ -54,8 +60,9 @@ fn claim(entry: &Entry, diagnostics: &mut Diagnostics) -> Option<RawClaim> {
     })
 }
 
-fn kind(fields: &mut Fields<'_, '_>, subject: &Entry) -> Option<RawClaimKind> {
-    if subject.key == "martingale" {
+/// A claim of the kind `key`, which stands in the entry `subject`.
+fn kind(fields: &mut Fields<'_, '_>, key: &str, subject: &Entry) -> Option<RawClaimKind> {
+    if key == "martingale" {
         if let Some(is) = fields.get("is") {
             let message = "a martingale claim has no `is`";
             let diagnostic = Diagnostic::error(Code::MalformedClaim, is.key_span, message);
@@ -66,13 +73,13 @@ fn kind(fields: &mut Fields<'_, '_>, subject: &Entry) -> Option<RawClaimKind> {
         let of = formula_of(&subject.value, "martingale", fields.diagnostics)?;
         return Some(RawClaimKind::Martingale { of });
     }
-    if subject.key == "covariance_of" {
+    if key == "covariance_of" {
         let of = pair(&subject.value, fields.diagnostics);
         let is = fields.required_formula("is");
         return Some(RawClaimKind::Covariance { of: of?, is: is? });
     }
-    let of = formula_of(&subject.value, &subject.key, fields.diagnostics);
-    Some(match subject.key.as_str() {
+    let of = formula_of(&subject.value, key, fields.diagnostics);
+    Some(match key {
         "diffusion_of" => {
             let is = fields.required("is")?;
             let is = per_driver(&is.value, "is", fields.diagnostics)?;

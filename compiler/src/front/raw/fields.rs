@@ -3,7 +3,6 @@
 use super::{Name, RawFormula};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front::formula::{self, IntervalAst, parse_interval};
-use crate::front::names::composed;
 use crate::front::suggest::{nearest, one_of};
 use crate::front::text::MappedText;
 use crate::front::tree::{Entry, Table, Value, ValueKind};
@@ -12,6 +11,9 @@ use crate::source::Span;
 /// A table with its known keys.
 pub(super) struct Fields<'a, 'd> {
     table: &'a Table,
+    /// Misspelt entries under the keys that were likely meant: they are read as those, so that what
+    /// stands in them is neither missed nor passed over.
+    meant: Vec<(&'static str, &'a Entry)>,
     /// What the table is, for messages: "a state".
     what: &'static str,
     /// Where to point when a key is missing.
@@ -24,16 +26,19 @@ impl<'a, 'd> Fields<'a, 'd> {
     pub(super) fn new(
         table: &'a Table,
         what: &'static str,
-        known: &[&str],
+        known: &'static [&'static str],
         diagnostics: &'d mut Diagnostics,
     ) -> Self {
+        let mut meant = Vec::new();
         for entry in &table.entries {
             if !known.contains(&entry.key.as_str()) {
                 diagnostics.push(unknown_key(entry, what, known));
+                meant.extend(nearest(&entry.key, known.iter().copied()).map(|key| (key, entry)));
             }
         }
         Self {
             table,
+            meant,
             what,
             place: table.span,
             diagnostics,
@@ -48,7 +53,26 @@ impl<'a, 'd> Fields<'a, 'd> {
 
     /// The entry of a key.
     pub(super) fn get(&self, key: &str) -> Option<&'a Entry> {
-        self.table.entries.iter().find(|entry| entry.key == key)
+        let exact = self.table.entries.iter().find(|entry| entry.key == key);
+        exact.or_else(|| self.misspelt(key).next())
+    }
+
+    /// Entries that were likely meant to have this key.
+    fn misspelt(&self, key: &str) -> impl Iterator<Item = &'a Entry> {
+        let meant = self.meant.iter().filter(move |(of, _)| *of == key);
+        meant.map(|(_, entry)| *entry)
+    }
+
+    /// The entries of a table inside this one, in the order of the file; those of misspelt tables too.
+    pub(super) fn entries(&mut self, key: &str) -> Vec<&'a Entry> {
+        let exact = self.table.entries.iter().find(|entry| entry.key == key);
+        let all: Vec<&Entry> = exact.into_iter().chain(self.misspelt(key)).collect();
+        let tables = all
+            .into_iter()
+            .filter_map(|entry| as_table(&entry.value, key, self.diagnostics));
+        let mut entries: Vec<&Entry> = tables.flat_map(|table| &table.entries).collect();
+        entries.sort_by_key(|entry| entry.key_span);
+        entries
     }
 
     /// The entry of a key the table needs.
@@ -121,14 +145,22 @@ pub(super) fn as_table<'a>(
     key: &str,
     diagnostics: &mut Diagnostics,
 ) -> Option<&'a Table> {
+    let hint = || format!("write a table, [{key}] or {key} = {{ ... }}");
+    table_or(value, &format!("`{key}`"), hint, diagnostics)
+}
+
+/// A table, or an error that says how to write `what`.
+pub(super) fn table_or<'a>(
+    value: &'a Value,
+    what: &str,
+    hint: impl FnOnce() -> String,
+    diagnostics: &mut Diagnostics,
+) -> Option<&'a Table> {
     if let ValueKind::Table(table) = &value.kind {
         return Some(table);
     }
-    let message = format!("`{key}` is a table, not {}", value.describe());
-    diagnostics.push(
-        Diagnostic::error(Code::WrongType, value.span, message)
-            .hint(format!("write a table, [{key}] or {key} = {{ ... }}")),
-    );
+    let message = format!("{what} is a table, not {}", value.describe());
+    diagnostics.push(Diagnostic::error(Code::WrongType, value.span, message).hint(hint()));
     None
 }
 
@@ -141,15 +173,33 @@ pub(super) fn string<'a>(
     if let ValueKind::String(text) = &value.kind {
         return Some(text);
     }
-    let message = format!("`{key}` is a string, not {}", value.describe());
-    let diagnostic = Diagnostic::error(Code::WrongType, value.span, message);
-    let hint = match &value.kind {
-        ValueKind::Integer(digits, 10) => format!("put it in quotes: \"{digits}\""),
-        ValueKind::Float(digits) => format!("put it in quotes: \"{digits}\""),
-        _ => "texts and formulas stand in quotes".to_owned(),
+    // A phrase such as "a driver" needs no quotes.
+    let what = if key.contains(' ') {
+        key.to_owned()
+    } else {
+        format!("`{key}`")
     };
-    diagnostics.push(diagnostic.hint(hint));
+    let message = format!("{what} is a string, not {}", value.describe());
+    diagnostics
+        .push(Diagnostic::error(Code::WrongType, value.span, message).hint(text_hint(key, value)));
     None
+}
+
+/// How to write what should have been a string.
+fn text_hint(key: &str, value: &Value) -> String {
+    match (key, &value.kind) {
+        ("domain" | "range", _) => "write an interval in quotes, such as \"(0, inf)\"".to_owned(),
+        ("name", _) => "write a name in quotes, such as \"pond\"".to_owned(),
+        ("a driver", _) => "write names in quotes, such as \"W\"".to_owned(),
+        ("an assumption", _) => "write an inequality in quotes, such as \"a > b\"".to_owned(),
+        ("diffusion", _) => {
+            "write a formula in quotes, or a table with one a driver: { W = \"...\" }".to_owned()
+        }
+        (_, ValueKind::Integer(digits, 10) | ValueKind::Float(digits)) => {
+            format!("put it in quotes: \"{digits}\"")
+        }
+        _ => "texts and formulas stand in quotes".to_owned(),
+    }
 }
 
 /// A formula, or its errors.
@@ -174,7 +224,12 @@ pub(super) fn choice(
     words: &[&str],
     diagnostics: &mut Diagnostics,
 ) -> Option<usize> {
-    let text = string(value, key, diagnostics)?;
+    let ValueKind::String(text) = &value.kind else {
+        let message = format!("`{key}` is a string, not {}", value.describe());
+        let hint = format!("it is {}", one_of(words.iter().copied()));
+        diagnostics.push(Diagnostic::error(Code::WrongType, value.span, message).hint(hint));
+        return None;
+    };
     let found = words.iter().position(|word| *word == text.text());
     if found.is_none() {
         let message = format!("`{key}` cannot be `{}`", text.text());
@@ -200,57 +255,4 @@ fn unknown_key(entry: &Entry, what: &str, known: &[&str]) -> Diagnostic {
         Some(best) => diagnostic.hint(format!("did you mean `{best}`?")),
         None => diagnostic.hint(format!("{what} has {}", known.join(", "))),
     }
-}
-
-/// The name an entry declares. One that cannot be used is reported and kept, so that formulas that
-/// use it do not report it again. `reserved` names are refused where that is set.
-pub(super) fn declared(entry: &Entry, reserved: bool, diagnostics: &mut Diagnostics) -> Name {
-    let name = Name {
-        text: composed(&entry.key),
-        span: entry.key_span,
-    };
-    check(&name, reserved, diagnostics);
-    name
-}
-
-/// Reports a name that cannot be used.
-pub(super) fn check(name: &Name, reserved: bool, diagnostics: &mut Diagnostics) {
-    let problem = if reserved {
-        name_problem(name)
-    } else {
-        shape_problem(name)
-    };
-    problem
-        .into_iter()
-        .for_each(|diagnostic| diagnostics.push(diagnostic));
-}
-
-fn shape_problem(name: &Name) -> Option<Diagnostic> {
-    use syn::ext::IdentExt;
-    use syn::parse::Parser;
-    let spelt = syn::Ident::parse_any.parse_str(&name.text).is_ok();
-    if formula::is_name(&name.text) && spelt {
-        return None;
-    }
-    let message = format!("`{}` is not a name", name.text);
-    Some(
-        Diagnostic::error(Code::BadName, name.span, message)
-            .hint("names are letters, digits and `_`, and start with a letter"),
-    )
-}
-
-fn name_problem(name: &Name) -> Option<Diagnostic> {
-    let meaning = match name.text.as_str() {
-        "t" => "the time",
-        "pi" => "the number pi",
-        "inf" => "infinity",
-        "self" | "super" | "crate" | "Self" => "a word that generated code cannot use as a name",
-        other if crate::symbolic::Function::from_name(other).is_some() => "a function",
-        _ => return shape_problem(name),
-    };
-    let message = format!("`{}` is reserved: it is {meaning}", name.text);
-    Some(
-        Diagnostic::error(Code::ReservedName, name.span, message)
-            .hint(format!("choose another name, such as `{}_0`", name.text)),
-    )
 }

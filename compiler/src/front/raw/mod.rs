@@ -3,6 +3,7 @@
 //! A part that is at fault has been reported and is left out; what depends on it must stay silent.
 
 mod claims;
+mod declared;
 mod fields;
 pub(super) mod keys;
 mod model;
@@ -41,6 +42,8 @@ pub(super) struct RawModel {
     pub(super) time_unit: Option<Name>,
     pub(super) calculus: Option<Calculus>,
     pub(super) drivers: Vec<Name>,
+    /// Whether there may be drivers that could not be read.
+    pub(super) drivers_at_fault: bool,
     pub(super) parameters: Vec<RawParameter>,
     pub(super) assumptions: Vec<RawAssumption>,
     pub(super) correlations: Vec<RawCorrelation>,

@@ -1,6 +1,7 @@
 //! `[model]`.
 
-use super::fields::{Fields, check, choice, string};
+use super::declared::check;
+use super::fields::{Fields, choice, string};
 use super::{Name, RawModel, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front::names::composed;
@@ -10,6 +11,8 @@ use crate::model::Calculus;
 use crate::source::Span;
 
 pub(super) fn read(root: &mut Fields<'_, '_>, raw: &mut RawModel) {
+    // Until the drivers have been read, any name may be one.
+    raw.drivers_at_fault = true;
     let Some(entry) = root.get("model") else {
         root.diagnostics.push(
             Diagnostic::error(
@@ -36,9 +39,11 @@ pub(super) fn read(root: &mut Fields<'_, '_>, raw: &mut RawModel) {
         let word = choice(&entry.value, "calculus", keys::CALCULI, fields.diagnostics)?;
         Some([Calculus::Ito, Calculus::Stratonovich][word])
     });
+    let before = fields.diagnostics.error_count();
     raw.drivers = fields
         .get("drivers")
         .map_or(Vec::new(), |entry| drivers(entry, fields.diagnostics));
+    raw.drivers_at_fault = fields.diagnostics.error_count() > before;
 }
 
 fn model_name(entry: &Entry, diagnostics: &mut Diagnostics) -> Option<String> {

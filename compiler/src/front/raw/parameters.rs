@@ -2,7 +2,8 @@
 
 use dashu_int::IBig;
 
-use super::fields::{Fields, as_table, declared, formula_of, keep, string};
+use super::declared::declared;
+use super::fields::{Fields, as_table, formula_of, keep, string};
 use super::{Name, RawAssumption, RawCorrelation, RawParameter, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front::formula::{self, NumberError, decimal};
@@ -12,11 +13,8 @@ use crate::symbolic::Rational;
 
 /// `[parameters]`
 pub(super) fn read(root: &mut Fields<'_, '_>) -> Vec<RawParameter> {
-    let entries = root
-        .table("parameters")
-        .map_or(&[][..], |table| &table.entries);
+    let entries = root.entries("parameters").into_iter();
     entries
-        .iter()
         .map(|entry| parameter(entry, root.diagnostics))
         .collect()
 }
@@ -95,11 +93,8 @@ fn signed(digits: &str) -> Result<Rational, NumberError> {
 
 /// `[assumptions]`
 pub(super) fn assumptions(root: &mut Fields<'_, '_>) -> Vec<RawAssumption> {
-    let entries = root
-        .table("assumptions")
-        .map_or(&[][..], |table| &table.entries);
+    let entries = root.entries("assumptions").into_iter();
     entries
-        .iter()
         .filter_map(|entry| assumption(entry, root.diagnostics))
         .collect()
 }
@@ -121,19 +116,19 @@ fn assumption(entry: &Entry, diagnostics: &mut Diagnostics) -> Option<RawAssumpt
 
 /// `[correlation]`: `W.B = "rho"`
 pub(super) fn correlations(root: &mut Fields<'_, '_>) -> Vec<RawCorrelation> {
-    let entries = root
-        .table("correlation")
-        .map_or(&[][..], |table| &table.entries);
     let mut found = Vec::new();
-    for first in entries {
+    for first in root.entries("correlation") {
         if let ValueKind::String(_) = first.value.kind {
             let message = format!("`{}` names one driver, a correlation is of two", first.key);
-            root.diagnostics.push(
-                Diagnostic::error(Code::CorrelationPair, first.key_span, message).hint(format!(
+            let hint = match first.key.split_once('.') {
+                Some((one, other)) => format!("put no quotes around both: {one}.{other} = \"...\""),
+                None => format!(
                     "write {}.B = \"...\" with the other driver's name",
                     first.key
-                )),
-            );
+                ),
+            };
+            root.diagnostics
+                .push(Diagnostic::error(Code::CorrelationPair, first.key_span, message).hint(hint));
             continue;
         }
         let Some(table) = as_table(&first.value, &first.key, root.diagnostics) else {

@@ -1,6 +1,7 @@
 //! `[states]`, `[where]`, `[derived]` and `[readouts]`.
 
-use super::fields::{Fields, as_table, choice, declared, formula_of, string};
+use super::declared::declared;
+use super::fields::{Fields, as_table, choice, formula_of, string, table_or};
 use super::{Name, PerDriver, RawEdge, RawNamed, RawState, keys};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front::names::composed;
@@ -11,19 +12,18 @@ use crate::source::Span;
 
 /// `[states.X]`
 pub(super) fn states(root: &mut Fields<'_, '_>) -> Vec<RawState> {
-    let table = root.table("states");
-    let entries = table.map_or(&[][..], |table| &table.entries);
-    if entries.is_empty() && (table.is_some() || root.get("states").is_none()) {
-        let place = root
-            .get("states")
-            .map_or(Span::default(), |entry| entry.key_span);
+    let entries = root.entries("states");
+    let declared = root.get("states");
+    let is_table = |entry: &Entry| matches!(entry.value.kind, ValueKind::Table(_));
+    if entries.is_empty() && declared.is_none_or(is_table) {
+        let place = declared.map_or(Span::default(), |entry| entry.key_span);
         root.diagnostics.push(
             Diagnostic::error(Code::MissingKey, place, "the model has no state")
                 .hint("add [states.X] with initial = \"...\" and drift = \"...\""),
         );
     }
     entries
-        .iter()
+        .into_iter()
         .map(|entry| state(entry, root.diagnostics))
         .collect()
 }
@@ -34,7 +34,13 @@ fn state(entry: &Entry, diagnostics: &mut Diagnostics) -> RawState {
         name,
         ..RawState::default()
     };
-    let Some(table) = as_table(&entry.value, "a state", diagnostics) else {
+    let hint = || {
+        format!(
+            "write [states.{}] in single brackets, with its keys below",
+            entry.key
+        )
+    };
+    let Some(table) = table_or(&entry.value, "a state", hint, diagnostics) else {
         return state;
     };
     let mut fields = Fields::new(table, "a state", keys::STATE, diagnostics).at(entry.key_span);
@@ -77,6 +83,12 @@ fn at_edge(value: &Value, diagnostics: &mut Diagnostics) -> Option<RawEdge> {
     let ValueKind::Table(table) = &value.kind else {
         return edge_word(value, diagnostics).map(|(edge, span)| RawEdge::Both(edge, span));
     };
+    if table.entries.is_empty() {
+        diagnostics.push(
+            Diagnostic::error(Code::MissingKey, value.span, "`at_edge` says nothing")
+                .hint("write lower = \"...\", upper = \"...\" or both, or leave `at_edge` out"),
+        );
+    }
     let fields = Fields::new(table, "`at_edge`", keys::EDGES, diagnostics);
     let (lower, upper) = (fields.get("lower"), fields.get("upper"));
     Some(RawEdge::Ends {
@@ -102,9 +114,8 @@ fn scheme(value: &Value, diagnostics: &mut Diagnostics) -> Option<(SchemeName, S
 
 /// `[where]`: a formula a name.
 pub(super) fn wheres(root: &mut Fields<'_, '_>) -> Vec<RawNamed> {
-    let entries = root.table("where").map_or(&[][..], |table| &table.entries);
+    let entries = root.entries("where").into_iter();
     entries
-        .iter()
         .map(|entry| {
             let name = declared(entry, true, root.diagnostics);
             let formula = formula_of(&entry.value, &entry.key, root.diagnostics);
@@ -120,9 +131,8 @@ pub(super) fn wheres(root: &mut Fields<'_, '_>) -> Vec<RawNamed> {
 
 /// `[derived.X]` or `[readouts.X]`
 pub(super) fn named(root: &mut Fields<'_, '_>, section: &str) -> Vec<RawNamed> {
-    let entries = root.table(section).map_or(&[][..], |table| &table.entries);
+    let entries = root.entries(section).into_iter();
     entries
-        .iter()
         .map(|entry| named_entry(entry, root.diagnostics))
         .collect()
 }

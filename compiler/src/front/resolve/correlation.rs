@@ -4,10 +4,10 @@ use std::collections::HashMap;
 
 use super::super::raw::{Name, RawCorrelation, RawModel};
 use super::super::suggest::did_you_mean;
-use super::Resolver;
 use super::numbers::{Basis, short};
 use super::place::Place;
 use super::scope::Kind;
+use super::{Resolver, Silent};
 use crate::diagnostic::{Code, Diagnostic};
 use crate::model::Formula;
 use crate::source::Span;
@@ -66,15 +66,19 @@ impl Resolver<'_> {
         (matrix, declared)
     }
 
-    /// The position of a driver, or an error.
+    /// The position of a driver, or an error: one for each name.
     pub(super) fn driver(&mut self, drivers: &[Name], name: &Name) -> Option<usize> {
         let found = drivers.iter().position(|driver| driver.text == name.text);
-        if found.is_none() {
+        let new = match &mut self.silent_drivers {
+            Silent::All => false,
+            Silent::These(names) => found.is_none() && names.insert(name.text.clone()),
+        };
+        if new {
             let message = format!("`{}` is not a driver", name.text);
             let diagnostic = Diagnostic::error(Code::UnknownName, name.span, message);
             let known = self.scope.of_kind(Kind::Driver);
             let hint = did_you_mean(&name.text, known)
-                .unwrap_or_else(|| "declare it under `drivers` in `[model]`".to_owned());
+                .unwrap_or_else(|| "declare it in `[model]`, in the list `drivers`".to_owned());
             self.diagnostics.push(diagnostic.hint(hint));
         }
         found

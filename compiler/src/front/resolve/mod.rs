@@ -20,7 +20,7 @@ pub(super) use order::{Definition, order};
 pub use place::Place;
 pub use single::read_formula;
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use super::names::{appearance, code_points};
 use super::raw::{Name, RawModel};
@@ -36,7 +36,15 @@ pub(super) struct Resolver<'d> {
     pool: Pool,
     scope: Scope,
     numbers: Numbers,
+    /// Names that may be those of drivers that could not be read, or have been reported: all, or these.
+    silent_drivers: Silent,
     diagnostics: &'d mut Diagnostics,
+}
+
+/// Names about which nothing more is said.
+enum Silent {
+    All,
+    These(BTreeSet<String>),
 }
 
 /// Resolves a whole file. The model is complete only where no error was reported: parts at fault are
@@ -49,6 +57,11 @@ pub(super) fn resolve(raw: RawModel, source: &SourceFile, diagnostics: &mut Diag
         pool: pool.clone(),
         scope,
         numbers,
+        silent_drivers: if raw.drivers_at_fault {
+            Silent::All
+        } else {
+            Silent::These(BTreeSet::new())
+        },
         diagnostics,
     };
     resolver.declare(&raw);

@@ -80,7 +80,11 @@ impl Scope {
     /// Declares a name; a second meaning is refused.
     pub(super) fn declare(&mut self, kind: Kind, name: &Name, diagnostics: &mut Diagnostics) {
         if let Some(first) = self.names.get(&name.text) {
-            let message = format!("`{}` has two meanings", name.text);
+            let message = if kind == first.kind {
+                format!("the {} `{}` is declared twice", kind.noun(), name.text)
+            } else {
+                format!("`{}` has two meanings", name.text)
+            };
             diagnostics.push(
                 Diagnostic::error(Code::NameTwice, name.span, message)
                     .label(name.span, format!("here a {}", kind.noun()))

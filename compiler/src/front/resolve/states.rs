@@ -1,10 +1,10 @@
 //! States: domains, coefficients, behaviour at edges.
 
 use super::super::raw::{Name, PerDriver, RawEdge, RawModel, RawState};
-use super::Resolver;
 use super::intervals::show;
 use super::numbers::Basis;
 use super::place::Place;
+use super::{Resolver, Silent};
 use crate::diagnostic::{Code, Diagnostic};
 use crate::model::{AtEdge, Formula, State};
 use crate::source::Span;
@@ -85,7 +85,9 @@ impl Resolver<'_> {
             PerDriver::Single(formula) => {
                 let resolved = self.scope.formula(formula, place, self.diagnostics);
                 let [driver] = drivers else {
-                    self.unclear_driver(drivers, formula.span, owner);
+                    if !matches!(self.silent_drivers, Silent::All) {
+                        self.unclear_driver(drivers, formula.span, owner);
+                    }
                     return Vec::new();
                 };
                 self.scope.mark_used(&driver.text);

@@ -5,7 +5,7 @@ use std::collections::BTreeMap;
 use super::super::formula::Names;
 use super::super::suggest::did_you_mean;
 use super::place::Place;
-use super::scope::{Declared, Scope};
+use super::scope::{Declared, Kind, Scope};
 use crate::diagnostic::{Code, Diagnostic};
 use crate::source::Span;
 use crate::symbolic::{Expr, SymbolKind};
@@ -35,7 +35,16 @@ impl Names for View<'_> {
         };
         scope.mark_used(name);
         if !self.place.allows(declared.kind) {
-            return Err(self.refused(&format!("the {} `{name}`", declared.kind.noun()), span));
+            let refused = self.refused(&format!("the {} `{name}`", declared.kind.noun()), span);
+            return Err(match (declared.kind, self.place) {
+                (Kind::Derived, Place::Coefficient | Place::Where) => {
+                    refused.hint("put what they share in `[where]`")
+                }
+                (Kind::Driver, Place::Coefficient) => {
+                    refused.hint("a driver stands as a key of `diffusion`")
+                }
+                _ => refused,
+            });
         }
         let Some(value) = declared.value else {
             return Ok(None);
@@ -99,6 +108,9 @@ impl<'a> View<'a> {
         let hint = match name {
             "e" => Some("the number e is `exp(1)`".to_owned()),
             "inf" => Some("`inf` stands at the end of an interval only".to_owned()),
+            "Inf" | "INF" | "infinity" | "Infinity" => {
+                Some("an infinite end of an interval is written `inf`".to_owned())
+            }
             "dt" | "dW" => {
                 Some("write the coefficient alone, `dt` and `dW` are understood".to_owned())
             }
