@@ -120,10 +120,7 @@ impl Pool {
     fn end(&self, bound: Bound) -> Option<End> {
         let e = bound.value()?;
         let open = matches!(bound, Bound::Open(_));
-        match self.exact_end(e) {
-            Some(end) => Some(End { open, ..end }),
-            None => None,
-        }
+        self.exact_end(e).map(|end| End { open, ..end })
     }
 
     /// `number + turns*pi`, if the formula is of that form.

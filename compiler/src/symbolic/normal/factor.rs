@@ -76,7 +76,7 @@ fn quadratic_factor(
     if degree < 2
         || coefficients
             .keys()
-            .any(|&e| e % half != 0 || degree % 2 != 0)
+            .any(|&e| !e.is_multiple_of(half) || !degree.is_multiple_of(2))
     {
         return None;
     }
