@@ -89,6 +89,11 @@ fn summary(file: &Loaded) -> String {
             }
         }
         parts.extend(schemes(compiled));
+        let exceeded = compiled.model.pool.exceeded();
+        if !exceeded.is_empty() {
+            let passes: Vec<&str> = exceeded.iter().map(|limit| limit.pass()).collect();
+            parts.push(format!("over budget in {}", passes.join(", ")));
+        }
     }
     format!("{}: {}\n", file.source.path(), parts.join("; "))
 }

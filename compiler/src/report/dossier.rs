@@ -98,6 +98,8 @@ fn cautions(document: &mut Document, derivation: &Derivation<'_>) {
             "All of it holds under the assumptions above, and not beyond them.",
         ));
     }
+    let exceeded = derivation.model.pool.exceeded().into_iter();
+    items.extend(exceeded.map(|limit| words(format!("A budget was exceeded: {limit}."))));
     items.push(words(
         "Use for valuation, risk or capital falls under your firm's model-risk policy and your local \
          rules, and may need the review of a licensed practitioner; this document replaces none of them.",

@@ -28,13 +28,15 @@ pub enum Limit {
     Witness,
     /// The leading term of a formula towards an end of a domain, and its limit there.
     Asymptotics,
+    /// The closure of moment equations.
+    Moments,
     /// The text of one formula.
     Printing,
 }
 
 impl Limit {
     /// Every budget.
-    pub const ALL: [Self; 9] = [
+    pub const ALL: [Self; 10] = [
         Self::Algebra,
         Self::Product,
         Self::Denominator,
@@ -43,6 +45,7 @@ impl Limit {
         Self::Expansion,
         Self::Witness,
         Self::Asymptotics,
+        Self::Moments,
         Self::Printing,
     ];
 
@@ -57,6 +60,7 @@ impl Limit {
             Self::Expansion => "expansion",
             Self::Witness => "zero test",
             Self::Asymptotics => "behaviour at ends",
+            Self::Moments => "moments",
             Self::Printing => "printing",
         }
     }
@@ -74,6 +78,7 @@ impl Limit {
             Self::Expansion => 2_000,
             Self::Witness => 200_000,
             Self::Asymptotics => 300,
+            Self::Moments => 300,
             Self::Printing => 6_000,
         }
     }
@@ -87,6 +92,7 @@ impl Limit {
             Self::Expansion => "terms",
             Self::Witness => "evaluations in high precision",
             Self::Asymptotics => "nested levels",
+            Self::Moments => "functions of the states",
             Self::Printing => "characters",
         }
     }
@@ -104,6 +110,7 @@ impl Limit {
             Self::Expansion => "a product with more of them stayed a product",
             Self::Witness => "fewer points were tried, so that a difference may have been missed",
             Self::Asymptotics => "a deeper formula counts as one of unknown growth",
+            Self::Moments => "moments that need more of them were not sought",
             Self::Printing => "a longer text was cut, and says so",
         }
     }

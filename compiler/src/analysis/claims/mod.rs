@@ -91,7 +91,13 @@ pub fn judge(
         system,
     };
     let judged = model.claims.iter().map(|claim| {
-        let result = court.judge(claim);
+        let mut result = court.judge(claim);
+        if result.verdict == Verdict::Open {
+            let exceeded = model.pool.exceeded();
+            result
+                .reason
+                .extend(exceeded.iter().map(|limit| format!("; budget of {limit}")));
+        }
         let finding = match result.verdict {
             Verdict::Refuted => Some(report::refutation(model, claim, &result)),
             Verdict::Proved | Verdict::Open => report::says_nothing(model, claim),

@@ -13,11 +13,9 @@ use std::collections::BTreeMap;
 use super::exp_poly::{ExpPoly, factors, summands};
 use super::integrability::martingale_part;
 use crate::calculus::System;
-use crate::symbolic::{Expr, Symbol};
+use crate::symbolic::{Expr, Limit, Symbol};
 
-/// A function space larger than this is given up on.
-const MOST_FUNCTIONS: usize = 300;
-/// So is one in which a function needs a longer chain of others.
+/// A function space is given up on in which a function needs a longer chain of others.
 const DEEPEST: usize = 40;
 /// And one whose generator has more terms.
 const MOST_TERMS: usize = 200;
@@ -84,7 +82,8 @@ impl<'a> Equations<'a> {
                 entries.push((next, column, pool.eval_f64(coefficient, values)?));
             }
             next += 1;
-            if basis.len() > MOST_FUNCTIONS {
+            if basis.len() as u64 > Limit::Moments.amount() {
+                pool.exceed(Limit::Moments);
                 return None;
             }
         }
@@ -149,7 +148,9 @@ impl<'a> Equations<'a> {
         if let Some(known) = self.known.borrow().get(&function) {
             return known.clone();
         }
-        if depth > DEEPEST || self.known.borrow().len() > MOST_FUNCTIONS {
+        let functions = self.known.borrow().len() as u64;
+        if depth > DEEPEST || functions > Limit::Moments.amount() {
+            self.system.pool().exceed(Limit::Moments);
             return None;
         }
         // Whoever needs this function in order to solve it has found a cycle, and gets "none".
@@ -197,6 +198,7 @@ impl<'a> Equations<'a> {
         let pool = self.system.pool();
         let terms = summands(pool, pool.expand(formula));
         if terms.len() > MOST_TERMS {
+            pool.exceed(Limit::Moments);
             return None;
         }
         let mut parts = Combination::new();

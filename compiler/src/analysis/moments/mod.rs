@@ -29,12 +29,15 @@ pub use law::{LawName, NormalLaw};
 use super::linear;
 use crate::calculus::{Dynamics, Expansion};
 use crate::model::Model;
-use crate::symbolic::{Expr, Symbol};
+use crate::symbolic::{Expr, Limit, Symbol};
 use coordinates::{Change, Chart};
 use equations::Equations;
 use gaussian::{Gaussian, GaussianRow, covariance_symbol, mean_symbol};
 use kinks::Kinks;
 use tilting::Tilted;
+
+/// Moment equations are no longer set up once the moments of a model have taken this many formulas.
+const MOST_FORMULAS: usize = 200_000;
 
 /// Formulas with more distinct parts are left as they come out of the derivation.
 const LARGEST_READABLE: usize = 250;
@@ -61,6 +64,8 @@ pub struct Moments {
     gaussian: Gaussian,
     changes: Vec<Change>,
     means: RefCell<BTreeMap<Expr, Option<Moment>>>,
+    /// How many formulas the model had before any moment was sought.
+    before: usize,
 }
 
 impl Moments {
@@ -96,6 +101,7 @@ impl Moments {
             gaussian: Gaussian::new(rows.collect()),
             changes,
             means: RefCell::default(),
+            before: model.pool.node_count(),
         }
     }
 
@@ -345,6 +351,10 @@ impl Moments {
     ) -> Option<T> {
         // The generator says nothing of a formula with a kink.
         if self.model.pool.has_kink(formula).is_some() {
+            return None;
+        }
+        if self.model.pool.node_count() - self.before > MOST_FORMULAS {
+            self.model.pool.exceed(Limit::Moments);
             return None;
         }
         self.charts(formula).into_iter().find_map(|chart| {

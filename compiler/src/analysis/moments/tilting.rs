@@ -11,7 +11,7 @@ use super::affine::affine;
 use super::exp_poly::{exponent_of, factors, small_power, summands};
 use super::gaussian::{Gaussian, covariance_symbol, mean_symbol};
 use crate::model::Model;
-use crate::symbolic::{Expr, Node, Pool, Symbol};
+use crate::symbolic::{Expr, Limit, Node, Pool, Symbol};
 
 /// More terms than this are not taken apart: the answer would not be readable.
 const MOST_TERMS: usize = 2_000;
@@ -47,6 +47,7 @@ impl Tilted {
         let pool = &model.pool;
         let terms = summands(pool, expanded);
         if terms.len() > MOST_TERMS {
+            pool.exceed(Limit::Moments);
             return None;
         }
         let read = |term: Expr| {

@@ -1,6 +1,7 @@
 //! Tests of the formula algebra.
 
 mod basics;
+mod budgets;
 mod equations;
 mod inequalities;
 mod inverse;
