@@ -128,10 +128,12 @@ fn first_line_break(inner: &str) -> usize {
 /// continuation stands for nothing.
 fn escape(rest: &str) -> (Option<char>, usize) {
     let digits = |from: usize, count: usize| {
-        let code = rest
-            .get(from..from + count)
-            .and_then(|hex| u32::from_str_radix(hex, 16).ok());
-        (code.and_then(char::from_u32), from + count)
+        // Where the TOML is at fault there may be fewer than the escape calls for.
+        let present = rest.bytes().skip(from).take(count);
+        let end = from + present.take_while(u8::is_ascii_hexdigit).count();
+        let code = u32::from_str_radix(&rest[from..end], 16).ok();
+        let whole = end == from + count;
+        (code.filter(|_| whole).and_then(char::from_u32), end)
     };
     match rest.as_bytes().get(1) {
         Some(b'b') => (Some('\u{8}'), 2),
@@ -158,6 +160,20 @@ mod tests {
 
     fn mapped(raw: &str, text: &str) -> MappedText {
         MappedText::decoded(text, raw, 100)
+    }
+
+    #[test]
+    fn broken_escapes_do_not_run_past_the_end() {
+        for raw in [
+            r#""a\u03c""#,
+            r#""a\x""#,
+            r#""\U0001""#,
+            r#""\u03σb""#,
+            r#""a\""#,
+        ] {
+            let text = mapped(raw, "a");
+            assert_eq!(text.place(0..1).start, 101, "{raw}");
+        }
     }
 
     #[test]
