@@ -1,7 +1,7 @@
 //! Derivatives.
 
 use super::function::Function;
-use super::node::{Expr, Node, Symbol};
+use super::node::{Expr, Node, Rational, Symbol};
 use super::pool::Pool;
 
 impl Pool {
@@ -45,6 +45,11 @@ impl Pool {
                 }))
             }
             Node::Power(base, exponent) => {
+                if self.as_number(*base).is_some_and(|b| b <= Rational::ZERO) {
+                    // 0 is constant inside of where its power has a value; that of a negative number has
+                    // one only where the exponent stays at a whole number. Its logarithm has none.
+                    return self.zero();
+                }
                 // (b^p)' = p b^(p-1) b' + log(b) b^p p'
                 let lowered = self.pow(*base, self.sub(*exponent, self.one()));
                 let mut terms = vec![self.product([*exponent, lowered, d(*base)])];

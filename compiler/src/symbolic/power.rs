@@ -66,12 +66,15 @@ impl Pool {
 
     /// A power of two numbers, folded where the result is a number of reasonable size.
     fn numeric_power(&self, base: &Rational, exponent: &Rational) -> Expr {
+        let inverse = exponent.is_int() && *exponent == -Rational::ONE;
         let folded = exact_power(base, exponent).filter(|value| {
-            value
-                .numerator()
-                .bit_len()
-                .max(value.denominator().bit_len())
-                <= MAX_FOLDED_BITS
+            // An inverse is no larger than what it inverts, and a quotient of numbers is a number.
+            inverse
+                || value
+                    .numerator()
+                    .bit_len()
+                    .max(value.denominator().bit_len())
+                    <= MAX_FOLDED_BITS
         });
         folded.map_or_else(
             || {
