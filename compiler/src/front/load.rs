@@ -32,7 +32,17 @@ pub fn load(path: &Path) -> Result<SourceFile, Diagnostic> {
     decode(&shown, &bytes)
 }
 
-fn decode(path: &str, bytes: &[u8]) -> Result<SourceFile, Diagnostic> {
+/// The bytes of a model file as text; `path` is how it is shown. A byte order mark is taken off.
+///
+/// # Errors
+/// The bytes are not UTF-8 text; the diagnostic has no place inside the file.
+///
+/// ```
+/// use driftwright::front::decode;
+/// assert_eq!(decode("a.toml", b"[model]").unwrap().text(), "[model]");
+/// assert!(decode("a.toml", b"caf\xe9").is_err());
+/// ```
+pub fn decode(path: &str, bytes: &[u8]) -> Result<SourceFile, Diagnostic> {
     let bytes = bytes.strip_prefix(b"\xef\xbb\xbf").unwrap_or(bytes);
     let place = |offset: usize| {
         let line = bytes[..offset].iter().filter(|&&b| b == b'\n').count() + 1;

@@ -15,7 +15,7 @@ pub mod text;
 mod tree;
 mod units;
 
-pub use load::load;
+pub use load::{decode, load};
 #[cfg(feature = "cli")]
 pub(crate) use names::composed;
 pub use resolve::{Place, read_formula};
