@@ -172,9 +172,16 @@ pub(crate) fn expansions(seed: u64, count: usize, states: usize) -> Vec<Value> {
 struct RandomModel {
     drivers: Vec<&'static str>,
     correlation: &'static str,
-    /// Name, drift and diffusion by driver.
-    states: Vec<(&'static str, String, Vec<(&'static str, String)>)>,
+    states: Vec<RandomState>,
     formula: String,
+}
+
+/// One state of a random model.
+struct RandomState {
+    name: &'static str,
+    drift: String,
+    /// Coefficients by driver.
+    diffusion: Vec<(&'static str, String)>,
 }
 
 impl RandomModel {
@@ -193,7 +200,12 @@ impl RandomModel {
                     diffusion.push((driver, of(random, &DIFFUSIONS)));
                 }
             }
-            states.push((name, of(random, &DRIFTS), diffusion));
+            let drift = of(random, &DRIFTS);
+            states.push(RandomState {
+                name,
+                drift,
+                diffusion,
+            });
         }
         let symbols: Vec<&str> = ["t", "sigma"]
             .iter()
@@ -221,7 +233,12 @@ impl RandomModel {
         if self.drivers.len() == 2 {
             text += &format!("[correlation]\nW.B = \"{}\"\n", self.correlation);
         }
-        for (name, drift, diffusion) in &self.states {
+        for RandomState {
+            name,
+            drift,
+            diffusion,
+        } in &self.states
+        {
             let noise: Vec<String> = diffusion
                 .iter()
                 .map(|(d, b)| format!("{d} = \"{b}\""))
@@ -245,14 +262,15 @@ impl RandomModel {
         let derived = dynamics(&model);
         let expansion = derived.derived.first()?;
         let show = |e: Expr| model.pool.format(e);
-        let states = self.states.iter().map(|(name, drift, diffusion)| {
-            let noise: Map<String, Value> = diffusion
+        let states = self.states.iter().map(|state| {
+            let noise: Map<String, Value> = state
+                .diffusion
                 .iter()
                 .map(|(d, b)| ((*d).to_owned(), json!(b)))
                 .collect();
             (
-                (*name).to_owned(),
-                json!({ "drift": drift, "diffusion": noise }),
+                state.name.to_owned(),
+                json!({ "drift": state.drift, "diffusion": noise }),
             )
         });
         let noise = self.drivers.iter().zip(&expansion.diffusion);
