@@ -3,6 +3,7 @@
 use divan::Bencher;
 use divan::counter::ItemsCount;
 use driftwright_runtime::collect::Paths;
+use driftwright_runtime::random::Draws;
 use driftwright_runtime::{
     Arith, Grid, LANES, Lane, Run, Shape, Simulator, StepError, math, simulate,
 };
@@ -51,7 +52,14 @@ macro_rules! functions {
                 }
 
                 #[inline(always)]
-                fn step<A: Arith>(&self, v: &[f64], states: &mut [Lane], _: &[Lane], _: &mut [Lane]) {
+                fn step<A: Arith>(
+                    &self,
+                    v: &[f64],
+                    states: &mut [Lane],
+                    _: &[Lane],
+                    _: &Draws,
+                    _: &mut [Lane],
+                ) {
                     let [a, b] = v else { unreachable!("two values") };
                     for i in 0..LANES {
                         let $x = states[0][i];

@@ -5,6 +5,7 @@ use std::borrow::Cow;
 use crate::arith::Arith;
 use crate::error::StepError;
 use crate::lane::Lane;
+use crate::random::Draws;
 use crate::source::Source;
 
 /// The sizes and names of a simulator.
@@ -40,7 +41,8 @@ pub struct Shape<'a> {
 /// ```
 /// use std::borrow::Cow;
 /// use driftwright_runtime::{
-///     Arith, Grid, LANES, Lane, Run, Shape, Simulator, Source, StepError, collect::Moments, simulate,
+///     Arith, Grid, LANES, Lane, Run, Shape, Simulator, Source, StepError, collect::Moments,
+///     random::Draws, simulate,
 /// };
 ///
 /// /// Brownian motion with a volatility.
@@ -68,7 +70,9 @@ pub struct Shape<'a> {
 ///         Ok(())
 ///     }
 ///     #[inline(always)]
-///     fn step<A: Arith>(&self, values: &[f64], x: &mut [Lane], noise: &[Lane], _: &mut [Lane]) {
+///     fn step<A: Arith>(
+///         &self, values: &[f64], x: &mut [Lane], noise: &[Lane], _: &Draws, _: &mut [Lane],
+///     ) {
 ///         for i in 0..LANES {
 ///             x[0][i] = A::mul_add(values[0], noise[0][i], x[0][i]);
 ///         }
@@ -107,12 +111,13 @@ pub trait Simulator: Sync {
     fn observation_values(&self, time: f64, values: &mut [f64]) -> Result<(), StepError>;
 
     /// Advances all paths of a block by one step. `noise` holds one lane of independent
-    /// standard normals per source.
+    /// standard normals per source; `draws` gives what follows other laws.
     fn step<A: Arith>(
         &self,
         values: &[f64],
         states: &mut [Lane],
         noise: &[Lane],
+        draws: &Draws,
         scratch: &mut [Lane],
     );
 

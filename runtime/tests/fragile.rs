@@ -2,6 +2,7 @@
 
 use std::borrow::Cow;
 
+use driftwright_runtime::random::Draws;
 use driftwright_runtime::{Arith, LANES, Lane, Shape, Simulator, Source, StepError, math};
 
 use crate::models::shape;
@@ -52,6 +53,7 @@ impl Simulator for Fragile {
         values: &[f64],
         states: &mut [Lane],
         noise: &[Lane],
+        _draws: &Draws,
         scratch: &mut [Lane],
     ) {
         let [x, flag] = states else {

@@ -1,6 +1,7 @@
 //! Tests of the runtime against things outside it, as one program.
 
 mod collectors;
+mod counts_and_waiting_times;
 mod fragile;
 mod generators;
 mod grids;

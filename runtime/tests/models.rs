@@ -2,6 +2,7 @@
 
 use std::borrow::Cow;
 
+use driftwright_runtime::random::Draws;
 use driftwright_runtime::{Arith, LANES, Lane, Shape, Simulator, Source, StepError, math};
 
 /// Geometric Brownian motion, `dS = mu S dt + sigma S dW`, stepped exactly in its logarithm.
@@ -66,6 +67,7 @@ impl Simulator for Geometric {
         values: &[f64],
         states: &mut [Lane],
         noise: &[Lane],
+        _draws: &Draws,
         _scratch: &mut [Lane],
     ) {
         let [x] = states else {

@@ -12,9 +12,15 @@
 //! `mix` is the SplitMix64 finaliser, `+` wraps; Philox's four words make two, low word first.
 //! The attempt is 0 for normals; a rejection method counts it up. Uniform numbers and
 //! normals come from the words as [`uniform`] and [`normal_pair`] say.
+//!
+//! A gamma or Poisson number ([`Draws`]) has a step to itself: `block = step`, and its attempt number n
+//! takes the four words at the attempts `2 n` and `2 n + 1`.
 
+mod draws;
+mod gamma;
 mod normal;
 mod philox;
+mod poisson;
 #[cfg(feature = "rand_core")]
 mod stream;
 mod threefry;
@@ -22,6 +28,7 @@ mod threefry;
 use std::fmt;
 use std::str::FromStr;
 
+pub use draws::Draws;
 pub(crate) use normal::fill_normals;
 pub use normal::{normal_pair, uniform};
 pub use philox::philox4x32_10;

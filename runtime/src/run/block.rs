@@ -9,7 +9,7 @@ use crate::collect::{BlockSpan, Collector};
 use crate::dispatch::{Target, Task};
 use crate::grid::Grid;
 use crate::lane::{LANES, Lane};
-use crate::random::{Address, Generator, fill_normals};
+use crate::random::{Address, Draws, Generator, fill_normals};
 use crate::simulator::{Shape, Simulator};
 
 /// The memory a thread steps in; allocated once.
@@ -154,7 +154,17 @@ impl<S: Simulator> Task for Advance<'_, '_, S> {
             let values = setting.plan.step(step);
             let states = &mut work.states;
             let scratch = &mut work.scratch[..setting.shape.step_scratch];
-            setting.simulator.step::<A>(values, states, noise, scratch);
+            let (seed, generator) = (setting.seed, setting.generator);
+            let draws = Draws::on(
+                setting.target,
+                seed,
+                generator,
+                step as u64,
+                self.first_path,
+            );
+            setting
+                .simulator
+                .step::<A>(values, states, noise, &draws, scratch);
         }
         let values = setting.plan.observation(self.time);
         let outputs = &mut work.outputs;
