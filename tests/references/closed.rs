@@ -81,8 +81,9 @@ impl Setting {
     }
 
     fn cdf(&self, state: Expr, x: f64) -> Option<f64> {
-        let law = self.compiled.moments.normal_law(state)?;
-        self.compiled.moments.cdf(&law, x, &self.values, self.time)
+        let moments = &self.compiled.moments;
+        let law = moments.marginal_law(state)?;
+        moments.marginal_cdf(&law, x, &self.values, self.time)
     }
 }
 

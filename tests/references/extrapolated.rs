@@ -1,5 +1,5 @@
-//! Laws of reference B that no exact step reaches yet: logistic growth and the square-root process, by two step
-//! sizes on independent paths, extrapolated (Talay & Tubaro 1990).
+//! Laws of reference B that no exact step reaches yet: logistic growth, by two step sizes on independent paths,
+//! extrapolated (Talay & Tubaro 1990).
 
 use driftwright_tests::harness::checks::{Check, assert_family};
 use driftwright_tests::harness::reference::{Case, Reference};
@@ -76,20 +76,4 @@ fn logistic_growth() {
     }
     assert_eq!(checks.len(), 8, "values in scope");
     assert_family(&checks);
-}
-
-#[test]
-fn square_root_process() {
-    let reference = Reference::load("B");
-    let case = reference.by_id("B-cir-p1");
-    let mean = case.value("mean");
-    let model = model(case, "domain = \"[0, inf)\"\nat_edge = \"as_equation\"")
-        .readout("scatter", &format!("(X - {mean:?})^2"))
-        .readout("laplace", "exp(-X)");
-    let pair = Pair::run(case, &model);
-    assert_family(&[
-        pair.check("X", mean),
-        pair.check("scatter", case.value("var")),
-        pair.check("laplace", case.value("E[exp(-X)]")),
-    ]);
 }

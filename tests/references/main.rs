@@ -9,3 +9,4 @@ mod model;
 mod prices;
 mod rates;
 mod schemes;
+mod square_root;

@@ -113,6 +113,7 @@ impl Rules<'_> {
             (Limit::PlusInfinity | Limit::MinusInfinity | Limit::Infinity, false) => {
                 Limit::Value(pool.zero())
             }
+            (Limit::Value(value), true) if pool.is_zero_literal(value) => Limit::Value(value),
             (Limit::Value(value), true) => Limit::Value(pool.pow(value, exponent)),
             (Limit::Value(value), false) => match pool.sign(value) {
                 Sign::Zero => reciprocal_of_zero(pool, base),

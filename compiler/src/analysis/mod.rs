@@ -4,6 +4,7 @@
 pub mod assume;
 pub mod asymptotics;
 pub mod boundary;
+pub mod chi_square;
 pub mod claims;
 pub mod commute;
 pub mod coordinate;
@@ -15,3 +16,4 @@ pub mod linear;
 pub mod moments;
 mod noise;
 pub mod sample;
+pub mod square_root;

@@ -10,10 +10,12 @@
 
 use std::borrow::Cow;
 
+use driftwright_runtime::random::Draws;
 use driftwright_runtime::{Arith, Grid, Lane, Shape, Simulator, StepError};
 
 /// One copy of a simulator, or two: one that takes the steps of a grid, and one that takes each in two
-/// halves. The long step's normal numbers are the scaled sums of the two halves'.
+/// halves. The long step's normal numbers are the scaled sums of the two halves'; its draws from other laws
+/// are those of the second half, each copy's with parameters of its own.
 ///
 /// Outputs: those of the long steps, then those of the halves.
 pub(super) struct Coupled<'a, S> {
@@ -108,6 +110,7 @@ impl<S: Simulator> Simulator for Coupled<'_, S> {
         values: &[f64],
         states: &mut [Lane],
         noise: &[Lane],
+        draws: &Draws,
         scratch: &mut [Lane],
     ) {
         let shape = self.inner.shape();
@@ -131,7 +134,7 @@ impl<S: Simulator> Simulator for Coupled<'_, S> {
             };
             let values = &values[copy * shape.step_values..][..shape.step_values];
             let states = &mut copies[copy * shape.states..][..shape.states];
-            self.inner.step::<A>(values, states, noise, scratch);
+            self.inner.step::<A>(values, states, noise, draws, scratch);
         }
     }
 

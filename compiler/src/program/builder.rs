@@ -7,7 +7,7 @@ use driftwright_runtime::Unfused;
 
 use super::Value;
 use super::functions::{BinaryOp, UnaryOp};
-use super::op::{Comparison, Number, Op, ValueId};
+use super::op::{Comparison, DrawLaw, Number, Op, ValueId};
 use super::rate::Rate;
 
 /// What lanes are being built for: the same state slot is another value in a step and at an
@@ -114,6 +114,21 @@ impl Builder {
 
     pub(super) fn noise(&mut self, source: usize) -> ValueId {
         self.intern(Op::Noise(source), Rate::StepLane)
+    }
+
+    /// A draw from another law than the normal; a new one on each path, whatever its parameter's rate.
+    pub(super) fn other_draw(
+        &mut self,
+        law: DrawLaw,
+        source: usize,
+        parameter: ValueId,
+    ) -> ValueId {
+        let op = Op::Draw {
+            law,
+            source,
+            parameter,
+        };
+        self.intern(op, Rate::StepLane)
     }
 
     pub(super) fn unary(&mut self, op: UnaryOp, a: ValueId) -> ValueId {

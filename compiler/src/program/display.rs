@@ -12,6 +12,9 @@ impl fmt::Display for Program {
         for (index, source) in self.sources.iter().enumerate() {
             writeln!(f, "source {index} {source}")?;
         }
+        for (index, source) in self.draws.iter().enumerate() {
+            writeln!(f, "draw {index} {source}")?;
+        }
         for rate in Rate::ALL {
             writeln!(f, "{rate}:")?;
             for id in self.section(rate) {
@@ -57,6 +60,11 @@ impl Program {
             Op::Instant => "instant".to_owned(),
             Op::State(slot) => format!("state {}", self.slots[*slot].name),
             Op::Noise(source) => format!("noise {source}"),
+            Op::Draw {
+                law,
+                source,
+                parameter,
+            } => format!("{} draw {source} of {parameter}", law.name()),
             Op::Unary(op, a) => format!("{} {a}", op.runtime_name().unwrap_or("neg")),
             Op::Binary(op, a, b) => format!("{} {a} {b}", op.name()),
             Op::MulAdd(a, b, c) => format!("mul_add {a} {b} {c}"),

@@ -25,7 +25,7 @@ use std::collections::BTreeSet;
 pub use checks::{Bound, Check, Range};
 pub use functions::{BinaryOp, UnaryOp};
 pub use lower::lower;
-pub use op::{Comparison, Number, Op, ValueId};
+pub use op::{Comparison, DrawLaw, Number, Op, ValueId};
 pub use rate::Rate;
 pub use verify::Fault;
 
@@ -125,6 +125,8 @@ pub struct Program {
     pub correlation: Option<ValueId>,
     /// Names of the sources of normal draws.
     pub sources: Vec<String>,
+    /// Names of the sources of draws from other laws.
+    pub draws: Vec<String>,
     /// The stored numbers: one per state in model order, then the flag if there is one.
     pub slots: Vec<Slot>,
     /// The observed quantities, in file order.

@@ -46,6 +46,25 @@ pub enum Comparison {
     LessEqual,
 }
 
+/// The law of a [`Op::Draw`].
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum DrawLaw {
+    /// Gamma of scale 1; the parameter is the shape.
+    Gamma,
+    /// Poisson; the parameter is the mean.
+    Poisson,
+}
+
+impl DrawLaw {
+    /// The name, in the runtime too.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Gamma => "gamma",
+            Self::Poisson => "poisson",
+        }
+    }
+}
+
 /// What computes a value.
 #[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum Op {
@@ -65,6 +84,15 @@ pub enum Op {
     State(usize),
     /// A standard normal draw of the step, by the index of its source.
     Noise(usize),
+    /// A draw from another law on each path, in a step only.
+    Draw {
+        /// The law.
+        law: DrawLaw,
+        /// The index of its source among [`Program::draws`](super::Program::draws).
+        source: usize,
+        /// The law's parameter.
+        parameter: ValueId,
+    },
     /// A function of one value.
     Unary(UnaryOp, ValueId),
     /// A function of two values.
@@ -137,7 +165,7 @@ impl Op {
             | Self::Instant
             | Self::State(_)
             | Self::Noise(_) => Vec::new(),
-            Self::Unary(_, a) | Self::Extract(a, _) => vec![*a],
+            Self::Unary(_, a) | Self::Extract(a, _) | Self::Draw { parameter: a, .. } => vec![*a],
             Self::Binary(_, a, b) => vec![*a, *b],
             Self::MulAdd(a, b, c) => vec![*a, *b, *c],
             Self::Select {

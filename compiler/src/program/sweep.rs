@@ -147,6 +147,15 @@ impl Op {
                 length: f(length),
             },
             Self::Extract(a, index) => Self::Extract(f(a), index),
+            Self::Draw {
+                law,
+                source,
+                parameter,
+            } => Self::Draw {
+                law,
+                source,
+                parameter: f(parameter),
+            },
             leaf => leaf,
         }
     }

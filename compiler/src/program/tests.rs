@@ -2,7 +2,8 @@
 
 use std::collections::BTreeMap;
 
-use driftwright_runtime::{Lane, Simulator, Unfused};
+use driftwright_runtime::random::Draws;
+use driftwright_runtime::{ArithmeticClass, Generator, Lane, Simulator, Unfused};
 
 use super::sketch::Sketch;
 use super::{Program, lower};
@@ -51,7 +52,8 @@ fn one_step(program: &Program, draws: &[f64], length: f64) -> (Vec<f64>, Vec<f64
     simulator
         .step_values(0.0, length, &mut values)
         .expect("the coefficients exist");
-    simulator.step::<Unfused>(&values, &mut states, &noise, &mut scratch);
+    let others = Draws::new(0, Generator::default(), ArithmeticClass::Unfused, 0, 0);
+    simulator.step::<Unfused>(&values, &mut states, &noise, &others, &mut scratch);
     let mut outputs = vec![Lane::ZERO; shape.outputs.len()];
     let mut values = vec![0.0; shape.observation_values];
     simulator

@@ -68,6 +68,7 @@ impl Program {
             Op::Parameter(i) => (i, self.parameters.len()),
             Op::State(i) => (i, self.slots.len()),
             Op::Noise(i) => (i, self.sources.len()),
+            Op::Draw { source, .. } => (source, self.draws.len()),
             _ => (0, 1),
         };
         if index >= end {
@@ -80,7 +81,7 @@ impl Program {
             Op::Time => rate == Rate::Observation,
             Op::Instant => rate == Rate::Instant,
             Op::State(_) => rate.is_lane(),
-            Op::Noise(_) => rate == Rate::StepLane,
+            Op::Noise(_) | Op::Draw { .. } => rate == Rate::StepLane,
             _ => true,
         };
         if right {

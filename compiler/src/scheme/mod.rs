@@ -1,7 +1,8 @@
 //! How each state is stepped, why, and what was rejected.
 //!
 //! [`plan`] first looks for the largest linear Gaussian system ([`crate::analysis::linear`]) and steps it
-//! by its exact law. What is left is stepped by the scheme of highest strong order that its noise
+//! by its exact law, then for states that are square-root processes by themselves
+//! ([`crate::analysis::square_root`]), whose transition is noncentral chi-square. What is left is stepped by the scheme of highest strong order that its noise
 //! allows: Milstein where the noise commutes, Euler-Maruyama where it does not, Euler with full
 //! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
@@ -13,11 +14,13 @@ mod noise;
 mod overrides;
 mod plan;
 mod reasons;
+mod square_root;
 mod step;
 mod warn;
 
 use crate::analysis::dependence::deterministic;
 use crate::analysis::linear;
+use crate::analysis::square_root::SquareRoot;
 use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostics;
 use crate::model::Model;
@@ -25,7 +28,7 @@ use crate::model::Model;
 pub use crate::model::SchemeName;
 pub use plan::{
     Becomes, Component, Coordinate, EdgeRule, Group, Kind, Law, LinearGaussian, Method,
-    NoiseComponent, NoisePlan, Order, Plan, RowNoise, StateStep,
+    NoiseComponent, NoisePlan, Order, Plan, RowNoise, SquareRootStep, StateStep,
 };
 
 /// Plans how the states of a model are stepped.
@@ -35,17 +38,21 @@ pub use plan::{
 pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -> Plan {
     warn::coordinates(model, diagnostics);
     closed_ends::warn(model, dynamics, diagnostics);
-    let rows = linear::find(model, dynamics, &overrides::excluded(model));
+    let excluded = overrides::excluded(model);
+    let rows = linear::find(model, dynamics, &excluded);
+    let laws = square_root::laws(model, dynamics, &rows, &excluded);
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| step::step_coordinate(model, dynamics, i))
         .collect();
     let coordinates: Vec<Coordinate> = rows
         .iter()
+        .zip(&laws)
         .zip(&steps)
         .enumerate()
-        .map(|(i, (row, step))| match row {
-            Ok(row) => step::exact_coordinate(i, row),
-            Err(_) => step.0.clone(),
+        .map(|(i, ((row, law), step))| match (row, law) {
+            (Ok(row), _) => step::coordinate(i, &row.coordinate, row.process.clone()),
+            (_, Ok(law)) => step::coordinate(i, &law.coordinate, law.process.clone()),
+            _ => step.0.clone(),
         })
         .collect();
     announce_ranges(model, &coordinates);
@@ -58,9 +65,14 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         projections: &projections,
         traces: &traces,
         calm: deterministic(model, dynamics),
-        refusals: rows.iter().map(|row| row.as_ref().err().cloned()).collect(),
+        refusals: refusals(&rows, &laws),
     };
     let mut groups = exact::groups(model, &rows);
+    let found = laws
+        .iter()
+        .enumerate()
+        .filter_map(|(i, law)| Some(square_root::group(model, i, law.as_ref().ok()?)));
+    groups.extend(found);
     let choices = context.choices();
     groups.extend(context.groups(&choices));
     groups.sort_by_key(|g| g.states.first().copied());
@@ -72,6 +84,18 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         groups,
         noise,
     }
+}
+
+/// Per state, why it has no exact law; none where it has one.
+fn refusals(
+    rows: &linear::Rows,
+    laws: &[Result<SquareRoot, Option<String>>],
+) -> Vec<Option<String>> {
+    let refusal = |(row, law): (&Result<linear::Row, String>, _)| match (row, law) {
+        (Ok(_), _) | (_, &Ok(_)) => None,
+        (_, Err(Some(reason))) | (Err(reason), Err(None)) => Some(reason.clone()),
+    };
+    rows.iter().zip(laws).map(refusal).collect()
 }
 
 /// Tells the algebra which values the coordinates take. A projected state's stored value may take any.

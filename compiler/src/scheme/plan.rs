@@ -5,9 +5,10 @@
 use std::fmt;
 
 use super::SchemeName;
+use crate::analysis::square_root::AtZero;
 use crate::calculus::Process;
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Expr, Symbol};
+use crate::symbolic::{Expr, Sign, Symbol};
 
 /// How a whole model is stepped.
 #[derive(Clone, Debug)]
@@ -122,6 +123,13 @@ pub enum Law {
     JointNormal,
     /// Monotone images of (jointly) normal coordinates.
     TransformedNormal,
+    /// One state, up to an affine map a multiple of a noncentral chi-square variable.
+    NoncentralChiSquare,
+    /// A monotone image of such a variable.
+    TransformedNoncentralChiSquare,
+    /// The law of a square-root process that stays at 0 once there, or a monotone image of it: an atom, and
+    /// a density beside it.
+    AbsorbedNoncentralChiSquare,
     /// No randomness.
     Deterministic,
 }
@@ -134,6 +142,9 @@ impl Law {
             Self::Lognormal => "lognormal",
             Self::JointNormal => "joint_normal",
             Self::TransformedNormal => "transformed_normal",
+            Self::NoncentralChiSquare => "noncentral_chi_square",
+            Self::TransformedNoncentralChiSquare => "transformed_noncentral_chi_square",
+            Self::AbsorbedNoncentralChiSquare => "absorbed_noncentral_chi_square",
             Self::Deterministic => "deterministic",
         }
     }
@@ -148,6 +159,8 @@ pub enum Becomes {
     OrnsteinUhlenbeck,
     /// du = (A u + alpha) dt + C dW.
     LinearGaussianSystem,
+    /// dy = (level - rate y) dt + s sqrt(y) dW with one coordinate.
+    SquareRoot,
     /// A linear differential equation without noise.
     Deterministic,
 }
@@ -159,6 +172,7 @@ impl Becomes {
             Self::ArithmeticBrownianMotion => "arithmetic_brownian_motion",
             Self::OrnsteinUhlenbeck => "ornstein_uhlenbeck",
             Self::LinearGaussianSystem => "linear_gaussian_system",
+            Self::SquareRoot => "square_root",
             Self::Deterministic => "deterministic",
         }
     }
@@ -210,6 +224,8 @@ impl fmt::Display for Order {
 pub enum Method {
     /// The exact transition of a linear Gaussian system.
     LinearGaussian(LinearGaussian),
+    /// The exact transition of a square-root process.
+    SquareRoot(SquareRootStep),
     /// A one-step scheme that reads increments of the drivers: Euler-Maruyama, Milstein, full truncation.
     Step(Vec<StateStep>),
     /// Classical Runge-Kutta over the step, all states of the group together: the drift of each
@@ -233,6 +249,25 @@ pub struct LinearGaussian {
     pub noise: Vec<RowNoise>,
     /// Whether a coefficient, or a correlation of the rows' noises, depends on time.
     pub moving: bool,
+}
+
+/// `dy = (level - rate y) dt + s sqrt(y) dW`, all coefficients free of states and time.
+#[derive(Clone, Debug)]
+pub struct SquareRootStep {
+    /// The state, by its index in the model.
+    pub state: usize,
+    /// `level` there.
+    pub level: Expr,
+    /// `rate` there.
+    pub rate: Expr,
+    /// `s^2` there.
+    pub square: Expr,
+    /// `4 level/s^2`.
+    pub dimension: Expr,
+    /// What happens at zero.
+    pub at_zero: AtZero,
+    /// What is known of the signs of `dimension`, `dimension - 1` and `dimension - 2`.
+    pub against: [Sign; 3],
 }
 
 /// Where the Gaussian part of a row of a linear Gaussian system comes from.

@@ -6,18 +6,13 @@ use super::edges::{self, Projection};
 use super::{Coordinate, SchemeName, StateStep};
 use crate::analysis::commute::{along_noise, relevant_drivers};
 use crate::analysis::coordinate::{Candidate, auxiliary, through};
-use crate::analysis::linear::Row;
 use crate::calculus::{Dynamics, Process, expand};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
 use crate::symbolic::{Expr, Symbol};
 
-/// The coordinate of a state with an exact row.
-pub(super) fn exact_coordinate(state: usize, row: &Row) -> Coordinate {
-    coordinate(state, &row.coordinate, row.process.clone())
-}
-
-fn coordinate(state: usize, candidate: &Candidate, process: Process) -> Coordinate {
+/// A state's coordinate with its process.
+pub(super) fn coordinate(state: usize, candidate: &Candidate, process: Process) -> Coordinate {
     Coordinate {
         state,
         symbol: candidate.symbol,

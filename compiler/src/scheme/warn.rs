@@ -51,8 +51,8 @@ fn turns(model: &Model, state: usize) -> bool {
     values.iter().any(|&v| v > 0.0) && values.iter().any(|&v| v < 0.0)
 }
 
-/// Warns of open ends that are reached, or may be. A random state with an exact law cannot get there:
-/// its coordinate goes to infinity.
+/// Warns of open ends that are reached, or may be. A random state whose exact law stays in its domain
+/// cannot get there.
 pub(super) fn open_ends(
     model: &Model,
     dynamics: &Dynamics,
@@ -61,7 +61,7 @@ pub(super) fn open_ends(
 ) {
     for &state in groups
         .iter()
-        .filter(|g| !g.is_exact() || g.law == Some(Law::Deterministic))
+        .filter(|g| !g.is_exact() || !g.preserves_domain || g.law == Some(Law::Deterministic))
         .flat_map(|g| &g.states)
     {
         let domain = model.states[state].domain;

@@ -4,4 +4,5 @@ mod catalogue;
 mod ends;
 mod exact_laws;
 mod schemes;
+mod square_root;
 mod support;

@@ -153,10 +153,10 @@ fn a_kink_in_the_noise_excludes_milstein() {
 }
 
 #[test]
-fn square_root_noise_is_truncated_and_its_integral_steps_with_it() {
+fn square_root_noise_without_a_law_is_truncated_and_its_integral_steps_with_it() {
     let rate = state(
         "r",
-        "kappa*(theta - r)",
+        "kappa*(theta - r) + eta*sqrt(r)",
         "W = \"sigma*sqrt(r)\"",
         "domain = \"[0, inf)\"\nat_edge = \"as_equation\"",
     );

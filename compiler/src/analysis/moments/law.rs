@@ -17,8 +17,13 @@ pub enum LawName {
     Lognormal,
     /// A strictly monotone function of a normal variable, neither of the above.
     TransformedNormal,
-    /// A positive multiple of a noncentral chi-square variable.
+    /// An affine function of a noncentral chi-square variable.
     NoncentralChiSquare,
+    /// Another strictly monotone function of such a variable.
+    TransformedNoncentralChiSquare,
+    /// A monotone function of a square-root process that stays at 0 once there: an atom, and a density
+    /// beside it.
+    AbsorbedNoncentralChiSquare,
 }
 
 impl LawName {
@@ -30,6 +35,8 @@ impl LawName {
             Self::Lognormal => "lognormal",
             Self::TransformedNormal => "transformed_normal",
             Self::NoncentralChiSquare => "noncentral_chi_square",
+            Self::TransformedNoncentralChiSquare => "transformed_noncentral_chi_square",
+            Self::AbsorbedNoncentralChiSquare => "absorbed_noncentral_chi_square",
         }
     }
 }
@@ -83,7 +90,7 @@ impl Moments {
     }
 
     /// The symbol for the value of a formula; no name in a model file can contain a bracket.
-    fn value_symbol(&self) -> Symbol {
+    pub(super) fn value_symbol(&self) -> Symbol {
         self.model.pool.symbol("value[x]", SymbolKind::Auxiliary)
     }
 

@@ -25,8 +25,10 @@ use std::collections::BTreeMap;
 
 pub use edges::{Edge, edge, is_smooth_at_ends};
 pub use law::{LawName, NormalLaw};
+pub use square_root::{Atom, MarginalLaw, SquareRootLaw};
 
 use super::linear;
+use super::square_root::{Finding, SquareRoot, find};
 use crate::calculus::{Dynamics, Expansion};
 use crate::model::Model;
 use crate::symbolic::{Expr, Limit, Symbol};
@@ -63,6 +65,8 @@ pub struct Moments {
     dynamics: Dynamics,
     gaussian: Gaussian,
     changes: Vec<Change>,
+    /// Per state its law as a square-root process by itself, where it is one.
+    square_roots: Vec<Option<Box<SquareRoot>>>,
     means: RefCell<BTreeMap<Expr, Option<Moment>>>,
     /// How many formulas the model had before any moment was sought.
     before: usize,
@@ -91,6 +95,16 @@ impl Moments {
                 alpha: row.constant,
                 c: row.noise.clone(),
             });
+        let square_root = |state: usize| {
+            if found[state].is_ok() {
+                return None;
+            }
+            match find(model, dynamics, state) {
+                Finding::Law(law) => Some(law),
+                Finding::Refused(_) | Finding::Other => None,
+            }
+        };
+        let square_roots = (0..found.len()).map(square_root).collect();
         let rest = (0..found.len()).filter(|&i| found[i].is_err());
         let changes = rest
             .filter_map(|state| Change::through(model, state))
@@ -100,6 +114,7 @@ impl Moments {
             dynamics: dynamics.clone(),
             gaussian: Gaussian::new(rows.collect()),
             changes,
+            square_roots,
             means: RefCell::default(),
             before: model.pool.node_count(),
         }

@@ -2,8 +2,10 @@
 
 use std::collections::BTreeMap;
 
+use driftwright_runtime::source_id;
+
 use super::uniform::Uniform;
-use crate::program::{BinaryOp, Comparison, Op, Program, Rate, UnaryOp, ValueId};
+use crate::program::{BinaryOp, Comparison, DrawLaw, Op, Program, Rate, UnaryOp, ValueId};
 
 /// Where an instruction finds an operand.
 #[derive(Clone, Copy, Debug)]
@@ -27,6 +29,7 @@ pub(super) enum Action {
     Binary(BinaryOp, Operand, Operand),
     MulAdd(Operand, Operand, Operand),
     Select(Comparison, [Operand; 4]),
+    Draw(DrawLaw, u64, Operand),
 }
 
 /// An action and the register its result goes to, which none of its operands is.
@@ -157,6 +160,15 @@ impl<'a> Assembler<'a> {
             } => Some(Action::Select(
                 compare,
                 [a, b, then, otherwise].map(operand),
+            )),
+            Op::Draw {
+                law,
+                source,
+                parameter,
+            } => Some(Action::Draw(
+                law,
+                source_id(&self.program.draws[source]),
+                operand(parameter),
             )),
             _ => None,
         }

@@ -1,9 +1,10 @@
 //! Runs lane code: one instruction at a time over the 256 lanes of a block.
 
+use driftwright_runtime::random::Draws;
 use driftwright_runtime::{Arith, Lane};
 
 use super::code::{Action, Code, Instruction, Operand};
-use crate::program::{BinaryOp, Comparison};
+use crate::program::{BinaryOp, Comparison, DrawLaw};
 
 /// An operand in place.
 #[derive(Clone, Copy)]
@@ -17,6 +18,7 @@ struct Inputs<'a> {
     values: &'a [f64],
     states: &'a [Lane],
     noise: &'a [Lane],
+    draws: Option<&'a Draws>,
     below: &'a [Lane],
     above: &'a [Lane],
 }
@@ -36,13 +38,14 @@ impl<'a> Inputs<'a> {
     }
 }
 
-/// Runs the instructions; results stay in the registers.
+/// Runs the instructions; results stay in the registers. Only a step has draws.
 #[inline(always)]
 pub(super) fn run<A: Arith>(
     code: &Code,
     values: &[f64],
     states: &[Lane],
     noise: &[Lane],
+    draws: Option<&Draws>,
     scratch: &mut [Lane],
 ) {
     for instruction in &code.instructions {
@@ -56,6 +59,7 @@ pub(super) fn run<A: Arith>(
                 values,
                 states,
                 noise,
+                draws,
                 below,
                 above,
             },
@@ -106,6 +110,19 @@ fn execute<A: Arith>(instruction: &Instruction, inputs: &Inputs<'_>, out: &mut L
                 out,
                 A::mul_add,
             );
+        }
+        Action::Draw(law, source, parameter) => {
+            let parameter = match inputs.read(parameter) {
+                Read::Lane(lane) => lane,
+                Read::Same(value) => &Lane::splat(value),
+            };
+            let draws = inputs
+                .draws
+                .expect("the verifier lets draws into steps only");
+            match law {
+                DrawLaw::Gamma => draws.gamma(source, parameter, out),
+                DrawLaw::Poisson => draws.poisson(source, parameter, out),
+            }
         }
         Action::Select(compare, operands) => {
             let [a, b, then, otherwise] = operands.map(|o| inputs.read(o));

@@ -11,6 +11,7 @@ mod uniform;
 use std::borrow::Cow;
 use std::collections::BTreeMap;
 
+use driftwright_runtime::random::Draws;
 use driftwright_runtime::{Arith, Lane, ParameterError, Shape, Simulator, Source, StepError};
 
 use self::code::Code;
@@ -112,9 +113,10 @@ impl Simulator for Interpreter {
         values: &[f64],
         states: &mut [Lane],
         noise: &[Lane],
+        draws: &Draws,
         scratch: &mut [Lane],
     ) {
-        lanes::run::<A>(&self.step, values, states, noise, scratch);
+        lanes::run::<A>(&self.step, values, states, noise, Some(draws), scratch);
         lanes::write(&self.step, values, None, noise, scratch, states);
     }
 
@@ -126,7 +128,7 @@ impl Simulator for Interpreter {
         outputs: &mut [Lane],
         scratch: &mut [Lane],
     ) {
-        lanes::run::<A>(&self.observe, values, states, &[], scratch);
+        lanes::run::<A>(&self.observe, values, states, &[], None, scratch);
         lanes::write(&self.observe, values, Some(states), &[], scratch, outputs);
     }
 }

@@ -97,6 +97,7 @@ impl Uniform {
             Op::Extract(of, index) => self.numbers[self.first[of.index()] + index],
             Op::State(_)
             | Op::Noise(_)
+            | Op::Draw { .. }
             | Op::Cholesky { .. }
             | Op::Transition { .. }
             | Op::MovingTransition { .. } => {

@@ -17,7 +17,6 @@ impl Generator<'_> {
         let values = self.value_pattern(&program.step_values);
         let states = pattern(&self.names.slots, "states", &self.read_or_written_slots());
         let noise = pattern(&self.names.sources, "noise", &self.read_sources());
-        let statements = self.statements(program.section(Rate::StepLane), Place::Lanes);
         let changed = program
             .slots
             .iter()
@@ -32,6 +31,12 @@ impl Generator<'_> {
             };
             quote! { #markers #lane.0[lane] = #value; }
         });
+        let loops = self.loops(&quote! { #(#writes)* });
+        let draws = if program.draws.is_empty() {
+            quote! { _draws }
+        } else {
+            quote! { draws }
+        };
         let names =
             [("values", &values), ("noise", &noise)].map(|(name, used)| argument(name, used));
         let [values_name, noise_name] = names;
@@ -43,16 +48,14 @@ impl Generator<'_> {
                 #values_name: &[f64],
                 #states_name: &mut [runtime::Lane],
                 #noise_name: &[runtime::Lane],
+                #draws: &runtime::random::Draws,
                 _scratch: &mut [runtime::Lane],
             ) {
                 #bindings
                 #values
                 #states
                 #noise
-                for lane in 0..runtime::LANES {
-                    #statements
-                    #(#writes)*
-                }
+                #loops
             }
         }
     }

@@ -11,6 +11,7 @@ mod names;
 mod parameters;
 mod simulator;
 mod spell;
+mod stages;
 
 use std::collections::BTreeMap;
 

@@ -4,15 +4,17 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use proc_macro2::{Ident, Span};
 
+use super::stages::Stages;
 use crate::program::{Op, Program, Rate, ValueId};
 
 /// Names of locals that the frame of a function uses itself.
-const RESERVED: [&str; 12] = [
+const RESERVED: [&str; 13] = [
     "parameters",
     "required",
     "states",
     "values",
     "noise",
+    "draws",
     "outputs",
     "lane",
     "start",
@@ -32,6 +34,8 @@ pub(super) struct Names {
     pub(super) quantities: Vec<Ident>,
     /// One per value; setup values are fields of the simulator too.
     values: Vec<Ident>,
+    /// The lanes of values that one loop of a step hands to a later one.
+    kept: BTreeMap<ValueId, Ident>,
     /// The lane of each slot, source and output.
     pub(super) slots: Vec<Ident>,
     pub(super) sources: Vec<Ident>,
@@ -72,6 +76,16 @@ impl Names {
             "output",
             program.outputs.iter().map(|o| o.name.as_str()).collect(),
         );
+        let kept = Stages::new(program).kept().collect::<Vec<_>>();
+        let kept = kept
+            .into_iter()
+            .map(|id| {
+                (
+                    id,
+                    shared.add(&format!("lanes_{}", value_hint(program, id))),
+                )
+            })
+            .collect();
         let values = value_names(program, &shared);
         let simulator = simulator_name(&program.name);
         Self {
@@ -79,10 +93,16 @@ impl Names {
             parameters,
             quantities,
             values,
+            kept,
             slots,
             sources,
             outputs,
         }
+    }
+
+    /// The lane of a value that one loop of a step hands to a later one.
+    pub(super) fn lane(&self, id: ValueId) -> &Ident {
+        &self.kept[&id]
     }
 
     pub(super) fn value(&self, id: ValueId) -> &Ident {

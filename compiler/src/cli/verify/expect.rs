@@ -2,7 +2,7 @@
 
 use std::collections::BTreeMap;
 
-use crate::analysis::moments::{Moments, NormalLaw};
+use crate::analysis::moments::{MarginalLaw, Moments};
 use crate::model::Model;
 use crate::symbolic::{Expr, Rational, Symbol};
 
@@ -18,7 +18,7 @@ pub(super) enum Statistic {
     /// The covariance of two outputs, by the index of the pair.
     Covariance(usize),
     /// A quantile of an output: its level's index, and the law.
-    Quantile(usize, usize, Box<NormalLaw>),
+    Quantile(usize, usize, Box<MarginalLaw>),
     /// The largest difference from zero of an output that should vanish on every path, beside an output
     /// of the size that counts.
     Vanishing(usize, usize),
@@ -136,12 +136,17 @@ impl Analyst<'_> {
     /// A quantile of a law and the unit error of its sample, sqrt(p (1 - p)) / density.
     pub(super) fn quantile(
         &self,
-        law: &NormalLaw,
+        law: &MarginalLaw,
         level: f64,
         near: f64,
         time: f64,
     ) -> Option<Expected> {
-        let cdf = |x: f64| self.moments.cdf(law, x, &self.parameters, time);
+        // In an atom, or close to it, there is no density to take the error from.
+        let atom = self.moments.atom(law, &self.parameters, time)?;
+        if atom.share(level) <= 1.2 * atom.mass {
+            return None;
+        }
+        let cdf = |x: f64| self.moments.marginal_cdf(law, x, &self.parameters, time);
         let value = invert(&cdf, level, near)?;
         let step = 1e-4 * value.abs().max(1e-8);
         let density = (cdf(value + step)? - cdf(value - step)?) / (2.0 * step);

@@ -3,6 +3,7 @@
 
 use super::expect::{Analyst, LEVELS, Statistic};
 use crate::analysis::claims::{ClaimResult, Verdict};
+use crate::analysis::moments::LawName;
 use crate::model::{ClaimKind, Formula, Model, Named};
 use crate::source::Span;
 use crate::symbolic::Expr;
@@ -110,8 +111,9 @@ impl Targets {
         formula: Expr,
         claim: Option<&str>,
     ) {
-        if let Some(law) = analyst.moments.normal_law(formula) {
-            let source = format!("{} law", law.name.name().replace('_', " "));
+        if let Some(law) = analyst.moments.marginal_law(formula) {
+            let name = law.name().map_or("square_root", LawName::name);
+            let source = format!("{} law", name.replace('_', " "));
             for level in 0..LEVELS.len() {
                 let statistic = Statistic::Quantile(output, level, Box::new(law.clone()));
                 self.push(name, statistic, Origin::Derived(source.clone()), claim);

@@ -54,6 +54,8 @@ pub(in crate::front) const LAWS: &[&str] = &[
     "normal",
     "lognormal",
     "noncentral_chi_square",
+    "transformed_noncentral_chi_square",
+    "absorbed_noncentral_chi_square",
     "joint_normal",
     "transformed_normal",
     "deterministic",

@@ -154,14 +154,14 @@ impl Lowering<'_> {
         }
     }
 
-    /// A slot that turns 1 when an approximate state leaves its domain, and stays so.
+    /// A slot that turns 1 when a state leaves its domain, and stays so.
     pub(super) fn domain_flag(&mut self, slots: &mut Vec<Slot>) -> Option<usize> {
         let slot = slots.len();
         let current = self.builder.state(slot, Phase::Step);
         let mut flag = current;
         for (state, next) in slots.iter().map(|s| s.next).enumerate() {
             let group = &self.plan.groups[self.plan.group_of(state)];
-            if !group.is_exact() && !group.preserves_domain {
+            if !group.preserves_domain {
                 let coordinate = &self.plan.coordinates[state];
                 let declared = &self.model.states[state];
                 // A projected state's stored number is the state itself, wherever it lies.

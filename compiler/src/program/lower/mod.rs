@@ -11,6 +11,7 @@ mod noise;
 mod observe;
 mod rows;
 mod runge_kutta;
+mod square_root;
 mod system;
 
 use std::collections::BTreeMap;
@@ -48,7 +49,9 @@ pub fn lower(model: &Model, plan: &Plan) -> Program {
             .components
             .iter()
             .map(|c| c.source.clone())
+            .chain(std::mem::take(&mut lowering.normals))
             .collect(),
+        draws: std::mem::take(&mut lowering.draws),
         slots,
         outputs,
         notes: std::mem::take(&mut lowering.notes),
@@ -79,6 +82,10 @@ struct Lowering<'a> {
     instant: Environment,
     observation: Environment,
     notes: Vec<Note>,
+    /// Names of the sources of normal draws that stand beside the plan's Gaussian vector.
+    normals: Vec<String>,
+    /// Names of the sources of draws from other laws than the normal.
+    draws: Vec<String>,
 }
 
 impl<'a> Lowering<'a> {
@@ -102,6 +109,8 @@ impl<'a> Lowering<'a> {
             instant: Environment::default(),
             observation: Environment::default(),
             notes: Vec::new(),
+            normals: Vec::new(),
+            draws: Vec::new(),
         };
         let start = lowering.builder.start();
         let coordinates = lowering.coordinates(Phase::Step);
@@ -218,6 +227,10 @@ impl<'a> Lowering<'a> {
             match &group.method {
                 Method::LinearGaussian(system) => {
                     self.exact_group(index, group, system, &noise, &mut next);
+                }
+                Method::SquareRoot(step) => {
+                    let value = self.square_root_state(step);
+                    next.insert(step.state, value);
                 }
                 Method::Step(steps) => {
                     for step in steps {

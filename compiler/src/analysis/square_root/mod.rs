@@ -1,0 +1,298 @@
+//! States that are square-root processes in some coordinate.
+//!
+//! A scalar diffusion `dX = a dt + b dW` belongs here if some monotone `y = U(x)` follows
+//! `dy = (level - rate y) dt + s sqrt(y) dW` on the half line from 0: the square-root diffusion (Feller
+//! 1951; Cox, Ingersoll and Ross 1985), and with it the constant-elasticity and three-halves equations,
+//! Bessel processes and their squares, the radial Ornstein-Uhlenbeck process, and shifts, powers and
+//! logarithms of these (Goeing-Jaeschke and Yor 2003 survey them). Given `y` now, `y` after a time `h` is
+//! `c` times a noncentral chi-square variable of `dimension` degrees of freedom.
+//!
+//! A candidate U is read off the noise ([`candidates`]); that it is one is then proved by Ito's rule and the
+//! zero test, for all admissible parameters. What happens at `y = 0` is decided in [`zero`].
+
+mod candidates;
+mod zero;
+
+use super::coordinate::Candidate;
+use super::dependence::mentioned;
+use super::free::{Freedom, free_of};
+use super::limits::{Limit, limit};
+use super::{assume, sample};
+use crate::calculus::{Dynamics, Process, bracket, covariation, expand};
+use crate::model::Model;
+use crate::symbolic::trace::Trace;
+use crate::symbolic::{Bound, Expr, Sign};
+
+pub use zero::AtZero;
+
+/// Formulas larger than this are not searched: their derivatives would take too long.
+const LARGEST: usize = 400;
+
+/// A state that is a square-root process in a coordinate.
+#[derive(Clone, Debug)]
+pub struct SquareRoot {
+    /// The coordinate y.
+    pub coordinate: Candidate,
+    /// Its drift and diffusion by Ito's rule, in the state.
+    pub process: Process,
+    /// `level` in `dy = (level - rate y) dt + s sqrt(y) dW`.
+    pub level: Expr,
+    /// `rate` there; of any sign.
+    pub rate: Expr,
+    /// `s^2` there.
+    pub square: Expr,
+    /// Degrees of freedom of the transition, `4 level/s^2`.
+    pub dimension: Expr,
+    /// What happens at `y = 0`.
+    pub at_zero: AtZero,
+    /// Whether `y = 0` is an open end of the domain that may be reached, so that paths stop there and count
+    /// as having left.
+    pub leaves: bool,
+    /// The working.
+    pub trace: Trace,
+}
+
+impl SquareRoot {
+    /// The sign of `dimension - n`, from ranges and assumptions.
+    pub fn dimension_against(&self, model: &Model, n: i64) -> Sign {
+        against(model, self.level, self.square, n)
+    }
+
+    /// Whether the transition has an atom; none where that hangs on the parameters' values. At dimension 0
+    /// the noncentral chi-square law itself has one (Siegel 1979) and counts as without.
+    pub fn has_atom(&self, model: &Model) -> Option<bool> {
+        match self.at_zero {
+            AtZero::NotReached => Some(false),
+            AtZero::Reflected => {
+                let reflected = self.dimension_against(model, 0).is_non_negative();
+                reflected.then_some(false)
+            }
+            AtZero::Absorbed => Some(!model.pool.is_zero_literal(self.level)),
+        }
+    }
+
+    /// Whether the coordinate is an affine function of the state.
+    pub fn is_affine(&self, model: &Model, state: usize) -> bool {
+        let x = model.states[state].symbol;
+        let slope = model.pool.derivative(self.coordinate.forward, x);
+        matches!(free_of(&model.pool, slope, &[x]), Freedom::Free(_))
+    }
+}
+
+/// `4 level - n s^2`, which has the sign of `dimension - n`.
+fn margin(model: &Model, level: Expr, square: Expr, n: i64) -> Expr {
+    let pool = &model.pool;
+    pool.simplify(pool.sub(pool.mul(pool.int(4), level), pool.mul(pool.int(n), square)))
+}
+
+/// The sign of `dimension - n`: of the margin, or of the difference itself, which may be the simpler formula.
+fn against(model: &Model, level: Expr, square: Expr, n: i64) -> Sign {
+    let pool = &model.pool;
+    let margin = assume::sign(model, margin(model, level, square, n));
+    if margin != Sign::Unknown {
+        return margin;
+    }
+    let dimension = pool.div(pool.mul(pool.int(4), level), square);
+    assume::sign(model, pool.simplify(pool.sub(dimension, pool.int(n))))
+}
+
+/// What was found of a state.
+#[derive(Clone, Debug)]
+pub enum Finding {
+    /// Its law.
+    Law(Box<SquareRoot>),
+    /// It is a square-root process in a coordinate, but its law is not settled; why.
+    Refused(String),
+    /// No coordinate was found in which it is one.
+    Other,
+}
+
+/// Looks for a coordinate in which a state is a square-root process by itself.
+///
+/// Whether other states share its noise is another question: see [`entangled`].
+pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding {
+    let Some(scalar) = Scalar::read(model, dynamics, state) else {
+        return Finding::Other;
+    };
+    let mut found = candidates::candidates(&scalar)
+        .into_iter()
+        .filter_map(|candidate| scalar.prove(dynamics, candidate));
+    let Some(proved) = found.next() else {
+        return Finding::Other;
+    };
+    if let Some(reason) = scalar.other_coordinate(&proved) {
+        return Finding::Refused(reason);
+    }
+    match zero::settle(&scalar, &proved) {
+        Ok((at_zero, leaves)) => Finding::Law(Box::new(SquareRoot {
+            at_zero,
+            leaves,
+            coordinate: proved.coordinate,
+            process: proved.process,
+            level: proved.level,
+            rate: proved.rate,
+            square: proved.square,
+            dimension: proved.dimension,
+            trace: proved.trace,
+        })),
+        Err(reason) => Finding::Refused(reason),
+    }
+}
+
+/// Why a state's own law is not enough: another state has a driver that is one of its drivers or
+/// correlated with one, and a chi-square draw gives no increments of drivers.
+pub fn entangled(model: &Model, dynamics: &Dynamics, state: usize) -> Option<String> {
+    let pool = &model.pool;
+    let drivers = |i: usize| {
+        let noise = &dynamics.states[i].diffusion;
+        (0..noise.len()).filter(|&j| !pool.is_zero_literal(noise[j]))
+    };
+    let meet = |other: usize| {
+        drivers(state)
+            .any(|j| drivers(other).any(|k| !pool.is_zero_literal(model.correlation[j][k])))
+    };
+    let other = (0..model.states.len()).find(|&i| i != state && meet(i))?;
+    let (name, other) = (&model.states[state].name, &model.states[other].name);
+    Some(format!(
+        "{name} by itself has a noncentral chi-square transition, but its noise is shared or correlated with \
+         that of {other}, and no exact joint transition of both is known"
+    ))
+}
+
+/// A state whose coefficients hold nothing but itself and parameters.
+struct Scalar<'a> {
+    model: &'a Model,
+    state: usize,
+    drift: Expr,
+    /// The square of the noise per unit of time.
+    square: Expr,
+}
+
+impl<'a> Scalar<'a> {
+    fn read(model: &'a Model, dynamics: &Dynamics, state: usize) -> Option<Self> {
+        let pool = &model.pool;
+        let drift = pool.simplify(dynamics.states[state].drift);
+        let square = pool.simplify(covariation(model, &dynamics.states, state, state));
+        let own = |e: Expr| {
+            mentioned(model, e).iter().all(|&j| j == state)
+                && !pool.depends_on(e, model.time)
+                && pool.has_kink(e).is_none()
+                && pool.size(e) <= LARGEST
+        };
+        let noisy = !pool.is_zero_literal(square);
+        (noisy && own(drift) && own(square)).then_some(Self {
+            model,
+            state,
+            drift,
+            square,
+        })
+    }
+
+    /// A formula that is free of the state.
+    fn constant(&self, e: Expr) -> Option<Expr> {
+        let x = self.model.states[self.state].symbol;
+        match free_of(&self.model.pool, e, &[x]) {
+            Freedom::Free(value) => Some(value),
+            Freedom::DependsOn(_) | Freedom::CannotTell(_) => None,
+        }
+    }
+
+    /// A coordinate's limits at the lower and the upper end of the state's domain.
+    fn ends(&self, forward: Expr) -> [Limit; 2] {
+        let declared = &self.model.states[self.state];
+        let at = |bound: Bound, infinite: Limit| {
+            let place = bound.value().map_or(infinite, Limit::Value);
+            limit(&self.model.pool, forward, declared.symbol, place)
+        };
+        [
+            at(declared.domain.lower, Limit::MinusInfinity),
+            at(declared.domain.upper, Limit::PlusInfinity),
+        ]
+    }
+
+    /// Whether the domain is mapped onto the half line from 0, and one to one.
+    fn onto_half_line(&self, forward: Expr) -> bool {
+        let pool = &self.model.pool;
+        let x = self.model.states[self.state].symbol;
+        let zero = |l: Limit| matches!(l, Limit::Value(v) if pool.is_zero(v).is_yes());
+        let ends = match self.ends(forward) {
+            [lower, upper] if zero(lower) => upper.is_infinite(),
+            [lower, upper] if zero(upper) => lower.is_infinite(),
+            _ => false,
+        };
+        let slope = pool.sign(pool.simplify(pool.derivative(forward, x)));
+        ends && (slope.is_non_negative() || slope.is_non_positive())
+    }
+
+    /// Proves that a candidate follows a square-root equation, by Ito's rule and the zero test.
+    fn prove(&self, dynamics: &Dynamics, coordinate: Candidate) -> Option<Proved> {
+        let (model, pool) = (self.model, &self.model.pool);
+        let y = coordinate.forward;
+        if !self.onto_half_line(y) {
+            return None;
+        }
+        let mut expansion = expand(model, &dynamics.states, y);
+        let spread = bracket(model, &expansion.diffusion, &expansion.diffusion);
+        let square = self.constant(pool.div(spread, y))?;
+        let along = pool.derivative(y, model.states[self.state].symbol);
+        let slope = pool.derivative(expansion.drift, model.states[self.state].symbol);
+        let rate = self.constant(pool.neg(pool.div(slope, along)))?;
+        let level = self.constant(pool.add(expansion.drift, pool.mul(rate, y)))?;
+        let drift = pool.sub(level, pool.mul(rate, y));
+        let sides = [(expansion.drift, drift), (spread, pool.mul(square, y))];
+        let holds = |&(left, right): &(Expr, Expr)| {
+            left == right || (pool.equal(left, right).is_yes() && sample::agree(pool, left, right))
+        };
+        if !sides.iter().all(holds) || !pool.sign(square).is_non_negative() {
+            return None;
+        }
+        let dimension = pool.simplify(pool.div(pool.mul(pool.int(4), level), square));
+        let trace = &mut expansion.trace;
+        let note = "drift of the coordinate as a linear function of it";
+        trace.push("square-root form", note, Some(expansion.drift), drift);
+        let note = "square of its noise as a multiple of it";
+        trace.push("square-root form", note, Some(spread), pool.mul(square, y));
+        Some(Proved {
+            process: Process {
+                drift: expansion.drift,
+                diffusion: expansion.diffusion,
+            },
+            trace: expansion.trace,
+            coordinate,
+            level,
+            rate,
+            square,
+            dimension,
+        })
+    }
+
+    /// Why the author's `through` asks for something else; none where it is the coordinate up to a factor.
+    fn other_coordinate(&self, proved: &Proved) -> Option<String> {
+        let pool = &self.model.pool;
+        let declared = &self.model.states[self.state];
+        let asked = declared.through.as_ref()?;
+        if self
+            .constant(pool.div(asked.expr, proved.coordinate.forward))
+            .is_some()
+        {
+            return None;
+        }
+        Some(format!(
+            "{} is a square-root process and would be stepped exactly without `through`: its law is drawn in \
+             that coordinate, not in `{}`",
+            pool.format(proved.coordinate.forward),
+            asked.text
+        ))
+    }
+}
+
+/// A candidate that has passed Ito's rule.
+struct Proved {
+    coordinate: Candidate,
+    process: Process,
+    level: Expr,
+    rate: Expr,
+    square: Expr,
+    dimension: Expr,
+    trace: Trace,
+}

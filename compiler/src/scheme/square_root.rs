@@ -1,0 +1,166 @@
+//! Groups of one state stepped by its noncentral chi-square transition.
+
+use std::collections::BTreeMap;
+
+use super::{Becomes, Group, Kind, Law, Method, SchemeName, SquareRootStep};
+use crate::analysis::linear::Rows;
+use crate::analysis::square_root::{AtZero, Finding, SquareRoot, entangled, find};
+use crate::calculus::Dynamics;
+use crate::model::Model;
+use crate::symbolic::{Expr, Sign};
+
+/// For each state without a Gaussian coordinate its square-root law, or why there is none. `excluded` are
+/// left out: the author has asked for another scheme.
+pub(super) fn laws(
+    model: &Model,
+    dynamics: &Dynamics,
+    rows: &Rows,
+    excluded: &BTreeMap<usize, String>,
+) -> Vec<Result<SquareRoot, Option<String>>> {
+    let law = |state: usize| {
+        if rows[state].is_ok() || excluded.contains_key(&state) {
+            return Err(None);
+        }
+        match find(model, dynamics, state) {
+            Finding::Other => Err(None),
+            Finding::Refused(reason) => Err(Some(reason)),
+            Finding::Law(law) => match entangled(model, dynamics, state) {
+                Some(reason) => Err(Some(reason)),
+                None => Ok(*law),
+            },
+        }
+    };
+    (0..model.states.len()).map(law).collect()
+}
+
+/// The group of a state with a square-root law.
+pub(super) fn group(model: &Model, state: usize, law: &SquareRoot) -> Group {
+    let mut trace = law.trace.clone();
+    for (note, formula) in transition(model, law) {
+        trace.push("transition law", note, None, formula);
+    }
+    Group {
+        states: vec![state],
+        kind: Kind::Exact,
+        law: name(model, state, law),
+        becomes: Some(Becomes::SquareRoot),
+        scheme: SchemeName::Exact,
+        strong_order: None,
+        weak_order: None,
+        preserves_domain: !law.leaves,
+        reasons: reasons(model, state, law),
+        rejected: vec![(
+            SchemeName::FullTruncationEuler,
+            "a discretisation has an error that the exact law does not have".to_owned(),
+        )],
+        trace,
+        method: Method::SquareRoot(SquareRootStep {
+            state,
+            level: law.level,
+            rate: law.rate,
+            square: law.square,
+            dimension: law.dimension,
+            at_zero: law.at_zero,
+            against: [0, 1, 2].map(|n| law.dimension_against(model, n)),
+        }),
+    }
+}
+
+/// The name of the transition law; none where it is one or the other by the parameters' values.
+fn name(model: &Model, state: usize, law: &SquareRoot) -> Option<Law> {
+    Some(match (law.has_atom(model)?, law.is_affine(model, state)) {
+        (true, _) => Law::AbsorbedNoncentralChiSquare,
+        (false, true) => Law::NoncentralChiSquare,
+        (false, false) => Law::TransformedNoncentralChiSquare,
+    })
+}
+
+/// The law over a time t as formulas: the coordinate is `scale` times a noncentral chi-square variable.
+fn transition(model: &Model, law: &SquareRoot) -> Vec<(String, Expr)> {
+    let pool = &model.pool;
+    let y = law.coordinate.forward;
+    let time = pool.var(model.time);
+    let decay = pool.exp(pool.neg(pool.mul(law.rate, time)));
+    let elapsed = if pool.is_zero_literal(law.rate) {
+        time
+    } else {
+        pool.div(pool.sub(pool.one(), decay), law.rate)
+    };
+    let scale = pool.simplify(pool.div(pool.mul(law.square, elapsed), pool.int(4)));
+    let left = pool.mul(y, decay);
+    let mean = pool.add(left, pool.mul(law.level, elapsed));
+    let half = pool.div(pool.mul(law.level, elapsed), pool.int(2));
+    let variance = pool.product([law.square, elapsed, pool.add(left, half)]);
+    let shown = pool.format(y);
+    let what = format!(
+        "{shown} after a time t, given its value before, is `scale` times a noncentral chi-square variable"
+    );
+    let mut lines = vec![
+        (format!("{what}: degrees of freedom"), law.dimension),
+        ("its scale".to_owned(), scale),
+        (
+            "its noncentrality".to_owned(),
+            pool.simplify(pool.div(left, scale)),
+        ),
+    ];
+    if law.at_zero == AtZero::Absorbed {
+        lines.push((
+            "half of that, which a gamma variable of shape 1 - degrees/2 must not exceed: else the path has been \
+             absorbed"
+                .to_owned(),
+            pool.simplify(pool.div(left, pool.mul(pool.int(2), scale))),
+        ));
+    } else {
+        lines.push((format!("mean of {shown}"), pool.simplify(mean)));
+        lines.push((format!("variance of {shown}"), pool.simplify(variance)));
+    }
+    lines
+}
+
+fn reasons(model: &Model, state: usize, law: &SquareRoot) -> Vec<String> {
+    let pool = &model.pool;
+    let name = &model.states[state].name;
+    let y = pool.format(law.coordinate.forward);
+    let drift = pool.format(pool.sub(law.level, pool.mul(law.rate, law.coordinate.forward)));
+    let root = |e: Expr| pool.simplify(pool.sqrt(e));
+    let noise = pool.format(pool.mul(root(law.square), root(law.coordinate.forward)));
+    let left = if law.coordinate.is_identity() {
+        format!("d{y}")
+    } else {
+        format!("d({y})")
+    };
+    vec![
+        format!("Ito's rule gives {left} = ({drift}) dt + {noise} dB with a Brownian motion B."),
+        format!(
+            "That is a square-root process of dimension {}, so that each step is drawn from its noncentral \
+             chi-square transition: there is no discretisation error.",
+            pool.format(law.dimension)
+        ),
+        at_zero(model, name, &y, law),
+    ]
+}
+
+fn at_zero(model: &Model, name: &str, y: &str, law: &SquareRoot) -> String {
+    let below = law.dimension_against(model, 0);
+    match law.at_zero {
+        AtZero::NotReached => {
+            format!(
+                "The dimension is at least 2 for all admissible parameters: {y} does not reach 0."
+            )
+        }
+        AtZero::Reflected if below == Sign::Positive => {
+            format!("Where the dimension is below 2, {y} reaches 0 and is reflected there at once.")
+        }
+        AtZero::Reflected => format!(
+            "Where the dimension is between 0 and 2, {y} reaches 0 and is reflected there at once; where it is 0 or \
+             less, it stays at 0."
+        ),
+        AtZero::Absorbed if law.leaves => format!(
+            "Where the dimension is below 2, {name} reaches the open end of its domain: such paths stop there and are \
+             counted as having left."
+        ),
+        AtZero::Absorbed => format!(
+            "Where the dimension is below 2, {y} reaches 0 and stays there: the transition has an atom at 0."
+        ),
+    }
+}
