@@ -28,32 +28,33 @@ impl SquareRoot {
     }
 }
 
-/// A square-root rate under Euler's scheme with its integral by the left rule. The mean of exp(b I) is
-/// exponentially affine in the rate, in discrete as in continuous time (Cox, Ingersoll & Ross 1985, equation 23).
+/// A square-root rate, stepped exactly, with its integral by the left rule. Mean and variance over a step are
+/// those of Cox, Ingersoll & Ross (1985, equation 19). The mean of exp(a r) after a step is that of a
+/// noncentral chi-square variable (Johnson, Kotz & Balakrishnan 1995, section 29.3), exponentially affine in the
+/// rate before it, so that the mean of exp(b I) follows backwards.
 pub(crate) fn quay_rate(p: &Values, at: At) -> Expected {
-    let process = SquareRoot {
-        kappa: p.get("kappa"),
-        theta: p.get("theta"),
-        xi: p.get("sigma"),
-    };
+    let (kappa, theta, sigma) = (p.get("kappa"), p.get("theta"), p.get("sigma"));
     let r0 = p.get("r0");
+    let keep = (-kappa * at.h).exp();
+    let push = theta * (1.0 - keep);
+    let window = (1.0 - keep) / kappa;
     let (mut mean, mut second) = (r0, r0 * r0);
     let (mut integral, mut integral_2, mut mixed) = (0.0, 0.0, 0.0);
     for _ in 0..at.steps {
         integral_2 += 2.0 * at.h * mixed + at.h * at.h * second;
-        let keep = 1.0 - process.kappa * at.h;
-        let push = process.kappa * process.theta * at.h;
         mixed = keep * (mixed + at.h * second) + push * (integral + at.h * mean);
         integral += at.h * mean;
-        (mean, second) = process.step(mean, second, at.h);
+        let variance = sigma * sigma * window * (keep * mean + push / 2.0);
+        second = keep * keep * second + 2.0 * keep * push * mean + push * push + variance;
+        mean = keep * mean + push;
     }
+    let (scale, freedom) = (sigma * sigma * window / 4.0, 4.0 * kappa * theta / (sigma * sigma));
     let affine = |b: f64| {
         let (mut slope, mut constant) = (0.0_f64, 0.0);
         for _ in 0..at.steps {
-            constant += slope * process.kappa * process.theta * at.h;
-            slope = slope * (1.0 - process.kappa * at.h)
-                + b * at.h
-                + slope * slope * process.xi * process.xi * at.h / 2.0;
+            let shrink = 1.0 - 2.0 * slope * scale;
+            constant -= freedom / 2.0 * shrink.ln();
+            slope = slope * keep / shrink + b * at.h;
         }
         (constant + slope * r0).exp()
     };

@@ -223,6 +223,7 @@ pub mod harbour_account {
             values: &[f64],
             states: &mut [runtime::Lane],
             noise: &[runtime::Lane],
+            _draws: &runtime::random::Draws,
             _scratch: &mut [runtime::Lane],
         ) {
             let &[deviation_r_w, deviation_i_w, deviation_i_law_i, shift_r,

@@ -248,6 +248,7 @@ pub mod honey_market {
             values: &[f64],
             states: &mut [runtime::Lane],
             noise: &[runtime::Lane],
+            _draws: &runtime::random::Draws,
             _scratch: &mut [runtime::Lane],
         ) {
             let r = self.parameters.r;

@@ -192,6 +192,7 @@ pub mod orchard_spot {
             values: &[f64],
             states: &mut [runtime::Lane],
             noise: &[runtime::Lane],
+            _draws: &runtime::random::Draws,
             _scratch: &mut [runtime::Lane],
         ) {
             let &[deviation_s_w, shift_s] = values else {
