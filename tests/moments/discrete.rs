@@ -48,7 +48,10 @@ pub(crate) fn quay_rate(p: &Values, at: At) -> Expected {
         second = keep * keep * second + 2.0 * keep * push * mean + push * push + variance;
         mean = keep * mean + push;
     }
-    let (scale, freedom) = (sigma * sigma * window / 4.0, 4.0 * kappa * theta / (sigma * sigma));
+    let (scale, freedom) = (
+        sigma * sigma * window / 4.0,
+        4.0 * kappa * theta / (sigma * sigma),
+    );
     let affine = |b: f64| {
         let (mut slope, mut constant) = (0.0_f64, 0.0);
         for _ in 0..at.steps {

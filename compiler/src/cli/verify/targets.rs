@@ -112,8 +112,8 @@ impl Targets {
         claim: Option<&str>,
     ) {
         if let Some(law) = analyst.moments.marginal_law(formula) {
-            let name = law.name().map_or("square_root", LawName::name);
-            let source = format!("{} law", name.replace('_', " "));
+            let kind = law.name().map_or("square_root", LawName::name);
+            let source = format!("{} law", kind.replace('_', " "));
             for level in 0..LEVELS.len() {
                 let statistic = Statistic::Quantile(output, level, Box::new(law.clone()));
                 self.push(name, statistic, Origin::Derived(source.clone()), claim);
