@@ -8,7 +8,7 @@ use driftwright_tests::harness::values::{model_names, read};
 const OPEN: [(&str, &str); 1] = [("sluice_level", "noise")];
 
 /// Models that must be stepped by an exact law alone.
-const EXACT: [&str; 14] = [
+const EXACT: [&str; 15] = [
     "barley_two_factor",
     "cider_forward",
     "cooling_kiln",
@@ -21,6 +21,7 @@ const EXACT: [&str; 14] = [
     "peat_season",
     "river_spread",
     "salt_price",
+    "sluice_level",
     "tide_gauge",
     "twin_orchards",
 ];

@@ -1,7 +1,7 @@
 //! Gamma and Poisson numbers: their laws against another library, their addresses, their frozen bits.
 
 use driftwright_runtime::random::Draws;
-use driftwright_runtime::{ArithmeticClass, Generator, LANES, Lane, source_id};
+use driftwright_runtime::{ArithmeticClass, Generator, LANES, Lane, STREAM_VERSION, source_id};
 use statrs::distribution::{ContinuousCDF, Discrete, Gamma, Normal};
 use statrs::distribution::{DiscreteCDF, Poisson};
 
@@ -11,6 +11,14 @@ const PATHS: usize = 100_000;
 /// Each Kolmogorov-Smirnov statistic times the root of the sample size stays below this with
 /// probability 1 - 1e-6 (Kolmogorov 1933: `2 exp(-2 x^2)`).
 const KOLMOGOROV: f64 = 2.69;
+
+const GOLDEN_GAMMAS: [f64; 4] = [
+    0.2213612150604739,
+    2.0230556750429285,
+    11.1564837779716,
+    403.44524091488563,
+];
+const GOLDEN_COUNTS: [f64; 4] = [0.0, 3.0, 8.0, 367.0];
 
 const CLASSES: [ArithmeticClass; 2] = [ArithmeticClass::Fused, ArithmeticClass::Unfused];
 
@@ -167,6 +175,27 @@ fn parameters_at_the_edge_need_no_draw() {
         assert!(lane[2].is_nan() && lane[3].is_nan());
         assert_eq!(lane[4], 0.0);
     }
+}
+
+/// Draws of stream version 1, frozen: a change here is a change of `STREAM_VERSION`. Shapes and means on
+/// either side of each switch between algorithms.
+#[test]
+fn golden_draws() {
+    assert_eq!(STREAM_VERSION, 1);
+    let draws = Draws::new(
+        20_261_201,
+        Generator::Threefry2x64,
+        ArithmeticClass::Unfused,
+        250,
+        512,
+    );
+    let mut parameter = Lane::ZERO;
+    parameter[..4].copy_from_slice(&[0.4, 3.5, 12.0, 400.0]);
+    let (mut gamma, mut count) = (Lane::ZERO, Lane::ZERO);
+    draws.gamma(source_id("law:x:gamma"), &parameter, &mut gamma);
+    draws.poisson(source_id("law:x:poisson"), &parameter, &mut count);
+    assert_eq!(gamma[..4], GOLDEN_GAMMAS);
+    assert_eq!(count[..4], GOLDEN_COUNTS);
 }
 
 /// A draw hangs on its own address and parameter, not on its neighbours.

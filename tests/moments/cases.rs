@@ -83,7 +83,7 @@ pub(crate) const CASES: [Case; 20] = [
     ),
     exact("cooling_kiln", [0.25, 1.0, 4.0], systems::cooling_kiln),
     stepped("reed_bed", [0.5, 1.0, 4.0], 400, systems::reed_bed),
-    stepped("sluice_level", [0.5, 1.0, 2.0], 4, scalar::sluice_level),
+    exact("sluice_level", [0.5, 1.0, 2.0], scalar::sluice_level),
     stepped("quay_rate", [0.5, 1.0, 2.0], 64, discrete::quay_rate),
     stepped("honey_market", [0.25, 0.5, 1.0], 64, discrete::honey_market),
     stepped("eddy_area", [0.5, 1.0, 2.0], 32, discrete::eddy_area),

@@ -68,7 +68,10 @@ pub(super) fn group(model: &Model, state: usize, law: &SquareRoot) -> Group {
 
 /// The name of the transition law; none where it is one or the other by the parameters' values.
 fn name(model: &Model, state: usize, law: &SquareRoot) -> Option<Law> {
-    Some(match (law.has_atom(model)?, law.is_affine(model, state)) {
+    // A law that is stopped has its name also where some parameter values keep it from zero.
+    let stopped = (law.at_zero == AtZero::Absorbed).then_some(true);
+    let atom = law.has_atom(model).or(stopped)?;
+    Some(match (atom, law.is_affine(model, state)) {
         (true, _) => Law::AbsorbedNoncentralChiSquare,
         (false, true) => Law::NoncentralChiSquare,
         (false, false) => Law::TransformedNoncentralChiSquare,

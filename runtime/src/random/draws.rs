@@ -119,7 +119,8 @@ pub(super) trait Rejection {
         }
     }
 
-    /// An attempt from four words: the number, and whether it is accepted.
+    /// An attempt from four words: the number, and whether it is accepted. Comes to an end for any
+    /// parameter, those without a draw too.
     fn attempt<A: Arith>(parameter: f64, words: [u64; 4]) -> (f64, bool);
 }
 
@@ -145,13 +146,17 @@ impl<L: Rejection, G: Words> Task for Fill<'_, L, G> {
             let ([a, b], [c, d]) = (G::words(first, path), G::words(second, path));
             *words = [a, b, c, d];
         }
-        for (i, words) in words.into_iter().enumerate() {
+        let mut accepted = [false; LANES];
+        for i in 0..LANES {
+            (self.out[i], accepted[i]) = L::attempt::<A>(self.parameter[i], words[i]);
+        }
+        for (i, mut accepted) in accepted.into_iter().enumerate() {
             let parameter = self.parameter[i];
             if let Some(value) = L::without_draw(parameter) {
                 self.out[i] = value;
                 continue;
             }
-            let (mut value, mut accepted) = L::attempt::<A>(parameter, words);
+            let mut value = self.out[i];
             let mut attempt = 1;
             while !accepted && attempt < ATTEMPTS {
                 let [first, second] = prepared::<G>(&self.address, attempt);

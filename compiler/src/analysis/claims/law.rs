@@ -20,6 +20,11 @@ impl Court<'_> {
         } else if claimed == LawName::TransformedNormal.name() && is_monotone_image(law) {
             let reason = format!("{found}, a monotone image of a normal law");
             self.result(claim, Verdict::Proved, reason)
+        } else if claimed == LawName::TransformedNoncentralChiSquare.name()
+            && law == LawName::NoncentralChiSquare
+        {
+            let reason = format!("{found}, which is its own monotone image");
+            self.result(claim, Verdict::Proved, reason)
         } else if claimed == "joint_normal" {
             let reason = format!("{found}; a joint law is not a law of one formula");
             self.result(claim, Verdict::Open, reason)

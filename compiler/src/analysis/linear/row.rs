@@ -59,7 +59,7 @@ impl Finder<'_> {
             return match free_of(pool, drift, &[self.symbols[j]]) {
                 Freedom::Free(_) => Ok(pool.zero()),
                 _ => Err(format!(
-                    "the drift of {shown} depends on {name}, which is not part of an exact law"
+                    "the drift of {shown} depends on {name}, which is not part of a joint Gaussian law"
                 )),
             };
         };

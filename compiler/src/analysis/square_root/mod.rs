@@ -58,7 +58,8 @@ impl SquareRoot {
         against(model, self.level, self.square, n)
     }
 
-    /// Whether the transition has an atom; none where that hangs on the parameters' values. At dimension 0
+    /// Whether the transition has an atom; none where that hangs on the parameters' values, and where the
+    /// process leaves its domain, since what is derived holds until then. At dimension 0
     /// the noncentral chi-square law itself has one (Siegel 1979) and counts as without.
     pub fn has_atom(&self, model: &Model) -> Option<bool> {
         match self.at_zero {
@@ -67,7 +68,11 @@ impl SquareRoot {
                 let reflected = self.dimension_against(model, 0).is_non_negative();
                 reflected.then_some(false)
             }
-            AtZero::Absorbed => Some(!model.pool.is_zero_literal(self.level)),
+            AtZero::Absorbed if model.pool.is_zero_literal(self.level) => Some(false),
+            AtZero::Absorbed => {
+                let reached = self.dimension_against(model, 2) == Sign::Negative;
+                (reached && !self.leaves).then_some(true)
+            }
         }
     }
 

@@ -68,7 +68,10 @@ impl Lowering<'_> {
         if !self.model.pool.sign(step.square).is_positive() {
             let drift = self.in_step(step.level);
             let moved = self.builder.mul(drift, coefficients.elapsed);
-            let without = self.builder.mul_add(coefficients.decay, current, moved);
+            let mut without = self.builder.mul_add(coefficients.decay, current, moved);
+            if !self.model.pool.sign(step.level).is_non_negative() {
+                without = self.builder.binary(BinaryOp::Max, without, zero);
+            }
             value = self
                 .builder
                 .select(Comparison::LessEqual, (square, zero), without, value);
@@ -169,6 +172,7 @@ impl Lowering<'_> {
         let [zero, one, weight] = [0.0, 1.0, 0.5].map(|n| self.builder.number(n));
         let part = self.builder.mul(coefficients.dimension, weight);
         let shape = self.builder.sub(one, part);
+        let shape = self.builder.binary(BinaryOp::Max, shape, zero);
         let shape = self.choose(coefficients.absorbing, shape, zero);
         let threshold = self.other_draw(step, DrawLaw::Gamma, "absorption", shape);
         self.builder.sub(half, threshold)
@@ -205,6 +209,8 @@ impl Lowering<'_> {
         let [zero, one, weight] = [0.0, 1.0, 0.5].map(|n| self.builder.number(n));
         let less = self.builder.sub(coefficients.dimension, one);
         let beside_normal = self.builder.mul(less, weight);
+        // At dimension 1 rounding must not make it negative.
+        let beside_normal = self.builder.binary(BinaryOp::Max, beside_normal, zero);
         if matches!(coefficients.shifted, Case::Always) {
             return beside_normal;
         }
