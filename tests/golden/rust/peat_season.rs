@@ -232,6 +232,7 @@ pub mod peat_season {
             values: &[f64],
             states: &mut [runtime::Lane],
             noise: &[runtime::Lane],
+            _draws: &runtime::random::Draws,
             _scratch: &mut [runtime::Lane],
         ) {
             let &[deviation_p_w, shift_p, transition_p_p] = values else {
