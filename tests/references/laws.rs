@@ -164,7 +164,7 @@ fn paths_have_the_laws_of_the_literature() {
         let paths = estimate(&case.id, &model, &[time], None, PATHS);
         checks.extend((0..case.check.len()).filter_map(|i| checks_of(case, &paths, i)));
     }
-    assert_eq!(checks.len(), 101, "values in scope");
+    assert_eq!(checks.len(), 158, "values in scope");
     assert_family(&checks);
 }
 
@@ -180,5 +180,5 @@ fn plans_in_scope_are_exact() {
         }
         seen += 1;
     }
-    assert_eq!(seen, 15, "cases in scope");
+    assert_eq!(seen, 23, "cases in scope");
 }

@@ -20,7 +20,7 @@ const WITHIN: f64 = 0.1;
 ///
 /// From mean 10 on by transformed rejection with squeeze: W. Hoermann, "The transformed rejection method
 /// for generating Poisson random variables", Insurance: Mathematics and Economics 12 (1993), algorithm
-/// PTRS; constants recalled from the paper, the hat raised by [`MARGIN`]. Below by adding up probabilities
+/// PTRS; constants recalled from the paper, the hat raised by `MARGIN`. Below by adding up probabilities
 /// until they exceed a uniform number.
 pub(super) struct Poisson;
 

@@ -7,8 +7,8 @@
 //! logarithms of these (Goeing-Jaeschke and Yor 2003 survey them). Given `y` now, `y` after a time `h` is
 //! `c` times a noncentral chi-square variable of `dimension` degrees of freedom.
 //!
-//! A candidate U is read off the noise ([`candidates`]); that it is one is then proved by Ito's rule and the
-//! zero test, for all admissible parameters. What happens at `y = 0` is decided in [`zero`].
+//! A candidate U is read off the noise (`candidates`); that it is one is then proved by Ito's rule and the
+//! zero test, for all admissible parameters. What happens at `y = 0` is decided in `zero`.
 
 mod candidates;
 mod zero;
