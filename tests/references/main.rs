@@ -10,3 +10,5 @@ mod prices;
 mod rates;
 mod schemes;
 mod square_root;
+mod steep;
+mod taylor;

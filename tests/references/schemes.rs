@@ -8,7 +8,7 @@ use crate::estimate::{Estimates, estimate};
 use crate::model::ModelText;
 
 /// The linear equation by a scheme, with its exact solution on the same path (Kloeden & Platen 1992, section 4.4).
-fn linear(case: &Case, scheme: &str) -> ModelText {
+pub(crate) fn linear(case: &Case, scheme: &str) -> ModelText {
     ModelText::new(&["W"])
         .parameters_of(case)
         .state(
@@ -24,14 +24,14 @@ fn linear(case: &Case, scheme: &str) -> ModelText {
 }
 
 /// Values of the case at a number of steps.
-fn value(case: &Case, quantity: &str, steps: usize) -> f64 {
+pub(crate) fn value(case: &Case, quantity: &str, steps: usize) -> f64 {
     case.values_at(quantity)
         .find(|(at, _)| *at == steps as f64)
         .unwrap_or_else(|| panic!("{} {quantity} at {steps}", case.id))
         .1
 }
 
-fn run(case: &Case, model: &ModelText, steps: usize, paths: u64) -> Estimates {
+pub(crate) fn run(case: &Case, model: &ModelText, steps: usize, paths: u64) -> Estimates {
     let name = format!("{}-{steps}", case.id);
     estimate(&name, model, &[case.parameter("T")], Some(steps), paths)
 }
@@ -72,7 +72,7 @@ fn family(
 }
 
 /// Paths for a log-normal second moment: 1e4 exp(4 u^2 T) at least.
-fn linear_family(id: &str, scheme: &str, paths: u64) -> Vec<Check> {
+pub(crate) fn linear_family(id: &str, scheme: &str, paths: u64) -> Vec<Check> {
     let reference = Reference::load("E");
     let case = reference.by_id(id);
     let square =

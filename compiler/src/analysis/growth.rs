@@ -1,7 +1,7 @@
 //! Growth and smoothness of step coefficients, which the theorems on orders assume.
 
 use super::asymptotics::{Leading, Side, at_end};
-use crate::symbolic::{Expr, Pool, Rational, Symbol};
+use crate::symbolic::{Bound, Expr, Pool, Rational, Sign, Symbol};
 
 /// What is known of a coefficient as a function of the coordinates.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -43,6 +43,25 @@ pub fn growth(pool: &Pool, coefficient: Expr, symbols: &[Symbol]) -> Growth {
         Some(&symbol) => Growth::NotShown { symbol },
         None => Growth::Lipschitz,
     }
+}
+
+/// Whether a drift that grows faster than linearly does so towards smaller values of |x| at every
+/// infinite end of the range of x, with which it is one-sided Lipschitz out there.
+pub fn pulls_inward(pool: &Pool, drift: Expr, x: Symbol) -> bool {
+    let range = pool.range(x);
+    let ends = [(range.lower, Side::Lower), (range.upper, Side::Upper)];
+    let infinite = |(end, _): &(Bound, Side)| end.value().is_none();
+    ends.into_iter()
+        .filter(infinite)
+        .all(|(end, side)| match at_end(pool, drift, x, end, side) {
+            Leading::Zero => true,
+            Leading::Term { exponent, .. } if -&exponent <= Rational::ONE => true,
+            Leading::Term { coefficient, .. } => match side {
+                Side::Lower => pool.sign(coefficient).is_positive(),
+                Side::Upper => pool.sign(coefficient) == Sign::Negative,
+            },
+            Leading::Unknown => false,
+        })
 }
 
 /// The largest power of |x| a formula grows like towards an infinite end.

@@ -110,6 +110,8 @@ fn correlated_milstein_matches_the_formula() {
                 drift: sketch.formula(drift),
                 diffusion: diffusion.map(|b| sketch.formula(b)).to_vec(),
                 milstein: vec![(milstein.0, milstein.1, sketch.formula(milstein.2))],
+                taming: None,
+                taylor: None,
                 lower: None,
                 upper: None,
             }
@@ -200,6 +202,8 @@ fn closed_ends_absorb_and_reflect() {
             drift: zero,
             diffusion,
             milstein: Vec::new(),
+            taming: None,
+            taylor: None,
             lower: Some(lower),
             upper: None,
         };

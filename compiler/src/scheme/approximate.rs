@@ -1,15 +1,18 @@
 //! Groups stepped by a scheme with a discretisation error: which scheme, and why.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 use std::rc::Rc;
 
 use super::edges::Projection;
-use super::step::{Frame, state_step};
-use super::{Coordinate, Group, Kind, Law, Method, Order, SchemeName, overrides, reasons};
+use super::step::{Frame, size, state_step};
+use super::{
+    Coordinate, Group, Kind, Law, Method, Order, SchemeName, StateStep, overrides, reasons,
+};
 use crate::analysis::commute::{Clash, clash};
 use crate::analysis::coordinate::through;
 use crate::analysis::dependence::{mentioned, sources};
 use crate::analysis::free::kink_in;
+use crate::analysis::growth::{Growth, growth, pulls_inward};
 use crate::calculus::Dynamics;
 use crate::model::{AtEdge, Model};
 use crate::symbolic::trace::Trace;
@@ -46,6 +49,11 @@ pub(super) struct Choice {
     pub(super) projected: bool,
     /// A state that is absorbed or reflected.
     pub(super) ruled: bool,
+    /// A drift grows faster than linearly, always inwards, and the noise is globally Lipschitz: what the
+    /// tamed schemes are for.
+    pub(super) tame: bool,
+    /// The noise is additive or has one driver, and nothing is read whose own law is drawn exactly.
+    pub(super) taylor: bool,
 }
 
 impl Context<'_> {
@@ -61,9 +69,9 @@ impl Context<'_> {
                     overrides::honoured(self.model, state, choice).unwrap_or(choice.scheme);
                 by_scheme.entry(scheme).or_default().push(state);
             }
-            let mixed = by_scheme.contains_key(&SchemeName::EulerMaruyama);
+            let company: Vec<SchemeName> = by_scheme.keys().copied().collect();
             for (scheme, states) in by_scheme {
-                groups.push(self.group(&frame, choice, scheme, mixed, states));
+                groups.push(self.group(&frame, choice, scheme, &company, states));
             }
         }
         groups
@@ -133,17 +141,72 @@ impl Context<'_> {
             kink: component.iter().find_map(|&i| self.kink(i)),
             projected: component.iter().any(|&i| !self.projections[i].is_none()),
             ruled: component.iter().any(|&i| self.is_ruled(i)),
+            tame: self.is_tame(component),
+            taylor: self.has_taylor(component),
         };
         choice.scheme = if choice.deterministic {
             SchemeName::RungeKutta4
         } else if choice.projected {
             SchemeName::FullTruncationEuler
-        } else if choice.ruled || choice.kink.is_some() || choice.clash.is_some() {
+        } else if choice.ruled || choice.kink.is_some() {
             SchemeName::EulerMaruyama
         } else {
-            SchemeName::Milstein
+            match (choice.clash.is_some(), choice.tame) {
+                (true, true) => SchemeName::TamedEuler,
+                (false, true) => SchemeName::TamedMilstein,
+                (true, false) => SchemeName::EulerMaruyama,
+                (false, false) if choice.additive && choice.taylor => SchemeName::StrongTaylor15,
+                (false, false) => SchemeName::Milstein,
+            }
         };
         choice
+    }
+
+    /// Whether a drift of the component grows faster than linearly, each that does pulls inwards, and
+    /// all of its noise is globally Lipschitz.
+    fn is_tame(&self, component: &[usize]) -> bool {
+        let pool = &self.model.pool;
+        let frame = Frame::new(self.model, self.coordinates);
+        let symbols: Vec<Symbol> = component
+            .iter()
+            .map(|&i| self.coordinates[i].symbol)
+            .collect();
+        let noises = component.iter().flat_map(|&i| self.noise(i));
+        let lipschitz = |b: Expr| growth(pool, frame.write(b), &symbols) == Growth::Lipschitz;
+        let mut steep = component.iter().filter_map(|&i| {
+            let drift = frame.write(self.coordinates[i].process.drift);
+            match growth(pool, drift, &symbols) {
+                Growth::Superlinear { symbol, .. } => {
+                    Some(symbol == self.coordinates[i].symbol && pulls_inward(pool, drift, symbol))
+                }
+                _ => None,
+            }
+        });
+        let first = steep.next();
+        first == Some(true) && steep.all(|inward| inward) && noises.into_iter().all(lipschitz)
+    }
+
+    /// Whether the strong Taylor scheme of order 1.5 needs no integrals beyond those of single drivers.
+    fn has_taylor(&self, component: &[usize]) -> bool {
+        let pool = &self.model.pool;
+        let coefficients = component.iter().flat_map(|&i| {
+            let process = &self.coordinates[i].process;
+            process.diffusion.iter().copied().chain([process.drift])
+        });
+        let read: BTreeSet<usize> = coefficients
+            .flat_map(|e| mentioned(self.model, e))
+            .chain(component.iter().copied())
+            .collect();
+        let noises = read.iter().map(|&i| &self.dynamics.states[i].diffusion);
+        let drivers: BTreeSet<usize> = noises
+            .flat_map(|row| row.iter().enumerate())
+            .filter(|(_, b)| !pool.is_zero_literal(**b))
+            .map(|(j, _)| j)
+            .collect();
+        let additive = component
+            .iter()
+            .all(|&i| self.noise(i).all(|b| !self.mentions_states(b)));
+        (additive || drivers.len() == 1) && read.iter().all(|&i| self.is_member(i))
     }
 
     fn noise(&self, state: usize) -> impl Iterator<Item = Expr> + '_ {
@@ -173,10 +236,10 @@ impl Context<'_> {
         frame: &Frame<'_>,
         choice: &Choice,
         scheme: SchemeName,
-        mixed: bool,
+        company: &[SchemeName],
         states: Vec<usize>,
     ) -> Group {
-        let (strong_order, weak_order) = orders(choice, scheme, mixed);
+        let (strong_order, weak_order) = orders(choice, scheme, company);
         let step = |&i: &usize| {
             state_step(
                 self.model,
@@ -193,7 +256,14 @@ impl Context<'_> {
                     .map(|&i| (i, frame.write(self.coordinates[i].process.drift)))
                     .collect(),
             ),
-            _ => Method::Step(states.iter().map(step).collect()),
+            _ => {
+                let mut steps: Vec<StateStep> = states.iter().map(step).collect();
+                if matches!(scheme, SchemeName::TamedEuler | SchemeName::TamedMilstein) {
+                    let size = size(self.model, &steps);
+                    steps.iter_mut().for_each(|s| s.taming = Some(size));
+                }
+                Method::Step(steps)
+            }
         };
         let mut trace = Trace::default();
         for &i in &states {
@@ -255,9 +325,13 @@ impl Context<'_> {
     }
 }
 
-/// Strong and weak order; none where no rate is known. `mixed`: some state of the component is stepped
-/// by Euler-Maruyama, whose error the others inherit.
-fn orders(choice: &Choice, scheme: SchemeName, mixed: bool) -> (Option<Order>, Option<Order>) {
+/// Strong and weak order; none where no rate is known. `company`: the schemes by which the states of the
+/// component are stepped; each inherits the errors of the others.
+fn orders(
+    choice: &Choice,
+    scheme: SchemeName,
+    company: &[SchemeName],
+) -> (Option<Order>, Option<Order>) {
     if choice.projected || choice.ruled {
         return (None, None);
     }
@@ -268,10 +342,21 @@ fn orders(choice: &Choice, scheme: SchemeName, mixed: bool) -> (Option<Order>, O
         };
         return (Some(order), Some(order));
     }
-    let weak = choice.kink.is_none().then_some(Order::ONE);
+    let all = |allowed: &[SchemeName]| company.iter().all(|s| allowed.contains(s));
+    let weak = match scheme {
+        _ if choice.kink.is_some() => None,
+        _ if all(&[SchemeName::StrongTaylor15]) => Some(Order::TWO),
+        _ => Some(Order::ONE),
+    };
+    let milstein = [
+        SchemeName::Milstein,
+        SchemeName::TamedMilstein,
+        SchemeName::StrongTaylor15,
+    ];
     let strong = match scheme {
         _ if choice.kink.is_some() => Order::HALF,
-        SchemeName::Milstein if !mixed => Order::ONE,
+        _ if all(&[SchemeName::StrongTaylor15]) => Order::THREE_HALVES,
+        _ if all(&milstein) => Order::ONE,
         _ if choice.additive => Order::ONE,
         _ => Order::HALF,
     };

@@ -28,7 +28,7 @@ use crate::model::Model;
 pub use crate::model::SchemeName;
 pub use plan::{
     Becomes, Component, Coordinate, EdgeRule, Group, Kind, Law, LinearGaussian, Method,
-    NoiseComponent, NoisePlan, Order, Plan, RowNoise, SquareRootStep, StateStep,
+    NoiseComponent, NoisePlan, Order, Plan, RowNoise, SquareRootStep, StateStep, Taylor,
 };
 
 /// Plans how the states of a model are stepped.

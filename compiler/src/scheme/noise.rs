@@ -1,6 +1,6 @@
 //! The Gaussian vector of a step: who needs which component, and under which name it is drawn.
 
-use super::{Component, Group, Method, NoiseComponent, NoisePlan, RowNoise};
+use super::{Component, Group, Method, NoiseComponent, NoisePlan, RowNoise, StateStep, Taylor};
 use crate::model::Model;
 use crate::symbolic::{Expr, Pool};
 
@@ -11,6 +11,9 @@ pub(super) fn plan(model: &Model, groups: &[Group]) -> NoisePlan {
     let increments = (0..model.drivers.len())
         .filter(|&d| raw(d))
         .map(|driver| (Component::Increment { driver }, Some(driver)));
+    let companions = (0..model.drivers.len())
+        .filter(|&d| groups.iter().any(|g| reads_companion(g, d)))
+        .map(|driver| (Component::Companion { driver }, None));
     let convolutions = groups.iter().enumerate().flat_map(|(index, group)| {
         convolutions(pool, group)
             .into_iter()
@@ -24,11 +27,15 @@ pub(super) fn plan(model: &Model, groups: &[Group]) -> NoisePlan {
                 )
             })
     });
-    let found: Vec<(Component, Option<usize>)> = increments.chain(convolutions).collect();
+    let found: Vec<(Component, Option<usize>)> =
+        increments.chain(companions).chain(convolutions).collect();
     let users = |driver: usize| found.iter().filter(|&&(_, d)| d == Some(driver)).count();
     let components = found.iter().map(|&(component, driver)| {
         let source = match (component, driver) {
             (Component::Increment { driver }, _) => model.drivers[driver].name.clone(),
+            (Component::Companion { driver }, _) => {
+                format!("integral:{}", model.drivers[driver].name)
+            }
             (Component::Convolution { .. }, Some(d)) if users(d) == 1 => {
                 model.drivers[d].name.clone()
             }
@@ -46,13 +53,27 @@ pub(super) fn plan(model: &Model, groups: &[Group]) -> NoisePlan {
 fn reads_increment(pool: &Pool, group: &Group, driver: usize) -> bool {
     let present = |e: Expr| !pool.is_zero_literal(e);
     match &group.method {
-        Method::Step(steps) => steps.iter().any(|s| present(s.diffusion[driver])),
+        Method::Step(steps) => steps.iter().any(|s| {
+            present(s.diffusion[driver]) || s.taylor.as_ref().is_some_and(|t| t.reads(driver))
+        }),
         Method::LinearGaussian(system) => system
             .noise
             .iter()
             .zip(&system.c)
             .any(|(&noise, c)| noise == RowNoise::Increments && present(c[driver])),
         Method::RungeKutta4(_) | Method::SquareRoot(_) => false,
+    }
+}
+
+fn reads_companion(group: &Group, driver: usize) -> bool {
+    let reads = |s: &StateStep| s.taylor.as_ref().is_some_and(|t| t.reads(driver));
+    matches!(&group.method, Method::Step(steps) if steps.iter().any(reads))
+}
+
+impl Taylor {
+    /// Whether a term reads the integral of a driver.
+    fn reads(&self, driver: usize) -> bool {
+        self.mixed.iter().any(|&(j, ..)| j == driver)
     }
 }
 

@@ -16,6 +16,9 @@ pub(super) fn scheme(model: &Model, state: usize) -> Option<SchemeName> {
         asked,
         SchemeName::EulerMaruyama
             | SchemeName::Milstein
+            | SchemeName::StrongTaylor15
+            | SchemeName::TamedEuler
+            | SchemeName::TamedMilstein
             | SchemeName::FullTruncationEuler
             | SchemeName::RungeKutta4
     );
@@ -26,7 +29,10 @@ pub(super) fn scheme(model: &Model, state: usize) -> Option<SchemeName> {
 pub(super) fn honoured(model: &Model, state: usize, choice: &Choice) -> Option<SchemeName> {
     let asked = scheme(model, state)?;
     let possible = match asked {
-        SchemeName::Milstein => choice.kink.is_none() && choice.clash.is_none(),
+        SchemeName::Milstein | SchemeName::TamedMilstein => {
+            choice.kink.is_none() && choice.clash.is_none()
+        }
+        SchemeName::StrongTaylor15 => no_taylor(model, choice).is_none(),
         SchemeName::RungeKutta4 => choice.deterministic,
         SchemeName::FullTruncationEuler => truncates(model, state),
         _ => true,
@@ -59,7 +65,10 @@ pub(super) fn check(
         let group = groups.iter().find(|g| g.states.contains(&i));
         let reason = match asked {
             SchemeName::Exact => context.refusals[i].clone(),
-            SchemeName::Milstein => choices.get(&i).and_then(|c| no_milstein(model, c)),
+            SchemeName::Milstein | SchemeName::TamedMilstein => {
+                choices.get(&i).and_then(|c| no_milstein(model, c))
+            }
+            SchemeName::StrongTaylor15 => choices.get(&i).and_then(|c| no_taylor(model, c)),
             SchemeName::RungeKutta4 if !context.calm[i] => Some(format!(
                 "{} is random; this scheme is for states that nothing random reaches",
                 state.name
@@ -73,6 +82,7 @@ pub(super) fn check(
                     .to_owned(),
             ),
             SchemeName::EulerMaruyama
+            | SchemeName::TamedEuler
             | SchemeName::RungeKutta4
             | SchemeName::FullTruncationEuler => None,
             _ => Some("it is not available for this model".to_owned()),
@@ -104,6 +114,15 @@ fn no_milstein(model: &Model, choice: &Choice) -> Option<String> {
     }
     let (state, clash) = choice.clash.as_ref()?;
     Some(super::reasons::clash(model, *state, clash))
+}
+
+/// Why the strong Taylor scheme of order 1.5 does not fit.
+fn no_taylor(model: &Model, choice: &Choice) -> Option<String> {
+    no_milstein(model, choice).or_else(|| {
+        let reason = "its terms of order 1.5 need integrals over products of drivers, or of the noise of an exact \
+                      law, which are not drawn: it is for additive noise and for one driver";
+        (!choice.taylor).then(|| reason.to_owned())
+    })
 }
 
 fn has_finite_end(model: &Model, state: usize) -> bool {

@@ -198,6 +198,16 @@ impl Order {
         numerator: 1,
         denominator: 1,
     };
+    /// Order three halves.
+    pub const THREE_HALVES: Self = Self {
+        numerator: 3,
+        denominator: 2,
+    };
+    /// Order two.
+    pub const TWO: Self = Self {
+        numerator: 2,
+        denominator: 1,
+    };
     /// Order four.
     pub const FOUR: Self = Self {
         numerator: 4,
@@ -297,10 +307,26 @@ pub struct StateStep {
     /// Milstein's terms: `(j, k, coefficient)` with `j <= k` adds
     /// `coefficient * (dW_j dW_k - rho_jk h)`. Empty for the Euler schemes.
     pub milstein: Vec<(usize, usize, Expr)>,
+    /// What tames the drift, for the tamed schemes: the drift `a` enters as `a h/(1 + h size)`.
+    pub taming: Option<Expr>,
+    /// The terms of order 1.5, for the strong Taylor scheme.
+    pub taylor: Option<Taylor>,
     /// What is done at a closed lower end.
     pub lower: Option<EdgeRule>,
     /// What is done at a closed upper end.
     pub upper: Option<EdgeRule>,
+}
+
+/// The terms that the strong Taylor scheme of order 1.5 adds to Milstein's (Kloeden and Platen 1992,
+/// section 10.4), with `dZ_j = int_t^{t+h} (W_j(s) - W_j(t)) ds`.
+#[derive(Clone, Debug)]
+pub struct Taylor {
+    /// `L^0 a`, times `h^2/2`.
+    pub drift: Expr,
+    /// `(j, L^j a, L^0 b^j)`: the first times `dZ_j`, the second times `h dW_j - dZ_j`.
+    pub mixed: Vec<(usize, Expr, Expr)>,
+    /// `(j, L^j L^j b^j)`, times `(dW_j^2/3 - h) dW_j/2`: with one driver alone.
+    pub cubic: Option<(usize, Expr)>,
 }
 
 /// What a step does with a value at or beyond a closed end `e` of the domain; `u` is the stored value
@@ -352,6 +378,12 @@ pub struct NoiseComponent {
 pub enum Component {
     /// The increment of a driver over the step.
     Increment {
+        /// The driver, by its index.
+        driver: usize,
+    },
+    /// An independent increment that makes up, with the driver's own, the integral of the driver over
+    /// the step: `dZ = h (dW + dV/sqrt(3))/2`. The companions are correlated as the drivers are.
+    Companion {
         /// The driver, by its index.
         driver: usize,
     },

@@ -66,6 +66,16 @@ fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> St
              Koekkoek and van Dijk 2010). The scheme converges strongly for square-root processes, without a \
              rate that holds for all parameters, so no order is stated."
         }
+        SchemeName::TamedEuler | SchemeName::TamedMilstein => {
+            "The drift a enters as a h/(1 + h |a|): the tamed drift keeps the moments of the scheme bounded where \
+             those of an explicit scheme diverge (Hutzenthaler, Jentzen and Kloeden 2012; Wang and Gan 2013 with \
+             Milstein's term). Large steps slow a steep drift down: halve the step to see by how much."
+        }
+        SchemeName::StrongTaylor15 => {
+            "The noise is additive or has one driver, so that the strong Taylor scheme of order 1.5 needs no more \
+             than the increments of the drivers and their integrals over the step (Kloeden and Platen 1992, \
+             section 10.4)."
+        }
         SchemeName::Milstein if choice.additive => {
             "The noise does not depend on the states: Milstein's term is zero, Milstein and Euler-Maruyama \
              coincide and have strong order 1."
@@ -150,6 +160,13 @@ fn regularity(context: &Context<'_>, choice: &Choice, method: &Method) -> Vec<St
         let name = &context.model.states[step.state].name;
         let noise = step.diffusion.iter().map(|&b| ("noise", b));
         for (what, coefficient) in std::iter::once(("drift", step.drift)).chain(noise) {
+            if what == "drift" && choice.tame && step.taming.is_some() {
+                found.push(format!(
+                    "The drift of {name} grows faster than linearly and pulls inwards, its noise is globally \
+                     Lipschitz, as the theorem on tamed schemes assumes."
+                ));
+                continue;
+            }
             let sentence = not_lipschitz(context, what, name, coefficient, &symbols);
             lipschitz &= sentence.is_none();
             found.extend(sentence);
@@ -205,8 +222,17 @@ pub(super) fn rejected(
             ));
         }
     }
-    if scheme == SchemeName::Milstein || choice.deterministic {
+    if choice.deterministic || matches!(scheme, SchemeName::Milstein | SchemeName::StrongTaylor15) {
         return found;
+    }
+    if choice.tame && matches!(scheme, SchemeName::TamedEuler | SchemeName::TamedMilstein) {
+        let reason = "the moments of explicit schemes may diverge where the drift grows faster than linearly \
+                      (Hutzenthaler, Jentzen and Kloeden 2011)";
+        let plain = match scheme {
+            SchemeName::TamedMilstein => SchemeName::Milstein,
+            _ => SchemeName::EulerMaruyama,
+        };
+        found.push((plain, reason.to_owned()));
     }
     let reason = if let Some((state, pair)) = &choice.clash {
         clash(model, *state, pair)

@@ -3,13 +3,14 @@
 use std::collections::BTreeMap;
 
 use super::edges::{self, Projection};
-use super::{Coordinate, SchemeName, StateStep};
+use super::{Coordinate, SchemeName, StateStep, Taylor};
 use crate::analysis::commute::{along_noise, relevant_drivers};
 use crate::analysis::coordinate::{Candidate, auxiliary, through};
+use crate::analysis::dependence::mentioned;
 use crate::calculus::{Dynamics, Process, expand};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Expr, Symbol};
+use crate::symbolic::{Expr, Function, Symbol};
 
 /// A state's coordinate with its process.
 pub(super) fn coordinate(state: usize, candidate: &Candidate, process: Process) -> Coordinate {
@@ -102,11 +103,72 @@ pub(super) fn state_step(
         drift: frame.write(process.drift),
         diffusion: process.diffusion.iter().map(|&b| frame.write(b)).collect(),
         milstein: match scheme {
-            SchemeName::Milstein => milstein(model, dynamics, &process.diffusion, frame),
+            SchemeName::Milstein | SchemeName::TamedMilstein | SchemeName::StrongTaylor15 => {
+                milstein(model, dynamics, &process.diffusion, frame)
+            }
             _ => Vec::new(),
+        },
+        taming: None,
+        taylor: match scheme {
+            SchemeName::StrongTaylor15 => Some(taylor(model, dynamics, process, frame)),
+            _ => None,
         },
         lower,
         upper,
+    }
+}
+
+/// The size of the drift of states stepped together, by which the tamed schemes hold it back: the
+/// Euclidean norm (Hutzenthaler, Jentzen and Kloeden 2012, equation 4).
+pub(super) fn size(model: &Model, steps: &[StateStep]) -> Expr {
+    let pool = &model.pool;
+    match steps {
+        [only] => pool.call(Function::Abs, &[only.drift]),
+        _ => pool.sqrt(
+            pool.sum(
+                steps
+                    .iter()
+                    .map(|s| pool.square(s.drift))
+                    .collect::<Vec<_>>(),
+            ),
+        ),
+    }
+}
+
+/// The terms of order 1.5, for noise that is additive or has one driver alone.
+fn taylor(model: &Model, dynamics: &Dynamics, process: &Process, frame: &Frame<'_>) -> Taylor {
+    let pool = &model.pool;
+    let generator = |e: Expr| expand(model, &dynamics.states, e).drift;
+    let read = mentioned(model, process.drift).into_iter();
+    let of_drift = read.flat_map(|i| dynamics.states[i].diffusion.iter().enumerate());
+    let mut drivers = relevant_drivers(model, dynamics, &process.diffusion);
+    drivers.extend(
+        of_drift
+            .filter(|(_, b)| !pool.is_zero_literal(**b))
+            .map(|(j, _)| j),
+    );
+    drivers.sort_unstable();
+    drivers.dedup();
+    let mixed = drivers.iter().map(|&j| {
+        let along = along_noise(model, dynamics, j, process.drift);
+        let moved = generator(process.diffusion[j]);
+        (j, frame.write(along), frame.write(moved))
+    });
+    let present = |&(_, along, moved): &(usize, Expr, Expr)| {
+        !(pool.is_zero_literal(along) && pool.is_zero_literal(moved))
+    };
+    let cubic = match drivers[..] {
+        [j] => {
+            let once = along_noise(model, dynamics, j, process.diffusion[j]);
+            let twice = frame.write(along_noise(model, dynamics, j, once));
+            (!pool.is_zero_literal(twice)).then_some((j, twice))
+        }
+        _ => None,
+    };
+    Taylor {
+        drift: frame.write(generator(process.drift)),
+        mixed: mixed.filter(present).collect(),
+        cubic,
     }
 }
 

@@ -14,9 +14,7 @@ use driftwright::symbolic::{Expr, Symbol};
 
 /// Exact laws of the catalogue that are not drawn exactly yet: square-root processes whose volatility
 /// depends on time, mixtures, transforms of several states at once, rotations.
-const LATER: [&str; 5] = [
-    "pub-033", "pub-034", "pub-035", "pub-044", "pub-045",
-];
+const LATER: [&str; 5] = ["pub-033", "pub-034", "pub-035", "pub-044", "pub-045"];
 
 /// Whether every state is stepped by an exact law.
 fn is_exact(planned: &Planned) -> bool {

@@ -352,7 +352,13 @@ fn overrides_are_honoured_or_refused_with_a_reason() {
     };
     let exact = two(&text("exact"));
     assert!(only(&exact).is_exact() && errors(&exact).is_empty());
-    for scheme in ["milstein", "euler_maruyama"] {
+    for scheme in [
+        "milstein",
+        "euler_maruyama",
+        "tamed_euler",
+        "tamed_milstein",
+        "strong_taylor_1_5",
+    ] {
         let planned = two(&text(scheme));
         assert_eq!(only(&planned).scheme.name(), scheme);
         assert!(errors(&planned).is_empty());
@@ -360,7 +366,6 @@ fn overrides_are_honoured_or_refused_with_a_reason() {
     for (scheme, reason) in [
         ("runge_kutta_4", "X is random"),
         ("full_truncation_euler", "no finite end"),
-        ("tamed_euler", "not available"),
         ("quadratic_exponential", "not available"),
     ] {
         let refused = errors(&two(&text(scheme)));
@@ -438,4 +443,44 @@ fn a_deterministic_state_that_leaves_its_open_domain_is_warned_of() {
     let reached = |p: &Planned| p.found.iter().any(|d| d.code == Code::OpenEndReached);
     assert!(reached(&two(&text("-kappa"))));
     assert!(!reached(&two(&text("theta - kappa*x"))));
+}
+
+/// The first rows of the usual table of schemes: tamed where the drift is steep and pulls inwards, order 1.5
+/// where the noise is additive (common practice; Kloeden and Platen 1992, section 10.4).
+#[test]
+fn steep_drifts_are_tamed_and_additive_noise_is_taken_to_order_one_and_a_half() {
+    for (drift, noise, scheme) in [
+        ("X - X^3", "W = \"sigma\"", "tamed_milstein"),
+        ("X - X^3", "W = \"sigma*X\"", "tamed_milstein"),
+        ("X + X^3", "W = \"sigma\"", "strong_taylor_1_5"),
+        ("X - X^3", "W = \"sigma*X^2\"", "milstein"),
+        ("sin(X)", "W = \"sigma\"", "strong_taylor_1_5"),
+        ("sin(X)", "W = \"sigma\", B = \"eta\"", "strong_taylor_1_5"),
+        ("sin(X)", "W = \"sigma*sin(X)\"", "milstein"),
+        ("abs(X)", "W = \"sigma\"", "euler_maruyama"),
+    ] {
+        let planned = two(&state("X", drift, noise, ""));
+        assert_eq!(only(&planned).scheme.name(), scheme, "{drift}, {noise}");
+        assert!(errors(&planned).is_empty());
+    }
+    let clash =
+        state("X", "-X^3", "W = \"sigma\"", "") + &state("Y", "0", "W = \"X\", B = \"eta*Y\"", "");
+    let planned = two(&clash);
+    let of = |state| {
+        planned.plan.groups[planned.plan.group_of(state)]
+            .scheme
+            .name()
+    };
+    assert_eq!([of(0), of(1)], ["tamed_euler"; 2]);
+    let crossed = two(&(state(
+        "X",
+        "sin(X)",
+        "W = \"X\", B = \"eta\"",
+        "scheme = \"strong_taylor_1_5\"",
+    )));
+    let refused = errors(&crossed);
+    assert!(
+        refused.len() == 1 && refused[0].contains("Levy areas"),
+        "{refused:?}"
+    );
 }

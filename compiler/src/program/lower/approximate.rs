@@ -7,15 +7,23 @@ use crate::program::Slot;
 use crate::program::builder::Phase;
 use crate::program::functions::UnaryOp;
 use crate::program::op::{Comparison, ValueId};
-use crate::scheme::{Component, EdgeRule, StateStep};
+use crate::scheme::{Component, EdgeRule, StateStep, Taylor};
 use crate::symbolic::{Bound, Expr};
 
 impl Lowering<'_> {
-    /// `u + a h + sum b_j dW_j + sum c_jk (dW_j dW_k - rho_jk h)`, kept at its closed ends.
+    /// `u + a h + sum b_j dW_j + sum c_jk (dW_j dW_k - rho_jk h)` and terms of higher order, kept at its
+    /// closed ends; the drift of a tamed scheme is `a h/(1 + h size)`.
     pub(super) fn approximate_state(&mut self, step: &StateStep, noise: &Noise) -> ValueId {
         let pool = self.model.pool.clone();
         let coordinate = &self.plan.coordinates[step.state];
-        let drift = pool.mul(step.drift, self.length());
+        let length = self.length();
+        let drift = match step.taming {
+            None => pool.mul(step.drift, length),
+            Some(size) => {
+                let held = pool.add(pool.one(), pool.mul(length, size));
+                pool.div(pool.mul(step.drift, length), held)
+            }
+        };
         let mut value = self.in_step(pool.add(pool.var(coordinate.symbol), drift));
         let text = format!(
             "Drift of {}, {}, over a step.",
@@ -25,6 +33,9 @@ impl Lowering<'_> {
         self.note(step.state, value, text);
         value = self.diffusion_terms(step, noise, value);
         value = self.milstein_terms(step, noise, value);
+        if let Some(taylor) = &step.taylor {
+            value = self.taylor_terms(step.state, taylor, noise, value);
+        }
         let scheme = self.plan.groups[self.plan.group_of(step.state)]
             .scheme
             .name();
@@ -87,6 +98,67 @@ impl Lowering<'_> {
             self.note(step.state, value, text);
         }
         value
+    }
+
+    /// `L^0 a h^2/2 + sum_j (L^j a dZ_j + L^0 b^j (h dW_j - dZ_j)) + L^j L^j b^j (dW_j^2/3 - h) dW_j/2`.
+    fn taylor_terms(
+        &mut self,
+        state: usize,
+        taylor: &Taylor,
+        noise: &Noise,
+        value: ValueId,
+    ) -> ValueId {
+        let pool = self.model.pool.clone();
+        let half_square = pool.mul(pool.ratio(1, 2), pool.square(self.length()));
+        let (length, half_square) = (self.in_step(self.length()), self.in_step(half_square));
+        let curvature = self.in_step(taylor.drift);
+        let mut value = self.builder.mul_add(half_square, curvature, value);
+        for &(driver, along, moved) in &taylor.mixed {
+            let increment = self.increment(driver, noise);
+            let integral = self.integral(driver, increment, noise);
+            let (along, moved) = (self.in_step(along), self.in_step(moved));
+            value = self.builder.mul_add(along, integral, value);
+            let whole = self.builder.mul(length, increment);
+            let rest = self.builder.sub(whole, integral);
+            value = self.builder.mul_add(moved, rest, value);
+        }
+        if let Some((driver, coefficient)) = taylor.cubic {
+            let increment = self.increment(driver, noise);
+            let third = self.builder.number(1.0 / 3.0);
+            let square = self.builder.mul(increment, increment);
+            let minus = self.builder.neg(length);
+            let deviation = self.builder.mul_add(third, square, minus);
+            let half = self.in_step(pool.mul(pool.ratio(1, 2), coefficient));
+            let product = self.builder.mul(half, increment);
+            value = self.builder.mul_add(product, deviation, value);
+        }
+        let text = format!("Terms of order 1.5 of {}.", self.coordinate_text(state));
+        self.note(state, value, text);
+        value
+    }
+
+    /// The integral of a driver over the step, less its value at the start: `h (dW + dV/sqrt(3))/2`.
+    fn integral(&mut self, driver: usize, increment: ValueId, noise: &Noise) -> ValueId {
+        let place = self.plan.noise.position(Component::Companion { driver });
+        let mixture = noise
+            .mixture(place.expect("the plan lists every companion"))
+            .clone();
+        let companion = self
+            .gaussian_part(None, &mixture)
+            .expect("a companion has a source");
+        let root = self.builder.number(1.0 / 3.0_f64.sqrt());
+        let sum = self.builder.mul_add(root, companion, increment);
+        let half = self.in_step(
+            self.model
+                .pool
+                .mul(self.model.pool.ratio(1, 2), self.length()),
+        );
+        let integral = self.builder.mul(half, sum);
+        self.builder.hint(
+            integral,
+            format!("integral_{}", self.model.drivers[driver].name),
+        );
+        integral
     }
 
     fn component(&self, driver: usize) -> usize {

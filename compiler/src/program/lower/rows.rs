@@ -16,7 +16,7 @@ pub(super) struct Row {
 pub(super) fn rows(lowering: &Lowering<'_>) -> Vec<Row> {
     let pool = &lowering.model.pool;
     let row = |component| match component {
-        Component::Increment { driver } => {
+        Component::Increment { driver } | Component::Companion { driver } => {
             let unit = |j| if j == driver { pool.one() } else { pool.zero() };
             let coefficients = (0..lowering.model.drivers.len()).map(unit).collect();
             Row {
@@ -104,7 +104,7 @@ fn coupled_group(lowering: &Lowering<'_>, row: &Row) -> Option<usize> {
         Component::Convolution { group, .. } => linear(lowering, group)
             .filter(|system| !is_decoupled(lowering, system))
             .map(|_| group),
-        Component::Increment { .. } => None,
+        Component::Increment { .. } | Component::Companion { .. } => None,
     }
 }
 
@@ -130,6 +130,10 @@ pub(super) fn blocks(lowering: &Lowering<'_>, rows: &[Row]) -> Vec<Vec<usize>> {
 }
 
 fn linked(lowering: &Lowering<'_>, first: &Row, second: &Row) -> bool {
+    let companion = |row: &Row| matches!(row.component, Component::Companion { .. });
+    if companion(first) != companion(second) {
+        return false;
+    }
     let group = coupled_group(lowering, first);
     if group.is_some() && group == coupled_group(lowering, second) {
         return true;
