@@ -81,7 +81,7 @@ fn milsteins_term_of_one_driver() {
 /// 10.3). A nonlinear drift keeps the exact law away.
 #[test]
 fn commutative_noise_of_two_correlated_drivers() {
-    let drift = "X*(1 - X)";
+    let drift = "sin(X)";
     let planned = two(&state(
         "X",
         drift,
@@ -102,7 +102,7 @@ fn commutative_noise_of_two_correlated_drivers() {
 /// Noise (dW, x dB) does not commute: L^W b^B - L^B b^W = 1.
 #[test]
 fn noise_that_does_not_commute_falls_back_to_euler() {
-    let text = state("X", "-X^3", "W = \"1\"", "") + &state("Y", "0", "B = \"X\"", "");
+    let text = state("X", "sin(X)", "W = \"1\"", "") + &state("Y", "0", "B = \"X\"", "");
     let planned = two(&text);
     let group = only(&planned);
     assert_eq!(group.scheme, SchemeName::EulerMaruyama);
@@ -122,7 +122,8 @@ fn noise_that_does_not_commute_falls_back_to_euler() {
 
 #[test]
 fn additive_noise_has_order_one_without_a_milstein_term() {
-    let planned = two(&state("X", "X - X^3", "W = \"sigma\"", ""));
+    let asked = "scheme = \"milstein\"";
+    let planned = two(&state("X", "X - X^3", "W = \"sigma\"", asked));
     let group = only(&planned);
     assert_eq!(
         (group.scheme, group.strong_order),
