@@ -71,10 +71,14 @@ fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> St
              those of an explicit scheme diverge (Hutzenthaler, Jentzen and Kloeden 2012; Wang and Gan 2013 with \
              Milstein's term). Large steps slow a steep drift down: halve the step to see by how much."
         }
+        SchemeName::StrongTaylor15 if choice.additive => {
+            "The noise does not depend on the states: the strong Taylor scheme of order 1.5 needs no more than \
+             the increments of the drivers and their integrals over the step (Kloeden and Platen 1992, section \
+             10.4)."
+        }
         SchemeName::StrongTaylor15 => {
-            "The noise is additive or has one driver, so that the strong Taylor scheme of order 1.5 needs no more \
-             than the increments of the drivers and their integrals over the step (Kloeden and Platen 1992, \
-             section 10.4)."
+            "One driver: the strong Taylor scheme of order 1.5 needs no more than its increment and its \
+             integral over the step (Kloeden and Platen 1992, section 10.4)."
         }
         SchemeName::Milstein if choice.additive => {
             "The noise does not depend on the states: Milstein's term is zero, Milstein and Euler-Maruyama \

@@ -58,7 +58,6 @@ pub(super) fn settle(scalar: &Scalar<'_>, proved: &Proved) -> Result<(AtZero, bo
         (Bound::Closed(_), Some(AtEdge::Reflect)) => end.reflected(),
         (Bound::Closed(_), Some(AtEdge::AsEquation) | None) => end.by_the_equation(),
     }
-    .map(|(at_zero, leaves)| (at_zero, leaves))
 }
 
 /// The end of the domain at which the coordinate is zero.
