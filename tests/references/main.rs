@@ -2,6 +2,7 @@
 //! prices (C), exact discrete moments and strong errors of schemes (E). Each case names its source in `tests/reference/`.
 
 mod closed;
+mod ends;
 mod estimate;
 mod extrapolated;
 mod laws;

@@ -9,6 +9,7 @@ pub mod claims;
 pub mod commute;
 pub mod coordinate;
 pub mod dependence;
+pub mod end_rules;
 pub mod free;
 pub mod growth;
 pub mod limits;

@@ -3,18 +3,20 @@
 use std::collections::{BTreeMap, BTreeSet};
 use std::rc::Rc;
 
-use super::edges::Projection;
+use super::edges::{self, Projection};
 use super::step::{Frame, size, state_step};
 use super::{
     Coordinate, Group, Kind, Law, Method, Order, SchemeName, StateStep, overrides, reasons,
 };
+use crate::analysis::asymptotics::Side;
 use crate::analysis::commute::{Clash, clash};
 use crate::analysis::coordinate::through;
 use crate::analysis::dependence::{mentioned, sources};
+use crate::analysis::end_rules::{acting, ruled};
 use crate::analysis::free::kink_in;
 use crate::analysis::growth::{Growth, growth, pulls_inward};
 use crate::calculus::Dynamics;
-use crate::model::{AtEdge, Model};
+use crate::model::Model;
 use crate::symbolic::trace::Trace;
 use crate::symbolic::{Bound, Expr, Function, Symbol};
 
@@ -47,13 +49,20 @@ pub(super) struct Choice {
     pub(super) kink: Option<Function>,
     /// A state that is projected to its domain.
     pub(super) projected: bool,
-    /// A state that is absorbed or reflected.
+    /// A state that is absorbed or reflected, as far as that may happen.
     pub(super) ruled: bool,
     /// A drift grows faster than linearly, always inwards, and the noise is globally Lipschitz: what the
     /// tamed schemes are for.
     pub(super) tame: bool,
     /// The noise is additive or has one driver, and nothing is read whose own law is drawn exactly.
     pub(super) taylor: bool,
+}
+
+impl Choice {
+    /// Whether the component follows ordinary differential equations, and no rule of an end acts on it.
+    pub(super) fn is_flow(&self) -> bool {
+        self.deterministic && !self.ruled
+    }
 }
 
 impl Context<'_> {
@@ -144,7 +153,7 @@ impl Context<'_> {
             tame: self.is_tame(component),
             taylor: self.has_taylor(component),
         };
-        choice.scheme = if choice.deterministic {
+        choice.scheme = if choice.is_flow() {
             SchemeName::RungeKutta4
         } else if choice.projected {
             SchemeName::FullTruncationEuler
@@ -225,10 +234,11 @@ impl Context<'_> {
     }
 
     fn is_ruled(&self, state: usize) -> bool {
-        let declared = &self.model.states[state];
-        [declared.at_lower, declared.at_upper]
-            .iter()
-            .any(|rule| matches!(rule, Some(AtEdge::Absorb | AtEdge::Reflect)))
+        if self.calm[state] {
+            acting(self.model, self.dynamics, state).is_some()
+        } else {
+            ruled(self.model, state).next().is_some()
+        }
     }
 
     fn group(
@@ -277,7 +287,7 @@ impl Context<'_> {
             scheme,
             strong_order,
             weak_order,
-            preserves_domain: states.iter().all(|&i| self.preserves_domain(i)),
+            preserves_domain: states.iter().all(|&i| self.preserves_domain(i, &method)),
             reasons: reasons::why(self, choice, scheme, &states, &method),
             rejected: reasons::rejected(self, choice, scheme, &states),
             trace,
@@ -303,24 +313,18 @@ impl Context<'_> {
 
     /// Whether every step stays in the domain: the whole line, a coordinate whose inverse takes every
     /// number into the domain, a projection, or a rule at each finite end.
-    fn preserves_domain(&self, state: usize) -> bool {
-        let declared = &self.model.states[state];
+    fn preserves_domain(&self, state: usize, method: &Method) -> bool {
+        let domain = self.model.states[state].domain;
         let projection = self.projections[state];
-        let ruled = |rule: Option<AtEdge>| matches!(rule, Some(AtEdge::Absorb | AtEdge::Reflect));
-        let closed = |bound| matches!(bound, Bound::Closed(_));
-        let held = |bound: Bound, rule, projected: bool| {
-            bound.value().is_none() || (closed(bound) && (ruled(rule) || projected))
+        let stepped = matches!(method, Method::Step(_));
+        let forward = self.coordinates[state].forward;
+        let ruled = |side| stepped && edges::rule(self.model, state, forward, side).is_some();
+        let held = |bound: Bound, side, projected: bool| {
+            let closed = matches!(bound, Bound::Closed(_));
+            bound == Bound::Infinite || (closed && (projected || ruled(side)))
         };
-        let lower = held(
-            declared.domain.lower,
-            declared.at_lower,
-            projection.lower.is_some(),
-        );
-        let upper = held(
-            declared.domain.upper,
-            declared.at_upper,
-            projection.upper.is_some(),
-        );
+        let lower = held(domain.lower, Side::Lower, projection.lower.is_some());
+        let upper = held(domain.upper, Side::Upper, projection.upper.is_some());
         (lower && upper) || self.is_mapped(state)
     }
 }

@@ -2,7 +2,7 @@
 
 use super::{EdgeRule, SchemeName};
 use crate::analysis::asymptotics::{Leading, Side, at_end};
-use crate::analysis::coordinate::Candidate;
+use crate::analysis::boundary::{End, classify};
 use crate::analysis::limits::{Limit, limit};
 use crate::calculus::{Dynamics, covariation};
 use crate::model::{AtEdge, Model};
@@ -35,8 +35,14 @@ impl Projection {
 
 /// Which finite ends of a state's domain need the projection: closed ends at which the equation itself
 /// rules and has a drift, ends at which the noise vanishes like a root, so that the coefficients have no value
-/// beyond, and every finite end where full truncation was asked for.
-pub(super) fn projection(model: &Model, dynamics: &Dynamics, state: usize) -> Projection {
+/// beyond, and every finite end where full truncation was asked for. `calm`: nothing random reaches the
+/// state; it does not need one at an end that it does not reach.
+pub(super) fn projection(
+    model: &Model,
+    dynamics: &Dynamics,
+    state: usize,
+    calm: bool,
+) -> Projection {
     let declared = &model.states[state];
     let asked = matches!(declared.scheme, Some((SchemeName::FullTruncationEuler, _)));
     let end = |side: Side| {
@@ -44,6 +50,7 @@ pub(super) fn projection(model: &Model, dynamics: &Dynamics, state: usize) -> Pr
         let end = bound.value()?;
         let needed = match (bound, rule) {
             (Bound::Closed(_), Some(AtEdge::Absorb | AtEdge::Reflect)) => false,
+            _ if calm && classify(model, dynamics, state, side) == End::NotReached => false,
             (Bound::Closed(_), Some(AtEdge::AsEquation)) => has_drift(model, dynamics, state, side),
             (Bound::Closed(_), None) => vanishes(model, dynamics, state, end),
             _ => vanishes_like_root(model, dynamics, state, bound, side),
@@ -128,26 +135,50 @@ pub(super) fn image(model: &Model, state: usize, forward: Expr) -> Interval {
 pub(super) fn rules(
     model: &Model,
     state: usize,
-    coordinate: &Candidate,
+    forward: Expr,
 ) -> (Option<EdgeRule>, Option<EdgeRule>) {
     let pool = &model.pool;
-    let rule = |side: Side| {
-        let (bound, rule) = bound_and_rule(model, state, side);
-        let x = model.states[state].symbol;
-        let end = match limit(pool, coordinate.forward, x, Limit::Value(bound.value()?)) {
-            Limit::Value(end) => end,
-            _ => return None,
-        };
-        match rule? {
-            AtEdge::Absorb => Some(EdgeRule::Absorb { end }),
-            AtEdge::Reflect => Some(EdgeRule::Reflect { end }),
-            AtEdge::AsEquation => None,
-        }
-    };
-    let (lower, upper) = (rule(Side::Lower), rule(Side::Upper));
-    let slope = pool.derivative(coordinate.forward, model.states[state].symbol);
-    match pool.sign(slope) {
+    let (lower, upper) = (
+        rule(model, state, forward, Side::Lower),
+        rule(model, state, forward, Side::Upper),
+    );
+    match pool.sign(pool.derivative(forward, model.states[state].symbol)) {
         Sign::Negative | Sign::NonPositive => (upper, lower),
         _ => (lower, upper),
     }
+}
+
+/// The rule at an end of the state's domain, at the place that the end has in the coordinate; none where
+/// nothing is declared, the equation rules, or the coordinate is infinite there.
+pub(super) fn rule(model: &Model, state: usize, forward: Expr, side: Side) -> Option<EdgeRule> {
+    let (bound, rule) = bound_and_rule(model, state, side);
+    let x = model.states[state].symbol;
+    let Limit::Value(end) = limit(&model.pool, forward, x, Limit::Value(bound.value()?)) else {
+        return None;
+    };
+    match rule? {
+        AtEdge::Absorb => Some(EdgeRule::Absorb { end }),
+        AtEdge::Reflect => Some(EdgeRule::Reflect { end }),
+        AtEdge::AsEquation => None,
+    }
+}
+
+/// What is said of the finite ends of a state without noise that nothing keeps it from, one sentence for
+/// each that it is not proved to stay away from.
+pub(super) fn unguarded(model: &Model, dynamics: &Dynamics, state: usize) -> Vec<String> {
+    let name = &model.states[state].name;
+    let sides = [(Side::Lower, "lower"), (Side::Upper, "upper")];
+    let reached =
+        |(side, _): &(Side, &str)| classify(model, dynamics, state, *side) != End::NotReached;
+    sides
+        .into_iter()
+        .filter(reached)
+        .filter_map(|(side, word)| Some((word, bound_and_rule(model, state, side).0.value()?)))
+        .map(|(word, end)| {
+            let end = model.pool.format(end);
+            format!(
+                "The solution may take {name} beyond its {word} end {end}; paths found there are counted."
+            )
+        })
+        .collect()
 }

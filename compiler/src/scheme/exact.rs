@@ -1,23 +1,30 @@
 //! Groups stepped by their exact Gaussian transition.
 
+use super::edges;
 use super::{Becomes, Group, Kind, Law, LinearGaussian, Method, RowNoise, SchemeName};
 use crate::analysis::free::{Freedom, free_of};
 use crate::analysis::linear::{Row, Rows, components, reached};
-use crate::calculus::bracket;
+use crate::calculus::{Dynamics, bracket};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
 use crate::symbolic::{Bound, Expr};
 
 /// One group for each connected component of the states that have a row.
-pub(super) fn groups(model: &Model, rows: &Rows) -> Vec<Group> {
+pub(super) fn groups(model: &Model, dynamics: &Dynamics, rows: &Rows) -> Vec<Group> {
     let reached = reached(rows);
     components(model, rows)
         .into_iter()
-        .map(|states| group(model, rows, &reached, states))
+        .map(|states| group(model, dynamics, rows, &reached, states))
         .collect()
 }
 
-fn group(model: &Model, rows: &Rows, reached: &[bool], states: Vec<usize>) -> Group {
+fn group(
+    model: &Model,
+    dynamics: &Dynamics,
+    rows: &Rows,
+    reached: &[bool],
+    states: Vec<usize>,
+) -> Group {
     let members: Vec<(usize, &Row)> = states
         .iter()
         .filter_map(|&i| Some((i, rows[i].as_ref().ok()?)))
@@ -42,7 +49,13 @@ fn group(model: &Model, rows: &Rows, reached: &[bool], states: Vec<usize>) -> Gr
             linear_form(model, rows, row),
         );
     }
-    let reasons = reasons(model, rows, &members, law, system.moving);
+    let mut reasons = reasons(model, rows, &members, law, system.moving);
+    let confined = members.iter().filter(|(_, row)| !row.coordinate.onto_line);
+    let open: Vec<String> = confined
+        .flat_map(|&(i, _)| edges::unguarded(model, dynamics, i))
+        .collect();
+    let preserves_domain = open.is_empty();
+    reasons.extend(open);
     Group {
         states,
         kind: Kind::Exact,
@@ -51,7 +64,7 @@ fn group(model: &Model, rows: &Rows, reached: &[bool], states: Vec<usize>) -> Gr
         scheme: SchemeName::Exact,
         strong_order: None,
         weak_order: None,
-        preserves_domain: true,
+        preserves_domain,
         reasons,
         rejected: vec![(
             SchemeName::Milstein,

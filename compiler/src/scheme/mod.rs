@@ -41,8 +41,9 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     let excluded = overrides::excluded(model);
     let rows = linear::find(model, dynamics, &excluded);
     let laws = square_root::laws(model, dynamics, &rows, &excluded);
+    let calm = deterministic(model, dynamics);
     let steps: Vec<_> = (0..model.states.len())
-        .map(|i| step::step_coordinate(model, dynamics, i))
+        .map(|i| step::step_coordinate(model, dynamics, i, calm[i]))
         .collect();
     let coordinates: Vec<Coordinate> = rows
         .iter()
@@ -64,10 +65,10 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         coordinates: &coordinates,
         projections: &projections,
         traces: &traces,
-        calm: deterministic(model, dynamics),
+        calm,
         refusals: refusals(&rows, &laws),
     };
-    let mut groups = exact::groups(model, &rows);
+    let mut groups = exact::groups(model, dynamics, &rows);
     let found = laws
         .iter()
         .enumerate()

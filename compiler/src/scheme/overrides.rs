@@ -33,7 +33,7 @@ pub(super) fn honoured(model: &Model, state: usize, choice: &Choice) -> Option<S
             choice.kink.is_none() && choice.clash.is_none()
         }
         SchemeName::StrongTaylor15 => no_taylor(model, choice).is_none(),
-        SchemeName::RungeKutta4 => choice.deterministic,
+        SchemeName::RungeKutta4 => choice.is_flow(),
         SchemeName::FullTruncationEuler => truncates(model, state),
         _ => true,
     };
@@ -73,6 +73,9 @@ pub(super) fn check(
                 "{} is random; this scheme is for states that nothing random reaches",
                 state.name
             )),
+            SchemeName::RungeKutta4 => choices.get(&i).filter(|c| c.ruled).map(|_| {
+                "its slopes within a step do not see the end that absorbs or reflects".to_owned()
+            }),
             SchemeName::FullTruncationEuler if !has_finite_end(model, i) => Some(format!(
                 "the domain of {} has no finite end to truncate at",
                 state.name
@@ -83,7 +86,6 @@ pub(super) fn check(
             ),
             SchemeName::EulerMaruyama
             | SchemeName::TamedEuler
-            | SchemeName::RungeKutta4
             | SchemeName::FullTruncationEuler => None,
             _ => Some("it is not available for this model".to_owned()),
         };

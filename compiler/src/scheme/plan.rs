@@ -338,7 +338,8 @@ pub enum EdgeRule {
         /// The end, in the parameters.
         end: Expr,
     },
-    /// At a lower end: `e + |v - e|`; at an upper end: `e - |e - v|`.
+    /// At a lower end: `e + |v - e|`; at an upper end: `e - |e - v|`, before any absorption. Where both
+    /// ends reflect, what then lies below the lower one is put there.
     Reflect {
         /// The end, in the parameters.
         end: Expr,

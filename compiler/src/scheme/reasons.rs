@@ -37,7 +37,7 @@ pub(super) fn why(
         }
     }
     reasons.push(main_reason(context, choice, scheme));
-    reasons.extend(states.iter().flat_map(|&i| ends(context, i)));
+    reasons.extend(states.iter().flat_map(|&i| ends(context, i, method)));
     reasons.extend(regularity(context, choice, method));
     let exceeded = model.pool.exceeded().into_iter();
     reasons.extend(exceeded.map(|limit| format!("A budget was exceeded: {limit}.")));
@@ -56,6 +56,11 @@ fn no_law(model: &Model, state: usize, refusal: &str) -> Option<String> {
 
 fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> String {
     let text = match scheme {
+        SchemeName::RungeKutta4 if choice.projected => {
+            "Nothing random reaches these states, so that they follow ordinary differential equations: the \
+             classical fourth-order Runge-Kutta scheme. Coefficients are taken at the value projected to the \
+             domain, and the projected value is what is observed."
+        }
         SchemeName::RungeKutta4 => {
             "Nothing random reaches these states, so that they follow ordinary differential equations: the \
              classical fourth-order Runge-Kutta scheme."
@@ -107,7 +112,7 @@ fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> St
 }
 
 /// What happens at the ends of a state's domain.
-fn ends(context: &Context<'_>, state: usize) -> Vec<String> {
+fn ends(context: &Context<'_>, state: usize, method: &Method) -> Vec<String> {
     let declared = &context.model.states[state];
     let sides = [
         (
@@ -128,6 +133,12 @@ fn ends(context: &Context<'_>, state: usize) -> Vec<String> {
         let Some(end) = bound.value() else { continue };
         let (name, end) = (&declared.name, context.model.pool.format(end));
         match rule {
+            Some(AtEdge::Absorb | AtEdge::Reflect) if matches!(method, Method::RungeKutta4(_)) => {
+                found.push(format!(
+                    "{name} does not come to its {side} end {end}, so that nothing has to be done there; a step \
+                     that leads beyond it is counted."
+                ));
+            }
             Some(AtEdge::Absorb) => found.push(format!(
                 "A value of {name} at or beyond its {side} end {end} after a step is put there and stays; \
                  excursions within a step are not seen."
@@ -225,6 +236,10 @@ pub(super) fn rejected(
                 format!("{}: {refusal}", model.states[i].name),
             ));
         }
+    }
+    if choice.deterministic && choice.ruled {
+        let reason = "its slopes within a step do not see the end that absorbs or reflects";
+        found.push((SchemeName::RungeKutta4, reason.to_owned()));
     }
     if choice.deterministic || matches!(scheme, SchemeName::Milstein | SchemeName::StrongTaylor15) {
         return found;

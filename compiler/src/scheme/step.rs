@@ -25,11 +25,13 @@ pub(super) fn coordinate(state: usize, candidate: &Candidate, process: Process) 
 }
 
 /// The coordinate a one-step scheme works in: the author's, else the state itself, projected to its
-/// domain where its coefficients need that. Also Ito's rule on it, where it was needed.
+/// domain where its coefficients need that. Also Ito's rule on it, where it was needed. `calm`: nothing
+/// random reaches the state.
 pub(super) fn step_coordinate(
     model: &Model,
     dynamics: &Dynamics,
     state: usize,
+    calm: bool,
 ) -> (Coordinate, Projection, Trace) {
     let declared = &model.states[state];
     let own = dynamics.states[state].clone();
@@ -46,7 +48,7 @@ pub(super) fn step_coordinate(
         );
     }
     let mut identity = Candidate::identity(&model.pool, declared);
-    let projection = edges::projection(model, dynamics, state);
+    let projection = edges::projection(model, dynamics, state, calm);
     if !projection.is_none() {
         // The stored value may lie beyond the domain, so that its symbol must not have the state's range.
         identity.symbol = auxiliary(&model.pool, &declared.name);
@@ -90,13 +92,7 @@ pub(super) fn state_step(
     scheme: SchemeName,
 ) -> StateStep {
     let state = coordinate.state;
-    let candidate = Candidate {
-        symbol: coordinate.symbol,
-        forward: coordinate.forward,
-        inverse: coordinate.inverse,
-        onto_line: false,
-    };
-    let (lower, upper) = edges::rules(model, state, &candidate);
+    let (lower, upper) = edges::rules(model, state, coordinate.forward);
     let process = &coordinate.process;
     StateStep {
         state,

@@ -1,5 +1,6 @@
 //! How the states of a model are stepped: exact laws found, schemes chosen, ends of domains.
 
+mod calm;
 mod catalogue;
 mod ends;
 mod exact_laws;

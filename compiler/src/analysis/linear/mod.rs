@@ -16,6 +16,7 @@ mod row;
 use std::collections::BTreeMap;
 
 use super::coordinate::Candidate;
+use super::end_rules::acting;
 use crate::calculus::{Dynamics, Process};
 use crate::model::Model;
 use crate::symbolic::Expr;
@@ -51,7 +52,8 @@ pub fn find(model: &Model, dynamics: &Dynamics, excluded: &BTreeMap<usize, Strin
     let mut finder = Finder::new(model, dynamics, excluded);
     loop {
         let rows = finder.settle();
-        match confined(model, &rows) {
+        let found = confined(model, &rows).or_else(|| stopped(model, dynamics, &rows));
+        match found {
             Some((state, reason)) => finder.exclude(state, reason),
             None => return rows,
         }
@@ -133,4 +135,26 @@ fn confined(model: &Model, rows: &Rows) -> Option<(usize, String)> {
             model.states[state].name
         ),
     ))
+}
+
+/// A state without noise whose closed end has a rule that may act: the solution of the equation is its
+/// path only until then.
+fn stopped(model: &Model, dynamics: &Dynamics, rows: &Rows) -> Option<(usize, String)> {
+    let reached = reached(rows);
+    rows.iter().enumerate().find_map(|(i, row)| {
+        let row = row.as_ref().ok()?;
+        if reached[i] || row.coordinate.onto_line {
+            return None;
+        }
+        let rule = acting(model, dynamics, i)?;
+        let (name, end) = (&model.states[i].name, model.pool.format(rule.end));
+        let what = if rule.absorbs { "absorbs" } else { "reflects" };
+        Some((
+            i,
+            format!(
+                "the end {end} of the domain of {name} {what}, and {name} may come to it: the solution of the \
+                 equation holds only until then"
+            ),
+        ))
+    })
 }

@@ -5,6 +5,8 @@
 use std::collections::BTreeMap;
 
 use crate::analysis::asymptotics::Side;
+use crate::analysis::end_rules::starts_off;
+use crate::analysis::linear::{self, Rows};
 use crate::analysis::{assume, boundary};
 use crate::calculus::Dynamics;
 use crate::model::{AtEdge, Model};
@@ -36,6 +38,27 @@ pub fn edge(model: &Model, dynamics: &Dynamics, state: usize) -> Edge {
     ))
 }
 
+/// The largest linear Gaussian system whose law holds at all times. A state that nothing random reaches
+/// may have a row although its domain is not the whole line; its solution is known only until it comes
+/// to an end that does not keep it.
+pub(super) fn rows_that_hold(model: &Model, dynamics: &Dynamics) -> Rows {
+    let mut excluded = BTreeMap::new();
+    loop {
+        let rows = linear::find(model, dynamics, &excluded);
+        let lost = rows.iter().enumerate().find(|(i, row)| {
+            row.as_ref().is_ok_and(|row| !row.coordinate.onto_line)
+                && edge(model, dynamics, *i) > Edge::KeptInside
+        });
+        match lost {
+            Some((i, _)) => {
+                let reason = format!("{} may leave its domain", model.states[i].name);
+                excluded.insert(i, reason)
+            }
+            None => return rows,
+        };
+    }
+}
+
 /// Whether a formula and its first two derivatives in a state have values at the finite ends of the
 /// state's domain, so that Ito's rule holds there too.
 pub fn is_smooth_at_ends(model: &Model, state: usize, formula: Expr) -> bool {
@@ -65,10 +88,12 @@ fn at_end(
     };
     let class = boundary::classify(model, dynamics, state, side);
     match (class, end) {
-        (boundary::End::NotReached, _) => Edge::NeverReached,
+        (boundary::End::NotReached, end) if !stays_from_start(model, state, side, end, at) => {
+            Edge::NeverReached
+        }
         (boundary::End::Reached, None) => Edge::Left,
         // Explosion is not excluded here but by the growth of the coefficients, where that matters.
-        (boundary::End::Undecided(_), None) => Edge::NeverReached,
+        (boundary::End::NotReached | boundary::End::Undecided(_), None) => Edge::NeverReached,
         (class, Some(end)) => {
             let kept = kept_inside(model, dynamics, state, side, end, at);
             match (kept, class) {
@@ -77,6 +102,17 @@ fn at_end(
             }
         }
     }
+}
+
+/// Whether the state may start on an end that absorbs.
+fn stays_from_start(
+    model: &Model,
+    state: usize,
+    side: Side,
+    end: Option<Expr>,
+    at: Option<AtEdge>,
+) -> bool {
+    at == Some(AtEdge::Absorb) && end.is_some_and(|end| !starts_off(model, state, side, end))
 }
 
 /// Whether the coefficients keep the process inside at an end that it may reach: no noise there, and

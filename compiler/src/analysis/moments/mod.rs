@@ -27,7 +27,6 @@ pub use edges::{Edge, edge, is_smooth_at_ends};
 pub use law::{LawName, NormalLaw};
 pub use square_root::{Atom, MarginalLaw, SquareRootLaw};
 
-use super::linear;
 use super::square_root::{Finding, SquareRoot, find};
 use crate::calculus::{Dynamics, Expansion};
 use crate::model::Model;
@@ -76,7 +75,7 @@ impl Moments {
     /// The moments of a model with its Ito dynamics. Laws are facts of the model: the schemes an author
     /// asks for do not matter here.
     pub fn new(model: &Model, dynamics: &Dynamics) -> Self {
-        let found = linear::find(model, dynamics, &BTreeMap::new());
+        let found = edges::rows_that_hold(model, dynamics);
         let exact: Vec<usize> = (0..found.len()).filter(|&i| found[i].is_ok()).collect();
         let place = |state: usize| exact.binary_search(&state).ok();
         let rows = exact

@@ -182,18 +182,27 @@ impl Lowering<'_> {
         increment
     }
 
+    /// Reflection first: what a long step throws across the whole domain is then stopped at the other end.
     fn at_edges(&mut self, step: &StateStep, mut value: ValueId) -> ValueId {
         let current = self.current(step.state);
-        for (rule, upper) in [(step.lower, false), (step.upper, true)] {
-            value = match rule {
-                None => value,
-                Some(EdgeRule::Absorb { end }) => {
-                    let end = self.in_step(end);
-                    let stopped = self.beyond(value, end, upper, (end, value));
-                    self.beyond(current, end, upper, (end, stopped))
-                }
-                Some(EdgeRule::Reflect { end }) => self.reflected(value, end, upper),
-            };
+        let rules = [(step.lower, false), (step.upper, true)];
+        for (rule, upper) in rules {
+            if let Some(EdgeRule::Reflect { end }) = rule {
+                value = self.reflected(value, end, upper);
+            }
+        }
+        if let (Some(EdgeRule::Reflect { end }), Some(EdgeRule::Reflect { .. })) =
+            (step.lower, step.upper)
+        {
+            let end = self.in_step(end);
+            value = self.beyond(value, end, false, (end, value));
+        }
+        for (rule, upper) in rules {
+            if let Some(EdgeRule::Absorb { end }) = rule {
+                let end = self.in_step(end);
+                let stopped = self.beyond(value, end, upper, (end, value));
+                value = self.beyond(current, end, upper, (end, stopped));
+            }
         }
         value
     }
