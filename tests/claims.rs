@@ -8,11 +8,12 @@ use driftwright_tests::harness::values::{model_names, read};
 const OPEN: [(&str, &str); 1] = [("sluice_level", "noise")];
 
 /// Models that must be stepped by an exact law alone.
-const EXACT: [&str; 15] = [
+const EXACT: [&str; 16] = [
     "barley_two_factor",
     "cider_forward",
     "cooling_kiln",
     "ferry_currency",
+    "fog_buoy",
     "glacier_melt",
     "harbour_account",
     "harbour_toll",

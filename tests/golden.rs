@@ -46,10 +46,11 @@ const RUST: [&str; 4] = [
 ];
 
 /// Models whose step program is kept: what must not change unnoticed, since it decides every bit.
-const PROGRAMS: [&str; 5] = [
+const PROGRAMS: [&str; 6] = [
     "models/orchard_spot.toml",
     "models/twin_orchards.toml",
     "models/honey_market.toml",
+    "models/fog_buoy.toml",
     "models/peat_season.toml",
     "tests/fixtures/models/seasons.toml",
 ];

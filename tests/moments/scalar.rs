@@ -136,3 +136,63 @@ pub(crate) fn sluice_level(p: &Values, at: At) -> Expected {
         ("square", squared_normal(p.get("H0"), variance)),
     ]
 }
+
+/// A Brownian motion of either drift, each with its probability, and the distance of a drifted Brownian motion in three
+/// dimensions: its square's moments given the cosine of the first angle, which follows the law of von Mises & Fisher
+/// (Mardia & Jupp 2000, section 9.3), its own by quadrature of the transition density (Rogers & Pitman 1981).
+pub(crate) fn fog_buoy(p: &Values, at: At) -> Expected {
+    let (x0, m, s2) = (p.get("X0"), p.get("m"), p.get("s").powi(2));
+    let up = 1.0 / (1.0 + (-2.0 * (m * x0 / s2 + p.get("c"))).exp());
+    let variance = s2 * at.time;
+    let sides = [(up, x0 + m * at.time), (1.0 - up, x0 - m * at.time)];
+    let raw = |n: i32| {
+        let moment = |mean: f64| match n {
+            1 => mean,
+            2 => mean * mean + variance,
+            _ => mean.powi(3) + 3.0 * mean * variance,
+        };
+        sides.iter().map(|&(w, mean)| w * moment(mean)).sum()
+    };
+    // E[(X - K)^+] = E[(K - X)^+] + E[X] - K.
+    let level = 2.0 * x0;
+    let found = sides
+        .iter()
+        .map(|&(w, mean)| w * (bachelier_put(mean, variance, level) + mean - level))
+        .sum();
+    let (r0, v, sigma2) = (p.get("R0"), p.get("v"), p.get("sigma").powi(2));
+    let k = v * r0 / sigma2;
+    let spread = sigma2 * at.time;
+    let cosine = 1.0 / k.tanh() - 1.0 / k;
+    let far = (v * at.time).powi(2);
+    let square = r0 * r0 + 3.0 * spread + far + 2.0 * v * at.time * r0 * cosine;
+    // |c|^2 of the vector's mean c has the variance of 2 v t r0 cos; a noncentral square adds its own.
+    let cosine_2 = 1.0 - 2.0 * cosine / k;
+    let between = (2.0 * v * at.time * r0).powi(2) * (cosine_2 - cosine * cosine);
+    let within = 6.0 * spread * spread + 4.0 * spread * (square - 3.0 * spread);
+    let distance = drifted_distance(r0, v, sigma2, at.time);
+    vec![
+        ("X", Moments::from_raw([raw(1), raw(2), raw(3)])),
+        ("found", Moments::mean(found)),
+        ("square", Moments::two(square, within + between)),
+        ("R", distance),
+    ]
+}
+
+/// Moments of a Bessel process with drift by the trapezoid rule over its transition density.
+fn drifted_distance(r0: f64, v: f64, sigma2: f64, t: f64) -> Moments {
+    let (k, spread) = (v / sigma2, (sigma2 * t).sqrt());
+    let reach = r0 + v * t + 12.0 * spread;
+    let parts = 200_000;
+    let step = reach / f64::from(parts);
+    let mut raw = [0.0; 3];
+    for i in 1..parts {
+        let y = f64::from(i) * step;
+        let killed = density((y - r0) / spread) - density((y + r0) / spread);
+        let tilt = (k * y).sinh() / (k * r0).sinh() * (-v * v * t / (2.0 * sigma2)).exp();
+        let weight = killed / spread * tilt * step;
+        for (power, sum) in raw.iter_mut().enumerate() {
+            *sum += weight * y.powi(power as i32 + 1);
+        }
+    }
+    Moments::from_raw(raw)
+}

@@ -1,6 +1,7 @@
 //! The reference values in scope against the compiler and its simulators: transition laws (B), closed-form
 //! prices (C), exact discrete moments and strong errors of schemes (E). Each case names its source in `tests/reference/`.
 
+mod catalogue;
 mod closed;
 mod ends;
 mod estimate;
@@ -8,6 +9,7 @@ mod extrapolated;
 mod laws;
 mod model;
 mod prices;
+mod random_drift;
 mod rates;
 mod schemes;
 mod square_root;

@@ -16,5 +16,7 @@ pub mod limits;
 pub mod linear;
 pub mod moments;
 mod noise;
+pub mod random_drift;
 pub mod sample;
+pub mod scalar;
 pub mod square_root;

@@ -1,8 +1,9 @@
 //! How each state is stepped, why, and what was rejected.
 //!
 //! [`plan`] first looks for the largest linear Gaussian system ([`crate::analysis::linear`]) and steps it
-//! by its exact law, then for states that are square-root processes by themselves
-//! ([`crate::analysis::square_root`]), whose transition is noncentral chi-square. What is left is stepped by the scheme of highest strong order that its noise
+//! by its exact law, then for states that have a law of their own: square-root processes
+//! ([`crate::analysis::square_root`]), whose transition is noncentral chi-square, and Brownian motions with a
+//! random drift ([`crate::analysis::random_drift`]). What is left is stepped by the scheme of highest strong order that its noise
 //! allows: Milstein where the noise commutes, Euler-Maruyama where it does not, Euler with full
 //! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
@@ -12,7 +13,9 @@ mod edges;
 mod exact;
 mod noise;
 mod overrides;
+mod own_law;
 mod plan;
+mod random_drift;
 mod reasons;
 mod square_root;
 mod step;
@@ -20,7 +23,6 @@ mod warn;
 
 use crate::analysis::dependence::deterministic;
 use crate::analysis::linear;
-use crate::analysis::square_root::SquareRoot;
 use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostics;
 use crate::model::Model;
@@ -28,7 +30,8 @@ use crate::model::Model;
 pub use crate::model::SchemeName;
 pub use plan::{
     Becomes, Component, Coordinate, EdgeRule, Group, Kind, Law, LinearGaussian, Method,
-    NoiseComponent, NoisePlan, Order, Plan, RowNoise, SquareRootStep, StateStep, Taylor,
+    NoiseComponent, NoisePlan, Order, Plan, RandomDriftStep, RowNoise, SquareRootStep, StateStep,
+    Taylor,
 };
 
 /// Plans how the states of a model are stepped.
@@ -40,7 +43,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     closed_ends::warn(model, dynamics, diagnostics);
     let excluded = overrides::excluded(model);
     let rows = linear::find(model, dynamics, &excluded);
-    let laws = square_root::laws(model, dynamics, &rows, &excluded);
+    let laws = own_law::laws(model, dynamics, &rows, &excluded);
     let calm = deterministic(model, dynamics);
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| step::step_coordinate(model, dynamics, i, calm[i]))
@@ -52,7 +55,10 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         .enumerate()
         .map(|(i, ((row, law), step))| match (row, law) {
             (Ok(row), _) => step::coordinate(i, &row.coordinate, row.process.clone()),
-            (_, Ok(law)) => step::coordinate(i, &law.coordinate, law.process.clone()),
+            (_, Ok(law)) => {
+                let (candidate, process) = law.coordinate();
+                step::coordinate(i, candidate, process.clone())
+            }
             _ => step.0.clone(),
         })
         .collect();
@@ -69,10 +75,11 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         refusals: refusals(&rows, &laws),
     };
     let mut groups = exact::groups(model, dynamics, &rows);
+    let frame = step::Frame::new(model, &coordinates);
     let found = laws
         .iter()
         .enumerate()
-        .filter_map(|(i, law)| Some(square_root::group(model, i, law.as_ref().ok()?)));
+        .filter_map(|(i, law)| Some(law.as_ref().ok()?.group(model, &frame, i)));
     groups.extend(found);
     let choices = context.choices();
     groups.extend(context.groups(&choices));
@@ -90,7 +97,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
 /// Per state, why it has no exact law; none where it has one.
 fn refusals(
     rows: &linear::Rows,
-    laws: &[Result<SquareRoot, Option<String>>],
+    laws: &[Result<own_law::OwnLaw, Option<String>>],
 ) -> Vec<Option<String>> {
     let refusal = |(row, law): (&Result<linear::Row, String>, _)| match (row, law) {
         (Ok(_), _) | (_, &Ok(_)) => None,

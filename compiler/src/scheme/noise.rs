@@ -61,7 +61,7 @@ fn reads_increment(pool: &Pool, group: &Group, driver: usize) -> bool {
             .iter()
             .zip(&system.c)
             .any(|(&noise, c)| noise == RowNoise::Increments && present(c[driver])),
-        Method::RungeKutta4(_) | Method::SquareRoot(_) => false,
+        Method::RungeKutta4(_) | Method::SquareRoot(_) | Method::RandomDrift(_) => false,
     }
 }
 

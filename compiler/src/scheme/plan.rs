@@ -5,6 +5,7 @@
 use std::fmt;
 
 use super::SchemeName;
+use crate::analysis::random_drift::Shape;
 use crate::analysis::square_root::AtZero;
 use crate::calculus::Process;
 use crate::symbolic::trace::Trace;
@@ -130,6 +131,15 @@ pub enum Law {
     /// The law of a square-root process that stays at 0 once there, or a monotone image of it: an atom, and
     /// a density beside it.
     AbsorbedNoncentralChiSquare,
+    /// One state, up to an affine map one of two normal variables of the same variance.
+    GaussianMixture,
+    /// A monotone image of such a variable.
+    TransformedGaussianMixture,
+    /// One state, up to an affine map the distance of a three-dimensional Brownian motion with drift from where it
+    /// started.
+    BesselWithDrift,
+    /// A monotone image of such a distance.
+    TransformedBesselWithDrift,
     /// No randomness.
     Deterministic,
 }
@@ -145,6 +155,10 @@ impl Law {
             Self::NoncentralChiSquare => "noncentral_chi_square",
             Self::TransformedNoncentralChiSquare => "transformed_noncentral_chi_square",
             Self::AbsorbedNoncentralChiSquare => "absorbed_noncentral_chi_square",
+            Self::GaussianMixture => "gaussian_mixture",
+            Self::TransformedGaussianMixture => "transformed_gaussian_mixture",
+            Self::BesselWithDrift => "bessel_with_drift",
+            Self::TransformedBesselWithDrift => "transformed_bessel_with_drift",
             Self::Deterministic => "deterministic",
         }
     }
@@ -161,6 +175,10 @@ pub enum Becomes {
     LinearGaussianSystem,
     /// dy = (level - rate y) dt + s sqrt(y) dW with one coordinate.
     SquareRoot,
+    /// du = m tanh(m u/s^2 + c) dt + s dW with one coordinate: a drift of m or -m, nobody knows which.
+    RandomDrift,
+    /// du = m coth(m u/s^2) dt + s dW with one coordinate: the distance of a drifted Brownian motion in three dimensions.
+    BesselWithDrift,
     /// A linear differential equation without noise.
     Deterministic,
 }
@@ -173,6 +191,8 @@ impl Becomes {
             Self::OrnsteinUhlenbeck => "ornstein_uhlenbeck",
             Self::LinearGaussianSystem => "linear_gaussian_system",
             Self::SquareRoot => "square_root",
+            Self::RandomDrift => "brownian_motion_with_random_drift",
+            Self::BesselWithDrift => "bessel_with_drift",
             Self::Deterministic => "deterministic",
         }
     }
@@ -236,6 +256,8 @@ pub enum Method {
     LinearGaussian(LinearGaussian),
     /// The exact transition of a square-root process.
     SquareRoot(SquareRootStep),
+    /// The exact transition of a Brownian motion with a random drift, or of its distance from the start.
+    RandomDrift(RandomDriftStep),
     /// A one-step scheme that reads increments of the drivers: Euler-Maruyama, Milstein, full truncation.
     Step(Vec<StateStep>),
     /// Classical Runge-Kutta over the step, all states of the group together: the drift of each
@@ -278,6 +300,21 @@ pub struct SquareRootStep {
     pub at_zero: AtZero,
     /// What is known of the signs of `dimension`, `dimension - 1` and `dimension - 2`.
     pub against: [Sign; 3],
+}
+
+/// `du = f dt + s dW` with `s^2 f' + f^2 = m^2`, `s` and `m` free of states and time.
+#[derive(Clone, Debug)]
+pub struct RandomDriftStep {
+    /// The state, by its index in the model.
+    pub state: usize,
+    /// `f` there, in the coordinate.
+    pub drift: Expr,
+    /// `m` there, not negative.
+    pub speed: Expr,
+    /// `s^2` there.
+    pub square: Expr,
+    /// Whether the coordinate lives on the line or on the half line from 0.
+    pub shape: Shape,
 }
 
 /// Where the Gaussian part of a row of a linear Gaussian system comes from.

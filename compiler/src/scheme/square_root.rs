@@ -1,37 +1,9 @@
 //! Groups of one state stepped by its noncentral chi-square transition.
 
-use std::collections::BTreeMap;
-
 use super::{Becomes, Group, Kind, Law, Method, SchemeName, SquareRootStep};
-use crate::analysis::linear::Rows;
-use crate::analysis::square_root::{AtZero, Finding, SquareRoot, entangled, find};
-use crate::calculus::Dynamics;
+use crate::analysis::square_root::{AtZero, SquareRoot};
 use crate::model::Model;
 use crate::symbolic::{Expr, Sign};
-
-/// For each state without a Gaussian coordinate its square-root law, or why there is none. `excluded` are
-/// left out: the author has asked for another scheme.
-pub(super) fn laws(
-    model: &Model,
-    dynamics: &Dynamics,
-    rows: &Rows,
-    excluded: &BTreeMap<usize, String>,
-) -> Vec<Result<SquareRoot, Option<String>>> {
-    let law = |state: usize| {
-        if rows[state].is_ok() || excluded.contains_key(&state) {
-            return Err(None);
-        }
-        match find(model, dynamics, state) {
-            Finding::Other => Err(None),
-            Finding::Refused(reason) => Err(Some(reason)),
-            Finding::Law(law) => match entangled(model, dynamics, state) {
-                Some(reason) => Err(Some(reason)),
-                None => Ok(*law),
-            },
-        }
-    };
-    (0..model.states.len()).map(law).collect()
-}
 
 /// The group of a state with a square-root law.
 pub(super) fn group(model: &Model, state: usize, law: &SquareRoot) -> Group {

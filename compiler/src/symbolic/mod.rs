@@ -21,6 +21,7 @@ mod evaluate;
 mod expand;
 mod facts;
 mod function;
+mod hyperbolic;
 mod inequality;
 mod invert;
 mod limit;

@@ -4,6 +4,7 @@ mod calm;
 mod catalogue;
 mod ends;
 mod exact_laws;
+mod random_drift;
 mod schemes;
 mod square_root;
 mod support;

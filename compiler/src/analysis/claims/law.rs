@@ -20,9 +20,7 @@ impl Court<'_> {
         } else if claimed == LawName::TransformedNormal.name() && is_monotone_image(law) {
             let reason = format!("{found}, a monotone image of a normal law");
             self.result(claim, Verdict::Proved, reason)
-        } else if claimed == LawName::TransformedNoncentralChiSquare.name()
-            && law == LawName::NoncentralChiSquare
-        {
+        } else if own_image(law).is_some_and(|image| image.name() == claimed) {
             let reason = format!("{found}, which is its own monotone image");
             self.result(claim, Verdict::Proved, reason)
         } else if claimed == "joint_normal" {
@@ -37,4 +35,14 @@ impl Court<'_> {
 /// Whether the law is that of a strictly monotone function of a normal variable.
 fn is_monotone_image(law: LawName) -> bool {
     matches!(law, LawName::Normal | LawName::Lognormal)
+}
+
+/// The name of the monotone images of a law that is an affine image of one that is not Gaussian.
+fn own_image(law: LawName) -> Option<LawName> {
+    match law {
+        LawName::NoncentralChiSquare => Some(LawName::TransformedNoncentralChiSquare),
+        LawName::GaussianMixture => Some(LawName::TransformedGaussianMixture),
+        LawName::BesselWithDrift => Some(LawName::TransformedBesselWithDrift),
+        _ => None,
+    }
 }

@@ -24,6 +24,14 @@ pub enum LawName {
     /// A monotone function of a square-root process that stays at 0 once there: an atom, and a density
     /// beside it.
     AbsorbedNoncentralChiSquare,
+    /// An affine function of a variable that is one of two normal ones of the same variance.
+    GaussianMixture,
+    /// Another strictly monotone function of such a variable.
+    TransformedGaussianMixture,
+    /// An affine function of the distance of a three-dimensional Brownian motion with drift from where it started.
+    BesselWithDrift,
+    /// Another strictly monotone function of such a distance.
+    TransformedBesselWithDrift,
 }
 
 impl LawName {
@@ -37,6 +45,10 @@ impl LawName {
             Self::NoncentralChiSquare => "noncentral_chi_square",
             Self::TransformedNoncentralChiSquare => "transformed_noncentral_chi_square",
             Self::AbsorbedNoncentralChiSquare => "absorbed_noncentral_chi_square",
+            Self::GaussianMixture => "gaussian_mixture",
+            Self::TransformedGaussianMixture => "transformed_gaussian_mixture",
+            Self::BesselWithDrift => "bessel_with_drift",
+            Self::TransformedBesselWithDrift => "transformed_bessel_with_drift",
         }
     }
 }

@@ -14,9 +14,12 @@ mod equations;
 mod exp_poly;
 mod gaussian;
 mod growth;
+mod image;
 mod integrability;
 mod kinks;
 mod law;
+mod marginal;
+mod random_drift;
 mod square_root;
 mod tilting;
 
@@ -25,7 +28,7 @@ use std::collections::BTreeMap;
 
 pub use edges::{Edge, edge, is_smooth_at_ends};
 pub use law::{LawName, NormalLaw};
-pub use square_root::{Atom, MarginalLaw, SquareRootLaw};
+pub use marginal::{Atom, ImageLaw, MarginalLaw};
 
 use super::square_root::{Finding, SquareRoot, find};
 use crate::calculus::{Dynamics, Expansion};
@@ -35,6 +38,7 @@ use coordinates::{Change, Chart};
 use equations::Equations;
 use gaussian::{Gaussian, GaussianRow, covariance_symbol, mean_symbol};
 use kinks::Kinks;
+use random_drift::Drifts;
 use tilting::Tilted;
 
 /// Moment equations are no longer set up once the moments of a model have taken this many formulas.
@@ -66,6 +70,8 @@ pub struct Moments {
     changes: Vec<Change>,
     /// Per state its law as a square-root process by itself, where it is one.
     square_roots: Vec<Option<Box<SquareRoot>>>,
+    /// The states that are Brownian motions with a random drift, beside the Gaussian ones.
+    drifts: Drifts,
     means: RefCell<BTreeMap<Expr, Option<Moment>>>,
     /// How many formulas the model had before any moment was sought.
     before: usize,
@@ -103,7 +109,10 @@ impl Moments {
                 Finding::Refused(_) | Finding::Other => None,
             }
         };
-        let square_roots = (0..found.len()).map(square_root).collect();
+        let square_roots: Vec<_> = (0..found.len()).map(square_root).collect();
+        let gaussian = Gaussian::new(rows.collect());
+        let others = (0..found.len()).filter(|&i| found[i].is_err() && square_roots[i].is_none());
+        let drifts = Drifts::find(model, dynamics, &gaussian, others);
         let rest = (0..found.len()).filter(|&i| found[i].is_err());
         let changes = rest
             .filter_map(|state| Change::through(model, state))
@@ -111,9 +120,10 @@ impl Moments {
         Self {
             model: model.clone(),
             dynamics: dynamics.clone(),
-            gaussian: Gaussian::new(rows.collect()),
+            gaussian,
             changes,
             square_roots,
+            drifts,
             means: RefCell::default(),
             before: model.pool.node_count(),
         }
@@ -187,7 +197,9 @@ impl Moments {
     ) -> Option<f64> {
         if let Some(expectation) = self.expectation(formula) {
             let rows = self.rows_of(formula);
-            let mut at = self.gaussian.numbers(&self.model, &rows, values, t)?;
+            let mut at = self
+                .system(formula)
+                .numbers(&self.model, &rows, values, t)?;
             at.extend(values.iter().map(|(&s, &v)| (s, v)));
             at.insert(self.model.time, t);
             return self.model.pool.eval_f64(expectation, &at);
@@ -270,22 +282,30 @@ impl Moments {
         pool.simplify(value)
     }
 
+    /// The Gaussian system that a formula is read in: with the coordinates of states that have a random drift where
+    /// one occurs.
+    fn system(&self, formula: Expr) -> &Gaussian {
+        match self.drifts.occur(&self.model, formula) {
+            true => &self.drifts.system,
+            false => &self.gaussian,
+        }
+    }
+
     fn gaussian_mean(&self, formula: Expr) -> Option<Moment> {
         let pool = &self.model.pool;
         let expectation = self.expectation(formula)?;
-        let rows = self.rows_of(formula);
+        let (rows, system) = (self.rows_of(formula), self.system(formula));
         let wanted = pool.symbols_of(expectation);
         let mut map = BTreeMap::new();
         for (n, &i) in rows.iter().enumerate() {
-            let symbol = mean_symbol(pool, &self.gaussian.rows[i]);
+            let symbol = mean_symbol(pool, &system.rows[i]);
             if wanted.contains(&symbol) {
-                map.insert(symbol, self.gaussian.mean(&self.model, i)?);
+                map.insert(symbol, system.mean(&self.model, i)?);
             }
             for &j in &rows[n..] {
-                let symbol =
-                    covariance_symbol(pool, &self.gaussian.rows[i], &self.gaussian.rows[j]);
+                let symbol = covariance_symbol(pool, &system.rows[i], &system.rows[j]);
                 if wanted.contains(&symbol) {
-                    map.insert(symbol, self.gaussian.covariance(&self.model, i, j)?);
+                    map.insert(symbol, system.covariance(&self.model, i, j)?);
                 }
             }
         }
@@ -298,6 +318,9 @@ impl Moments {
 
     /// `E[formula]` in the symbols that stand for means and covariances of the Gaussian coordinates.
     fn expectation(&self, formula: Expr) -> Option<Expr> {
+        if self.drifts.occur(&self.model, formula) {
+            return self.drifts.expectation(&self.model, formula);
+        }
         if let Some(read) = Tilted::read(&self.model, &self.gaussian, formula) {
             return Some(read.expectation(&self.model.pool, &self.gaussian));
         }
@@ -307,17 +330,18 @@ impl Moments {
 
     /// The Gaussian coordinates of the states in a formula, ascending.
     fn rows_of(&self, formula: Expr) -> Vec<usize> {
-        let pool = &self.model.pool;
+        let (pool, rows) = (&self.model.pool, &self.system(formula).rows);
         let occurs =
             |row: &GaussianRow| pool.depends_on(formula, self.model.states[row.state].symbol);
-        (0..self.gaussian.rows.len())
-            .filter(|&i| occurs(&self.gaussian.rows[i]))
-            .collect()
+        (0..rows.len()).filter(|&i| occurs(&rows[i])).collect()
     }
 
     /// The name of the law behind a formula of Gaussian coordinates.
     fn source_of(&self, formula: Expr, rows: &[usize]) -> String {
         let pool = &self.model.pool;
+        if let Some(name) = self.drifts.source(&self.model, formula) {
+            return name.to_owned();
+        }
         let states = pool
             .symbols_of(formula)
             .into_iter()

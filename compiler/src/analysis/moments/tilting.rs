@@ -150,7 +150,7 @@ impl Monomial {
         (self.powers.values().sum::<u32>() <= HIGHEST_POWER).then_some(self)
     }
 
-    fn expectation(&self, pool: &Pool, gaussian: &Gaussian) -> Expr {
+    pub(super) fn expectation(&self, pool: &Pool, gaussian: &Gaussian) -> Expr {
         let mean = |i: usize| pool.var(mean_symbol(pool, &gaussian.rows[i]));
         let covariance = |i: usize, j: usize| {
             let (i, j) = (i.min(j), i.max(j));

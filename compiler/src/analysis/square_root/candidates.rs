@@ -6,8 +6,8 @@
 //! Lamperti's drift along the noise, a square-root process has `k1 = -A/w^2 + B` in `w = 2 sqrt(y)/s`, so that
 //! `w = -3 k2/k3` with `k2`, `k3` its next two derivatives along the noise: no antiderivative is needed.
 
-use super::Scalar;
 use crate::analysis::coordinate::Candidate;
+use crate::analysis::scalar::{LARGEST, Scalar};
 use crate::symbolic::{Bound, Expr, Interval, Pool, Sign, Symbol, SymbolKind};
 
 /// Candidates, the simplest first.
@@ -172,7 +172,7 @@ impl<'a> Search<'a> {
         let ratio = p.simplify(p.div(slope, inner));
         let square = p.mul(p.int(9), p.square(ratio));
         let forward = p.simplify(p.div(square, self.scalar.square));
-        if p.size(forward) > super::LARGEST {
+        if p.size(forward) > LARGEST {
             return None;
         }
         let inverse = p.invert(forward, self.x, self.y)?;

@@ -14,19 +14,15 @@ mod candidates;
 mod zero;
 
 use super::coordinate::Candidate;
-use super::dependence::mentioned;
 use super::free::{Freedom, free_of};
-use super::limits::{Limit, limit};
+use super::scalar::Scalar;
 use super::{assume, sample};
-use crate::calculus::{Dynamics, Process, bracket, covariation, expand};
+use crate::calculus::{Dynamics, Process, bracket, expand};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Bound, Expr, Sign};
+use crate::symbolic::{Expr, Sign};
 
 pub use zero::AtZero;
-
-/// Formulas larger than this are not searched: their derivatives would take too long.
-const LARGEST: usize = 400;
 
 /// A state that is a square-root process in a coordinate.
 #[derive(Clone, Debug)]
@@ -114,7 +110,7 @@ pub enum Finding {
 
 /// Looks for a coordinate in which a state is a square-root process by itself.
 ///
-/// Whether other states share its noise is another question: see [`entangled`].
+/// Whether other states share its noise is another question: see [`entangled`](super::scalar::entangled).
 pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding {
     let Some(scalar) = Scalar::read(model, dynamics, state) else {
         return Finding::Other;
@@ -125,7 +121,9 @@ pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding {
     let Some(proved) = found.next() else {
         return Finding::Other;
     };
-    if let Some(reason) = scalar.other_coordinate(&proved) {
+    if let Some(reason) =
+        scalar.other_coordinate(proved.coordinate.forward, "a square-root process")
+    {
         return Finding::Refused(reason);
     }
     match zero::settle(&scalar, &proved) {
@@ -144,91 +142,7 @@ pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding {
     }
 }
 
-/// Why a state's own law is not enough: another state has a driver that is one of its drivers or
-/// correlated with one, and a chi-square draw gives no increments of drivers.
-pub fn entangled(model: &Model, dynamics: &Dynamics, state: usize) -> Option<String> {
-    let pool = &model.pool;
-    let drivers = |i: usize| {
-        let noise = &dynamics.states[i].diffusion;
-        (0..noise.len()).filter(|&j| !pool.is_zero_literal(noise[j]))
-    };
-    let meet = |other: usize| {
-        drivers(state)
-            .any(|j| drivers(other).any(|k| !pool.is_zero_literal(model.correlation[j][k])))
-    };
-    let other = (0..model.states.len()).find(|&i| i != state && meet(i))?;
-    let (name, other) = (&model.states[state].name, &model.states[other].name);
-    Some(format!(
-        "{name} by itself has a noncentral chi-square transition, but its noise is shared or correlated with \
-         that of {other}, and no exact joint transition of both is known"
-    ))
-}
-
-/// A state whose coefficients hold nothing but itself and parameters.
-struct Scalar<'a> {
-    model: &'a Model,
-    state: usize,
-    drift: Expr,
-    /// The square of the noise per unit of time.
-    square: Expr,
-}
-
-impl<'a> Scalar<'a> {
-    fn read(model: &'a Model, dynamics: &Dynamics, state: usize) -> Option<Self> {
-        let pool = &model.pool;
-        let drift = pool.simplify(dynamics.states[state].drift);
-        let square = pool.simplify(covariation(model, &dynamics.states, state, state));
-        let own = |e: Expr| {
-            mentioned(model, e).iter().all(|&j| j == state)
-                && !pool.depends_on(e, model.time)
-                && pool.has_kink(e).is_none()
-                && pool.size(e) <= LARGEST
-        };
-        let noisy = !pool.is_zero_literal(square);
-        (noisy && own(drift) && own(square)).then_some(Self {
-            model,
-            state,
-            drift,
-            square,
-        })
-    }
-
-    /// A formula that is free of the state.
-    fn constant(&self, e: Expr) -> Option<Expr> {
-        let x = self.model.states[self.state].symbol;
-        match free_of(&self.model.pool, e, &[x]) {
-            Freedom::Free(value) => Some(value),
-            Freedom::DependsOn(_) | Freedom::CannotTell(_) => None,
-        }
-    }
-
-    /// A coordinate's limits at the lower and the upper end of the state's domain.
-    fn ends(&self, forward: Expr) -> [Limit; 2] {
-        let declared = &self.model.states[self.state];
-        let at = |bound: Bound, infinite: Limit| {
-            let place = bound.value().map_or(infinite, Limit::Value);
-            limit(&self.model.pool, forward, declared.symbol, place)
-        };
-        [
-            at(declared.domain.lower, Limit::MinusInfinity),
-            at(declared.domain.upper, Limit::PlusInfinity),
-        ]
-    }
-
-    /// Whether the domain is mapped onto the half line from 0, and one to one.
-    fn onto_half_line(&self, forward: Expr) -> bool {
-        let pool = &self.model.pool;
-        let x = self.model.states[self.state].symbol;
-        let zero = |l: Limit| matches!(l, Limit::Value(v) if pool.is_zero(v).is_yes());
-        let ends = match self.ends(forward) {
-            [lower, upper] if zero(lower) => upper.is_infinite(),
-            [lower, upper] if zero(upper) => lower.is_infinite(),
-            _ => false,
-        };
-        let slope = pool.sign(pool.simplify(pool.derivative(forward, x)));
-        ends && (slope.is_non_negative() || slope.is_non_positive())
-    }
-
+impl Scalar<'_> {
     /// Proves that a candidate follows a square-root equation, by Ito's rule and the zero test.
     fn prove(&self, dynamics: &Dynamics, coordinate: Candidate) -> Option<Proved> {
         let (model, pool) = (self.model, &self.model.pool);
@@ -269,25 +183,6 @@ impl<'a> Scalar<'a> {
             square,
             dimension,
         })
-    }
-
-    /// Why the author's `through` asks for something else; none where it is the coordinate up to a factor.
-    fn other_coordinate(&self, proved: &Proved) -> Option<String> {
-        let pool = &self.model.pool;
-        let declared = &self.model.states[self.state];
-        let asked = declared.through.as_ref()?;
-        if self
-            .constant(pool.div(asked.expr, proved.coordinate.forward))
-            .is_some()
-        {
-            return None;
-        }
-        Some(format!(
-            "{} is a square-root process and would be stepped exactly without `through`: its law is drawn in \
-             that coordinate, not in `{}`",
-            pool.format(proved.coordinate.forward),
-            asked.text
-        ))
     }
 }
 

@@ -7,10 +7,11 @@
 //! drift is infinite at 0, is by definition the root of its square, which is reflected. The equation of a
 //! constant-elasticity price has neither, and both processes satisfy it.
 
-use super::{Proved, Scalar, against, margin};
+use super::{Proved, against, margin};
 use crate::analysis::assume;
 use crate::analysis::asymptotics::{Leading, Side, at_end};
 use crate::analysis::limits::Limit;
+use crate::analysis::scalar::Scalar;
 use crate::model::AtEdge;
 use crate::symbolic::{Bound, Expr, Rational, Sign};
 

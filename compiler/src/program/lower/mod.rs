@@ -9,6 +9,8 @@ mod constructor;
 mod exact;
 mod noise;
 mod observe;
+mod own_draws;
+mod random_drift;
 mod rows;
 mod runge_kutta;
 mod square_root;
@@ -230,6 +232,10 @@ impl<'a> Lowering<'a> {
                 }
                 Method::SquareRoot(step) => {
                     let value = self.square_root_state(step);
+                    next.insert(step.state, value);
+                }
+                Method::RandomDrift(step) => {
+                    let value = self.random_drift_state(step);
                     next.insert(step.state, value);
                 }
                 Method::Step(steps) => {

@@ -51,7 +51,7 @@ impl Lowering<'_> {
         let rest = self.rest(step, &coefficients, current);
         let part = self.shifted_normal(step, &coefficients, current);
         let shape = self.shape(step, &coefficients, rest);
-        let gamma = self.other_draw(step, DrawLaw::Gamma, "gamma", shape);
+        let gamma = self.other_draw(step.state, DrawLaw::Gamma, "gamma", shape);
         let mut value = match part {
             Some(part) => self.builder.mul_add(coefficients.scale, gamma, part),
             None => self.builder.mul(coefficients.scale, gamma),
@@ -174,7 +174,7 @@ impl Lowering<'_> {
         let shape = self.builder.sub(one, part);
         let shape = self.builder.binary(BinaryOp::Max, shape, zero);
         let shape = self.choose(coefficients.absorbing, shape, zero);
-        let threshold = self.other_draw(step, DrawLaw::Gamma, "absorption", shape);
+        let threshold = self.other_draw(step.state, DrawLaw::Gamma, "absorption", shape);
         self.builder.sub(half, threshold)
     }
 
@@ -189,7 +189,7 @@ impl Lowering<'_> {
             return None;
         }
         let [zero, weight] = [0.0, 0.5].map(|n| self.builder.number(n));
-        let normal = self.independent_normal(step.state);
+        let normal = self.own_normal(step.state, None);
         let variance = self.builder.mul(coefficients.scale, weight);
         let deviation = self.builder.sqrt(variance);
         let left = self.builder.mul(current, coefficients.decay);
@@ -219,36 +219,11 @@ impl Lowering<'_> {
             _ => self.builder.binary(BinaryOp::Max, rest, zero),
         };
         let mean = self.choose(coefficients.shifted, zero, mean);
-        let count = self.other_draw(step, DrawLaw::Poisson, "poisson", mean);
+        let count = self.other_draw(step.state, DrawLaw::Poisson, "poisson", mean);
         let half = self.builder.mul(coefficients.dimension, weight);
         let reflected = self.builder.add(count, half);
         let absorbed = self.builder.add(count, one);
         let counted = self.choose(coefficients.absorbing, absorbed, reflected);
         self.choose(coefficients.shifted, beside_normal, counted)
-    }
-
-    /// A standard normal number of the state's own, beside the Gaussian vector of the plan.
-    fn independent_normal(&mut self, state: usize) -> ValueId {
-        let name = format!("law:{}", self.model.states[state].name);
-        let source = self.plan.noise.components.len() + self.normals.len();
-        let draw = self.builder.noise(source);
-        self.builder.hint(draw, format!("draw_{name}"));
-        self.normals.push(name);
-        draw
-    }
-
-    /// A draw of a state's own from another law.
-    fn other_draw(
-        &mut self,
-        step: &SquareRootStep,
-        law: DrawLaw,
-        purpose: &str,
-        parameter: ValueId,
-    ) -> ValueId {
-        let name = &self.model.states[step.state].name;
-        let draw = self.builder.other_draw(law, self.draws.len(), parameter);
-        self.builder.hint(draw, format!("{purpose}_{name}"));
-        self.draws.push(format!("law:{name}:{purpose}"));
-        draw
     }
 }

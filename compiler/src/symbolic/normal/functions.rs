@@ -45,12 +45,9 @@ impl Normalizer<'_> {
         };
         let one = p.one();
         let half = p.ratio(1, 2);
-        let exp = |sign: i64| p.exp(p.mul(p.int(sign), x));
         let root = |sign: i64| p.sqrt(p.add(p.square(x), p.int(sign)));
         Some(match function {
-            Sinh => p.mul(half, p.sub(exp(1), exp(-1))),
-            Cosh => p.mul(half, p.add(exp(1), exp(-1))),
-            Tanh => p.div(p.sub(exp(2), one), p.add(exp(2), one)),
+            Sinh | Cosh | Tanh => p.hyperbolic(function, x)?,
             Asinh => p.log(p.add(x, root(1))),
             Acosh => p.log(p.add(x, root(-1))),
             Atanh => p.mul(half, p.sub(p.log(p.add(one, x)), p.log(p.sub(one, x)))),
