@@ -39,6 +39,12 @@ impl Candidate {
         }
     }
 
+    /// Whether the coordinate is an affine function of the state `x`.
+    pub fn is_affine(&self, pool: &Pool, x: Symbol) -> bool {
+        let slope = pool.derivative(self.forward, x);
+        matches!(free_of(pool, slope, &[x]), Freedom::Free(_))
+    }
+
     /// Whether the coordinate is the state itself.
     pub fn is_identity(&self) -> bool {
         self.forward == self.inverse

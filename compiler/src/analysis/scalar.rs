@@ -10,6 +10,27 @@ use crate::symbolic::{Bound, Expr};
 /// Formulas larger than this are not searched: their derivatives would take too long.
 pub(super) const LARGEST: usize = 400;
 
+/// What a search for a law of one state found.
+#[derive(Clone, Debug)]
+pub enum Finding<L> {
+    /// Its law.
+    Law(Box<L>),
+    /// It has a law of the kind in a coordinate, but is not to be stepped by it; why.
+    Refused(String),
+    /// No coordinate was found in which it has.
+    Other,
+}
+
+impl<L> Finding<L> {
+    /// The law, if there is one.
+    pub fn law(self) -> Option<Box<L>> {
+        match self {
+            Self::Law(law) => Some(law),
+            Self::Refused(_) | Self::Other => None,
+        }
+    }
+}
+
 /// A state whose coefficients hold nothing but itself and parameters.
 pub(super) struct Scalar<'a> {
     pub(super) model: &'a Model,

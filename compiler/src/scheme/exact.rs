@@ -111,7 +111,10 @@ fn is_moving(model: &Model, members: &[(usize, &Row)]) -> bool {
 
 /// The law of the states themselves, given that their coordinates are Gaussian.
 fn law(model: &Model, members: &[(usize, &Row)]) -> Law {
-    let affine = members.iter().all(|&(i, row)| is_affine(model, i, row));
+    let affine = members.iter().all(|&(i, row)| {
+        row.coordinate
+            .is_affine(&model.pool, model.states[i].symbol)
+    });
     match members {
         [_] if affine => Law::Normal,
         [(i, row)] if is_log(model, *i, row) => Law::Lognormal,
@@ -126,12 +129,6 @@ fn becomes(members: &[(usize, &Row)]) -> Becomes {
         [_] => Becomes::OrnsteinUhlenbeck,
         _ => Becomes::LinearGaussianSystem,
     }
-}
-
-fn is_affine(model: &Model, state: usize, row: &Row) -> bool {
-    let x = model.states[state].symbol;
-    let slope = model.pool.derivative(row.coordinate.forward, x);
-    matches!(free_of(&model.pool, slope, &[x]), Freedom::Free(_))
 }
 
 /// Whether the coordinate is an affine function of log(x) on the positive half line.

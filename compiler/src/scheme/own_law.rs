@@ -5,10 +5,9 @@ use std::collections::BTreeMap;
 use super::{Group, random_drift, square_root};
 use crate::analysis::coordinate::Candidate;
 use crate::analysis::linear::Rows;
-use crate::analysis::random_drift::RandomDrift;
-use crate::analysis::scalar::entangled;
-use crate::analysis::square_root::SquareRoot;
-use crate::analysis::{random_drift as drifts, square_root as roots};
+use crate::analysis::random_drift::{RandomDrift, find as random_drift_law};
+use crate::analysis::scalar::{Finding, entangled};
+use crate::analysis::square_root::{SquareRoot, find as square_root_law};
 use crate::calculus::{Dynamics, Process};
 use crate::model::Model;
 
@@ -71,14 +70,14 @@ pub(super) fn laws(
 }
 
 fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Result<OwnLaw, Option<String>> {
-    match roots::find(model, dynamics, state) {
-        roots::Finding::Law(law) => return Ok(OwnLaw::SquareRoot(law)),
-        roots::Finding::Refused(reason) => return Err(Some(reason)),
-        roots::Finding::Other => {}
+    match square_root_law(model, dynamics, state) {
+        Finding::Law(law) => return Ok(OwnLaw::SquareRoot(law)),
+        Finding::Refused(reason) => return Err(Some(reason)),
+        Finding::Other => {}
     }
-    match drifts::find(model, dynamics, state) {
-        drifts::Finding::Law(law) => Ok(OwnLaw::RandomDrift(law)),
-        drifts::Finding::Refused(reason) => Err(Some(reason)),
-        drifts::Finding::Other => Err(None),
+    match random_drift_law(model, dynamics, state) {
+        Finding::Law(law) => Ok(OwnLaw::RandomDrift(law)),
+        Finding::Refused(reason) => Err(Some(reason)),
+        Finding::Other => Err(None),
     }
 }

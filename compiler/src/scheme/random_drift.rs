@@ -13,7 +13,9 @@ pub(super) fn group(model: &Model, frame: &Frame<'_>, state: usize, law: &Random
     for (note, formula) in transition(model, law) {
         trace.push("transition law", note, None, formula);
     }
-    let affine = law.is_affine(model, state);
+    let affine = law
+        .coordinate
+        .is_affine(&model.pool, model.states[state].symbol);
     let (becomes, name) = match (law.shape, affine) {
         (Shape::Line, true) => (Becomes::RandomDrift, Law::GaussianMixture),
         (Shape::Line, false) => (Becomes::RandomDrift, Law::TransformedGaussianMixture),

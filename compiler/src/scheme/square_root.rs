@@ -43,11 +43,17 @@ fn name(model: &Model, state: usize, law: &SquareRoot) -> Option<Law> {
     // A law that is stopped has its name also where some parameter values keep it from zero.
     let stopped = (law.at_zero == AtZero::Absorbed).then_some(true);
     let atom = law.has_atom(model).or(stopped)?;
-    Some(match (atom, law.is_affine(model, state)) {
-        (true, _) => Law::AbsorbedNoncentralChiSquare,
-        (false, true) => Law::NoncentralChiSquare,
-        (false, false) => Law::TransformedNoncentralChiSquare,
-    })
+    Some(
+        match (
+            atom,
+            law.coordinate
+                .is_affine(&model.pool, model.states[state].symbol),
+        ) {
+            (true, _) => Law::AbsorbedNoncentralChiSquare,
+            (false, true) => Law::NoncentralChiSquare,
+            (false, false) => Law::TransformedNoncentralChiSquare,
+        },
+    )
 }
 
 /// The law over a time t as formulas: the coordinate is `scale` times a noncentral chi-square variable.

@@ -209,6 +209,18 @@ fn what_is_not_one_is_not_called_one() {
 }
 
 #[test]
+fn a_start_on_an_absorbing_end_is_not_left() {
+    let start = |initial: &str| {
+        let text = format!(
+            "{PARAMETERS}[states.x]\ninitial = \"{initial}\"\ndrift = \"mu/tanh(mu*x)\"\ndiffusion = {{ W = \"1\" }}\n\
+             domain = \"[0, inf)\"\nat_edge = \"absorb\"\n"
+        );
+        only(&plan(&text)).is_exact()
+    };
+    assert!(start("k") && !start("k - k") && !start("max(q, 0)"));
+}
+
+#[test]
 fn the_authors_coordinate_is_taken_where_it_serves() {
     let drift = "x*(mu*tanh(mu*log(x)) + 1/2)";
     let served = planned(drift, "x", HALF, "through = \"2*log(x) + 1\"");

@@ -30,7 +30,7 @@ pub use edges::{Edge, edge, is_smooth_at_ends};
 pub use law::{LawName, NormalLaw};
 pub use marginal::{Atom, ImageLaw, MarginalLaw};
 
-use super::square_root::{Finding, SquareRoot, find};
+use super::square_root::{SquareRoot, find};
 use crate::calculus::{Dynamics, Expansion};
 use crate::model::Model;
 use crate::symbolic::{Expr, Limit, Symbol};
@@ -104,10 +104,7 @@ impl Moments {
             if found[state].is_ok() {
                 return None;
             }
-            match find(model, dynamics, state) {
-                Finding::Law(law) => Some(law),
-                Finding::Refused(_) | Finding::Other => None,
-            }
+            find(model, dynamics, state).law()
         };
         let square_roots: Vec<_> = (0..found.len()).map(square_root).collect();
         let gaussian = Gaussian::new(rows.collect());

@@ -14,7 +14,7 @@ use super::gaussian::{Gaussian, GaussianRow, covariance_symbol, mean_symbol};
 use super::kinks::Kinks;
 use super::tilting::{Monomial, Tilted};
 use super::{ImageLaw, LawName, Moments};
-use crate::analysis::random_drift::{Finding, RandomDrift, Shape, find};
+use crate::analysis::random_drift::{RandomDrift, Shape, find};
 use crate::analysis::scalar::entangled;
 use crate::calculus::Dynamics;
 use crate::model::Model;
@@ -46,7 +46,7 @@ impl Drifts {
         let mut rows = gaussian.rows.clone();
         let mut found = Vec::new();
         for state in states {
-            let Finding::Law(law) = find(model, dynamics, state) else {
+            let Some(law) = find(model, dynamics, state).law() else {
                 continue;
             };
             if entangled(model, dynamics, state, "").is_some() {
@@ -196,7 +196,10 @@ impl Moments {
         let state = self.only_state(formula)?;
         let law = self.random_drift_of(state)?;
         let (image, affine) = self.image(formula, state, law.coordinate.forward)?;
-        let affine = affine || law.is_affine(&self.model, state);
+        let affine = affine
+            || law
+                .coordinate
+                .is_affine(&self.model.pool, self.model.states[state].symbol);
         let name = match (law.shape, affine) {
             (Shape::Line, true) => LawName::GaussianMixture,
             (Shape::Line, false) => LawName::TransformedGaussianMixture,

@@ -22,7 +22,13 @@ impl Moments {
         let law = self.square_root_of(state)?;
         let (image, affine) = self.image(formula, state, law.coordinate.forward)?;
         Some(ImageLaw {
-            name: self.square_root_name(law, affine || law.is_affine(&self.model, state)),
+            name: self.square_root_name(
+                law,
+                affine
+                    || law
+                        .coordinate
+                        .is_affine(&self.model.pool, self.model.states[state].symbol),
+            ),
             ..image
         })
     }

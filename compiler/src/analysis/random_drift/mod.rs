@@ -18,9 +18,9 @@
 mod candidates;
 
 use super::coordinate::Candidate;
-use super::free::{Freedom, free_of};
+use super::end_rules::{Ruled, ruled, starts_off};
 use super::sample;
-use super::scalar::Scalar;
+use super::scalar::{Finding, Scalar};
 use crate::calculus::{Dynamics, Process, bracket, expand};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
@@ -55,13 +55,6 @@ pub struct RandomDrift {
 }
 
 impl RandomDrift {
-    /// Whether the coordinate is an affine function of the state.
-    pub fn is_affine(&self, model: &Model, state: usize) -> bool {
-        let x = model.states[state].symbol;
-        let slope = model.pool.derivative(self.coordinate.forward, x);
-        matches!(free_of(&model.pool, slope, &[x]), Freedom::Free(_))
-    }
-
     /// `(m + f)/(2 m)` and `(m - f)/(2 m)`, in the state: the weights with which Gaussian laws of the drifts `m` and
     /// `-m` make up the law, the second negative on the half line.
     pub fn weights(&self, model: &Model) -> [Expr; 2] {
@@ -75,21 +68,10 @@ impl RandomDrift {
     }
 }
 
-/// What was found of a state.
-#[derive(Clone, Debug)]
-pub enum Finding {
-    /// Its law.
-    Law(Box<RandomDrift>),
-    /// It has such a law in a coordinate, but is not to be stepped in it; why.
-    Refused(String),
-    /// No coordinate was found in which it has.
-    Other,
-}
-
 /// Looks for a coordinate in which a state has such a law by itself.
 ///
 /// Whether other states share its noise is another question: see [`entangled`](super::scalar::entangled).
-pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding {
+pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding<RandomDrift> {
     let Some(scalar) = Scalar::read(model, dynamics, state) else {
         return Finding::Other;
     };
@@ -124,7 +106,7 @@ impl Scalar<'_> {
         let u = coordinate.forward;
         let fits = match shape {
             Shape::Line => self.onto_line(u),
-            Shape::HalfLine => self.onto_half_line(u),
+            Shape::HalfLine => self.onto_half_line(u) && !self.may_stay_at_start(),
         };
         if !fits {
             return None;
@@ -165,6 +147,12 @@ impl Scalar<'_> {
             speed,
             shape,
         })
+    }
+
+    /// Whether the state may start on an end that absorbs.
+    fn may_stay_at_start(&self) -> bool {
+        let off = |rule: &Ruled| starts_off(self.model, self.state, rule.side, rule.end);
+        ruled(self.model, self.state).any(|rule| rule.absorbs && !off(&rule))
     }
 
     /// A formula as a constant that may be positive and is never negative.

@@ -14,8 +14,7 @@ mod candidates;
 mod zero;
 
 use super::coordinate::Candidate;
-use super::free::{Freedom, free_of};
-use super::scalar::Scalar;
+use super::scalar::{Finding, Scalar};
 use super::{assume, sample};
 use crate::calculus::{Dynamics, Process, bracket, expand};
 use crate::model::Model;
@@ -71,13 +70,6 @@ impl SquareRoot {
             }
         }
     }
-
-    /// Whether the coordinate is an affine function of the state.
-    pub fn is_affine(&self, model: &Model, state: usize) -> bool {
-        let x = model.states[state].symbol;
-        let slope = model.pool.derivative(self.coordinate.forward, x);
-        matches!(free_of(&model.pool, slope, &[x]), Freedom::Free(_))
-    }
 }
 
 /// `4 level - n s^2`, which has the sign of `dimension - n`.
@@ -97,21 +89,10 @@ fn against(model: &Model, level: Expr, square: Expr, n: i64) -> Sign {
     assume::sign(model, pool.simplify(pool.sub(dimension, pool.int(n))))
 }
 
-/// What was found of a state.
-#[derive(Clone, Debug)]
-pub enum Finding {
-    /// Its law.
-    Law(Box<SquareRoot>),
-    /// It is a square-root process in a coordinate, but its law is not settled; why.
-    Refused(String),
-    /// No coordinate was found in which it is one.
-    Other,
-}
-
 /// Looks for a coordinate in which a state is a square-root process by itself.
 ///
 /// Whether other states share its noise is another question: see [`entangled`](super::scalar::entangled).
-pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding {
+pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding<SquareRoot> {
     let Some(scalar) = Scalar::read(model, dynamics, state) else {
         return Finding::Other;
     };
