@@ -5,7 +5,7 @@
 use std::collections::BTreeMap;
 
 use crate::common::{Equations, Shape, at, close, compiled, derived};
-use driftwright::calculus::Expansion;
+use driftwright::calculus::{Expansion, System};
 use driftwright::pipeline::Compiled;
 use driftwright::symbolic::Expr;
 use serde::Deserialize;
@@ -145,6 +145,14 @@ fn itos_rule_gives_the_reference_drifts_and_diffusions() {
         for j in 0..diffusion.len() {
             let want = derived(&compiled, &format!("want_b{j}"));
             same("diffusion", expansion.diffusion[j], want);
+        }
+        let system = System::of(&compiled.model, &compiled.dynamics);
+        let generator = system.generator(expansion.formula);
+        same("generator", generator, expansion.drift);
+        let noise = system.noise(expansion.formula);
+        assert_eq!(noise.len(), expansion.diffusion.len(), "{}", case.id);
+        for (got, want) in noise.into_iter().zip(&expansion.diffusion) {
+            same("noise", got, *want);
         }
         failures.extend(at_points(&case, &compiled, expansion));
     }

@@ -4,3 +4,4 @@ mod claims;
 mod common;
 mod ito;
 mod moments;
+mod working;

@@ -36,6 +36,8 @@ mod rules;
 mod shape;
 mod split;
 mod squarefree;
+#[cfg(test)]
+mod tests;
 
 use std::collections::BTreeMap;
 use std::rc::Rc;

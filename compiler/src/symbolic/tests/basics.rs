@@ -46,6 +46,20 @@ fn printing_reads_as_written() {
         (p.sub(x, p.ratio(1, 20)), "X - 0.05"),
         (p.mul(p.ratio(1, 3), x), "X/3"),
         (p.pow(p.exp(x), p.int(2)), "exp(2*X)"),
+        (p.pow(p.exp(x), mu), "exp(mu*X)"),
+        (p.pow(p.sqrt(x), mu), "sqrt(X)^mu"),
+        (p.pow(p.square(x), half), "sqrt(X^2)"),
+        (p.sqrt(p.mul(p.int(4), x)), "2*sqrt(X)"),
+        (p.pow(p.pow(x, mu), p.int(3)), "X^(3*mu)"),
+        (p.pow(p.int(10), p.int(20)), "100000000000000000000"),
+        (p.pow(p.ratio(2, 3), p.int(-2)), "9/4"),
+        (
+            p.sum([p.pow(x, p.int(3)), p.square(x), x, t, mu]),
+            "mu + t + X + X^2 + X^3",
+        ),
+        (p.add(p.div(mu, x), p.square(x)), "mu/X + X^2"),
+        (p.sub(p.neg(x), mu), "-mu - X"),
+        (p.neg(p.add(x, mu)), "-(mu + X)"),
         (
             p.call(Function::Max, &[p.sub(x, p.int(40)), p.zero()]),
             "max(X - 40, 0)",
@@ -54,6 +68,18 @@ fn printing_reads_as_written() {
     for (e, text) in cases {
         assert_eq!(p.format(e), text);
     }
+}
+
+/// Neither proved nor refuted, and no budget is to blame.
+#[test]
+fn what_is_open_exceeds_no_budget() {
+    let p = super::pool();
+    let (a, b) = (parse(&p, "log(x^2)"), parse(&p, "2*log(x)"));
+    assert_eq!(p.equal(a, b), Truth::CannotTell);
+    assert!(p.exceeded().is_empty());
+    // Beyond what double precision shows, and still seen.
+    let near = p.add(a, p.pow(p.int(10), p.int(-25)));
+    assert!(p.equal(a, near).is_no());
 }
 
 /// Beyond double precision there are no literals: a power stays one, other numbers are put together.

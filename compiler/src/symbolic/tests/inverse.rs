@@ -1,7 +1,7 @@
 //! Inverse functions and polynomial coefficients.
 
 use super::{parse, pool};
-use crate::symbolic::{Pool, SymbolKind};
+use crate::symbolic::{Bound, Interval, Pool, SymbolKind};
 
 /// `forward => inverse` in the auxiliary symbol `h`, for the unknown named first.
 const INVERSES: &str = "
@@ -23,6 +23,21 @@ w: w^2 => -sqrt(h)
 S: S^2 + S => (sqrt(4*h + 1) - 1)/2
 u: atanh(u) => tanh(h)
 S: S - 1/S => (h + sqrt(h^2 + 4))/2
+x: 1/x => 1/h
+w: 1/w^2 => -1/sqrt(h)
+w: w^4 => -h^(1/4)
+S: S^4 => h^(1/4)
+x: cbrt(x) => h^3
+x: 3^x => log(h)/log(3)
+x: atan(x) => tan(h)
+u: acos(u) => cos(h)
+S: cosh(S) => acosh(h)
+x: erf(x) => normal_quantile((h + 1)/2)/sqrt(2)
+u: u^2 - 2*u => 1 - sqrt(h + 1)
+S: 2*S^2 + S => (sqrt(8*h + 1) - 1)/4
+S: S^2/2 + S + 5 => sqrt(2*h - 9) - 1
+S: 1/(S^2 + S) => (sqrt(4/h + 1) - 1)/2
+x: (2*x + 1)/(3*x + 4) => (4*h - 1)/(2 - 3*h)
 ";
 
 fn solved(pool: &Pool, line: &str) -> (String, String) {
@@ -59,9 +74,53 @@ fn what_is_not_one_to_one_has_no_inverse() {
         "x: x + exp(x) => none",
         "x: x^2 + x => none",
         "x: abs(x) => none",
+        "x: cosh(x) => none",
+        "x: x^4 => none",
+        "x: 1/x^2 => none",
+        "x: x^3 - x => none",
+        "x: tan(x) => none",
+        "x: cos(x) => none",
     ] {
         let (found, expected) = solved(&pool, line);
         assert_eq!(found, expected, "{line}");
+    }
+}
+
+/// A circular function has an inverse on its principal interval (Abramowitz and Stegun 1964, 4.4.4-4.4.6),
+/// none on a longer one or another.
+#[test]
+fn circular_functions_are_inverted_on_their_principal_interval() {
+    for (forward, lower, upper, expected) in [
+        ("sin(x)", "-pi/2", "pi/2", "asin(h)"),
+        ("sin(x)", "0", "3/2", "asin(h)"),
+        ("sin(2*x)", "-pi/4", "pi/4", "asin(h)/2"),
+        ("sin(x)", "0", "pi", "none"),
+        ("sin(x)", "-pi", "0", "none"),
+        ("sin(x)", "0", "2", "none"),
+        ("sin(x)", "-2", "0", "none"),
+        ("sin(x)", "pi/2", "pi", "none"),
+        ("cos(x)", "0", "pi", "acos(h)"),
+        ("cos(x)", "1", "3", "acos(h)"),
+        ("cos(x)", "-1", "1", "none"),
+        ("cos(x)", "0", "4", "none"),
+        ("cos(x)", "-3", "-1", "none"),
+        ("tan(x)", "-pi/2", "pi/2", "atan(h)"),
+        ("tan(x)", "-1", "3/2", "atan(h)"),
+        ("tan(x)", "0", "2", "none"),
+        ("tan(x)", "-2", "0", "none"),
+    ] {
+        let pool = Pool::new();
+        let x = pool.symbol("x", SymbolKind::State);
+        let bounds = [lower, upper].map(|text| Bound::Open(parse(&pool, text)));
+        let [lower, upper] = bounds;
+        pool.set_range(x, Interval { lower, upper });
+        let (found, _) = solved(&pool, &format!("x: {forward} => "));
+        assert_eq!(
+            found,
+            expected,
+            "{forward} on {:?}",
+            bounds.map(|b| b.value().map(|e| pool.format(e)))
+        );
     }
 }
 

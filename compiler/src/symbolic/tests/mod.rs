@@ -1,13 +1,24 @@
 //! Tests of the formula algebra.
 
+mod balls;
 mod basics;
 mod budgets;
+mod derivatives;
+mod enclosures;
 mod equations;
 mod inequalities;
+mod intervals;
 mod inverse;
+mod parts;
+mod precise;
+mod probing;
+mod programs;
 mod properties;
 mod shapes;
+mod signs;
 mod soundness;
+mod structure;
+mod undoing;
 
 use crate::front::formula::parse_in_pool;
 use crate::symbolic::{Bound, Expr, Interval, Pool, SymbolKind};
