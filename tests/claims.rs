@@ -8,7 +8,7 @@ use driftwright_tests::harness::values::{model_names, read};
 const OPEN: [(&str, &str); 1] = [("sluice_level", "noise")];
 
 /// Models that must be stepped by an exact law alone.
-const EXACT: [&str; 16] = [
+const EXACT: [&str; 17] = [
     "barley_two_factor",
     "cider_forward",
     "cooling_kiln",
@@ -17,6 +17,7 @@ const EXACT: [&str; 16] = [
     "glacier_melt",
     "harbour_account",
     "harbour_toll",
+    "hay_moisture",
     "market_share",
     "orchard_spot",
     "peat_season",

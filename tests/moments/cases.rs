@@ -59,7 +59,7 @@ const fn stepped(
 }
 
 /// Every shipped model but the kelp stock, whose moments need extrapolation.
-pub(crate) const CASES: [Case; 21] = [
+pub(crate) const CASES: [Case; 22] = [
     exact("harbour_toll", [0.25, 1.0, 3.0], scalar::harbour_toll),
     exact("orchard_spot", [0.25, 1.0, 3.0], scalar::orchard_spot),
     exact("river_spread", [0.2, 1.0, 4.0], scalar::river_spread),
@@ -83,6 +83,7 @@ pub(crate) const CASES: [Case; 21] = [
     ),
     exact("cooling_kiln", [0.25, 1.0, 4.0], systems::cooling_kiln),
     stepped("reed_bed", [0.5, 1.0, 4.0], 400, systems::reed_bed),
+    exact("hay_moisture", [0.3, 1.0, 2.5], scalar::hay_moisture),
     exact("fog_buoy", [0.25, 1.0, 3.0], scalar::fog_buoy),
     exact("sluice_level", [0.5, 1.0, 2.0], scalar::sluice_level),
     stepped("quay_rate", [0.5, 1.0, 2.0], 64, discrete::quay_rate),

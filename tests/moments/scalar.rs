@@ -137,6 +137,22 @@ pub(crate) fn sluice_level(p: &Values, at: At) -> Expected {
     ]
 }
 
+/// A square-root process with fading noise: `exp(-k t) tau` times a noncentral chi-square variable (Johnson, Kotz &
+/// Balakrishnan 1995, section 29.4) with the time `tau = s^2/4 int exp((k - fade) u) du`.
+pub(crate) fn hay_moisture(p: &Values, at: At) -> Expected {
+    let (k, fade, n) = (p.get("k"), p.get("fade"), p.get("n"));
+    let decay = (-k * at.time).exp();
+    let tau = p.get("s").powi(2) / 4.0 * decayed(fade - k, at.time);
+    let (scale, shift) = (decay * tau, p.get("x0") / tau);
+    let variance = 2.0 * (n + 2.0 * shift);
+    let skewness = 8.0 * (n + 3.0 * shift) / variance.powf(1.5);
+    let (mean, variance) = (scale * (n + shift), scale * scale * variance);
+    vec![
+        ("x", Moments::all(mean, variance, skewness)),
+        ("square", Moments::mean(mean * mean + variance)),
+    ]
+}
+
 /// A Brownian motion of either drift, each with its probability, and the distance of a drifted Brownian motion in three
 /// dimensions: its square's moments given the cosine of the first angle, which follows the law of von Mises & Fisher
 /// (Mardia & Jupp 2000, section 9.3), its own by quadrature of the transition density (Rogers & Pitman 1981).

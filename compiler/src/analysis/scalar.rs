@@ -31,7 +31,7 @@ impl<L> Finding<L> {
     }
 }
 
-/// A state whose coefficients hold nothing but itself and parameters.
+/// A state whose coefficients hold nothing but itself, parameters and perhaps time.
 pub(super) struct Scalar<'a> {
     pub(super) model: &'a Model,
     pub(super) state: usize,
@@ -41,13 +41,18 @@ pub(super) struct Scalar<'a> {
 }
 
 impl<'a> Scalar<'a> {
+    /// A state whose coefficients do not depend on time.
     pub(super) fn read(model: &'a Model, dynamics: &Dynamics, state: usize) -> Option<Self> {
+        Self::read_moving(model, dynamics, state).filter(|scalar| !scalar.is_moving())
+    }
+
+    /// A state whose coefficients may depend on time.
+    pub(super) fn read_moving(model: &'a Model, dynamics: &Dynamics, state: usize) -> Option<Self> {
         let pool = &model.pool;
         let drift = pool.simplify(dynamics.states[state].drift);
         let square = pool.simplify(covariation(model, &dynamics.states, state, state));
         let own = |e: Expr| {
             mentioned(model, e).iter().all(|&j| j == state)
-                && !pool.depends_on(e, model.time)
                 && pool.has_kink(e).is_none()
                 && pool.size(e) <= LARGEST
         };
@@ -58,6 +63,16 @@ impl<'a> Scalar<'a> {
             drift,
             square,
         })
+    }
+
+    /// Whether a coefficient depends on time.
+    pub(super) fn is_moving(&self) -> bool {
+        self.moves(self.drift) || self.moves(self.square)
+    }
+
+    /// Whether a formula depends on time.
+    pub(super) fn moves(&self, e: Expr) -> bool {
+        self.model.pool.depends_on(e, self.model.time)
     }
 
     /// The state's declaration.

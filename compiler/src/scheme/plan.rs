@@ -283,7 +283,7 @@ pub struct LinearGaussian {
     pub moving: bool,
 }
 
-/// `dy = (level - rate y) dt + s sqrt(y) dW`, all coefficients free of states and time.
+/// `dy = (level - rate y) dt + s sqrt(y) dW`, all coefficients free of states.
 #[derive(Clone, Debug)]
 pub struct SquareRootStep {
     /// The state, by its index in the model.
@@ -294,8 +294,10 @@ pub struct SquareRootStep {
     pub rate: Expr,
     /// `s^2` there.
     pub square: Expr,
-    /// `4 level/s^2`.
+    /// `4 level/s^2`, free of time.
     pub dimension: Expr,
+    /// Whether `level`, `rate` or `s` depends on time.
+    pub moving: bool,
     /// What happens at zero.
     pub at_zero: AtZero,
     /// What is known of the signs of `dimension`, `dimension - 1` and `dimension - 2`.

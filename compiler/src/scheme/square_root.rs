@@ -8,7 +8,11 @@ use crate::symbolic::{Expr, Sign};
 /// The group of a state with a square-root law.
 pub(super) fn group(model: &Model, state: usize, law: &SquareRoot) -> Group {
     let mut trace = law.trace.clone();
-    for (note, formula) in transition(model, law) {
+    let lines = match law.moving {
+        true => moving_transition(model, law),
+        false => transition(model, law),
+    };
+    for (note, formula) in lines {
         trace.push("transition law", note, None, formula);
     }
     Group {
@@ -32,6 +36,7 @@ pub(super) fn group(model: &Model, state: usize, law: &SquareRoot) -> Group {
             rate: law.rate,
             square: law.square,
             dimension: law.dimension,
+            moving: law.moving,
             at_zero: law.at_zero,
             against: [0, 1, 2].map(|n| law.dimension_against(model, n)),
         }),
@@ -98,6 +103,31 @@ fn transition(model: &Model, law: &SquareRoot) -> Vec<(String, Expr)> {
     lines
 }
 
+/// The law over a time t where coefficients depend on time: what is integrated.
+fn moving_transition(model: &Model, law: &SquareRoot) -> Vec<(String, Expr)> {
+    let pool = &model.pool;
+    let shown = pool.format(law.coordinate.forward);
+    let quarter = pool.simplify(pool.div(law.square, pool.int(4)));
+    vec![
+        (
+            format!(
+                "{shown} after a time, given its value before, is `scale` times a noncentral chi-square variable: \
+                 degrees of freedom"
+            ),
+            law.dimension,
+        ),
+        (
+            "its scale c is integrated from 0 on: dc = (this - rate c) dt".to_owned(),
+            quarter,
+        ),
+        (
+            "the rate, at which also what is left of the value before falls, the noncentrality times the scale"
+                .to_owned(),
+            law.rate,
+        ),
+    ]
+}
+
 fn reasons(model: &Model, state: usize, law: &SquareRoot) -> Vec<String> {
     let pool = &model.pool;
     let name = &model.states[state].name;
@@ -113,9 +143,15 @@ fn reasons(model: &Model, state: usize, law: &SquareRoot) -> Vec<String> {
     vec![
         format!("Ito's rule gives {left} = ({drift}) dt + {noise} dB with a Brownian motion B."),
         format!(
-            "That is a square-root process of dimension {}, so that each step is drawn from its noncentral \
-             chi-square transition: there is no discretisation error.",
-            pool.format(law.dimension)
+            "That is a square-root process of dimension {}{}, so that each step is drawn from its noncentral \
+             chi-square transition{}: there is no discretisation error.",
+            pool.format(law.dimension),
+            if law.moving { " at all times" } else { "" },
+            if law.moving {
+                ", whose scale and noncentrality are integrated over the step to rounding accuracy"
+            } else {
+                ""
+            },
         ),
         at_zero(model, name, &y, law),
     ]

@@ -46,7 +46,7 @@ type Found = (
 );
 
 /// Each by Ito's rule from `dy = (level - rate y) dt + s sqrt(y) dW`.
-const FOUND: [Found; 22] = [
+const FOUND: [Found; 27] = [
     (
         "k*(m - x)",
         "s*sqrt(x)",
@@ -249,6 +249,52 @@ const FOUND: [Found; 22] = [
         IMAGE,
         AtZero::Reflected,
     ),
+    // Coefficients that depend on time, the dimension does not.
+    (
+        "k*s^2*exp(t) - m*x*(1 + t)",
+        "s*exp(t/2)*sqrt(x)",
+        "[0, inf)",
+        AS_EQUATION,
+        "x",
+        PLAIN,
+        AtZero::Reflected,
+    ),
+    (
+        "q*x*sin(t)",
+        "s*(2 + cos(t))*x^0.7",
+        "[0, inf)",
+        AS_EQUATION,
+        "x^0.6",
+        STOPPED,
+        AtZero::Absorbed,
+    ),
+    (
+        "x*(q*t - m*(2 + t)*x)",
+        "s*sqrt(2 + t)*x^(3/2)",
+        "(0, inf)",
+        "",
+        "1/x",
+        IMAGE,
+        AtZero::NotReached,
+    ),
+    (
+        "(1 + t)^2/x",
+        "1 + t",
+        "(0, inf)",
+        "",
+        "x^2",
+        IMAGE,
+        AtZero::NotReached,
+    ),
+    (
+        "x^3*s^2*(1 + t)*(1/x - 1) - x^2*(m*(1 + t) - k*(1/x - 1))",
+        "s*sqrt(1 + t)*x^2*sqrt(1/x - 1)",
+        "(0, 1]",
+        AS_EQUATION,
+        "2*(1 - x)/(s^2*x)",
+        IMAGE,
+        AtZero::Reflected,
+    ),
 ];
 
 #[test]
@@ -326,7 +372,7 @@ fn what_has_no_settled_law_is_refused_with_a_reason() {
             "s*sqrt(x)",
             "[0, inf)",
             AS_EQUATION,
-            "",
+            "dimension 4*k*m*(t + 1)/s^2 depends on time",
         ),
         ("k*(m - min(x, 5))", "s*sqrt(x)", "(0, inf)", "", ""),
     ] {

@@ -10,6 +10,8 @@
 use std::cell::RefCell;
 use std::collections::BTreeMap;
 
+use driftwright_runtime::gauss::{linear_transition, moving_transition};
+
 use super::exp_poly::{ExpPoly, factors, summands};
 use super::integrability::martingale_part;
 use crate::calculus::System;
@@ -19,6 +21,8 @@ use crate::symbolic::{Expr, Limit, Symbol};
 const DEEPEST: usize = 40;
 /// And one whose generator has more terms.
 const MOST_TERMS: usize = 200;
+/// And one of more functions whose generator depends on time, when numbers are wanted.
+const MOST_MOVING: usize = 20;
 
 /// The equations of one system, solved on demand.
 pub(super) struct Equations<'a> {
@@ -54,8 +58,7 @@ impl<'a> Equations<'a> {
         Some(pool.sum(terms))
     }
 
-    /// `E[formula]` at time `t` as a number, by the matrix exponential of the generator on the whole
-    /// function space, so that it needs no order of solving and no two rates apart.
+    /// `E[formula]` at time `t` as a number, by solving the equations of the whole function space at once, so that it needs no order of solving and no two rates apart.
     pub(super) fn number(
         &self,
         formula: Expr,
@@ -69,9 +72,6 @@ impl<'a> Equations<'a> {
         let mut next = 0;
         while next < basis.len() {
             for (function, coefficient) in self.generator(basis[next])? {
-                if pool.depends_on(coefficient, self.system.model.time) {
-                    return None;
-                }
                 let column = basis
                     .iter()
                     .position(|&f| f == function)
@@ -79,7 +79,7 @@ impl<'a> Equations<'a> {
                         basis.push(function);
                         basis.len() - 1
                     });
-                entries.push((next, column, pool.eval_f64(coefficient, values)?));
+                entries.push((next, column, coefficient));
             }
             next += 1;
             if basis.len() as u64 > Limit::Moments.amount() {
@@ -97,32 +97,42 @@ impl<'a> Equations<'a> {
         terms.sum()
     }
 
-    /// `exp(t M)` applied to the functions' values at time 0.
+    /// The solution of `m' = M m` at time `t` from the functions' values at time 0: by the matrix exponential or, where
+    /// the generator depends on time, by integration.
     fn propagate(
         &self,
         basis: &[Expr],
-        entries: &[(usize, usize, f64)],
+        entries: &[(usize, usize, Expr)],
         values: &BTreeMap<Symbol, f64>,
         t: f64,
     ) -> Option<Vec<f64>> {
-        let n = basis.len();
-        let mut matrix = vec![0.0; n * n];
-        for &(row, column, value) in entries {
-            matrix[row * n + column] += value;
+        let (n, pool, time) = (basis.len(), self.system.pool(), self.system.model.time);
+        let moving = entries.iter().any(|&(.., c)| pool.depends_on(c, time));
+        if moving && n > MOST_MOVING {
+            pool.exceed(Limit::Moments);
+            return None;
         }
+        let matrix = |at: &BTreeMap<Symbol, f64>, out: &mut [f64]| {
+            out.fill(0.0);
+            for &(row, column, coefficient) in entries {
+                out[row * n + column] += pool.eval_f64(coefficient, at).unwrap_or(f64::NAN);
+            }
+        };
         let (zeros, none) = (vec![0.0; n], vec![0.0; n * n]);
         let (mut e, mut shift, mut spread) = (vec![0.0; n * n], vec![0.0; n], vec![0.0; n * n]);
-        driftwright_runtime::gauss::linear_transition(
-            n,
-            &matrix,
-            &zeros,
-            &none,
-            t,
-            &mut e,
-            &mut shift,
-            &mut spread,
-        )
-        .ok()?;
+        if moving {
+            let evaluate = |instant: f64, out: &mut [f64]| {
+                let mut at = values.clone();
+                at.insert(time, instant);
+                out.fill(0.0);
+                matrix(&at, &mut out[..n * n]);
+            };
+            moving_transition(n, 0.0, t, evaluate, &mut e, &mut shift, &mut spread).ok()?;
+        } else {
+            let mut still = vec![0.0; n * n];
+            matrix(values, &mut still);
+            linear_transition(n, &still, &zeros, &none, t, &mut e, &mut shift, &mut spread).ok()?;
+        }
         let start: Option<Vec<f64>> = basis
             .iter()
             .map(|&f| {

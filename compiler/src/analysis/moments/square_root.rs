@@ -4,6 +4,7 @@
 use std::collections::BTreeMap;
 
 use driftwright_runtime::Unfused;
+use driftwright_runtime::gauss::moving_transition;
 use driftwright_runtime::math::{exp, expm1_ratio};
 
 use super::{ImageLaw, LawName, Moments};
@@ -67,23 +68,46 @@ impl Moments {
         let declared = &self.model.states[law.state];
         let start = BTreeMap::from([(declared.symbol, declared.initial.expr)]);
         let start = number(pool.substitute(process.coordinate.forward, &start))?;
-        let (level, rate, square) = (
-            number(process.level)?,
-            number(process.rate)?,
-            number(process.square)?,
-        );
-        let dimension = 4.0 * level / square;
-        let scale = square / 4.0 * t * expm1_ratio::<Unfused>(-rate * t);
+        let dimension = number(process.dimension)?;
+        let (decay, scale) = match process.moving {
+            true => self.moving_window(process, values, t)?,
+            false => {
+                let (rate, square) = (number(process.rate)?, number(process.square)?);
+                let scale = square / 4.0 * t * expm1_ratio::<Unfused>(-rate * t);
+                (exp::<Unfused>(-rate * t), scale)
+            }
+        };
         Some(Numbers {
             dimension,
             scale,
-            noncentrality: start * exp::<Unfused>(-rate * t) / scale,
+            noncentrality: start * decay / scale,
             absorbing: match process.at_zero {
                 AtZero::NotReached => false,
                 AtZero::Reflected => dimension <= 0.0,
                 AtZero::Absorbed => dimension < 2.0,
             },
         })
+    }
+}
+
+impl Moments {
+    /// What is left of the initial value at time t, and the scale of the law, where coefficients depend on time.
+    fn moving_window(
+        &self,
+        process: &SquareRoot,
+        values: &BTreeMap<Symbol, f64>,
+        t: f64,
+    ) -> Option<(f64, f64)> {
+        let pool = &self.model.pool;
+        let evaluate = |instant: f64, out: &mut [f64]| {
+            let mut at = values.clone();
+            at.insert(self.model.time, instant);
+            let number = |e: Expr| pool.eval_f64(e, &at).unwrap_or(f64::NAN);
+            out.copy_from_slice(&[-number(process.rate), number(process.square) / 4.0, 0.0]);
+        };
+        let (mut decay, mut scale, mut spread) = ([0.0], [0.0], [0.0]);
+        moving_transition(1, 0.0, t, evaluate, &mut decay, &mut scale, &mut spread).ok()?;
+        Some((decay[0], scale[0]))
     }
 }
 

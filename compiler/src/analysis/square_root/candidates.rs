@@ -6,6 +6,8 @@
 //! Lamperti's drift along the noise, a square-root process has `k1 = -A/w^2 + B` in `w = 2 sqrt(y)/s`, so that
 //! `w = -3 k2/k3` with `k2`, `k3` its next two derivatives along the noise: no antiderivative is needed.
 
+use std::collections::BTreeMap;
+
 use crate::analysis::coordinate::Candidate;
 use crate::analysis::scalar::{LARGEST, Scalar};
 use crate::symbolic::{Bound, Expr, Interval, Pool, Sign, Symbol, SymbolKind};
@@ -171,7 +173,10 @@ impl<'a> Search<'a> {
         let inner = p.simplify(p.add(along(slope), p.mul(steepness, slope)));
         let ratio = p.simplify(p.div(slope, inner));
         let square = p.mul(p.int(9), p.square(ratio));
-        let forward = p.simplify(p.div(square, self.scalar.square));
+        // Where the noise has a factor in time, that factor as it is at one time.
+        let at_one = BTreeMap::from([(self.scalar.model.time, p.one())]);
+        let noise = p.substitute(self.scalar.square, &at_one);
+        let forward = p.simplify(p.div(square, noise));
         if p.size(forward) > LARGEST {
             return None;
         }

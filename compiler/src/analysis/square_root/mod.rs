@@ -5,7 +5,8 @@
 //! 1951; Cox, Ingersoll and Ross 1985), and with it the constant-elasticity and three-halves equations,
 //! Bessel processes and their squares, the radial Ornstein-Uhlenbeck process, and shifts, powers and
 //! logarithms of these (Goeing-Jaeschke and Yor 2003 survey them). Given `y` now, `y` after a time `h` is
-//! `c` times a noncentral chi-square variable of `dimension` degrees of freedom.
+//! `c` times a noncentral chi-square variable of `dimension` degrees of freedom. The coefficients may depend on time
+//! as long as the dimension does not: a change of time and scale leads to constant ones (Maghsoodi 1996).
 //!
 //! A candidate U is read off the noise (`candidates`); that it is one is then proved by Ito's rule and the
 //! zero test, for all admissible parameters. What happens at `y = 0` is decided in `zero`.
@@ -14,6 +15,7 @@ mod candidates;
 mod zero;
 
 use super::coordinate::Candidate;
+use super::free::{Freedom, free_of};
 use super::scalar::{Finding, Scalar};
 use super::{assume, sample};
 use crate::calculus::{Dynamics, Process, bracket, expand};
@@ -38,6 +40,8 @@ pub struct SquareRoot {
     pub square: Expr,
     /// Degrees of freedom of the transition, `4 level/s^2`.
     pub dimension: Expr,
+    /// Whether `level`, `rate` or `s` depends on time.
+    pub moving: bool,
     /// What happens at `y = 0`.
     pub at_zero: AtZero,
     /// Whether `y = 0` is an open end of the domain that may be reached, so that paths stop there and count
@@ -93,7 +97,7 @@ fn against(model: &Model, level: Expr, square: Expr, n: i64) -> Sign {
 ///
 /// Whether other states share its noise is another question: see [`entangled`](super::scalar::entangled).
 pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding<SquareRoot> {
-    let Some(scalar) = Scalar::read(model, dynamics, state) else {
+    let Some(scalar) = Scalar::read_moving(model, dynamics, state) else {
         return Finding::Other;
     };
     let mut found = candidates::candidates(&scalar)
@@ -107,8 +111,14 @@ pub fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Finding<SquareR
     {
         return Finding::Refused(reason);
     }
+    if let Some(reason) = scalar.moving_dimension(&proved) {
+        return Finding::Refused(reason);
+    }
     match zero::settle(&scalar, &proved) {
         Ok((at_zero, leaves)) => Finding::Law(Box::new(SquareRoot {
+            moving: [proved.level, proved.rate, proved.square]
+                .into_iter()
+                .any(|e| scalar.moves(e)),
             at_zero,
             leaves,
             coordinate: proved.coordinate,
@@ -128,7 +138,7 @@ impl Scalar<'_> {
     fn prove(&self, dynamics: &Dynamics, coordinate: Candidate) -> Option<Proved> {
         let (model, pool) = (self.model, &self.model.pool);
         let y = coordinate.forward;
-        if !self.onto_half_line(y) {
+        if self.moves(y) || !self.onto_half_line(y) {
             return None;
         }
         let mut expansion = expand(model, &dynamics.states, y);
@@ -147,6 +157,10 @@ impl Scalar<'_> {
             return None;
         }
         let dimension = pool.simplify(pool.div(pool.mul(pool.int(4), level), square));
+        let dimension = match free_of(pool, dimension, &[model.time]) {
+            Freedom::Free(constant) => constant,
+            Freedom::DependsOn(_) | Freedom::CannotTell(_) => dimension,
+        };
         let trace = &mut expansion.trace;
         let note = "drift of the coordinate as a linear function of it";
         trace.push("square-root form", note, Some(expansion.drift), drift);
@@ -164,6 +178,20 @@ impl Scalar<'_> {
             square,
             dimension,
         })
+    }
+
+    /// Why there is no law where the dimension depends on time.
+    fn moving_dimension(&self, proved: &Proved) -> Option<String> {
+        if !self.moves(proved.dimension) {
+            return None;
+        }
+        let pool = &self.model.pool;
+        Some(format!(
+            "{} is a square-root process whose dimension {} depends on time: no transition of such a process is known \
+             in closed form",
+            pool.format(proved.coordinate.forward),
+            pool.format(proved.dimension)
+        ))
     }
 }
 

@@ -11,13 +11,14 @@
 //!   with `N` Poisson of mean `lambda/2 - G` (Makarov and Glew 2010, "Exact simulation of Bessel
 //!   diffusions", from memory; at `d = 0` the noncentral chi-square law of Siegel 1979).
 //!
-//! Which of these it is may hang on the parameters; it is the same on all paths.
+//! Which of these it is may hang on the parameters; it is the same on all paths. Where `rate` and `s` depend on time,
+//! `decay` is `exp(-int rate)` over the step and `c = 1/4 int s(u)^2 exp(-int_u rate) du`.
 
 use super::Lowering;
 use super::rows::elapsed;
 use crate::analysis::square_root::AtZero;
 use crate::program::functions::BinaryOp;
-use crate::program::op::{Comparison, DrawLaw, ValueId};
+use crate::program::op::{Comparison, DrawLaw, Op, ValueId};
 use crate::scheme::SquareRootStep;
 use crate::symbolic::Sign;
 
@@ -29,12 +30,26 @@ enum Case {
     If(Comparison, ValueId, ValueId),
 }
 
+/// How the coefficients go over a step.
+#[derive(Clone, Copy)]
+enum Window {
+    /// They do not depend on time.
+    Still {
+        /// `int_0^h exp(-rate u) du`.
+        elapsed: ValueId,
+    },
+    /// They do: decay and scale are integrated.
+    Moving {
+        /// What the drift adds over the step.
+        moved: ValueId,
+    },
+}
+
 /// The coefficients of a step, the same on all paths.
 struct Coefficients {
     dimension: ValueId,
     decay: ValueId,
-    /// `int_0^h exp(-rate u) du`.
-    elapsed: ValueId,
+    window: Window,
     /// `2 c`.
     scale: ValueId,
     /// The process stays at zero once there.
@@ -64,17 +79,8 @@ impl Lowering<'_> {
                 .select(Comparison::LessEqual, sides, zero, value);
             value = self.choose(coefficients.absorbing, stopped, value);
         }
-        let square = self.in_step(step.square);
         if !self.model.pool.sign(step.square).is_positive() {
-            let drift = self.in_step(step.level);
-            let moved = self.builder.mul(drift, coefficients.elapsed);
-            let mut without = self.builder.mul_add(coefficients.decay, current, moved);
-            if !self.model.pool.sign(step.level).is_non_negative() {
-                without = self.builder.binary(BinaryOp::Max, without, zero);
-            }
-            value = self
-                .builder
-                .select(Comparison::LessEqual, (square, zero), without, value);
+            value = self.without_noise(step, &coefficients, current, value);
         }
         let text = self.equation_text(
             step.state,
@@ -84,16 +90,39 @@ impl Lowering<'_> {
         value
     }
 
+    /// The value where the noise may vanish, and with it the scale: what the drift alone leads to.
+    fn without_noise(
+        &mut self,
+        step: &SquareRootStep,
+        coefficients: &Coefficients,
+        current: ValueId,
+        value: ValueId,
+    ) -> ValueId {
+        let zero = self.builder.number(0.0);
+        let (quiet, moved) = match coefficients.window {
+            Window::Still { elapsed } => {
+                let drift = self.in_step(step.level);
+                (self.in_step(step.square), self.builder.mul(drift, elapsed))
+            }
+            Window::Moving { moved } => (coefficients.scale, moved),
+        };
+        let mut without = self.builder.mul_add(coefficients.decay, current, moved);
+        if !self.model.pool.sign(step.level).is_non_negative() {
+            without = self.builder.binary(BinaryOp::Max, without, zero);
+        }
+        let sides = (quiet, zero);
+        self.builder
+            .select(Comparison::LessEqual, sides, without, value)
+    }
+
     fn square_root_coefficients(&mut self, step: &SquareRootStep) -> Coefficients {
         let pool = self.model.pool.clone();
         let name = self.model.states[step.state].name.clone();
-        let negative = pool.neg(step.rate);
         let dimension = self.in_step(step.dimension);
-        let decay = self.in_step(pool.exp(pool.mul(negative, self.length())));
-        let window = elapsed(self, negative);
-        let length = self.in_step(window);
-        let scale = pool.product([pool.ratio(1, 2), step.square, window]);
-        let scale = self.in_step(scale);
+        let (decay, scale, window) = match step.moving {
+            true => self.moving_window(step),
+            false => self.still_window(step),
+        };
         for (value, hint) in [(dimension, "dimension"), (decay, "decay"), (scale, "scale")] {
             self.builder.hint(value, format!("{hint}_{name}"));
         }
@@ -116,11 +145,43 @@ impl Lowering<'_> {
         Coefficients {
             dimension,
             decay,
-            elapsed: length,
+            window,
             scale,
             absorbing,
             shifted,
         }
+    }
+
+    /// Decay and twice the scale where nothing depends on time.
+    fn still_window(&mut self, step: &SquareRootStep) -> (ValueId, ValueId, Window) {
+        let pool = self.model.pool.clone();
+        let negative = pool.neg(step.rate);
+        let decay = self.in_step(pool.exp(pool.mul(negative, self.length())));
+        let window = elapsed(self, negative);
+        let elapsed = self.in_step(window);
+        let scale = pool.product([pool.ratio(1, 2), step.square, window]);
+        (decay, self.in_step(scale), Window::Still { elapsed })
+    }
+
+    /// Decay and twice the scale, integrated over the step: `c' = s^2/4 - rate c` is the mean of a linear equation,
+    /// and the decay its transition. Beside it what the drift adds.
+    fn moving_window(&mut self, step: &SquareRootStep) -> (ValueId, ValueId, Window) {
+        let pool = self.model.pool.clone();
+        let rate = self.at_instant(pool.neg(step.rate));
+        let push = self.at_instant(pool.div(step.square, pool.int(2)));
+        let level = self.at_instant(step.level);
+        let zero = self.builder.number(0.0);
+        let (start, length) = (self.builder.start(), self.builder.length());
+        let law = self.builder.matrix(Op::MovingTransition {
+            dim: 2,
+            a: [rate, zero, zero, rate].into(),
+            alpha: [push, level].into(),
+            q: [zero; 4].into(),
+            start,
+            length,
+        });
+        let [decay, scale, moved] = [0, 4, 5].map(|entry| self.builder.extract(law, entry));
+        (decay, scale, Window::Moving { moved })
     }
 
     /// Whether the process stays at zero, and whether a shifted normal can be split off.
