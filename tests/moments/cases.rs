@@ -88,6 +88,7 @@ pub(crate) const CASES: [Case; 22] = [
     exact("sluice_level", [0.5, 1.0, 2.0], scalar::sluice_level),
     stepped("quay_rate", [0.5, 1.0, 2.0], 64, discrete::quay_rate),
     stepped("honey_market", [0.25, 0.5, 1.0], 64, discrete::honey_market),
+    stepped("wool_sale", [0.25, 0.5, 1.0], 8, discrete::wool_sale),
     stepped("eddy_area", [0.5, 1.0, 2.0], 32, discrete::eddy_area),
     stepped("heath_moss", [0.5, 1.0, 2.0], 16, discrete::heath_moss),
 ];

@@ -28,36 +28,76 @@ impl SquareRoot {
     }
 }
 
-/// A square-root rate, stepped exactly, with its integral by the left rule. Mean and variance over a step are
-/// those of Cox, Ingersoll & Ross (1985, equation 19). The mean of exp(a r) after a step is that of a
-/// noncentral chi-square variable (Johnson, Kotz & Balakrishnan 1995, section 29.3), exponentially affine in the
+/// A square-root process drawn exactly, with its integral by the trapezoidal rule: mean and second moment of both.
+/// Mean and variance over a step are those of Cox, Ingersoll & Ross (1985, equation 19).
+fn drawn(process: &SquareRoot, start: f64, at: At) -> [f64; 4] {
+    let keep = (-process.kappa * at.h).exp();
+    let push = process.theta * (1.0 - keep);
+    let spread = process.xi * process.xi * (1.0 - keep) / process.kappa;
+    let (mut mean, mut second) = (start, start * start);
+    let (mut integral, mut integral_2, mut mixed) = (0.0, 0.0, 0.0);
+    for _ in 0..at.steps {
+        // The next value, its product with this one, its square, its product with the integral so far.
+        let next = keep * mean + push;
+        let product = keep * second + push * mean;
+        let next_second = keep * product + push * next + spread * (keep * mean + push / 2.0);
+        let with_next = keep * mixed + push * integral;
+        integral_2 +=
+            at.h * (mixed + with_next) + at.h * at.h / 4.0 * (second + 2.0 * product + next_second);
+        mixed = with_next + at.h / 2.0 * (product + next_second);
+        integral += at.h / 2.0 * (mean + next);
+        (mean, second) = (next, next_second);
+    }
+    [mean, second, integral, integral_2]
+}
+
+/// A price whose variance is a square-root process, with the integral of that; the scheme keeps the mean of the
+/// price (Andersen 2008, section 4.3).
+pub(crate) fn wool_sale(p: &Values, at: At) -> Expected {
+    let process = SquareRoot {
+        kappa: p.get("kappa"),
+        theta: p.get("theta"),
+        xi: p.get("xi"),
+    };
+    let [mean, second, integral, integral_2] = drawn(&process, p.get("v0"), at);
+    vec![
+        (
+            "F",
+            Moments::mean(p.get("F0") * (p.get("r") * at.time).exp()),
+        ),
+        ("v", Moments::two(mean, second - mean * mean)),
+        (
+            "I",
+            Moments::two(integral, integral_2 - integral * integral),
+        ),
+    ]
+}
+
+/// A square-root rate with its integral. The mean of exp(a r) after a step is that of a noncentral chi-square
+/// variable (Johnson, Kotz & Balakrishnan 1995, section 29.3), exponentially affine in the
 /// rate before it, so that the mean of exp(b I) follows backwards.
 pub(crate) fn quay_rate(p: &Values, at: At) -> Expected {
     let (kappa, theta, sigma) = (p.get("kappa"), p.get("theta"), p.get("sigma"));
     let r0 = p.get("r0");
+    let process = SquareRoot {
+        kappa,
+        theta,
+        xi: sigma,
+    };
+    let [mean, second, integral, integral_2] = drawn(&process, r0, at);
     let keep = (-kappa * at.h).exp();
-    let push = theta * (1.0 - keep);
     let window = (1.0 - keep) / kappa;
-    let (mut mean, mut second) = (r0, r0 * r0);
-    let (mut integral, mut integral_2, mut mixed) = (0.0, 0.0, 0.0);
-    for _ in 0..at.steps {
-        integral_2 += 2.0 * at.h * mixed + at.h * at.h * second;
-        mixed = keep * (mixed + at.h * second) + push * (integral + at.h * mean);
-        integral += at.h * mean;
-        let variance = sigma * sigma * window * (keep * mean + push / 2.0);
-        second = keep * keep * second + 2.0 * keep * push * mean + push * push + variance;
-        mean = keep * mean + push;
-    }
     let (scale, freedom) = (
         sigma * sigma * window / 4.0,
         4.0 * kappa * theta / (sigma * sigma),
     );
     let affine = |b: f64| {
-        let (mut slope, mut constant) = (0.0_f64, 0.0);
-        for _ in 0..at.steps {
+        let (mut slope, mut constant) = (b * at.h / 2.0, 0.0_f64);
+        for step in 0..at.steps {
             let shrink = 1.0 - 2.0 * slope * scale;
             constant -= freedom / 2.0 * shrink.ln();
-            slope = slope * keep / shrink + b * at.h;
+            let weight = if step + 1 == at.steps { 0.5 } else { 1.0 };
+            slope = slope * keep / shrink + weight * b * at.h;
         }
         (constant + slope * r0).exp()
     };

@@ -15,3 +15,4 @@ mod schemes;
 mod square_root;
 mod steep;
 mod taylor;
+mod variance;

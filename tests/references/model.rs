@@ -9,6 +9,7 @@ use driftwright_tests::harness::reference::Case;
 pub(crate) struct ModelText {
     drivers: Vec<String>,
     parameters: Vec<(String, f64)>,
+    positive: Vec<String>,
     correlation: Vec<(String, String, f64)>,
     states: String,
     derived: String,
@@ -27,6 +28,12 @@ impl ModelText {
     /// All the plain numbers among a case's parameters.
     pub(crate) fn parameters_of(mut self, case: &Case) -> Self {
         self.parameters.extend(case.values().0);
+        self
+    }
+
+    /// Declares parameters to be positive, whatever their values.
+    pub(crate) fn positive(mut self, names: &[&str]) -> Self {
+        self.positive.extend(names.iter().map(ToString::to_string));
         self
     }
 
@@ -92,7 +99,12 @@ impl ModelText {
         );
         text.push_str("[parameters]\n");
         for (name, value) in &self.parameters {
-            writeln!(text, "{name} = {value:?}").expect("writing to a string");
+            let entry = if self.positive.contains(name) {
+                format!("{{ value = {value:?}, range = \"(0, inf)\" }}")
+            } else {
+                format!("{value:?}")
+            };
+            writeln!(text, "{name} = {entry}").expect("writing to a string");
         }
         if !self.correlation.is_empty() {
             text.push_str("[correlation]\n");

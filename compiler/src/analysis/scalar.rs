@@ -149,9 +149,9 @@ impl<'a> Scalar<'a> {
     }
 }
 
-/// Why a state's own law is not enough: another state has a driver that is one of its drivers or
-/// correlated with one, and a draw from a law that is not Gaussian, `law`, gives no increments of drivers.
-pub fn entangled(model: &Model, dynamics: &Dynamics, state: usize, law: &str) -> Option<String> {
+/// The other states that have a driver which is one of a state's drivers or correlated with one: a draw from a law that is
+/// not Gaussian gives no increments of drivers.
+pub fn entangled(model: &Model, dynamics: &Dynamics, state: usize) -> Vec<usize> {
     let pool = &model.pool;
     let drivers = |i: usize| {
         let noise = &dynamics.states[i].diffusion;
@@ -161,10 +161,7 @@ pub fn entangled(model: &Model, dynamics: &Dynamics, state: usize, law: &str) ->
         drivers(state)
             .any(|j| drivers(other).any(|k| !pool.is_zero_literal(model.correlation[j][k])))
     };
-    let other = (0..model.states.len()).find(|&i| i != state && meet(i))?;
-    let (name, other) = (&model.states[state].name, &model.states[other].name);
-    Some(format!(
-        "{name} by itself has {law}, but its noise is shared or correlated with that of {other}, and no exact \
-         joint transition of both is known"
-    ))
+    (0..model.states.len())
+        .filter(|&i| i != state && meet(i))
+        .collect()
 }

@@ -26,13 +26,15 @@ pub enum SchemeName {
     FullTruncationEuler,
     /// Quadratic-exponential scheme for square-root variance (Andersen 2008).
     QuadraticExponential,
+    /// Normal given the square-root process at both ends of the step (Broadie and Kaya 2006; Andersen 2008).
+    ConditionalGaussian,
     /// Classical fourth-order Runge-Kutta (Kutta 1901), for states without noise.
     RungeKutta4,
 }
 
 impl SchemeName {
     /// Every scheme, in the order of the language page.
-    pub const ALL: [Self; 10] = [
+    pub const ALL: [Self; 11] = [
         Self::Exact,
         Self::EulerMaruyama,
         Self::Milstein,
@@ -42,6 +44,7 @@ impl SchemeName {
         Self::TamedMilstein,
         Self::FullTruncationEuler,
         Self::QuadraticExponential,
+        Self::ConditionalGaussian,
         Self::RungeKutta4,
     ];
 
@@ -62,6 +65,7 @@ impl SchemeName {
             Self::TamedMilstein => "tamed_milstein",
             Self::FullTruncationEuler => "full_truncation_euler",
             Self::QuadraticExponential => "quadratic_exponential",
+            Self::ConditionalGaussian => "conditional_gaussian",
             Self::RungeKutta4 => "runge_kutta_4",
         }
     }

@@ -33,6 +33,8 @@ pub(super) struct Context<'a> {
     pub(super) calm: Vec<bool>,
     /// Per state, why it has no exact law; none where it has one.
     pub(super) refusals: Vec<Option<String>>,
+    /// Per state, whether a square-root process carries it.
+    pub(super) carried: Vec<bool>,
 }
 
 /// What is known of a component of approximate states, and what follows.
@@ -54,6 +56,8 @@ pub(super) struct Choice {
     /// A drift grows faster than linearly, always inwards, and the noise is globally Lipschitz: what the
     /// tamed schemes are for.
     pub(super) tame: bool,
+    /// A state is read whose scheme has no known order.
+    pub(super) fed: bool,
     /// The noise is additive or has one driver, and nothing is read whose own law is drawn exactly.
     pub(super) taylor: bool,
 }
@@ -102,9 +106,9 @@ impl Context<'_> {
         through(self.model, declared).is_some_and(|c| c.onto_line && !c.is_identity())
     }
 
-    /// Whether a state is stepped approximately.
+    /// Whether a state is stepped by one of the schemes here.
     pub(super) fn is_member(&self, state: usize) -> bool {
-        self.refusals[state].is_some()
+        self.refusals[state].is_some() && !self.carried[state]
     }
 
     /// Approximate states connected through their coefficients.
@@ -151,6 +155,7 @@ impl Context<'_> {
             projected: component.iter().any(|&i| !self.projections[i].is_none()),
             ruled: component.iter().any(|&i| self.is_ruled(i)),
             tame: self.is_tame(component),
+            fed: self.read_by(component).iter().any(|&i| self.carried[i]),
             taylor: self.has_taylor(component),
         };
         choice.scheme = if choice.is_flow() {
@@ -198,14 +203,8 @@ impl Context<'_> {
     /// Whether the strong Taylor scheme of order 1.5 needs no integrals beyond those of single drivers.
     fn has_taylor(&self, component: &[usize]) -> bool {
         let pool = &self.model.pool;
-        let coefficients = component.iter().flat_map(|&i| {
-            let process = &self.coordinates[i].process;
-            process.diffusion.iter().copied().chain([process.drift])
-        });
-        let read: BTreeSet<usize> = coefficients
-            .flat_map(|e| mentioned(self.model, e))
-            .chain(component.iter().copied())
-            .collect();
+        let mut read = self.read_by(component);
+        read.extend(component.iter().copied());
         let noises = read.iter().map(|&i| &self.dynamics.states[i].diffusion);
         let drivers: BTreeSet<usize> = noises
             .flat_map(|row| row.iter().enumerate())
@@ -216,6 +215,17 @@ impl Context<'_> {
             .iter()
             .all(|&i| self.noise(i).all(|b| !self.mentions_states(b)));
         (additive || drivers.len() == 1) && read.iter().all(|&i| self.is_member(i))
+    }
+
+    /// The states that the coefficients of a component mention.
+    fn read_by(&self, component: &[usize]) -> BTreeSet<usize> {
+        let coefficients = component.iter().flat_map(|&i| {
+            let process = &self.coordinates[i].process;
+            process.diffusion.iter().copied().chain([process.drift])
+        });
+        coefficients
+            .flat_map(|e| mentioned(self.model, e))
+            .collect()
     }
 
     fn noise(&self, state: usize) -> impl Iterator<Item = Expr> + '_ {
@@ -336,7 +346,7 @@ fn orders(
     scheme: SchemeName,
     company: &[SchemeName],
 ) -> (Option<Order>, Option<Order>) {
-    if choice.projected || choice.ruled {
+    if choice.projected || choice.ruled || choice.fed {
         return (None, None);
     }
     if choice.deterministic {

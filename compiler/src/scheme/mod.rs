@@ -3,11 +3,12 @@
 //! [`plan`] first looks for the largest linear Gaussian system ([`crate::analysis::linear`]) and steps it
 //! by its exact law, then for states that have a law of their own: square-root processes
 //! ([`crate::analysis::square_root`]), whose transition is noncentral chi-square, and Brownian motions with a
-//! random drift ([`crate::analysis::random_drift`]). What is left is stepped by the scheme of highest strong order that its noise
+//! random drift ([`crate::analysis::random_drift`]), then for states that are normal given a square-root process. What is left is stepped by the scheme of highest strong order that its noise
 //! allows: Milstein where the noise commutes, Euler-Maruyama where it does not, Euler with full
 //! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
 mod approximate;
+mod carried;
 mod closed_ends;
 mod edges;
 mod exact;
@@ -21,6 +22,8 @@ mod square_root;
 mod step;
 mod warn;
 
+use self::carried::Passenger;
+use self::own_law::OwnLaws;
 use crate::analysis::dependence::deterministic;
 use crate::analysis::linear;
 use crate::calculus::Dynamics;
@@ -29,9 +32,9 @@ use crate::model::Model;
 
 pub use crate::model::SchemeName;
 pub use plan::{
-    Becomes, Component, Coordinate, EdgeRule, Group, Kind, Law, LinearGaussian, Method,
-    NoiseComponent, NoisePlan, Order, Plan, RandomDriftStep, RowNoise, SquareRootStep, StateStep,
-    Taylor,
+    Becomes, CarriedState, CarriedStep, Component, Coordinate, Drawn, EdgeRule, Group, Kind, Law,
+    LinearGaussian, Method, NoiseComponent, NoisePlan, Order, Plan, RandomDriftStep, RowNoise,
+    SquareRootStep, StateStep, Taylor,
 };
 
 /// Plans how the states of a model are stepped.
@@ -43,7 +46,9 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     closed_ends::warn(model, dynamics, diagnostics);
     let excluded = overrides::excluded(model);
     let rows = linear::find(model, dynamics, &excluded);
-    let laws = own_law::laws(model, dynamics, &rows, &excluded);
+    let findings = own_law::findings(model, dynamics, &rows, &excluded);
+    let passengers = carried::passengers(model, dynamics, &rows, &findings);
+    let laws = own_law::drawn(model, dynamics, findings, &passengers);
     let calm = deterministic(model, dynamics);
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| step::step_coordinate(model, dynamics, i, calm[i]))
@@ -51,15 +56,17 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     let coordinates: Vec<Coordinate> = rows
         .iter()
         .zip(&laws)
+        .zip(&passengers)
         .zip(&steps)
         .enumerate()
-        .map(|(i, ((row, law), step))| match (row, law) {
-            (Ok(row), _) => step::coordinate(i, &row.coordinate, row.process.clone()),
-            (_, Ok(law)) => {
-                let (candidate, process) = law.coordinate();
-                step::coordinate(i, candidate, process.clone())
-            }
-            _ => step.0.clone(),
+        .map(|(i, (((row, law), passenger), step))| {
+            let (candidate, process) = match (row, law, passenger) {
+                (Ok(row), ..) => (&row.coordinate, &row.process),
+                (_, Ok(law), _) => law.coordinate(),
+                (.., Some(Passenger { carried, .. })) => (&carried.coordinate, &carried.process),
+                _ => return step.0.clone(),
+            };
+            step::coordinate(i, candidate, process.clone())
         })
         .collect();
     announce_ranges(model, &coordinates);
@@ -73,6 +80,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         traces: &traces,
         calm,
         refusals: refusals(&rows, &laws),
+        carried: passengers.iter().map(Option::is_some).collect(),
     };
     let mut groups = exact::groups(model, dynamics, &rows);
     let frame = step::Frame::new(model, &coordinates);
@@ -81,10 +89,17 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         .enumerate()
         .filter_map(|(i, law)| Some(law.as_ref().ok()?.group(model, &frame, i)));
     groups.extend(found);
+    groups.extend(carried::groups(
+        model,
+        &frame,
+        &passengers,
+        &laws,
+        &context.refusals,
+    ));
     let choices = context.choices();
     groups.extend(context.groups(&choices));
     groups.sort_by_key(|g| g.states.first().copied());
-    overrides::check(&context, &groups, &choices, diagnostics);
+    overrides::check(&context, &laws, &groups, &choices, diagnostics);
     warn::open_ends(model, dynamics, &groups, diagnostics);
     let noise = noise::plan(model, &groups);
     Plan {
@@ -95,10 +110,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
 }
 
 /// Per state, why it has no exact law; none where it has one.
-fn refusals(
-    rows: &linear::Rows,
-    laws: &[Result<own_law::OwnLaw, Option<String>>],
-) -> Vec<Option<String>> {
+fn refusals(rows: &linear::Rows, laws: &OwnLaws) -> Vec<Option<String>> {
     let refusal = |(row, law): (&Result<linear::Row, String>, _)| match (row, law) {
         (Ok(_), _) | (_, &Ok(_)) => None,
         (_, Err(Some(reason))) | (Err(reason), Err(None)) => Some(reason.clone()),

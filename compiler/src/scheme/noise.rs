@@ -1,6 +1,8 @@
 //! The Gaussian vector of a step: who needs which component, and under which name it is drawn.
 
-use super::{Component, Group, Method, NoiseComponent, NoisePlan, RowNoise, StateStep, Taylor};
+use super::{
+    Component, Drawn, Group, Method, NoiseComponent, NoisePlan, RowNoise, StateStep, Taylor,
+};
 use crate::model::Model;
 use crate::symbolic::{Expr, Pool};
 
@@ -61,7 +63,12 @@ fn reads_increment(pool: &Pool, group: &Group, driver: usize) -> bool {
             .iter()
             .zip(&system.c)
             .any(|(&noise, c)| noise == RowNoise::Increments && present(c[driver])),
-        Method::RungeKutta4(_) | Method::SquareRoot(_) | Method::RandomDrift(_) => false,
+        Method::Carried(step) => step.states.iter().any(|s| present(s.rest[driver])),
+        Method::SquareRoot(step) => match &step.draw {
+            Drawn::Exactly => false,
+            Drawn::ByMoments(unit) => present(unit[driver]),
+        },
+        Method::RungeKutta4(_) | Method::RandomDrift(_) => false,
     }
 }
 

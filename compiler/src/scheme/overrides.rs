@@ -4,7 +4,8 @@ use std::collections::BTreeMap;
 use std::rc::Rc;
 
 use super::approximate::{Choice, Context};
-use super::{Group, SchemeName};
+use super::own_law::{OwnLaw, OwnLaws};
+use super::{Group, SchemeName, square_root};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Model;
 use crate::symbolic::Bound;
@@ -53,6 +54,7 @@ pub(super) fn excluded(model: &Model) -> BTreeMap<usize, String> {
 /// Reports the overrides that cannot be honoured.
 pub(super) fn check(
     context: &Context<'_>,
+    laws: &OwnLaws,
     groups: &[Group],
     choices: &BTreeMap<usize, Rc<Choice>>,
     diagnostics: &mut Diagnostics,
@@ -84,7 +86,13 @@ pub(super) fn check(
                 "full truncation steps the state itself, not the coordinate of `through`"
                     .to_owned(),
             ),
-            SchemeName::EulerMaruyama
+            SchemeName::QuadraticExponential => no_moments(model, &laws[i]),
+            SchemeName::ConditionalGaussian if !context.carried[i] => Some(format!(
+                "{} is not normal given a square-root process of the model",
+                state.name
+            )),
+            SchemeName::ConditionalGaussian
+            | SchemeName::EulerMaruyama
             | SchemeName::TamedEuler
             | SchemeName::FullTruncationEuler => None,
             _ => Some("it is not available for this model".to_owned()),
@@ -104,6 +112,16 @@ fn hint(asked: SchemeName, chosen: SchemeName) -> String {
         "leave `scheme` out, or use `euler_maruyama`".to_owned()
     } else {
         format!("leave `scheme` out to have `{chosen}`, or use `euler_maruyama`")
+    }
+}
+
+fn no_moments(model: &Model, law: &Result<OwnLaw, Option<String>>) -> Option<String> {
+    match law {
+        Ok(OwnLaw::SquareRoot(law)) => square_root::no_moments(model, law),
+        Err(Some(reason)) => Some(reason.clone()),
+        Ok(OwnLaw::RandomDrift(_)) | Err(None) => {
+            Some("it is for square-root processes".to_owned())
+        }
     }
 }
 

@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 
+use super::carried::Passenger;
 use super::{Group, random_drift, square_root};
 use crate::analysis::coordinate::Candidate;
 use crate::analysis::linear::Rows;
@@ -48,25 +49,62 @@ impl OwnLaw {
     }
 }
 
-/// For each state without a Gaussian coordinate its own law, or why there is none. `excluded` are
+/// For each state its own law, or why there is none.
+pub(super) type OwnLaws = Vec<Result<OwnLaw, Option<String>>>;
+
+/// For each state without a Gaussian coordinate its own law, whoever shares its noise. `excluded` are
 /// left out: the author has asked for another scheme.
-pub(super) fn laws(
+pub(super) fn findings(
     model: &Model,
     dynamics: &Dynamics,
     rows: &Rows,
     excluded: &BTreeMap<usize, String>,
-) -> Vec<Result<OwnLaw, Option<String>>> {
-    let law = |state: usize| {
-        if rows[state].is_ok() || excluded.contains_key(&state) {
-            return Err(None);
-        }
-        let law = find(model, dynamics, state)?;
-        match entangled(model, dynamics, state, law.described()) {
-            Some(reason) => Err(Some(reason)),
+) -> OwnLaws {
+    let finding = |state: usize| match rows[state].is_ok() || excluded.contains_key(&state) {
+        true => Err(None),
+        false => find(model, dynamics, state),
+    };
+    (0..model.states.len()).map(finding).collect()
+}
+
+/// The laws that a step can be drawn from: every state that shares the noise of one must be carried by it.
+pub(super) fn drawn(
+    model: &Model,
+    dynamics: &Dynamics,
+    findings: OwnLaws,
+    passengers: &[Option<Passenger>],
+) -> OwnLaws {
+    let carries = |state: usize, other: usize| {
+        let carrier = passengers[other].as_ref().map(|p| p.carrier);
+        carrier == Some(state)
+    };
+    let settle = |(state, finding): (usize, Result<OwnLaw, Option<String>>)| {
+        let law = finding?;
+        let met = entangled(model, dynamics, state);
+        match met.into_iter().find(|&other| !carries(state, other)) {
+            Some(other) => Err(Some(shared(model, &law, state, other))),
             None => Ok(law),
         }
     };
-    (0..model.states.len()).map(law).collect()
+    findings.into_iter().enumerate().map(settle).collect()
+}
+
+fn shared(model: &Model, law: &OwnLaw, state: usize, other: usize) -> String {
+    let (name, other) = (&model.states[state].name, &model.states[other].name);
+    let described = law.described();
+    let mut reason = format!(
+        "{name} by itself has {described}, but its noise is shared or correlated with that of {other}, and no exact \
+         joint transition of both is known"
+    );
+    if let OwnLaw::SquareRoot(law) = law
+        && !model.pool.sign(law.square).is_positive()
+    {
+        let square = model.pool.format(law.square);
+        reason.push_str(&format!(
+            " (with a `range` that keeps {square} positive, {other} may be normal given {name})"
+        ));
+    }
+    reason
 }
 
 fn find(model: &Model, dynamics: &Dynamics, state: usize) -> Result<OwnLaw, Option<String>> {

@@ -254,10 +254,12 @@ impl fmt::Display for Order {
 pub enum Method {
     /// The exact transition of a linear Gaussian system.
     LinearGaussian(LinearGaussian),
-    /// The exact transition of a square-root process.
+    /// The transition of a square-root process.
     SquareRoot(SquareRootStep),
     /// The exact transition of a Brownian motion with a random drift, or of its distance from the start.
     RandomDrift(RandomDriftStep),
+    /// The normal law given a square-root process at both ends of the step.
+    Carried(CarriedStep),
     /// A one-step scheme that reads increments of the drivers: Euler-Maruyama, Milstein, full truncation.
     Step(Vec<StateStep>),
     /// Classical Runge-Kutta over the step, all states of the group together: the drift of each
@@ -302,6 +304,50 @@ pub struct SquareRootStep {
     pub at_zero: AtZero,
     /// What is known of the signs of `dimension`, `dimension - 1` and `dimension - 2`.
     pub against: [Sign; 3],
+    /// Whether the transition is drawn exactly or by its first two moments.
+    pub draw: Drawn,
+}
+
+/// How the transition of a square-root process is drawn.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Drawn {
+    /// As the noncentral chi-square variable that it is.
+    Exactly,
+    /// By the quadratic-exponential scheme (Andersen 2008, section 3.2), from the increment of
+    /// `B = sum_j b_j W_j`; here the coefficients `b`, one per driver.
+    ByMoments(Vec<Expr>),
+}
+
+/// States that are normal given a square-root process y with `dy = (level - rate y) dt + s sqrt(y) dB`, its noncentral
+/// chi-square transition and its integral.
+#[derive(Clone, Debug)]
+pub struct CarriedStep {
+    /// The state of the process, by its index in the model; stepped by [`Method::SquareRoot`].
+    pub carrier: usize,
+    /// The states.
+    pub states: Vec<CarriedState>,
+}
+
+/// `du = (free + along y) dt + sqrt(y) (shared dB + sum_j rest_j dW_j)`.
+///
+/// All but `free`, which is in the coordinates' symbols, time and parameters and taken at the start of the step, are
+/// free of states and time. The two noises are independent.
+#[derive(Clone, Debug)]
+pub struct CarriedState {
+    /// The state, by its index in the model.
+    pub state: usize,
+    /// `free` there.
+    pub free: Expr,
+    /// `along` there.
+    pub along: Expr,
+    /// `shared` there.
+    pub shared: Expr,
+    /// `rest` there, one per driver.
+    pub rest: Vec<Expr>,
+    /// The variance rate of the last noise, as a multiple of y.
+    pub rest_square: Expr,
+    /// Whether the mean of `exp(u)` is kept at `exp(u + free h)`.
+    pub keeps_growth: bool,
 }
 
 /// `du = f dt + s dW` with `s^2 f' + f^2 = m^2`, `s` and `m` free of states and time.

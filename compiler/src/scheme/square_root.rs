@@ -1,6 +1,6 @@
 //! Groups of one state stepped by its noncentral chi-square transition.
 
-use super::{Becomes, Group, Kind, Law, Method, SchemeName, SquareRootStep};
+use super::{Becomes, Drawn, Group, Kind, Law, Method, SchemeName, SquareRootStep};
 use crate::analysis::square_root::{AtZero, SquareRoot};
 use crate::model::Model;
 use crate::symbolic::{Expr, Sign};
@@ -15,20 +15,27 @@ pub(super) fn group(model: &Model, state: usize, law: &SquareRoot) -> Group {
     for (note, formula) in lines {
         trace.push("transition law", note, None, formula);
     }
+    let draw = by_moments(model, state, law).map_or(Drawn::Exactly, Drawn::ByMoments);
+    let exact = draw == Drawn::Exactly;
     Group {
         states: vec![state],
-        kind: Kind::Exact,
-        law: name(model, state, law),
+        kind: if exact {
+            Kind::Exact
+        } else {
+            Kind::Approximate
+        },
+        law: exact.then(|| name(model, state, law)).flatten(),
         becomes: Some(Becomes::SquareRoot),
-        scheme: SchemeName::Exact,
+        scheme: if exact {
+            SchemeName::Exact
+        } else {
+            SchemeName::QuadraticExponential
+        },
         strong_order: None,
         weak_order: None,
         preserves_domain: !law.leaves,
-        reasons: reasons(model, state, law),
-        rejected: vec![(
-            SchemeName::FullTruncationEuler,
-            "a discretisation has an error that the exact law does not have".to_owned(),
-        )],
+        reasons: reasons(model, state, law, exact),
+        rejected: rejected(exact),
         trace,
         method: Method::SquareRoot(SquareRootStep {
             state,
@@ -39,8 +46,40 @@ pub(super) fn group(model: &Model, state: usize, law: &SquareRoot) -> Group {
             moving: law.moving,
             at_zero: law.at_zero,
             against: [0, 1, 2].map(|n| law.dimension_against(model, n)),
+            draw,
         }),
     }
+}
+
+/// The coefficients of `dB` where the quadratic-exponential scheme was asked for and can be carried out.
+fn by_moments(model: &Model, state: usize, law: &SquareRoot) -> Option<Vec<Expr>> {
+    let (asked, _) = model.states[state].scheme?;
+    let fits = asked == SchemeName::QuadraticExponential && no_moments(model, law).is_none();
+    fits.then(|| law.unit(model)).flatten()
+}
+
+/// Why the quadratic-exponential scheme does not fit a square-root process.
+pub(super) fn no_moments(model: &Model, law: &SquareRoot) -> Option<String> {
+    let reflected = law.at_zero != AtZero::Absorbed && model.pool.sign(law.level).is_non_negative();
+    if !reflected {
+        return Some("it is for processes that are reflected at 0 or do not reach it".to_owned());
+    }
+    if law.moving {
+        return Some("its coefficients depend on time".to_owned());
+    }
+    law.unit(model)
+        .is_none()
+        .then(|| "its noise may vanish for some parameters".to_owned())
+}
+
+fn rejected(exact: bool) -> Vec<(SchemeName, String)> {
+    if !exact {
+        return Vec::new();
+    }
+    vec![(
+        SchemeName::FullTruncationEuler,
+        "a discretisation has an error that the exact law does not have".to_owned(),
+    )]
 }
 
 /// The name of the transition law; none where it is one or the other by the parameters' values.
@@ -128,7 +167,7 @@ fn moving_transition(model: &Model, law: &SquareRoot) -> Vec<(String, Expr)> {
     ]
 }
 
-fn reasons(model: &Model, state: usize, law: &SquareRoot) -> Vec<String> {
+fn reasons(model: &Model, state: usize, law: &SquareRoot, exact: bool) -> Vec<String> {
     let pool = &model.pool;
     let name = &model.states[state].name;
     let y = pool.format(law.coordinate.forward);
@@ -140,19 +179,28 @@ fn reasons(model: &Model, state: usize, law: &SquareRoot) -> Vec<String> {
     } else {
         format!("d({y})")
     };
-    vec![
-        format!("Ito's rule gives {left} = ({drift}) dt + {noise} dB with a Brownian motion B."),
+    let dimension = pool.format(law.dimension);
+    let drawn = if exact {
         format!(
-            "That is a square-root process of dimension {}{}, so that each step is drawn from its noncentral \
+            "That is a square-root process of dimension {dimension}{}, so that each step is drawn from its noncentral \
              chi-square transition{}: there is no discretisation error.",
-            pool.format(law.dimension),
             if law.moving { " at all times" } else { "" },
             if law.moving {
                 ", whose scale and noncentrality are integrated over the step to rounding accuracy"
             } else {
                 ""
             },
-        ),
+        )
+    } else {
+        format!(
+            "That is a square-root process of dimension {dimension}. The author asked for {} for {name}: a step has the mean \
+             and the variance of the noncentral chi-square transition, and no more of it (Andersen 2008, section 3.2).",
+            SchemeName::QuadraticExponential
+        )
+    };
+    vec![
+        format!("Ito's rule gives {left} = ({drift}) dt + {noise} dB with a Brownian motion B."),
+        drawn,
         at_zero(model, name, &y, law),
     ]
 }

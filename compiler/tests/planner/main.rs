@@ -1,6 +1,7 @@
 //! How the states of a model are stepped: exact laws found, schemes chosen, ends of domains.
 
 mod calm;
+mod carried;
 mod catalogue;
 mod ends;
 mod exact_laws;

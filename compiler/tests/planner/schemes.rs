@@ -367,7 +367,9 @@ fn overrides_are_honoured_or_refused_with_a_reason() {
     for (scheme, reason) in [
         ("runge_kutta_4", "X is random"),
         ("full_truncation_euler", "no finite end"),
-        ("quadratic_exponential", "not available"),
+        ("quadratic_exponential", "for square-root processes"),
+        ("conditional_gaussian", "not normal given"),
+        ("drift_implicit_euler", "not available"),
     ] {
         let refused = errors(&two(&text(scheme)));
         assert!(

@@ -49,7 +49,7 @@ impl Drifts {
             let Some(law) = find(model, dynamics, state).law() else {
                 continue;
             };
-            if entangled(model, dynamics, state, "").is_some() {
+            if !entangled(model, dynamics, state).is_empty() {
                 continue;
             }
             let row = rows.len();

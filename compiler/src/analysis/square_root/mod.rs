@@ -12,6 +12,7 @@
 //! zero test, for all admissible parameters. What happens at `y = 0` is decided in `zero`.
 
 mod candidates;
+mod carried;
 mod zero;
 
 use super::coordinate::Candidate;
@@ -21,8 +22,9 @@ use super::{assume, sample};
 use crate::calculus::{Dynamics, Process, bracket, expand};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Expr, Sign};
+use crate::symbolic::{Expr, Sign, Symbol};
 
+pub use carried::{Carried, carried};
 pub use zero::AtZero;
 
 /// A state that is a square-root process in a coordinate.
@@ -73,6 +75,24 @@ impl SquareRoot {
                 (reached && !self.leaves).then_some(true)
             }
         }
+    }
+
+    /// The coefficients of the Brownian motion B of `s sqrt(y) dB` in the drivers' increments, one per driver; none
+    /// where the noise may vanish for some parameters.
+    pub fn unit(&self, model: &Model) -> Option<Vec<Expr>> {
+        let pool = &model.pool;
+        if !pool.sign(self.square).is_positive() {
+            return None;
+        }
+        let root = pool.sqrt(pool.mul(self.square, self.coordinate.forward));
+        let symbols: Vec<Symbol> = model.states.iter().map(|s| s.symbol).collect();
+        let noise = self.process.diffusion.iter();
+        noise
+            .map(|&b| match free_of(pool, pool.div(b, root), &symbols) {
+                Freedom::Free(value) => Some(value),
+                Freedom::DependsOn(_) | Freedom::CannotTell(_) => None,
+            })
+            .collect()
     }
 }
 

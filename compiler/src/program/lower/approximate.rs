@@ -161,7 +161,7 @@ impl Lowering<'_> {
         integral
     }
 
-    fn component(&self, driver: usize) -> usize {
+    pub(super) fn component(&self, driver: usize) -> usize {
         self.plan
             .noise
             .position(Component::Increment { driver })

@@ -5,11 +5,13 @@
 //! time) and an observation (its time, the stored coordinates).
 
 mod approximate;
+mod carried;
 mod constructor;
 mod exact;
 mod noise;
 mod observe;
 mod own_draws;
+mod quadratic_exponential;
 mod random_drift;
 mod rows;
 mod runge_kutta;
@@ -231,13 +233,15 @@ impl<'a> Lowering<'a> {
                     self.exact_group(index, group, system, &noise, &mut next);
                 }
                 Method::SquareRoot(step) => {
-                    let value = self.square_root_state(step);
+                    let value = self.square_root_state(step, &noise);
                     next.insert(step.state, value);
                 }
                 Method::RandomDrift(step) => {
                     let value = self.random_drift_state(step);
                     next.insert(step.state, value);
                 }
+                // After the process that carries them, below.
+                Method::Carried(_) => {}
                 Method::Step(steps) => {
                     for step in steps {
                         let value = self.approximate_state(step, &noise);
@@ -245,6 +249,12 @@ impl<'a> Lowering<'a> {
                     }
                 }
                 Method::RungeKutta4(drifts) => next.extend(self.runge_kutta(drifts)),
+            }
+        }
+        for group in &plan.groups {
+            if let Method::Carried(step) = &group.method {
+                let carrier = next[&step.carrier];
+                next.extend(self.carried_states(step, carrier, &noise));
             }
         }
         (0..self.model.states.len())

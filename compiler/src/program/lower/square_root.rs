@@ -15,11 +15,12 @@
 //! `decay` is `exp(-int rate)` over the step and `c = 1/4 int s(u)^2 exp(-int_u rate) du`.
 
 use super::Lowering;
+use super::noise::Noise;
 use super::rows::elapsed;
 use crate::analysis::square_root::AtZero;
 use crate::program::functions::BinaryOp;
 use crate::program::op::{Comparison, DrawLaw, Op, ValueId};
-use crate::scheme::SquareRootStep;
+use crate::scheme::{Drawn, SquareRootStep};
 use crate::symbolic::Sign;
 
 /// A condition on the parameters.
@@ -60,7 +61,10 @@ struct Coefficients {
 
 impl Lowering<'_> {
     /// The coordinate of a square-root state after a step.
-    pub(super) fn square_root_state(&mut self, step: &SquareRootStep) -> ValueId {
+    pub(super) fn square_root_state(&mut self, step: &SquareRootStep, noise: &Noise) -> ValueId {
+        if let Drawn::ByMoments(unit) = &step.draw {
+            return self.quadratic_exponential_state(step, unit, noise);
+        }
         let coefficients = self.square_root_coefficients(step);
         let current = self.current(step.state);
         let rest = self.rest(step, &coefficients, current);
