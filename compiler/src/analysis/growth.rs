@@ -1,7 +1,7 @@
 //! Growth and smoothness of step coefficients, which the theorems on orders assume.
 
 use super::asymptotics::{Leading, Side, at_end};
-use crate::symbolic::{Bound, Expr, Pool, Rational, Sign, Symbol};
+use crate::symbolic::{Bound, Expr, Interval, Pool, Rational, Sign, Symbol, SymbolKind};
 
 /// What is known of a coefficient as a function of the coordinates.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -89,15 +89,38 @@ fn is_bounded(pool: &Pool, e: Expr, symbols: &[Symbol]) -> bool {
     match mentioned[..] {
         [] => true,
         [symbol] => {
-            let range = pool.range(symbol);
-            let ends = [(range.lower, Side::Lower), (range.upper, Side::Upper)];
-            ends.into_iter()
-                .all(|(end, side)| match at_end(pool, e, symbol, end, side) {
-                    Leading::Zero => true,
-                    Leading::Term { exponent, .. } => exponent >= Rational::ZERO,
-                    Leading::Unknown => false,
-                })
+            let whole = pool.range(symbol) == Interval::REAL;
+            has_finite_ends(pool, e, symbol)
+                || whole && {
+                    let (written, exponential) = in_exponential(pool, e, symbol);
+                    has_finite_ends(pool, written, exponential)
+                }
         }
         _ => false,
     }
+}
+
+/// Whether a formula stays finite at both ends of a symbol's range.
+fn has_finite_ends(pool: &Pool, e: Expr, symbol: Symbol) -> bool {
+    let range = pool.range(symbol);
+    let ends = [(range.lower, Side::Lower), (range.upper, Side::Upper)];
+    ends.into_iter()
+        .all(|(end, side)| match at_end(pool, e, symbol, end, side) {
+            Leading::Zero => true,
+            Leading::Term { exponent, .. } => exponent >= Rational::ZERO,
+            Leading::Unknown => false,
+        })
+}
+
+/// A formula in `exp(x)` instead of x, a positive number: what reads x through exponentials alone, such as a
+/// logistic function, is rational in it.
+fn in_exponential(pool: &Pool, e: Expr, x: Symbol) -> (Expr, Symbol) {
+    let exponential = pool.symbol("exponential of a coordinate", SymbolKind::Auxiliary);
+    let positive = Interval {
+        lower: Bound::Open(pool.zero()),
+        upper: Bound::Infinite,
+    };
+    pool.set_ranges([(exponential, positive)]);
+    let back = [(x, pool.log(pool.var(exponential)))].into_iter().collect();
+    (pool.simplify(pool.substitute(e, &back)), exponential)
 }

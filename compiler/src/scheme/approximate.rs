@@ -103,7 +103,20 @@ impl Context<'_> {
     /// Whether a state's coordinate takes every number into its domain.
     pub(super) fn is_mapped(&self, state: usize) -> bool {
         let declared = &self.model.states[state];
-        through(self.model, declared).is_some_and(|c| c.onto_line && !c.is_identity())
+        match &declared.through {
+            Some(_) => {
+                through(self.model, declared).is_some_and(|c| c.onto_line && !c.is_identity())
+            }
+            None => self.is_freed(state),
+        }
+    }
+
+    /// Whether a state is stepped in a coordinate that was chosen to keep it in its domain.
+    pub(super) fn is_freed(&self, state: usize) -> bool {
+        let declared = &self.model.states[state];
+        declared.through.is_none()
+            && self.projections[state].is_none()
+            && !self.coordinates[state].identity
     }
 
     /// Whether a state is stepped by one of the schemes here.

@@ -51,7 +51,10 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     let laws = own_law::drawn(model, dynamics, findings, &passengers);
     let calm = deterministic(model, dynamics);
     let steps: Vec<_> = (0..model.states.len())
-        .map(|i| step::step_coordinate(model, dynamics, i, calm[i]))
+        .map(|i| {
+            let has_law = rows[i].is_ok() || laws[i].is_ok() || passengers[i].is_some();
+            step::step_coordinate(model, dynamics, i, calm[i], has_law)
+        })
         .collect();
     let coordinates: Vec<Coordinate> = rows
         .iter()

@@ -29,10 +29,14 @@ pub(super) fn why(
         }
         let coordinate = &context.coordinates[i];
         if coordinate.forward != model.pool.var(model.states[i].symbol) {
-            let forward = model.pool.format(coordinate.forward);
+            let (name, forward) = (&model.states[i].name, model.pool.format(coordinate.forward));
+            let why = if context.is_freed(i) {
+                ", in which no step leaves the domain and its coefficients are globally Lipschitz in it"
+            } else {
+                ""
+            };
             reasons.push(format!(
-                "{} is stepped in the coordinate {forward}.",
-                model.states[i].name
+                "{name} is stepped in the coordinate {forward}{why}."
             ));
         }
     }

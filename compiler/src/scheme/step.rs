@@ -5,8 +5,9 @@ use std::collections::BTreeMap;
 use super::edges::{self, Projection};
 use super::{Coordinate, SchemeName, StateStep, Taylor};
 use crate::analysis::commute::{along_noise, relevant_drivers};
-use crate::analysis::coordinate::{Candidate, auxiliary, through};
+use crate::analysis::coordinate::{Candidate, auxiliary, candidates, through};
 use crate::analysis::dependence::mentioned;
+use crate::analysis::growth::{Growth, growth};
 use crate::calculus::{Dynamics, Process, expand};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
@@ -24,14 +25,16 @@ pub(super) fn coordinate(state: usize, candidate: &Candidate, process: Process) 
     }
 }
 
-/// The coordinate a one-step scheme works in: the author's, else the state itself, projected to its
-/// domain where its coefficients need that. Also Ito's rule on it, where it was needed. `calm`: nothing
-/// random reaches the state.
+/// The coordinate a one-step scheme works in: the author's; else one that takes an open domain onto the line, where that
+/// makes no coefficient steep; else the state itself, projected to its domain where its coefficients need
+/// that. Also Ito's rule on it, where it was needed. `calm`: nothing random reaches the state; `has_law`: it will
+/// not be stepped by such a scheme.
 pub(super) fn step_coordinate(
     model: &Model,
     dynamics: &Dynamics,
     state: usize,
     calm: bool,
+    has_law: bool,
 ) -> (Coordinate, Projection, Trace) {
     let declared = &model.states[state];
     let own = dynamics.states[state].clone();
@@ -49,6 +52,12 @@ pub(super) fn step_coordinate(
     }
     let mut identity = Candidate::identity(&model.pool, declared);
     let projection = edges::projection(model, dynamics, state, calm);
+    if projection.is_none()
+        && !has_law
+        && let Some((free, process, trace)) = free_coordinate(model, dynamics, state)
+    {
+        return (coordinate(state, &free, process), projection, trace);
+    }
     if !projection.is_none() {
         // The stored value may lie beyond the domain, so that its symbol must not have the state's range.
         identity.symbol = auxiliary(&model.pool, &declared.name);
@@ -59,6 +68,41 @@ pub(super) fn step_coordinate(
         projection,
         Trace::default(),
     )
+}
+
+/// A coordinate that takes an open domain onto the line, such as a logarithm or a logit, and in which drift and noise are
+/// globally Lipschitz as functions of it: no step leaves the domain then, and nothing is paid for that. Where
+/// the author asked for a scheme, the scheme is for the state itself.
+fn free_coordinate(
+    model: &Model,
+    dynamics: &Dynamics,
+    state: usize,
+) -> Option<(Candidate, Process, Trace)> {
+    let (pool, declared) = (&model.pool, &model.states[state]);
+    let noisy = |&b: &Expr| !pool.is_zero_literal(b);
+    let settled = declared.scheme.is_some() || declared.at_lower.or(declared.at_upper).is_some();
+    if settled || !dynamics.states[state].diffusion.iter().any(noisy) {
+        return None;
+    }
+    let tried = candidates(model, declared, None).into_iter();
+    tried
+        .filter(|c| c.onto_line && !c.is_identity())
+        .find_map(|candidate| {
+            let expansion = expand(model, &dynamics.states, candidate.forward);
+            let back = [(declared.symbol, candidate.inverse)].into_iter().collect();
+            let calm = |&e: &Expr| {
+                let written = pool.simplify(pool.substitute(e, &back));
+                growth(pool, written, &[candidate.symbol]) == Growth::Lipschitz
+            };
+            let mut coefficients = expansion.diffusion.iter().chain([&expansion.drift]);
+            coefficients.all(calm).then(|| {
+                let process = Process {
+                    drift: expansion.drift,
+                    diffusion: expansion.diffusion.clone(),
+                };
+                (candidate, process, expansion.trace)
+            })
+        })
 }
 
 /// Rewrites formulas in the states as formulas in the coordinates.

@@ -487,3 +487,42 @@ fn steep_drifts_are_tamed_and_additive_noise_is_taken_to_order_one_and_a_half() 
         "{refused:?}"
     );
 }
+
+/// An open domain is mapped onto the line where that makes no coefficient steep; an author's scheme is for the state
+/// itself, and what would grow like an exponential in the coordinate stays where it is.
+#[test]
+fn open_domains_are_left_by_no_step_where_that_costs_nothing() {
+    let volatility = state("Y", "kappa*(theta - Y)", "B = \"sigma\"", "");
+    let price = |drift: &str, noise: &str, more: &str| {
+        let x = state("X", drift, &format!("W = \"{noise}\""), more);
+        two(&format!("{x}{volatility}"))
+    };
+    let stepped = |planned: &Planned| {
+        let group = &planned.plan.groups[planned.plan.group_of(0)];
+        let forward = planned.plan.coordinates[0].forward;
+        (planned.model.pool.format(forward), group.preserves_domain)
+    };
+    let positive = "domain = \"(0, inf)\"";
+    for (drift, noise, more, expected) in [
+        ("0.02*X", "exp(Y)*X", positive, ("log(X)", true)),
+        ("Y*X", "(1 + Y^2)*X", positive, ("log(X)", true)),
+        (
+            "Y*X*(1 - X)",
+            "Y*X*(1 - X)",
+            "domain = \"(0, 1)\"",
+            ("log(X/(1 - X))", true),
+        ),
+        ("kappa*(1 - X)", "exp(Y)*X", positive, ("X", false)),
+        ("0.02*X", "exp(Y)*X^(3/4)", positive, ("X", false)),
+        (
+            "0.02*X",
+            "exp(Y)*X",
+            "domain = \"(0, inf)\"\nscheme = \"euler_maruyama\"",
+            ("X", false),
+        ),
+    ] {
+        let planned = price(drift, noise, more);
+        let (forward, kept) = stepped(&planned);
+        assert_eq!((forward.as_str(), kept), expected, "{drift}, {noise}");
+    }
+}
