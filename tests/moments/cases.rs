@@ -59,7 +59,7 @@ const fn stepped(
 }
 
 /// Every shipped model but the kelp stock, whose moments need extrapolation.
-pub(crate) const CASES: [Case; 22] = [
+pub(crate) const CASES: [Case; 23] = [
     exact("harbour_toll", [0.25, 1.0, 3.0], scalar::harbour_toll),
     exact("orchard_spot", [0.25, 1.0, 3.0], scalar::orchard_spot),
     exact("river_spread", [0.2, 1.0, 4.0], scalar::river_spread),
