@@ -7,18 +7,19 @@
 use crate::analysis::claims::{ClaimResult, judge};
 use crate::analysis::moments::Moments;
 use crate::calculus::{Dynamics, dynamics};
-use crate::diagnostic::{Diagnostic, Diagnostics};
+use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::front;
 use crate::model::Model;
 use crate::program::{Program, lower};
 use crate::scheme::{Plan, plan};
-use crate::source::SourceFile;
+use crate::source::{SourceFile, Span};
 
 /// What became of one model file: everything found wrong, and the model if it could be resolved.
 pub struct Compilation {
     /// All findings, in the order of the file.
     pub diagnostics: Vec<Diagnostic>,
-    /// The compiled model. None when the front found errors; there also when a later pass found some,
+    /// The compiled model. None when the front found errors, or a step would take more operations than a
+    /// program may have; there also when a later pass found errors,
     /// such as a refuted claim, so that the evidence can be shown. Only a compilation without errors
     /// may be run or generated from: ask [`Compilation::has_errors`].
     pub compiled: Option<Compiled>,
@@ -76,26 +77,36 @@ pub struct Compiled {
 pub fn compile(source: &SourceFile) -> Compilation {
     let mut diagnostics = Diagnostics::new();
     let compiled =
-        front::read(source, &mut diagnostics).map(|model| passes(model, &mut diagnostics));
+        front::read(source, &mut diagnostics).and_then(|model| passes(model, &mut diagnostics));
     Compilation {
         diagnostics: diagnostics.finish(),
         compiled,
     }
 }
 
-/// The passes after the front.
-fn passes(model: Model, diagnostics: &mut Diagnostics) -> Compiled {
+/// The passes after the front; none where no step program could be made.
+fn passes(model: Model, diagnostics: &mut Diagnostics) -> Option<Compiled> {
     let dynamics = dynamics(&model);
     let plan = plan(&model, &dynamics, diagnostics);
     let moments = Moments::new(&model, &dynamics);
     let claims = judge(&model, &dynamics, &moments, diagnostics);
-    let program = lower(&model, &plan);
-    Compiled {
+    let program = match lower(&model, &plan) {
+        Ok(program) => program,
+        Err(too_large) => {
+            let at = model.states.first().map_or(Span::default(), |s| s.span);
+            let hint = "states that read one another, and drivers that move one state, count in \
+                        pairs: split the model into several, or let fewer depend on one another";
+            let found = Diagnostic::error(Code::ProgramTooLarge, at, too_large.to_string());
+            diagnostics.push(found.hint(hint));
+            return None;
+        }
+    };
+    Some(Compiled {
         model,
         dynamics,
         plan,
         moments,
         claims,
         program,
-    }
+    })
 }

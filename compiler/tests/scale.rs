@@ -3,6 +3,7 @@
 
 mod large;
 
+use driftwright::diagnostic::Code;
 use driftwright::pipeline::{Compiled, compile};
 use driftwright::source::SourceFile;
 
@@ -30,6 +31,45 @@ fn correlated_states_take_formulas_in_proportion() {
     // The correlation matrix, which is part of the output, has 16 times the entries but one value, so
     // that formulas and operations grow with the states.
     assert_in_proportion(&large::correlated(10), &large::correlated(40));
+}
+
+#[test]
+fn a_step_of_correlated_states_takes_operations_in_proportion() {
+    let values = |count| compiled(&large::correlated(count)).program.values.len();
+    let (small, large) = (values(40), values(160));
+    assert!(large < 5 * small, "{small} to {large} operations");
+}
+
+#[test]
+fn a_program_of_millions_of_operations_is_an_error() {
+    let cascade = |count| compile(&SourceFile::new("cascade.toml", large::cascade(count)));
+    assert!(!cascade(100).has_errors());
+    let compilation = cascade(1_000);
+    let codes: Vec<Code> = compilation.diagnostics.iter().map(|d| d.code).collect();
+    assert_eq!(codes, [Code::ProgramTooLarge]);
+    let finding = &compilation.diagnostics[0];
+    assert_eq!(finding.message, "a step takes more than 2000000 operations");
+    assert!(compilation.compiled.is_none());
+}
+
+#[test]
+fn a_power_of_a_sum_is_kept() {
+    assert_in_proportion(&large::power_of_sum(50), &large::power_of_sum(200));
+    let compiled = compiled(&large::power_of_sum(200));
+    let power = compiled
+        .model
+        .pool
+        .format(compiled.dynamics.derived[0].formula);
+    assert_eq!(power, "(a + b + X + 1)^200");
+}
+
+#[test]
+fn many_models_do_not_grow_on_one_another() {
+    let before = work(&large::small(7));
+    (0..200).for_each(|n| {
+        work(&large::small(n));
+    });
+    assert_eq!(work(&large::small(7)), before);
 }
 
 #[test]

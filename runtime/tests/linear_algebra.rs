@@ -1,8 +1,10 @@
 //! Transition laws and Cholesky factors against the crate `nalgebra`, and closed forms.
 
-use driftwright_runtime::gauss::{cholesky, linear_transition, moving_transition};
+use driftwright_runtime::gauss::{
+    cholesky, correlate, linear_transition, moving_transition, symmetric,
+};
 use driftwright_runtime::random::{threefry2x64_20, uniform};
-use driftwright_runtime::{StepError, math};
+use driftwright_runtime::{Fused, LANES, Lane, StepError, Unfused, math};
 use nalgebra::DMatrix;
 
 /// A matrix with entries between -1 and 1.
@@ -295,4 +297,33 @@ fn moving_laws_that_do_not_exist() {
     );
     assert!(moving(0.0, 1.0, |_| [1e4, 0.0, 1.0]).is_err());
     assert!(moving(0.0, 1.0, |_| [f64::NAN, 0.0, 1.0]).is_err());
+}
+
+/// The same draw on no two lanes, and sources in another order than the noise.
+#[test]
+fn correlated_draws_are_a_triangular_product() {
+    for dim in [1, 2, 3, 4, 5, 8, 11, 30] {
+        let factor = random_matrix(dim, 40).lower_triangle();
+        let draws = random_matrix(dim.max(LANES), 41);
+        let draws = draws.view((0, 0), (dim, LANES)).into_owned();
+        let sources: Vec<usize> = (0..dim).rev().collect();
+        let noise: Vec<Lane> = (0..dim)
+            .map(|row| Lane(std::array::from_fn(|lane| draws[(dim - 1 - row, lane)])))
+            .collect();
+        let expected = &factor * &draws;
+        let (mut fused, mut unfused) = (vec![Lane::ZERO; dim], vec![Lane::ZERO; dim]);
+        correlate::<Fused>(&rows(&factor), &sources, &noise, &mut fused);
+        correlate::<Unfused>(&rows(&factor), &sources, &noise, &mut unfused);
+        for out in [fused, unfused] {
+            let ours: Vec<f64> = out.iter().flat_map(|lane| lane.0).collect();
+            assert!(distance(&ours, &expected) < 1e-14);
+        }
+    }
+}
+
+#[test]
+fn runs_of_equal_entries_fill_a_symmetric_matrix() {
+    let runs = [(1, 1.0), (1, 0.5), (1, 1.0), (2, 0.5), (1, 1.0)];
+    let expected = DMatrix::from_fn(3, 3, |i, j| if i == j { 1.0 } else { 0.5 });
+    assert_eq!(symmetric(3, &runs), rows(&expected));
 }

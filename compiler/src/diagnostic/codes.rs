@@ -238,6 +238,11 @@ SchemeRefused "DW0601" "scheme cannot be used"
 "The scheme asked for does not fit the state: `exact` needs a known law, `milstein` needs noise that
 commutes. Leave the key out to have one chosen."
 
+ProgramTooLarge "DW0602" "step program too large"
+"A step of this model takes more operations than could be compiled or run. States that read one another
+form a matrix, and drivers that move one state meet in pairs, so that the number grows with the square of
+theirs. Split the model into several, or let fewer states and drivers depend on one another."
+
 UnitMismatch "DW0701" "units that do not fit"
 "Terms of a sum, both sides of a claim or an assumption, an initial value and its state have one unit.
 A drift has the state's unit per unit of time, a diffusion the state's unit per square root of it, a

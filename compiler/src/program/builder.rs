@@ -20,16 +20,26 @@ pub(super) enum Phase {
     Observation,
 }
 
+/// How many operations a program may have, each entry of a matrix counted as one.
+pub(super) const MAX_OPERATIONS: usize = 2_000_000;
+
 /// The values made so far.
 #[derive(Default)]
 pub(super) struct Builder {
     values: Vec<Value>,
     index: HashMap<(Op, Rate), ValueId>,
+    operations: usize,
 }
 
 impl Builder {
     pub(super) fn into_values(self) -> Vec<Value> {
         self.values
+    }
+
+    /// Whether the program has more operations than it may. Nothing is kept from then on, and what has
+    /// been built is no program.
+    pub(super) fn is_exhausted(&self) -> bool {
+        self.operations > MAX_OPERATIONS
     }
 
     pub(super) fn rate(&self, id: ValueId) -> Rate {
@@ -56,6 +66,13 @@ impl Builder {
     fn intern(&mut self, op: Op, rate: Rate) -> ValueId {
         if let Some(&id) = self.index.get(&(op.clone(), rate)) {
             return id;
+        }
+        self.operations += match op.is_aggregate() {
+            true => op.operands().len(),
+            false => 1,
+        };
+        if self.is_exhausted() {
+            return ValueId(0);
         }
         let id = ValueId(
             u32::try_from(self.values.len()).expect("a program has fewer than 2^32 values"),
@@ -261,6 +278,12 @@ impl Builder {
             _ => rate.max(Rate::Setup),
         };
         self.intern(op, rate)
+    }
+
+    /// Normal draws mixed by a triangular factor.
+    pub(super) fn correlate(&mut self, factor: ValueId, sources: &[usize]) -> ValueId {
+        let sources = sources.into();
+        self.intern(Op::Correlate { factor, sources }, Rate::StepLane)
     }
 
     pub(super) fn extract(&mut self, matrix: ValueId, index: usize) -> ValueId {

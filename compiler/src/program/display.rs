@@ -106,6 +106,7 @@ impl Program {
                 list(alpha),
                 list(q)
             ),
+            Op::Correlate { factor, sources } => format!("correlate {factor} {sources:?}"),
             Op::Extract(of, index) => format!("extract {of} {index}"),
         }
     }

@@ -24,7 +24,7 @@ use std::collections::BTreeSet;
 
 pub use checks::{Bound, Check, Range};
 pub use functions::{BinaryOp, UnaryOp};
-pub use lower::lower;
+pub use lower::{TooLarge, lower};
 pub use op::{Comparison, DrawLaw, Number, Op, ValueId};
 pub use rate::Rate;
 pub use verify::Fault;
@@ -159,6 +159,21 @@ impl Program {
     /// All ids, operands first.
     pub fn ids(&self) -> impl Iterator<Item = ValueId> + use<> {
         (0..self.values.len() as u32).map(ValueId)
+    }
+
+    /// The numbers behind stored step or observation values: one each, as many as it has entries for a
+    /// matrix.
+    pub fn numbers(&self, stored: &[ValueId]) -> usize {
+        stored.iter().map(|&id| self.value(id).op.width()).sum()
+    }
+
+    /// The factors of correlated draws, which lanes read as whole matrices.
+    pub fn factors(&self) -> BTreeSet<ValueId> {
+        let factor = |value: &Value| match value.op {
+            Op::Correlate { factor, .. } => Some(factor),
+            _ => None,
+        };
+        self.values.iter().filter_map(factor).collect()
     }
 
     /// The values that a law needs at every instant it integrates over, operands first.

@@ -149,7 +149,16 @@ pub enum Op {
         /// Length of the step.
         length: ValueId,
     },
-    /// One number out of a matrix operation.
+    /// Normal draws mixed by the lower triangular factor of their covariance, on each path: row `i` is
+    /// the sum over `k <= i` of the factor's entry times the draw of the `k`-th source, multiply-adds from
+    /// zero and from the first column on.
+    Correlate {
+        /// An [`Op::Cholesky`] with as many rows as there are sources.
+        factor: ValueId,
+        /// The indices of the sources.
+        sources: Box<[usize]>,
+    },
+    /// One number out of a matrix operation, or one row of correlated draws.
     Extract(ValueId, usize),
 }
 
@@ -165,7 +174,10 @@ impl Op {
             | Self::Instant
             | Self::State(_)
             | Self::Noise(_) => Vec::new(),
-            Self::Unary(_, a) | Self::Extract(a, _) | Self::Draw { parameter: a, .. } => vec![*a],
+            Self::Unary(_, a)
+            | Self::Extract(a, _)
+            | Self::Draw { parameter: a, .. }
+            | Self::Correlate { factor: a, .. } => vec![*a],
             Self::Binary(_, a, b) => vec![*a, *b],
             Self::MulAdd(a, b, c) => vec![*a, *b, *c],
             Self::Select {
@@ -207,15 +219,20 @@ impl Op {
             Self::Transition { dim, .. } | Self::MovingTransition { dim, .. } => {
                 2 * dim * dim + dim
             }
+            Self::Correlate { sources, .. } => sources.len(),
             _ => 1,
         }
     }
 
-    /// Whether the result is a whole matrix, which only [`Op::Extract`] may read.
+    /// Whether the result is a whole matrix or vector: only [`Op::Extract`] may read it, and
+    /// [`Op::Correlate`] a factor.
     pub fn is_aggregate(&self) -> bool {
         matches!(
             self,
-            Self::Cholesky { .. } | Self::Transition { .. } | Self::MovingTransition { .. }
+            Self::Cholesky { .. }
+                | Self::Transition { .. }
+                | Self::MovingTransition { .. }
+                | Self::Correlate { .. }
         )
     }
 

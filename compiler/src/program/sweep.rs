@@ -72,7 +72,8 @@ impl Program {
         }
     }
 
-    /// The values of rate `uniform` that lanes of rate `lane` read or that are themselves results.
+    /// The values of rate `uniform` that lanes of rate `lane` read or that are themselves results; whole
+    /// matrices stand last.
     fn read_by_lanes(&self, uniform: Rate, lane: Rate) -> Vec<ValueId> {
         let operands = self
             .section(lane)
@@ -85,7 +86,11 @@ impl Program {
             .chain(results)
             .filter(|&id| self.value(id).rate == uniform)
             .collect();
-        read.into_iter().collect()
+        let (matrices, mut numbers): (Vec<ValueId>, Vec<ValueId>) = read
+            .into_iter()
+            .partition(|&id| self.value(id).op.is_aggregate());
+        numbers.extend(matrices);
+        numbers
     }
 }
 
@@ -145,6 +150,10 @@ impl Op {
                 q: all(q),
                 start: f(start),
                 length: f(length),
+            },
+            Self::Correlate { factor, sources } => Self::Correlate {
+                factor: f(factor),
+                sources,
             },
             Self::Extract(a, index) => Self::Extract(f(a), index),
             Self::Draw {

@@ -26,7 +26,7 @@ impl fmt::Display for Fault {
 
 impl Program {
     /// Checks single assignment (operands stand before what reads them), rates, indices, matrix shapes
-    /// and that matrices are only read entry by entry.
+    /// and that matrices are only read entry by entry, or as factors.
     ///
     /// # Errors
     /// The first fault.
@@ -55,7 +55,8 @@ impl Program {
                     value.rate, read.rate
                 ));
             }
-            if read.op.is_aggregate() && !matches!(value.op, Op::Extract(..)) {
+            let whole = matches!(value.op, Op::Extract(..) | Op::Correlate { .. });
+            if read.op.is_aggregate() && !whole {
                 return Err(format!("reads the matrix {operand} as a number"));
             }
         }
@@ -69,6 +70,10 @@ impl Program {
             Op::State(i) => (i, self.slots.len()),
             Op::Noise(i) => (i, self.sources.len()),
             Op::Draw { source, .. } => (source, self.draws.len()),
+            Op::Correlate { ref sources, .. } => (
+                sources.iter().copied().max().unwrap_or(0),
+                self.sources.len(),
+            ),
             _ => (0, 1),
         };
         if index >= end {
@@ -81,7 +86,7 @@ impl Program {
             Op::Time => rate == Rate::Observation,
             Op::Instant => rate == Rate::Instant,
             Op::State(_) => rate.is_lane(),
-            Op::Noise(_) | Op::Draw { .. } => rate == Rate::StepLane,
+            Op::Noise(_) | Op::Draw { .. } | Op::Correlate { .. } => rate == Rate::StepLane,
             _ => true,
         };
         if right {
@@ -105,6 +110,10 @@ impl Program {
                     && q.len() == dim * dim
                     && !rate.is_lane()
             }
+            Op::Correlate { factor, sources } => match &self.value(*factor).op {
+                Op::Cholesky { dim, .. } => *dim == sources.len(),
+                _ => false,
+            },
             Op::Extract(of, index) => {
                 let matrix = &self.value(*of).op;
                 matrix.is_aggregate() && *index < matrix.width()

@@ -1,5 +1,8 @@
 //! Models of any size, for the tests and the benchmark of the compiler's own work.
 
+// Each test takes the families it needs.
+#![allow(dead_code)]
+
 use std::fmt::Write as _;
 
 /// Geometric Brownian motions, all correlated, with a logarithm of a quotient for each.
@@ -51,4 +54,39 @@ pub(crate) fn chain(length: usize, step: &str) -> String {
         writeln!(text, "[derived.D{k}]\nformula = \"{formula}\"").unwrap();
     }
     text
+}
+
+/// States of which each follows the one before: every state reaches all after it.
+pub(crate) fn cascade(count: usize) -> String {
+    let mut text = "[model]\nname = \"cascade\"\ndrivers = [\"W\"]\n[parameters]\nk = 0.5\n\
+                    [states.X0]\ninitial = \"1\"\ndrift = \"-k*X0\"\ndiffusion = \"1\"\n"
+        .to_owned();
+    for i in 1..count {
+        let before = i - 1;
+        writeln!(
+            text,
+            "[states.X{i}]\ninitial = \"1\"\ndrift = \"k*(X{before} - X{i})\""
+        )
+        .unwrap();
+    }
+    text
+}
+
+/// The power of a sum, which is never multiplied out.
+pub(crate) fn power_of_sum(exponent: usize) -> String {
+    format!(
+        "[model]\nname = \"power\"\ndrivers = [\"W\"]\n[parameters]\na = 0.1\nb = 0.2\n\
+         [states.X]\ninitial = \"0.5\"\ndrift = \"-X\"\ndiffusion = \"a\"\n\
+         [derived.P]\nformula = \"(X + a + b + 1)^{exponent}\"\n"
+    )
+}
+
+/// A small model, one of many.
+pub(crate) fn small(number: usize) -> String {
+    format!(
+        "[model]\nname = \"small_{number}\"\ndrivers = [\"W\"]\n[parameters]\nmu = 0.05\nsigma = 0.2\n\
+         [states.S]\ninitial = \"{number} + 1\"\ndrift = \"mu*S\"\ndiffusion = \"sigma*S\"\n\
+         domain = \"(0, inf)\"\n[derived.L]\nformula = \"log(S)\"\n\
+         [claims]\nmean = {{ mean_of = \"S\", is = \"({number} + 1)*exp(mu*t)\" }}\n"
+    )
 }

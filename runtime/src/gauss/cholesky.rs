@@ -58,6 +58,33 @@ pub fn cholesky(dim: usize, covariance: &[f64], factor: &mut [f64]) -> Result<()
     Ok(())
 }
 
+/// A symmetric matrix from its lower triangle, row by row, in runs of equal entries: `(length, entry)`.
+///
+/// # Panics
+/// If the runs are longer than the triangle.
+///
+/// ```
+/// use driftwright_runtime::gauss::symmetric;
+/// assert_eq!(symmetric(2, &[(1, 4.0), (1, 2.0), (1, 5.0)]), [4.0, 2.0, 2.0, 5.0]);
+/// ```
+#[must_use]
+pub fn symmetric(dim: usize, runs: &[(usize, f64)]) -> Vec<f64> {
+    let mut matrix = vec![0.0; dim * dim];
+    let (mut row, mut column) = (0, 0);
+    for &(length, entry) in runs {
+        for _ in 0..length {
+            matrix[row * dim + column] = entry;
+            matrix[column * dim + row] = entry;
+            (row, column) = if column == row {
+                (row + 1, 0)
+            } else {
+                (row, column + 1)
+            };
+        }
+    }
+    matrix
+}
+
 /// Entry `(i, j)` of the covariance less what the first `j` columns of the factor explain.
 fn residual(dim: usize, covariance: &[f64], factor: &[f64], i: usize, j: usize) -> f64 {
     let explained = (0..j).map(|k| factor[i * dim + k] * factor[j * dim + k]);

@@ -1,13 +1,15 @@
 //! Small dense linear algebra behind the coefficients of Gaussian steps.
 //!
-//! Matrices are row-major slices. Everything here runs while a run is prepared, in
-//! unfused arithmetic on one thread, so its results are the same bits everywhere.
+//! Matrices are row-major slices. All but [`correlate`], which steps paths, runs while a run is prepared,
+//! in unfused arithmetic on one thread, so its results are the same bits everywhere.
 
 mod cholesky;
+mod correlate;
 mod moving;
 mod transition;
 
-pub use cholesky::cholesky;
+pub use cholesky::{cholesky, symmetric};
+pub use correlate::correlate;
 pub use moving::moving_transition;
 pub use transition::linear_transition;
 

@@ -1,6 +1,7 @@
 //! Lane sections as straight code: operands resolved, registers assigned.
 
 use std::collections::BTreeMap;
+use std::ops::Range;
 
 use driftwright_runtime::source_id;
 
@@ -39,9 +40,28 @@ pub(super) struct Instruction {
     pub(super) target: usize,
 }
 
+/// Draws that are mixed before the first instruction.
+#[derive(Clone, Debug)]
+pub(super) struct Correlated {
+    pub(super) factor: Factor,
+    pub(super) sources: Box<[usize]>,
+    /// The register of the first row; the others follow.
+    pub(super) first: usize,
+}
+
+/// Where a triangular factor stands.
+#[derive(Clone, Debug)]
+pub(super) enum Factor {
+    /// Its entries, the same in every step.
+    Numbers(Vec<f64>),
+    /// Among the values of the step.
+    Values(Range<usize>),
+}
+
 /// A lane section.
 #[derive(Clone, Debug)]
 pub(super) struct Code {
+    pub(super) correlated: Vec<Correlated>,
     pub(super) instructions: Vec<Instruction>,
     pub(super) results: Vec<Operand>,
     /// Scratch lanes needed.
@@ -88,11 +108,13 @@ impl<'a> Assembler<'a> {
             Rate::StepLane => &program.step_values,
             _ => &program.observation_values,
         };
-        let values = stored
-            .iter()
-            .enumerate()
-            .map(|(place, &id)| (id, place))
-            .collect();
+        let mut end = 0;
+        let values = stored.iter().map(|&id| {
+            let place = end;
+            end += program.value(id).op.width();
+            (id, place)
+        });
+        let values = values.collect();
         let registers = BTreeMap::new();
         Self {
             program,
@@ -108,9 +130,10 @@ impl<'a> Assembler<'a> {
 
     fn assemble(mut self, results: &[ValueId]) -> Code {
         let program = self.program;
-        let mut instructions = Vec::new();
+        let (mut correlated, mut instructions) = (Vec::new(), Vec::new());
         for id in program.section(self.rate) {
             let op = &program.value(id).op;
+            correlated.extend(self.correlated(op, id));
             if let Some(action) = self.action(op) {
                 // Taken before the operands are released: a target is never an operand.
                 let target = self.take();
@@ -121,10 +144,37 @@ impl<'a> Assembler<'a> {
         }
         let results = results.iter().map(|&id| self.operand(id)).collect();
         Code {
+            correlated,
             instructions,
             results,
             registers: self.count,
         }
+    }
+
+    /// Mixed draws get registers that nothing has written before them; a row is freed like any other.
+    fn correlated(&mut self, op: &Op, id: ValueId) -> Option<Correlated> {
+        let (factor, sources) = match op {
+            Op::Correlate { factor, sources } => (*factor, sources.clone()),
+            Op::Extract(of, row) => {
+                let register = self.registers[of] + row;
+                self.registers.insert(id, register);
+                return None;
+            }
+            _ => return None,
+        };
+        let first = self.count;
+        self.count += sources.len();
+        self.registers.insert(id, first);
+        let entries = self.setup.all(self.program, factor);
+        let factor = match self.values.get(&factor) {
+            Some(&place) => Factor::Values(place..place + entries.len()),
+            None => Factor::Numbers(entries.to_vec()),
+        };
+        Some(Correlated {
+            factor,
+            sources,
+            first,
+        })
     }
 
     fn take(&mut self) -> usize {

@@ -1,9 +1,9 @@
 //! Runs lane code: one instruction at a time over the 256 lanes of a block.
 
 use driftwright_runtime::random::Draws;
-use driftwright_runtime::{Arith, Lane};
+use driftwright_runtime::{Arith, Lane, gauss};
 
-use super::code::{Action, Code, Instruction, Operand};
+use super::code::{Action, Code, Factor, Instruction, Operand};
 use crate::program::{BinaryOp, Comparison, DrawLaw};
 
 /// An operand in place.
@@ -48,6 +48,14 @@ pub(super) fn run<A: Arith>(
     draws: Option<&Draws>,
     scratch: &mut [Lane],
 ) {
+    for correlated in &code.correlated {
+        let factor = match &correlated.factor {
+            Factor::Numbers(numbers) => numbers,
+            Factor::Values(places) => &values[places.clone()],
+        };
+        let out = &mut scratch[correlated.first..];
+        gauss::correlate::<A>(factor, &correlated.sources, noise, out);
+    }
     for instruction in &code.instructions {
         let (below, rest) = scratch.split_at_mut(instruction.target);
         let (target, above) = rest

@@ -72,8 +72,9 @@ impl Interpreter {
             Rate::Step => &self.program.step_values,
             _ => &self.program.observation_values,
         };
-        for (value, &id) in values.iter_mut().zip(read) {
-            *value = section.get(id);
+        let numbers = read.iter().flat_map(|&id| section.all(&self.program, id));
+        for (value, &number) in values.iter_mut().zip(numbers) {
+            *value = number;
         }
         Ok(())
     }
@@ -83,11 +84,11 @@ impl Simulator for Interpreter {
     fn shape(&self) -> Shape<'_> {
         Shape {
             states: self.program.slots.len(),
-            step_values: self.program.step_values.len(),
+            step_values: self.program.numbers(&self.program.step_values),
             step_scratch: self.step.registers,
             sources: &self.sources,
             outputs: &self.outputs,
-            observation_values: self.program.observation_values.len(),
+            observation_values: self.program.numbers(&self.program.observation_values),
             observation_scratch: self.observe.registers,
             left_domain: self.program.left_domain,
             time_dependent: self.program.time_dependent(),

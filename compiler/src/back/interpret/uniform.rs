@@ -54,6 +54,12 @@ impl Uniform {
         self.numbers[self.first[id.index()]]
     }
 
+    /// The numbers behind a value, more than one behind a matrix.
+    pub(super) fn all(&self, program: &Program, id: ValueId) -> &[f64] {
+        let width = program.value(id).op.width();
+        &self.numbers[self.first[id.index()]..][..width]
+    }
+
     /// Evaluates values; `times` are start and length of a step, or the time of an observation.
     pub(super) fn run(
         &mut self,
@@ -100,7 +106,8 @@ impl Uniform {
             | Op::Draw { .. }
             | Op::Cholesky { .. }
             | Op::Transition { .. }
-            | Op::MovingTransition { .. } => {
+            | Op::MovingTransition { .. }
+            | Op::Correlate { .. } => {
                 unreachable!("the verifier lets no lane and no matrix in here")
             }
         }

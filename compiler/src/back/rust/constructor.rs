@@ -12,11 +12,15 @@ use crate::program::{Bound, Check, Op, Range, Rate, ValueId};
 impl Generator<'_> {
     pub(super) fn constructor(&self) -> TokenStream {
         let name = &self.names.simulator;
-        let fields: Vec<_> = self
-            .fields_of_simulator()
-            .iter()
-            .map(|&id| self.names.value(id))
-            .collect();
+        let fields = self.fields_of_simulator();
+        let types = fields.iter().map(|id| {
+            if self.factors.contains(id) {
+                quote! { Vec<f64> }
+            } else {
+                quote! { f64 }
+            }
+        });
+        let fields: Vec<_> = fields.iter().map(|&id| self.names.value(id)).collect();
         let docs = format!(
             " A simulator of `{}`: the model with its parameters.",
             self.program.name
@@ -31,7 +35,7 @@ impl Generator<'_> {
             #[derive(Clone, Debug)]
             pub struct #name {
                 parameters: Parameters,
-                #(#fields: f64),*
+                #(#fields: #types),*
             }
 
             impl #name {

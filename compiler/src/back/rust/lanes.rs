@@ -2,7 +2,7 @@
 
 use std::collections::BTreeSet;
 
-use proc_macro2::{Ident, Span, TokenStream};
+use proc_macro2::{Ident, Literal, Span, TokenStream};
 use quote::quote;
 
 use super::Generator;
@@ -31,16 +31,17 @@ impl Generator<'_> {
             };
             quote! { #markers #lane.0[lane] = #value; }
         });
+        let correlated = self.correlated();
         let loops = self.loops(&quote! { #(#writes)* });
         let draws = if program.draws.is_empty() {
             quote! { _draws }
         } else {
             quote! { draws }
         };
-        let names =
-            [("values", &values), ("noise", &noise)].map(|(name, used)| argument(name, used));
-        let [values_name, noise_name] = names;
+        let values_name = argument("values", &values);
         let states_name = argument("states", &states);
+        let noise_name = argument("noise", &quote! { #noise #correlated });
+        let scratch_name = argument("scratch", &correlated);
         quote! {
             #[inline(always)]
             fn step<A: runtime::Arith>(
@@ -49,12 +50,13 @@ impl Generator<'_> {
                 #states_name: &mut [runtime::Lane],
                 #noise_name: &[runtime::Lane],
                 #draws: &runtime::random::Draws,
-                _scratch: &mut [runtime::Lane],
+                #scratch_name: &mut [runtime::Lane],
             ) {
                 #bindings
                 #values
                 #states
                 #noise
+                #correlated
                 #loops
             }
         }
@@ -118,10 +120,57 @@ impl Generator<'_> {
         if stored.is_empty() {
             return TokenStream::new();
         }
-        let names = stored.iter().map(|&id| self.read(id));
-        quote! {
-            let &[#(#names),*] = values else { unreachable!("the driver passes as many values as the shape says") };
+        let (numbers, factors) = self.numbers_and_factors(stored);
+        let names = numbers.iter().map(|&id| self.read(id));
+        let message = "the driver passes as many values as the shape says";
+        if factors.is_empty() {
+            return quote! {
+                let &[#(#names),*] = values else { unreachable!(#message) };
+            };
         }
+        let count = Literal::usize_unsuffixed(numbers.len());
+        let factors = factors.iter().enumerate().map(|(place, &id)| {
+            let (name, width) = (self.names.value(id), self.width(id));
+            let rest = rest("values", place + 1 == factors.len());
+            quote! { let (#name, #rest) = values.split_at(#width); }
+        });
+        quote! {
+            let Some((&[#(#names),*], values)) = values.split_first_chunk::<#count>() else {
+                unreachable!(#message)
+            };
+            #(#factors)*
+        }
+    }
+
+    /// Draws that are mixed before the loops over lanes, each kind into lanes of its own.
+    fn correlated(&self) -> TokenStream {
+        let mut tokens = TokenStream::new();
+        let mut lanes = self.correlated_lanes();
+        for id in self.program.section(Rate::StepLane) {
+            let Op::Correlate { factor, sources } = &self.program.value(id).op else {
+                continue;
+            };
+            lanes -= sources.len();
+            let rest = rest("scratch", lanes == 0);
+            let (name, factor, dim) = (self.names.value(id), self.read(*factor), self.width(id));
+            let sources = sources.iter().map(|&s| Literal::usize_unsuffixed(s));
+            tokens.extend(quote! {
+                let Some((#name, #rest)) = scratch.split_first_chunk_mut::<#dim>() else {
+                    unreachable!("the driver passes as many scratch lanes as the shape says")
+                };
+                runtime::gauss::correlate::<A>(#factor, &[#(#sources),*], noise, #name);
+            });
+        }
+        tokens
+    }
+
+    /// The scratch lanes that mixed draws take.
+    pub(super) fn correlated_lanes(&self) -> usize {
+        let values = self.program.values.iter();
+        values
+            .filter(|value| matches!(value.op, Op::Correlate { .. }))
+            .map(|value| value.op.width())
+            .sum()
     }
 
     fn has_lane_statement(&self, id: ValueId) -> bool {
@@ -184,6 +233,16 @@ fn pattern(names: &[Ident], lanes: &str, used: &BTreeSet<usize>) -> TokenStream 
     let message = format!("the driver passes as many {lane} as the shape says");
     quote! {
         let [#(#names),*] = #lanes_name else { unreachable!(#message) };
+    }
+}
+
+/// What is left of a slice: nothing behind the last part.
+pub(super) fn rest(name: &str, last: bool) -> TokenStream {
+    let name = Ident::new(name, Span::call_site());
+    if last {
+        quote! { _ }
+    } else {
+        quote! { #name }
     }
 }
 

@@ -13,7 +13,7 @@ mod simulator;
 mod spell;
 mod stages;
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use proc_macro2::{Literal, TokenStream};
 use quote::quote;
@@ -53,6 +53,8 @@ pub fn parameter_fields(program: &Program) -> Vec<String> {
 struct Generator<'a> {
     program: &'a Program,
     names: Names,
+    /// The matrices that lanes read as a whole.
+    factors: BTreeSet<ValueId>,
     /// The places of the notes that become comments, by value.
     notes: BTreeMap<ValueId, Vec<usize>>,
 }
@@ -62,6 +64,7 @@ impl<'a> Generator<'a> {
         Self {
             program,
             names: Names::new(program),
+            factors: program.factors(),
             notes: if comments {
                 notes(program)
             } else {

@@ -8,7 +8,7 @@ use super::stages::Stages;
 use crate::program::{Op, Program, Rate, ValueId};
 
 /// Names of locals that the frame of a function uses itself.
-const RESERVED: [&str; 13] = [
+const RESERVED: [&str; 15] = [
     "parameters",
     "required",
     "states",
@@ -22,6 +22,8 @@ const RESERVED: [&str; 13] = [
     "time",
     "scratch",
     "holds",
+    "place",
+    "covariance",
 ];
 
 /// Every name of a module.

@@ -37,8 +37,9 @@ impl Generator<'_> {
         let (source_count, output_count) =
             (count(program.sources.len()), count(program.outputs.len()));
         let states = count(program.slots.len());
-        let step_values = count(program.step_values.len());
-        let observation_values = count(program.observation_values.len());
+        let step_values = count(program.numbers(&program.step_values));
+        let observation_values = count(program.numbers(&program.observation_values));
+        let step_scratch = count(self.correlated_lanes());
         let left_domain = match program.left_domain {
             Some(slot) => {
                 let slot = count(slot);
@@ -56,7 +57,7 @@ impl Generator<'_> {
                 runtime::Shape {
                     states: #states,
                     step_values: #step_values,
-                    step_scratch: 0,
+                    step_scratch: #step_scratch,
                     sources: &SOURCES,
                     outputs: &OUTPUTS,
                     observation_values: #observation_values,
@@ -104,12 +105,7 @@ impl Generator<'_> {
             Ident::new(&name, Span::call_site())
         };
         let values = argument("values", !stored.is_empty());
-        let write = if stored.is_empty() {
-            TokenStream::new()
-        } else {
-            let stored = stored.iter().map(|&id| self.read(id));
-            quote! { values.copy_from_slice(&[#(#stored),*]); }
-        };
+        let write = self.stored_values(stored);
         let signature = if step {
             let start = argument("start", uses(&Op::Start));
             let length = argument("length", uses(&Op::Length));
@@ -128,6 +124,45 @@ impl Generator<'_> {
         }
     }
 
+    /// Writes the values that lanes read: numbers, then matrices.
+    fn stored_values(&self, stored: &[ValueId]) -> TokenStream {
+        let (numbers, factors) = self.numbers_and_factors(stored);
+        let numbers: Vec<TokenStream> = numbers.iter().map(|&id| self.read(id)).collect();
+        if factors.is_empty() && numbers.is_empty() {
+            return TokenStream::new();
+        }
+        if factors.is_empty() {
+            return quote! { values.copy_from_slice(&[#(#numbers),*]); };
+        }
+        let count = Literal::usize_unsuffixed(numbers.len());
+        let writes = factors.iter().enumerate().map(|(place, &id)| {
+            let (name, width) = (self.names.value(id), self.width(id));
+            let rest = super::lanes::rest("values", place + 1 == factors.len());
+            quote! {
+                let (place, #rest) = values.split_at_mut(#width);
+                place.copy_from_slice(&#name);
+            }
+        });
+        quote! {
+            let (place, values) = values.split_at_mut(#count);
+            place.copy_from_slice(&[#(#numbers),*]);
+            #(#writes)*
+        }
+    }
+
+    /// Stored values in two parts: the matrices stand last.
+    pub(super) fn numbers_and_factors<'v>(
+        &self,
+        stored: &'v [ValueId],
+    ) -> (&'v [ValueId], &'v [ValueId]) {
+        stored.split_at(stored.partition_point(|id| !self.factors.contains(id)))
+    }
+
+    /// How many numbers a value has.
+    pub(super) fn width(&self, id: ValueId) -> Literal {
+        Literal::usize_unsuffixed(self.program.value(id).op.width())
+    }
+
     /// Locals for the parameters and setup values among the operands.
     pub(super) fn bindings(&self, operands: impl Iterator<Item = ValueId>) -> TokenStream {
         let read: BTreeSet<ValueId> = operands.collect();
@@ -135,7 +170,11 @@ impl Generator<'_> {
         let stored = self.fields_of_simulator();
         let fields = read.iter().filter(|id| stored.contains(id)).map(|&id| {
             let name = self.names.value(id);
-            quote! { let #name = self.#name; }
+            if self.factors.contains(&id) {
+                quote! { let #name = self.#name.as_slice(); }
+            } else {
+                quote! { let #name = self.#name; }
+            }
         });
         quote! { #parameters #(#fields)* }
     }

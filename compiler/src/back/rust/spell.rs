@@ -25,6 +25,15 @@ pub(super) fn has_statement(op: &Op) -> bool {
     )
 }
 
+/// What becomes of a matrix that is no covariance.
+fn refused(place: Place) -> TokenStream {
+    if place == Place::Setup {
+        quote! { .map_err(|_| runtime::ParameterError::CorrelationNotPositiveSemidefinite)? }
+    } else {
+        quote! { ? }
+    }
+}
+
 /// A number as a literal that reads back to the same bits.
 pub(super) fn number(value: f64) -> TokenStream {
     if value.is_nan() {
@@ -81,6 +90,9 @@ impl Generator<'_> {
     fn statement(&self, id: ValueId, place: Place) -> TokenStream {
         let name = self.names.value(id);
         match &self.program.value(id).op {
+            Op::Cholesky { dim, covariance } if self.factors.contains(&id) => {
+                self.large_cholesky(name, *dim, covariance, place)
+            }
             Op::Cholesky { dim, covariance } => self.cholesky(name, *dim, covariance, place),
             Op::Transition {
                 dim,
@@ -191,14 +203,42 @@ impl Generator<'_> {
             Literal::usize_unsuffixed(dim * dim),
             Literal::usize_unsuffixed(dim),
         );
-        let refused = if place == Place::Setup {
-            quote! { .map_err(|_| runtime::ParameterError::CorrelationNotPositiveSemidefinite)? }
-        } else {
-            quote! { ? }
-        };
+        let refused = refused(place);
         quote! {
             let mut #name = [0.0; #size];
             runtime::gauss::cholesky(#dim, &[#(#covariance),*], &mut #name)#refused;
+        }
+    }
+
+    /// As [`Generator::cholesky`], in memory of its own, the covariance in runs of equal entries.
+    fn large_cholesky(
+        &self,
+        name: &Ident,
+        dim: usize,
+        covariance: &[ValueId],
+        place: Place,
+    ) -> TokenStream {
+        let mut runs: Vec<(usize, ValueId)> = Vec::new();
+        let rows = covariance.chunks_exact(dim).enumerate();
+        for &entry in rows.flat_map(|(row, entries)| &entries[..=row]) {
+            match runs.last_mut() {
+                Some((length, last)) if *last == entry => *length += 1,
+                _ => runs.push((1, entry)),
+            }
+        }
+        let runs = runs.into_iter().map(|(length, entry)| {
+            let (length, entry) = (Literal::usize_unsuffixed(length), self.read(entry));
+            quote! { (#length, #entry) }
+        });
+        let (size, dim) = (
+            Literal::usize_unsuffixed(dim * dim),
+            Literal::usize_unsuffixed(dim),
+        );
+        let refused = refused(place);
+        quote! {
+            let mut #name = vec![0.0; #size];
+            let covariance = runtime::gauss::symmetric(#dim, &[#(#runs),*]);
+            runtime::gauss::cholesky(#dim, &covariance, &mut #name)#refused;
         }
     }
 
@@ -267,6 +307,10 @@ impl Generator<'_> {
     fn extract(&self, of: ValueId, index: usize) -> TokenStream {
         let name = self.names.value(of);
         let index_of = Literal::usize_unsuffixed;
+        if matches!(self.program.value(of).op, Op::Correlate { .. }) {
+            let index = index_of(index);
+            return quote! { #name[#index].0[lane] };
+        }
         let (Op::Transition { dim, .. } | Op::MovingTransition { dim, .. }) =
             self.program.value(of).op
         else {

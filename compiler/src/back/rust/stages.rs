@@ -6,7 +6,7 @@
 
 use std::collections::{BTreeMap, BTreeSet};
 
-use proc_macro2::TokenStream;
+use proc_macro2::{Literal, TokenStream};
 use quote::quote;
 
 use super::Generator;
@@ -57,9 +57,12 @@ impl Stages {
     }
 }
 
-/// A slot or a normal draw: the driver passes it as a lane.
+/// A slot, a normal draw or a correlated one: it stands in a lane before the first loop.
 fn is_lane_already(program: &Program, id: ValueId) -> bool {
-    matches!(program.value(id).op, Op::State(_) | Op::Noise(_))
+    matches!(
+        program.value(id).op,
+        Op::State(_) | Op::Noise(_) | Op::Extract(..)
+    )
 }
 
 impl Generator<'_> {
@@ -100,7 +103,8 @@ impl Generator<'_> {
         let program = self.program;
         let computed = |id: &ValueId| {
             let op = &program.value(*id).op;
-            stages.stage[id] == stage && has_statement(op) && !matches!(op, Op::Draw { .. })
+            let call = matches!(op, Op::Draw { .. } | Op::Correlate { .. });
+            stages.stage[id] == stage && has_statement(op) && !call
         };
         let here: Vec<ValueId> = program.section(Rate::StepLane).filter(computed).collect();
         let mut read: BTreeSet<ValueId> = here
@@ -169,6 +173,10 @@ impl Generator<'_> {
             Op::Noise(source) => {
                 let lane = &self.names.sources[source];
                 quote! { #lane }
+            }
+            Op::Extract(of, index) if self.program.value(id).rate.is_lane() => {
+                let (rows, index) = (self.names.value(of), Literal::usize_unsuffixed(index));
+                quote! { &#rows[#index] }
             }
             _ if self.program.value(id).rate.is_lane() => {
                 let lane = self.names.lane(id);

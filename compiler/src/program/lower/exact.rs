@@ -3,7 +3,7 @@
 use std::collections::{BTreeMap, BTreeSet};
 
 use super::Lowering;
-use super::noise::{Mixture, Noise, Transition};
+use super::noise::{Mixture, Noise, Normal, Transition};
 use super::rows::{elapsed, is_decoupled};
 use crate::program::op::ValueId;
 use crate::scheme::{Component, Group, LinearGaussian, RowNoise};
@@ -75,14 +75,29 @@ impl Lowering<'_> {
 
     fn name_mixture(&mut self, state: usize, mixture: &Mixture) {
         let name = &self.model.states[state].name;
-        for &(source, coefficient) in mixture {
-            let source = &self.plan.noise.components[source].source;
+        for &(normal, coefficient) in mixture {
+            let coordinate = self.coordinate_text(state);
+            let source = |component: usize| &self.plan.noise.components[component].source;
+            let (source, text) = match normal {
+                Normal::Source(component) => {
+                    let source = source(component);
+                    let text = format!(
+                        "Standard deviation that the normal draw `{source}` gives {coordinate} over a step."
+                    );
+                    (source, text)
+                }
+                // The whole standard deviation is in the factor of the correlated draws.
+                Normal::Mixed(..) if self.builder.constant_value(coefficient).is_some() => continue,
+                Normal::Mixed(component, _) => {
+                    let source = source(component);
+                    let text = format!(
+                        "Factor of the correlated draw `{source}` in {coordinate} over a step."
+                    );
+                    (source, text)
+                }
+            };
             self.builder
                 .hint(coefficient, format!("deviation_{name}_{source}"));
-            let text = format!(
-                "Standard deviation that the normal draw `{source}` gives {} over a step.",
-                self.coordinate_text(state)
-            );
             self.note(state, coefficient, text);
         }
     }
@@ -200,8 +215,11 @@ impl Lowering<'_> {
         mixture: &Mixture,
     ) -> Option<ValueId> {
         let mut total = shift;
-        for &(source, coefficient) in mixture {
-            let draw = self.draw(source);
+        for &(normal, coefficient) in mixture {
+            let draw = match normal {
+                Normal::Source(source) => self.draw(source),
+                Normal::Mixed(_, value) => value,
+            };
             total = Some(match total {
                 Some(total) => self.builder.mul_add(coefficient, draw, total),
                 None => self.builder.mul(coefficient, draw),

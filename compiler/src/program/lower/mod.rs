@@ -19,9 +19,10 @@ mod square_root;
 mod system;
 
 use std::collections::BTreeMap;
+use std::fmt;
 
 use self::noise::Noise;
-use super::builder::{Builder, Phase};
+use super::builder::{Builder, MAX_OPERATIONS, Phase};
 use super::formula::{Environment, Formulas};
 use super::op::ValueId;
 use super::{Note, Program, Slot};
@@ -29,18 +30,37 @@ use crate::model::Model;
 use crate::scheme::{Method, Plan};
 use crate::symbolic::{Expr, Symbol, SymbolKind};
 
+/// A step program with more operations than it may have.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct TooLarge;
+
+impl fmt::Display for TooLarge {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "a step takes more than {MAX_OPERATIONS} operations")
+    }
+}
+
+impl std::error::Error for TooLarge {}
+
 /// Lowers a model and its plan. The result has passed [`Program::verify`].
+///
+/// # Errors
+/// [`TooLarge`] where states that read one another, or drivers of one state, are so many that their pairs
+/// exceed the budget: no program of that size could be compiled or run.
 ///
 /// # Panics
 /// When the program does not pass the verifier, or a formula of the plan reads what its place in a step
 /// does not offer: faults of the compiler, not of the model.
-pub fn lower(model: &Model, plan: &Plan) -> Program {
+pub fn lower(model: &Model, plan: &Plan) -> Result<Program, TooLarge> {
     let mut lowering = Lowering::new(model, plan);
     let mut slots = lowering.slots();
     let left_domain = lowering.domain_flag(&mut slots);
     let outputs = lowering.outputs();
     let checks = lowering.checks();
     let correlation = lowering.correlation();
+    if lowering.builder.is_exhausted() {
+        return Err(TooLarge);
+    }
     let program = Program {
         name: model.name.clone(),
         title: model.title.clone(),
@@ -69,7 +89,7 @@ pub fn lower(model: &Model, plan: &Plan) -> Program {
     if let Err(fault) = program.verify() {
         panic!("the step program of `{}` is faulty: {fault}", program.name);
     }
-    program
+    Ok(program)
 }
 
 /// Everything a pass over the plan shares.

@@ -3,7 +3,8 @@
 //! Components that are not correlated fall into blocks of their own. Within a block the covariance over
 //! a step of length h is known: entry (i, k) is `q_ik int_0^h exp((a_i + a_k) s) ds` where the rows
 //! decouple, else it comes from the matrix exponential. The normals are mixed by the covariance's lower
-//! triangular factor.
+//! triangular factor: entry by entry in a small block, by one operation in a large one, whose program
+//! would be quadratic in its components otherwise.
 
 use std::collections::BTreeMap;
 
@@ -16,9 +17,21 @@ use super::system::System;
 use crate::program::op::ValueId;
 use crate::scheme::{Component, LinearGaussian};
 
-/// A combination of sources of normal draws: (source, coefficient), the coefficients the same on all
-/// paths.
-pub(super) type Mixture = Vec<(usize, ValueId)>;
+/// A block with more components than this is mixed by one operation. Up to twenty, straight code is a few
+/// percent faster.
+const LARGEST_SPELLED_OUT: usize = 16;
+
+/// A normal number on each path.
+#[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub(super) enum Normal {
+    /// The draw of a source, by its index.
+    Source(usize),
+    /// The part of a component in a block that one operation mixes: component and value.
+    Mixed(usize, ValueId),
+}
+
+/// A combination of normal numbers, the coefficients the same on all paths.
+pub(super) type Mixture = Vec<(Normal, ValueId)>;
 
 /// The exact transition of a coupled group, out of a matrix operation.
 #[derive(Clone, Copy)]
@@ -61,14 +74,14 @@ impl Noise {
         lowering: &mut Lowering<'_>,
         weights: &[(usize, ValueId)],
     ) -> Mixture {
-        let mut sums: BTreeMap<usize, ValueId> = BTreeMap::new();
+        let mut sums: BTreeMap<Normal, ValueId> = BTreeMap::new();
         for &(component, weight) in weights {
-            for &(source, coefficient) in self.mixture(component) {
+            for &(normal, coefficient) in self.mixture(component) {
                 let part = lowering.builder.mul(weight, coefficient);
                 let total = sums
-                    .get(&source)
+                    .get(&normal)
                     .map_or(part, |&sum| lowering.builder.add(sum, part));
-                sums.insert(source, total);
+                sums.insert(normal, total);
             }
         }
         sums.into_iter().collect()
@@ -92,7 +105,7 @@ impl Noise {
         let dim = block.len();
         if dim == 1 {
             let deviation = lowering.builder.sqrt(covariance[0]);
-            self.mixtures[block[0]] = vec![(block[0], deviation)];
+            self.mixtures[block[0]] = vec![(Normal::Source(block[0]), deviation)];
             return;
         }
         let factor = lowering.builder.cholesky(dim, covariance);
@@ -110,17 +123,13 @@ impl Noise {
         let pool = lowering.model.pool.clone();
         if let [only] = *block {
             let row = &rows[only];
-            let mut drivers = row
-                .coefficients
-                .iter()
-                .filter(|&&c| !pool.is_zero_literal(c));
-            let (Some(&coefficient), None) = (drivers.next(), drivers.next()) else {
+            let [(_, coefficient)] = row.coefficients[..] else {
                 return false;
             };
             let variance = elapsed(lowering, pool.mul(pool.int(2), row.rate));
             let deviation = pool.mul(coefficient, pool.sqrt(variance));
             let value = lowering.in_step(deviation);
-            self.mixtures[only] = vec![(only, value)];
+            self.mixtures[only] = vec![(Normal::Source(only), value)];
             return true;
         }
         if !block.iter().all(|&i| pool.is_zero_literal(rows[i].rate)) {
@@ -146,12 +155,36 @@ impl Noise {
         factor: ValueId,
         scale: Option<ValueId>,
     ) {
+        if block.len() > LARGEST_SPELLED_OUT {
+            return self.mixed(lowering, block, factor, scale);
+        }
         for (row, &component) in block.iter().enumerate() {
             for (column, &source) in block.iter().enumerate().take(row + 1) {
                 let entry = lowering.builder.extract(factor, row * block.len() + column);
                 let entry = scale.map_or(entry, |scale| lowering.builder.mul(entry, scale));
-                self.mixtures[component].push((source, entry));
+                self.mixtures[component].push((Normal::Source(source), entry));
             }
+        }
+    }
+
+    /// One operation for all rows of a block; a component is its row, scaled.
+    fn mixed(
+        &mut self,
+        lowering: &mut Lowering<'_>,
+        block: &[usize],
+        factor: ValueId,
+        scale: Option<ValueId>,
+    ) {
+        let builder = &mut lowering.builder;
+        builder.hint(factor, "factor");
+        let rows = builder.correlate(factor, block);
+        builder.hint(rows, "correlated");
+        let scale = scale.unwrap_or_else(|| builder.number(1.0));
+        for (row, &component) in block.iter().enumerate() {
+            let value = builder.extract(rows, row);
+            let source = &lowering.plan.noise.components[component].source;
+            builder.hint(value, format!("correlated_{source}"));
+            self.mixtures[component] = vec![(Normal::Mixed(component, value), scale)];
         }
     }
 
@@ -176,7 +209,10 @@ impl Noise {
         }
         for &group in coupled {
             let offset = system.len();
-            system.group(linear(lowering, group).expect("a coupled group is linear"));
+            system.group(
+                lowering,
+                linear(lowering, group).expect("a coupled group is linear"),
+            );
             for &i in block {
                 if let Component::Convolution { group: of, state } = rows[i].component
                     && of == group
@@ -212,7 +248,7 @@ impl Noise {
     /// The transition of a coupled group that no driver reaches.
     pub(super) fn noise_free(lowering: &mut Lowering<'_>, system: &LinearGaussian) -> Transition {
         let mut rows = System::default();
-        rows.group(system);
+        rows.group(lowering, system);
         let (matrix, dim) = rows.transition(lowering);
         Transition {
             matrix,

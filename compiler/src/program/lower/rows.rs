@@ -7,30 +7,37 @@ use crate::program::op::ValueId;
 use crate::scheme::{Component, LinearGaussian, Method};
 use crate::symbolic::{Expr, Function};
 
+/// The coefficients of the drivers that are not zero: (driver, coefficient).
+pub(super) type Coefficients = Vec<(usize, Expr)>;
+
 /// A component's row: its drivers' coefficients and its own rate of decay.
 pub(super) struct Row {
     pub(super) component: Component,
-    pub(super) coefficients: Vec<Expr>,
+    pub(super) coefficients: Coefficients,
     pub(super) rate: Expr,
 }
+
+/// The coefficients of a row that are not zero.
+pub(super) fn coefficients(lowering: &Lowering<'_>, row: &[Expr]) -> Coefficients {
+    let all = row.iter().copied().enumerate();
+    all.filter(|&(_, c)| !lowering.model.pool.is_zero_literal(c))
+        .collect()
+}
+
 pub(super) fn rows(lowering: &Lowering<'_>) -> Vec<Row> {
     let pool = &lowering.model.pool;
     let row = |component| match component {
-        Component::Increment { driver } | Component::Companion { driver } => {
-            let unit = |j| if j == driver { pool.one() } else { pool.zero() };
-            let coefficients = (0..lowering.model.drivers.len()).map(unit).collect();
-            Row {
-                component,
-                coefficients,
-                rate: pool.zero(),
-            }
-        }
+        Component::Increment { driver } | Component::Companion { driver } => Row {
+            component,
+            coefficients: vec![(driver, pool.one())],
+            rate: pool.zero(),
+        },
         Component::Convolution { group, state } => {
             let system = linear(lowering, group).expect("a convolution belongs to an exact group");
             let i = position(lowering, group, state);
             Row {
                 component,
-                coefficients: system.c[i].clone(),
+                coefficients: coefficients(lowering, &system.c[i]),
                 rate: system.a[i][i],
             }
         }
@@ -111,9 +118,10 @@ fn coupled_group(lowering: &Lowering<'_>, row: &Row) -> Option<usize> {
 /// The components in blocks that are independent of one another, each in ascending order.
 pub(super) fn blocks(lowering: &Lowering<'_>, rows: &[Row]) -> Vec<Vec<usize>> {
     let mut block_of: Vec<usize> = (0..rows.len()).collect();
+    let reaches: Vec<Reach> = rows.iter().map(|row| Reach::new(lowering, row)).collect();
     for i in 0..rows.len() {
         for k in 0..i {
-            if linked(lowering, &rows[i], &rows[k]) && block_of[i] != block_of[k] {
+            if block_of[i] != block_of[k] && reaches[i].meets(&reaches[k], lowering) {
                 let (from, to) = (block_of[i].max(block_of[k]), block_of[i].min(block_of[k]));
                 block_of
                     .iter_mut()
@@ -129,46 +137,57 @@ pub(super) fn blocks(lowering: &Lowering<'_>, rows: &[Row]) -> Vec<Vec<usize>> {
     blocks.into_values().collect()
 }
 
-fn linked(lowering: &Lowering<'_>, first: &Row, second: &Row) -> bool {
-    let companion = |row: &Row| matches!(row.component, Component::Companion { .. });
-    if companion(first) != companion(second) {
-        return false;
+/// What decides whether two rows belong together.
+struct Reach {
+    companion: bool,
+    group: Option<usize>,
+    /// The row, or all rows of a coupled group: a coupled row may carry drivers of any of them.
+    rows: Vec<Coefficients>,
+}
+
+impl Reach {
+    fn new(lowering: &Lowering<'_>, row: &Row) -> Self {
+        let group = coupled_group(lowering, row);
+        let rows = match group.and_then(|g| linear(lowering, g)) {
+            Some(system) => {
+                let rows = system.c.iter();
+                rows.map(|c| coefficients(lowering, c)).collect()
+            }
+            None => vec![row.coefficients.clone()],
+        };
+        Self {
+            companion: matches!(row.component, Component::Companion { .. }),
+            group,
+            rows,
+        }
     }
-    let group = coupled_group(lowering, first);
-    if group.is_some() && group == coupled_group(lowering, second) {
-        return true;
+
+    fn meets(&self, other: &Self, lowering: &Lowering<'_>) -> bool {
+        if self.companion != other.companion {
+            return false;
+        }
+        if self.group.is_some() && self.group == other.group {
+            return true;
+        }
+        let together = |c: &Coefficients, d: &Coefficients| {
+            let rate = covariance_rate(lowering, c, d);
+            !lowering.model.pool.is_zero_literal(rate)
+        };
+        let mut pairs = self
+            .rows
+            .iter()
+            .flat_map(|c| other.rows.iter().map(move |d| (c, d)));
+        pairs.any(|(c, d)| together(c, d))
     }
-    // A coupled row may carry drivers of any row of its group.
-    let reach = |row: &Row| match coupled_group(lowering, row).and_then(|g| linear(lowering, g)) {
-        Some(system) => system.c.clone(),
-        None => vec![row.coefficients.clone()],
-    };
-    let (first, second) = (reach(first), reach(second));
-    first.iter().any(|c| {
-        second.iter().any(|d| {
-            !lowering
-                .model
-                .pool
-                .is_zero_literal(covariance_rate(lowering, c, d))
-        })
-    })
 }
 
 /// `c R d'`.
-pub(super) fn covariance_rate(lowering: &Lowering<'_>, c: &[Expr], d: &[Expr]) -> Expr {
+pub(super) fn covariance_rate(lowering: &Lowering<'_>, c: &Coefficients, d: &Coefficients) -> Expr {
     let pool = &lowering.model.pool;
     let correlation = &lowering.model.correlation;
     let mut terms = Vec::new();
-    for (j, &left) in c
-        .iter()
-        .enumerate()
-        .filter(|(_, e)| !pool.is_zero_literal(**e))
-    {
-        for (k, &right) in d
-            .iter()
-            .enumerate()
-            .filter(|(_, e)| !pool.is_zero_literal(**e))
-        {
+    for &(j, left) in c {
+        for &(k, right) in d {
             terms.push(pool.product([left, correlation[j][k], right]));
         }
     }

@@ -1,7 +1,7 @@
 //! Systems of rows that read one another: one matrix exponential for all of them.
 
 use super::Lowering;
-use super::rows::{Row, covariance_rate};
+use super::rows::{Coefficients, Row, coefficients, covariance_rate};
 use crate::program::op::{Op, ValueId};
 use crate::scheme::LinearGaussian;
 use crate::symbolic::Expr;
@@ -12,7 +12,7 @@ pub(super) struct System {
     /// (row, column, entry) of the drift matrix.
     a: Vec<(usize, usize, Expr)>,
     alpha: Vec<Option<Expr>>,
-    c: Vec<Vec<Expr>>,
+    c: Vec<Coefficients>,
 }
 
 impl System {
@@ -27,14 +27,14 @@ impl System {
         self.c.push(row.coefficients.clone());
     }
 
-    pub(super) fn group(&mut self, system: &LinearGaussian) {
+    pub(super) fn group(&mut self, lowering: &Lowering<'_>, system: &LinearGaussian) {
         let offset = self.len();
         for (i, row) in system.a.iter().enumerate() {
             let entries = row.iter().enumerate();
             self.a
                 .extend(entries.map(|(k, &entry)| (offset + i, offset + k, entry)));
             self.alpha.push(Some(system.alpha[i]));
-            self.c.push(system.c[i].clone());
+            self.c.push(coefficients(lowering, &system.c[i]));
         }
     }
 
