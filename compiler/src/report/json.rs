@@ -1,4 +1,7 @@
-//! The derivation for programs. Formulas are strings in the grammar of the model file.
+//! The derivation for programs. Formulas are strings in the grammar of the model file, none of them cut.
+//! A formula too long or too deep for one string names parts of itself, which stand under `where`, as they
+//! would in a model file: each once, however many formulas read it, in an order in which each reads only
+//! those before it.
 
 use serde_json::{Map, Value, json};
 
@@ -8,59 +11,60 @@ use crate::calculus::Expansion;
 use crate::diagnostic::diagnostic_json;
 use crate::model::{Calculus, Model};
 use crate::scheme::{Group, Order, Plan};
-use crate::symbolic::{Expr, Pool, Witness};
+use crate::symbolic::{Expr, Pool, SharedTexts, Witness};
 
 /// `derive --format json`.
 pub fn derivation(derivation: &Derivation<'_>) -> Value {
     let (model, dynamics) = (derivation.model, derivation.dynamics);
-    let derived = model.derived.iter().zip(&dynamics.derived);
-    let derived: Map<String, Value> = derived
-        .map(|(d, expansion)| (d.name.clone(), self::expansion(model, expansion)))
-        .collect();
-    document(derivation, derived)
+    let derived = model.derived.iter().map(|d| d.name.clone());
+    document(derivation, derived.zip(&dynamics.derived))
 }
 
 /// `derive --of FORMULA --format json`: the result stands under `derived` with the key `of`.
 pub fn on_the_spot(derivation: &Derivation<'_>, expansion: &Expansion) -> Value {
-    let derived = Map::from_iter([(
-        "of".to_owned(),
-        self::expansion(derivation.model, expansion),
-    )]);
-    document(derivation, derived)
+    document(derivation, std::iter::once(("of".to_owned(), expansion)))
 }
 
-fn document(derivation: &Derivation<'_>, derived: Map<String, Value>) -> Value {
+fn document<'e>(
+    derivation: &Derivation<'_>,
+    derived: impl Iterator<Item = (String, &'e Expansion)>,
+) -> Value {
     let model = derivation.model;
-    let pool = &model.pool;
+    let texts = SharedTexts::new(&model.pool, |name| is_taken(model, name));
+    let texts = &texts;
     let states: Map<String, Value> = model
         .states
         .iter()
         .zip(&derivation.dynamics.states)
         .map(|(s, process)| {
-            let drift = pool.format(process.drift);
+            let drift = texts.format(process.drift);
+            let diffusion = diffusion(model, texts, &process.diffusion);
             (
                 s.name.clone(),
-                json!({ "drift": drift, "diffusion": diffusion(model, &process.diffusion) }),
+                json!({ "drift": drift, "diffusion": diffusion }),
             )
         })
+        .collect();
+    let derived: Map<String, Value> = derived
+        .map(|(name, e)| (name, expansion(model, texts, e)))
         .collect();
     let methods: Vec<Value> = derivation
         .plan
         .groups
         .iter()
-        .map(|g| method(model, derivation.plan, g))
+        .map(|g| method(model, texts, derivation.plan, g))
         .collect();
     let claims: Map<String, Value> = derivation
         .claims
         .iter()
-        .map(|c| (c.name.clone(), claim(pool, c)))
+        .map(|c| (c.name.clone(), claim(&model.pool, texts, c)))
         .collect();
     let diagnostics: Vec<Value> = derivation
         .diagnostics
         .iter()
         .map(|d| diagnostic_json(&model.source, d))
         .collect();
-    json!({
+    let mut document = json!({
         "model": model.name,
         "calculus": match model.calculus {
             Calculus::Ito => "ito",
@@ -71,29 +75,44 @@ fn document(derivation: &Derivation<'_>, derived: Map<String, Value>) -> Value {
         "methods": methods,
         "claims": claims,
         "diagnostics": diagnostics,
-    })
+    });
+    let parts = texts.definitions();
+    if !parts.is_empty() {
+        let parts: Map<String, Value> = parts.into_iter().map(|(k, v)| (k, v.into())).collect();
+        document["where"] = parts.into();
+    }
+    document
+}
+
+/// Whether a name means something in the model file.
+fn is_taken(model: &Model, name: &str) -> bool {
+    let named = model
+        .derived
+        .iter()
+        .chain(&model.readouts)
+        .chain(&model.wheres);
+    named.into_iter().any(|n| n.name == name) || model.drivers.iter().any(|d| d.name == name)
 }
 
 /// Coefficients by driver; zero entries are left out.
-fn diffusion(model: &Model, coefficients: &[Expr]) -> Map<String, Value> {
+fn diffusion(model: &Model, texts: &SharedTexts<'_>, coefficients: &[Expr]) -> Map<String, Value> {
     let pool = &model.pool;
     model
         .drivers
         .iter()
         .zip(coefficients)
         .filter(|(_, c)| !pool.is_zero_literal(**c))
-        .map(|(d, c)| (d.name.clone(), Value::from(pool.format(*c))))
+        .map(|(d, c)| (d.name.clone(), Value::from(texts.format(*c))))
         .collect()
 }
 
-fn expansion(model: &Model, expansion: &Expansion) -> Value {
-    let pool = &model.pool;
+fn expansion(model: &Model, texts: &SharedTexts<'_>, expansion: &Expansion) -> Value {
     json!({
-        "formula": pool.format(expansion.formula),
-        "drift": pool.format(expansion.drift),
-        "diffusion": diffusion(model, &expansion.diffusion),
-        "chain_rule_drift": pool.format(expansion.chain_rule_drift),
-        "ito_correction": pool.format(expansion.ito_correction),
+        "formula": texts.format(expansion.formula),
+        "drift": texts.format(expansion.drift),
+        "diffusion": diffusion(model, texts, &expansion.diffusion),
+        "chain_rule_drift": texts.format(expansion.chain_rule_drift),
+        "ito_correction": texts.format(expansion.ito_correction),
     })
 }
 
@@ -106,7 +125,7 @@ fn order(order: Option<Order>) -> Value {
     }
 }
 
-fn method(model: &Model, plan: &Plan, group: &Group) -> Value {
+fn method(model: &Model, texts: &SharedTexts<'_>, plan: &Plan, group: &Group) -> Value {
     let names: Vec<&str> = group
         .states
         .iter()
@@ -116,7 +135,7 @@ fn method(model: &Model, plan: &Plan, group: &Group) -> Value {
         .map(|c| {
             (
                 model.states[c.state].name.clone(),
-                Value::from(model.pool.format(c.forward)),
+                Value::from(texts.format(c.forward)),
             )
         })
         .collect();
@@ -140,7 +159,7 @@ fn method(model: &Model, plan: &Plan, group: &Group) -> Value {
     })
 }
 
-fn claim(pool: &Pool, result: &ClaimResult) -> Value {
+fn claim(pool: &Pool, texts: &SharedTexts<'_>, result: &ClaimResult) -> Value {
     let mut entry = Map::new();
     entry.insert("verdict".to_owned(), result.verdict.name().into());
     entry.insert("reason".to_owned(), result.reason.clone().into());
@@ -154,7 +173,7 @@ fn claim(pool: &Pool, result: &ClaimResult) -> Value {
     ];
     for (key, side) in sides {
         if let Some(side) = side {
-            entry.insert(key.to_owned(), pool.format(side).into());
+            entry.insert(key.to_owned(), texts.format(side).into());
         }
     }
     if let Some(witness) = &result.witness {

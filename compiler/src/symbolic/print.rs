@@ -126,7 +126,10 @@ impl Pool {
                         above.push(digits(&size).0);
                     }
                 }
-                Node::Power(base, exponent) => match self.as_number(*exponent) {
+                // The base of a power that has a name need not have been written.
+                Node::Power(base, exponent) if done.contains_key(base) => match self
+                    .as_number(*exponent)
+                {
                     Some(n) if n < Rational::ZERO => below.push(self.power_text(*base, -n, done)),
                     Some(n) => above.push(self.power_text(*base, n, done)),
                     None => above.push(symbolic_power_text(&done[base], &done[exponent])),

@@ -10,10 +10,10 @@ use super::print::Piece;
 pub(super) const LONGEST_WHOLE: u64 = 2_000;
 
 /// A part that is read only once has a name where its text would be longer than this.
-const LONGEST_UNNAMED: usize = 2_000;
+pub(super) const LONGEST_UNNAMED: usize = 2_000;
 
 /// A part that is read more than once has a name where it weighs more than this.
-const LIGHTEST_NAMED: u64 = 8;
+pub(super) const LIGHTEST_NAMED: u64 = 8;
 
 impl Pool {
     /// The formula with named parts, cut at the budget.
@@ -58,7 +58,7 @@ impl Pool {
     }
 
     /// How often each part is read by others.
-    fn readers(&self, parts: &[Expr]) -> Table<Expr, usize> {
+    pub(super) fn readers(&self, parts: &[Expr]) -> Table<Expr, usize> {
         let mut readers: Table<Expr, usize> = Table::default();
         for &part in parts {
             self.node(part)
@@ -68,7 +68,7 @@ impl Pool {
     }
 
     /// The next of the names p1, p2, ... that the model does not use.
-    fn free_name(&self, count: &mut usize) -> String {
+    pub(super) fn free_name(&self, count: &mut usize) -> String {
         let mut letter = "p".to_owned();
         *count += 1;
         while self.find_symbol(&format!("{letter}{count}")).is_some() {
