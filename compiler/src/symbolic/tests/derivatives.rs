@@ -86,5 +86,7 @@ fn choices_products_and_powers() {
     }
     // Constant inside of where it has a value.
     assert_eq!(pool.derivative(parse(&pool, "(-2)^x"), x), pool.zero());
+    let power_of_zero = pool.pow(pool.zero(), pool.var(x));
+    assert_eq!(pool.derivative(power_of_zero, x), pool.zero());
     assert_eq!(pool.derivative(parse(&pool, "y^2 + 7"), x), pool.zero());
 }

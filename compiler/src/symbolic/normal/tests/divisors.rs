@@ -2,6 +2,8 @@
 //! ones.
 
 use super::{poly, proportional};
+use crate::symbolic::Limit;
+use crate::symbolic::normal::integer_poly::Budget;
 use crate::symbolic::normal::poly::Poly;
 use crate::symbolic::tests::pool;
 
@@ -167,4 +169,19 @@ fn contents_come_out() {
         }
         assert!(proportional(&pool, &back, &whole), "{text}");
     }
+}
+
+/// What is spent is gone, and what was left undone for it is noted.
+#[test]
+fn a_share_of_the_budget_is_spent_once() {
+    let pool = pool();
+    let share = usize::try_from(Limit::Division.amount() / 10).expect("a small number");
+    let mut budget = Budget::share(&pool, 10);
+    assert_eq!(budget.spend(share / 2), Some(()));
+    assert_eq!(budget.spend(share - share / 2), Some(()));
+    assert!(pool.exceeded().is_empty());
+    assert_eq!(budget.spend(1), None);
+    assert_eq!(pool.exceeded(), [Limit::Division]);
+    // It counts for the model as well.
+    assert_eq!(pool.operations(), share as u64);
 }

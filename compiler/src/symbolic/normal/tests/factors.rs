@@ -83,6 +83,7 @@ fn numbers_come_apart_into_primes() {
         (343, 1024),
         (9_699_690, 121),
         (39_601, 19_997),
+        (1_000_003, 20_011),
     ] {
         let number = Rational::from_parts(i64::into(top), u64::into(bottom));
         let powers = prime_powers(&number);
