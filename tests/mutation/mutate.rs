@@ -8,14 +8,19 @@ use std::path::{Path, PathBuf};
 use quote::quote;
 use syn::spanned::Spanned;
 use syn::visit_mut::{self, VisitMut};
-use syn::{BinOp, Expr, ImplItemFn, ItemFn, Lit, ReturnType, Stmt, Type, UnOp, parse_quote};
+use syn::{Expr, ImplItemFn, ItemFn, ReturnType, Stmt, Type, parse_quote};
+
+use crate::wrong::wrong;
 
 /// A place and what would be wrong there.
 #[derive(Clone, Debug)]
 pub(crate) struct Site {
-    file: String,
+    pub(crate) file: String,
     line: usize,
-    what: String,
+    /// The line as it is written.
+    pub(crate) text: String,
+    /// The change; the second of the same kind on a line says so.
+    pub(crate) what: String,
 }
 
 impl fmt::Display for Site {
@@ -46,7 +51,12 @@ pub(crate) fn sites(repository: &Path, directories: &[&str]) -> Vec<Site> {
     for (name, path) in sources(repository, directories) {
         let mut mutator = Mutator::new(&name, found.len(), &nothing);
         mutator.visit_file_mut(&mut parse(&path));
-        found.extend(mutator.sites);
+        let text = read(&path);
+        let lines: Vec<&str> = text.lines().map(str::trim).collect();
+        found.extend(mutator.sites.into_iter().map(|site| Site {
+            text: lines[site.line - 1].to_owned(),
+            ..site
+        }));
     }
     found
 }
@@ -63,9 +73,12 @@ pub(crate) fn write(from: &Path, into: &Path, directories: &[&str], chosen: &Cho
     }
 }
 
+fn read(path: &Path) -> String {
+    fs::read_to_string(path).expect("a source file")
+}
+
 fn parse(path: &Path) -> syn::File {
-    let text = fs::read_to_string(path).expect("a source file");
-    syn::parse_file(&text).expect("the compiler is Rust")
+    syn::parse_file(&read(path)).expect("the compiler is Rust")
 }
 
 /// The source files, those of tests left out, each with its path in the repository.
@@ -94,6 +107,12 @@ fn sources(repository: &Path, directories: &[&str]) -> Vec<(String, PathBuf)> {
     found
 }
 
+/// Functions that are a table of amounts, or a published generator of numbers.
+const TASTE_FUNCTIONS: [&str; 2] = ["amount", "uniform"];
+
+/// Functions whose arguments are amounts of memory or of work.
+const TASTE_CALLS: [&str; 2] = ["with_capacity", "Budget :: share"];
+
 struct Mutator<'a> {
     file: &'a str,
     first: usize,
@@ -114,10 +133,15 @@ impl<'a> Mutator<'a> {
     /// Notes a place; the number of its mutant if it is chosen.
     fn site(&mut self, line: usize, what: &str) -> Option<usize> {
         let index = self.first + self.sites.len();
-        let what = what.to_owned();
+        let same = |s: &&Site| s.line == line && s.what.split(" (").next() == Some(what);
+        let what = match self.sites.iter().filter(same).count() {
+            0 => what.to_owned(),
+            before => format!("{what} ({})", before + 1),
+        };
         self.sites.push(Site {
             file: self.file.to_owned(),
             line,
+            text: String::new(),
             what,
         });
         self.chosen.0.get(&index).copied()
@@ -167,6 +191,14 @@ impl VisitMut for Mutator<'_> {
         }
     }
 
+    fn visit_expr_call_mut(&mut self, call: &mut syn::ExprCall) {
+        let function = &call.func;
+        let name = quote!(#function).to_string();
+        if !TASTE_CALLS.iter().any(|taste| name.ends_with(taste)) {
+            visit_mut::visit_expr_call_mut(self, call);
+        }
+    }
+
     fn visit_item_fn_mut(&mut self, item: &mut ItemFn) {
         if item.sig.constness.is_none() {
             visit_mut::visit_item_fn_mut(self, item);
@@ -175,7 +207,8 @@ impl VisitMut for Mutator<'_> {
     }
 
     fn visit_impl_item_fn_mut(&mut self, item: &mut ImplItemFn) {
-        if item.sig.constness.is_none() {
+        let name = item.sig.ident.to_string();
+        if item.sig.constness.is_none() && !TASTE_FUNCTIONS.contains(&name.as_str()) {
             visit_mut::visit_impl_item_fn_mut(self, item);
             self.early_return(false, &item.sig.output, &mut item.block);
         }
@@ -195,7 +228,11 @@ impl VisitMut for Mutator<'_> {
     fn visit_item_const_mut(&mut self, _: &mut syn::ItemConst) {}
     fn visit_impl_item_const_mut(&mut self, _: &mut syn::ImplItemConst) {}
     fn visit_item_static_mut(&mut self, _: &mut syn::ItemStatic) {}
-    fn visit_pat_mut(&mut self, _: &mut syn::Pat) {}
+    fn visit_pat_mut(&mut self, pattern: &mut syn::Pat) {
+        if let syn::Pat::Guard(guarded) = pattern {
+            self.visit_expr_mut(&mut guarded.guard);
+        }
+    }
     fn visit_type_mut(&mut self, _: &mut Type) {}
     fn visit_generic_argument_mut(&mut self, _: &mut syn::GenericArgument) {}
     fn visit_attribute_mut(&mut self, _: &mut syn::Attribute) {}
@@ -203,97 +240,4 @@ impl VisitMut for Mutator<'_> {
     fn visit_expr_repeat_mut(&mut self, repeat: &mut syn::ExprRepeat) {
         self.visit_expr_mut(&mut repeat.expr);
     }
-}
-
-/// A wrong version of an expression, and what is wrong with it.
-fn wrong(expr: &Expr) -> Option<(String, Expr)> {
-    match expr {
-        Expr::Binary(binary) => {
-            let chained =
-                |e: &Expr| matches!(e, Expr::Let(_)) || quote!(#e).to_string().contains("let ");
-            if chained(&binary.left) || chained(&binary.right) {
-                return None;
-            }
-            let op = other_operator(&binary.op)?;
-            let what = format!("{} instead of {}", spelled(&op), spelled(&binary.op));
-            let (left, right) = (&binary.left, &binary.right);
-            Some((what, parse_quote!(#left #op #right)))
-        }
-        Expr::Unary(unary) => {
-            let what = match unary.op {
-                UnOp::Not(_) => "not negated",
-                UnOp::Neg(_) => "sign lost",
-                _ => return None,
-            };
-            let inner = &unary.expr;
-            Some((what.to_owned(), parse_quote!(#inner)))
-        }
-        Expr::Lit(literal) => {
-            let Lit::Int(number) = &literal.lit else {
-                return None;
-            };
-            let value: u128 = number.base10_parse().ok()?;
-            let wrong =
-                syn::LitInt::new(&format!("{}{}", value + 1, number.suffix()), number.span());
-            Some((format!("{wrong} instead of {number}"), parse_quote!(#wrong)))
-        }
-        Expr::MethodCall(call) => {
-            let name = call.method.to_string();
-            let other = other_method(&name)?;
-            let mut wrong = call.clone();
-            wrong.method = syn::Ident::new(other, call.method.span());
-            Some((
-                format!("{other} instead of {name}"),
-                Expr::MethodCall(wrong),
-            ))
-        }
-        _ => None,
-    }
-}
-
-fn spelled(op: &BinOp) -> String {
-    quote!(#op).to_string()
-}
-
-fn other_operator(op: &BinOp) -> Option<BinOp> {
-    Some(match op {
-        BinOp::Add(_) => parse_quote!(-),
-        BinOp::Sub(_) => parse_quote!(+),
-        BinOp::Mul(_) => parse_quote!(/),
-        BinOp::Div(_) => parse_quote!(*),
-        BinOp::Rem(_) => parse_quote!(/),
-        BinOp::And(_) => parse_quote!(||),
-        BinOp::Or(_) => parse_quote!(&&),
-        BinOp::Eq(_) => parse_quote!(!=),
-        BinOp::Ne(_) => parse_quote!(==),
-        BinOp::Lt(_) => parse_quote!(<=),
-        BinOp::Le(_) => parse_quote!(<),
-        BinOp::Gt(_) => parse_quote!(>=),
-        BinOp::Ge(_) => parse_quote!(>),
-        BinOp::AddAssign(_) => parse_quote!(-=),
-        BinOp::SubAssign(_) => parse_quote!(+=),
-        BinOp::MulAssign(_) => parse_quote!(/=),
-        BinOp::DivAssign(_) => parse_quote!(*=),
-        _ => return None,
-    })
-}
-
-/// The operations of the algebra and of the standard library that are taken for one another.
-fn other_method(name: &str) -> Option<&'static str> {
-    const PAIRS: [(&str, &str); 9] = [
-        ("add", "sub"),
-        ("mul", "div"),
-        ("min", "max"),
-        ("any", "all"),
-        ("is_some", "is_none"),
-        ("is_positive", "is_negative"),
-        ("is_non_negative", "is_non_positive"),
-        ("first", "last"),
-        ("lower", "upper"),
-    ];
-    PAIRS.iter().find_map(|&(a, b)| match name {
-        _ if name == a => Some(b),
-        _ if name == b => Some(a),
-        _ => None,
-    })
 }

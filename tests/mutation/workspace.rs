@@ -21,19 +21,67 @@ pub mod mutants {
 }
 "#;
 
-/// The test programs that may catch a mutant, the quickest first, with the tests to run.
-const TESTS: [(&str, &[&str]); 3] = [
-    ("driftwright", &["calculus", "symbolic", "analysis"]),
-    ("calculus", &[]),
-    ("planner", &[]),
+/// Some tests of a program.
+struct Step {
+    program: &'static str,
+    /// Parts of the names of the tests to run; none for all.
+    tests: &'static [&'static str],
+    /// Parts of the names of tests that are left out.
+    but: &'static [&'static str],
+    /// Processor seconds. Sound ones take a tenth of it; what takes longer has been sent round in
+    /// circles.
+    seconds: &'static str,
+}
+
+/// The table of equations, which catches most of what the quick tests leave.
+const EQUATIONS: &str = "tests::equations";
+
+/// Tests of the algebra that take a second and more.
+const SLOW: &[&str] = &[
+    EQUATIONS,
+    "tests::soundness",
+    "tests::budgets",
+    "tests::properties",
+    "long_sum",
+    "deep_and_large",
+];
+
+/// What may catch a mutant, the quickest first; the first step that fails is the last.
+const STEPS: [Step; 5] = [
+    Step {
+        program: "driftwright",
+        tests: &["calculus", "symbolic"],
+        but: SLOW,
+        seconds: "10",
+    },
+    Step {
+        program: "driftwright",
+        tests: &[EQUATIONS],
+        but: &[],
+        seconds: "40",
+    },
+    Step {
+        program: "calculus",
+        tests: &[],
+        but: &[],
+        seconds: "20",
+    },
+    Step {
+        program: "planner",
+        tests: &[],
+        but: &[],
+        seconds: "60",
+    },
+    Step {
+        program: "driftwright",
+        tests: SLOW,
+        but: &[EQUATIONS],
+        seconds: "60",
+    },
 ];
 
 /// Memory of a test in kB: a mutant that never stops growing must not take the machine with it.
 const MEMORY: &str = "6000000";
-
-/// Processor seconds of a test program. Sound ones take a few; one that takes minutes has been sent round
-/// in circles.
-const SECONDS: &str = "90";
 
 /// A shell that limits what it then becomes.
 const LIMITED: &str = r#"ulimit -v "$0" && ulimit -t "$1" && shift && exec "$@""#;
@@ -156,33 +204,30 @@ pub(crate) struct Built {
 impl Built {
     /// Without a mutant every test passes.
     pub(crate) fn assert_sound(&self) {
-        for (name, filters) in TESTS {
+        for step in &STEPS {
             assert!(
-                self.passes(name, filters, None),
-                "{name} fails without any mutant"
+                self.passes(step, None),
+                "{} fails without any mutant",
+                step.program
             );
         }
     }
 
     /// Whether a test notices a mutant.
     pub(crate) fn is_caught(&self, mutant: usize) -> bool {
-        TESTS
-            .iter()
-            .any(|(name, filters)| !self.passes(name, filters, Some(mutant)))
+        STEPS.iter().any(|step| !self.passes(step, Some(mutant)))
     }
 
-    fn passes(&self, name: &str, filters: &[&str], mutant: Option<usize>) -> bool {
-        let (_, path) = self
-            .tests
-            .iter()
-            .find(|(n, _)| n == name)
-            .expect("the test was built");
+    fn passes(&self, step: &Step, mutant: Option<usize>) -> bool {
+        let built = self.tests.iter().find(|(name, _)| name == step.program);
+        let (_, path) = built.expect("the test was built");
         let mut command = Command::new("sh");
         command
-            .args(["-c", LIMITED, MEMORY, SECONDS])
+            .args(["-c", LIMITED, MEMORY, step.seconds])
             .arg(path)
-            .args(filters)
-            .arg("-q")
+            .args(step.tests)
+            .args(step.but.iter().flat_map(|name| ["--skip", name]))
+            .args(["-q", "--test-threads=1"])
             .current_dir(&self.compiler)
             .stdout(Stdio::null())
             .stderr(Stdio::null());
