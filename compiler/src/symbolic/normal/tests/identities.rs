@@ -72,6 +72,29 @@ const IDENTITIES: &[(&str, &str)] = &[
     ("(p - 1)/(sqrt(p) - 1)", "sqrt(p) + 1"),
 ];
 
+/// Factors with positive last terms whose product ends in a negative one: the sign must not get lost.
+#[test]
+fn the_sign_of_a_product_is_that_of_its_factors() {
+    let pool = pool();
+    // x before y before z, as the terms are ordered.
+    for name in ["x", "y", "z"] {
+        parse(&pool, name);
+    }
+    let product = parse(&pool, "(x + y^2 - y*z)*(x + z - y)");
+    let expanded = pool.expand(product);
+    assert_ne!(expanded, product);
+    for power in ["1", "3"] {
+        let power = parse(&pool, power);
+        let [a, b] = [product, expanded].map(|e| pool.log(pool.pow(e, power)));
+        let difference = pool.sub(a, b);
+        assert!(
+            pool.normal(difference, Mode::Proof).is_zero(),
+            "{}",
+            pool.format(a)
+        );
+    }
+}
+
 /// In either mode: one must not hide what the other has lost.
 #[test]
 fn identities_hold_in_both_modes() {
