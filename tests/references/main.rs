@@ -6,6 +6,7 @@ mod closed;
 mod ends;
 mod estimate;
 mod extrapolated;
+mod implicit;
 mod laws;
 mod model;
 mod prices;

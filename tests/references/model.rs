@@ -10,6 +10,7 @@ pub(crate) struct ModelText {
     drivers: Vec<String>,
     parameters: Vec<(String, f64)>,
     positive: Vec<String>,
+    assumptions: Vec<String>,
     correlation: Vec<(String, String, f64)>,
     states: String,
     derived: String,
@@ -34,6 +35,12 @@ impl ModelText {
     /// Declares parameters to be positive, whatever their values.
     pub(crate) fn positive(mut self, names: &[&str]) -> Self {
         self.positive.extend(names.iter().map(ToString::to_string));
+        self
+    }
+
+    /// An inequality between parameters.
+    pub(crate) fn assumption(mut self, inequality: &str) -> Self {
+        self.assumptions.push(inequality.into());
         self
     }
 
@@ -105,6 +112,12 @@ impl ModelText {
                 format!("{value:?}")
             };
             writeln!(text, "{name} = {entry}").expect("writing to a string");
+        }
+        if !self.assumptions.is_empty() {
+            text.push_str("[assumptions]\n");
+            for (number, inequality) in self.assumptions.iter().enumerate() {
+                writeln!(text, "a{number} = \"{inequality}\"").expect("writing to a string");
+            }
         }
         if !self.correlation.is_empty() {
             text.push_str("[correlation]\n");

@@ -46,7 +46,7 @@ fn steps_without_noise() {
 }
 
 /// The moments at the horizon, from two step sizes extrapolated (Talay & Tubaro 1990); the scheme is the
-/// planner's own choice.
+/// planner's own choice, or drift-implicit.
 #[test]
 fn moments_with_noise() {
     let reference = Reference::load("E");
@@ -56,34 +56,36 @@ fn moments_with_noise() {
         ("E-doublewell-x0.5-s0.7", "X - X^3"),
     ] {
         let case = reference.by_id(id);
-        let model = ModelText::new(&["W"])
-            .parameters_of(case)
-            .state("X", "x0", drift, &[("W", "sigma")], "")
-            .readout("square", "X^2")
-            .readout("fourth", "X^4");
-        let with = |steps| {
-            let name = format!("{id}-{steps}");
-            estimate(&name, &model, &[case.parameter("T")], Some(steps), 500_000)
-        };
-        let (coarse, fine) = (with(128), with(256));
-        for (quantity, key) in [
-            ("X", "E[X(T)]"),
-            ("square", "E[X(T)^2]"),
-            ("fourth", "E[X(T)^4]"),
-        ] {
-            let (_, analytic) = case.values_at(key).next().expect("a value");
-            let (a, b) = (
-                coarse.check(0, quantity, analytic),
-                fine.check(0, quantity, analytic),
-            );
-            checks.push(Check {
-                sample: 2.0 * b.sample - a.sample,
-                // Errors of the two runs add whatever their dependence.
-                std_error: 2.0 * b.std_error + a.std_error,
-                ..b
-            });
+        for scheme in ["", "scheme = \"drift_implicit_euler\""] {
+            let model = ModelText::new(&["W"])
+                .parameters_of(case)
+                .state("X", "x0", drift, &[("W", "sigma")], scheme)
+                .readout("square", "X^2")
+                .readout("fourth", "X^4");
+            let with = |steps| {
+                let name = format!("{id}-{steps}");
+                estimate(&name, &model, &[case.parameter("T")], Some(steps), 500_000)
+            };
+            let (coarse, fine) = (with(128), with(256));
+            for (quantity, key) in [
+                ("X", "E[X(T)]"),
+                ("square", "E[X(T)^2]"),
+                ("fourth", "E[X(T)^4]"),
+            ] {
+                let (_, analytic) = case.values_at(key).next().expect("a value");
+                let (a, b) = (
+                    coarse.check(0, quantity, analytic),
+                    fine.check(0, quantity, analytic),
+                );
+                checks.push(Check {
+                    sample: 2.0 * b.sample - a.sample,
+                    // Errors of the two runs add whatever their dependence.
+                    std_error: 2.0 * b.std_error + a.std_error,
+                    ..b
+                });
+            }
         }
     }
-    assert_eq!(checks.len(), 6);
+    assert_eq!(checks.len(), 12);
     assert_family(&checks);
 }

@@ -6,7 +6,8 @@ use std::rc::Rc;
 use super::edges::{self, Projection};
 use super::step::{Frame, size, state_step};
 use super::{
-    Coordinate, Group, Kind, Law, Method, Order, SchemeName, StateStep, overrides, reasons,
+    Coordinate, Group, Kind, Law, Method, Order, SchemeName, StateStep, implicit, overrides,
+    reasons,
 };
 use crate::analysis::asymptotics::Side;
 use crate::analysis::commute::{Clash, clash};
@@ -35,6 +36,8 @@ pub(super) struct Context<'a> {
     pub(super) refusals: Vec<Option<String>>,
     /// Per state, whether a square-root process carries it.
     pub(super) carried: Vec<bool>,
+    /// Per state, where the drift-implicit scheme was asked for, its coordinate or why it does not fit.
+    pub(super) implicit: Vec<Option<Result<implicit::Found, String>>>,
 }
 
 /// What is known of a component of approximate states, and what follows.
@@ -78,8 +81,7 @@ impl Context<'_> {
             let choice = &choices[&component[0]];
             let mut by_scheme: BTreeMap<SchemeName, Vec<usize>> = BTreeMap::new();
             for &state in &component {
-                let scheme =
-                    overrides::honoured(self.model, state, choice).unwrap_or(choice.scheme);
+                let scheme = overrides::honoured(self, state, choice).unwrap_or(choice.scheme);
                 by_scheme.entry(scheme).or_default().push(state);
             }
             let company: Vec<SchemeName> = by_scheme.keys().copied().collect();
@@ -102,6 +104,9 @@ impl Context<'_> {
 
     /// Whether a state's coordinate takes every number into its domain.
     pub(super) fn is_mapped(&self, state: usize) -> bool {
+        if let Some(Ok(_)) = &self.implicit[state] {
+            return true;
+        }
         let declared = &self.model.states[state];
         match &declared.through {
             Some(_) => {

@@ -12,6 +12,7 @@ mod carried;
 mod closed_ends;
 mod edges;
 mod exact;
+mod implicit;
 mod noise;
 mod overrides;
 mod own_law;
@@ -32,9 +33,9 @@ use crate::model::Model;
 
 pub use crate::model::SchemeName;
 pub use plan::{
-    Becomes, CarriedState, CarriedStep, Component, Coordinate, Drawn, EdgeRule, Group, Kind, Law,
-    LinearGaussian, Method, NoiseComponent, NoisePlan, Order, Plan, RandomDriftStep, RowNoise,
-    SquareRootStep, StateStep, Taylor,
+    Becomes, CarriedState, CarriedStep, Component, Coordinate, Drawn, EdgeRule, Group, Implicit,
+    Kind, Law, LinearGaussian, Method, NoiseComponent, NoisePlan, Order, Plan, RandomDriftStep,
+    RowNoise, SquareRootStep, StateStep, Taylor,
 };
 
 /// Plans how the states of a model are stepped.
@@ -50,8 +51,12 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     let passengers = carried::passengers(model, dynamics, &rows, &findings);
     let laws = own_law::drawn(model, dynamics, findings, &passengers);
     let calm = deterministic(model, dynamics);
+    let implicit = overrides::implicit(model, dynamics);
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| {
+            if let Some(Ok(found)) = &implicit[i] {
+                return found.step_coordinate(i);
+            }
             let has_law = rows[i].is_ok() || laws[i].is_ok() || passengers[i].is_some();
             step::step_coordinate(model, dynamics, i, calm[i], has_law)
         })
@@ -84,6 +89,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         calm,
         refusals: refusals(&rows, &laws),
         carried: passengers.iter().map(Option::is_some).collect(),
+        implicit,
     };
     let mut groups = exact::groups(model, dynamics, &rows);
     let frame = step::Frame::new(model, &coordinates);

@@ -5,7 +5,8 @@ use std::rc::Rc;
 
 use super::approximate::{Choice, Context};
 use super::own_law::{OwnLaw, OwnLaws};
-use super::{Group, SchemeName, square_root};
+use super::{Group, SchemeName, implicit, square_root};
+use crate::calculus::Dynamics;
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Model;
 use crate::symbolic::Bound;
@@ -18,6 +19,7 @@ pub(super) fn scheme(model: &Model, state: usize) -> Option<SchemeName> {
         SchemeName::EulerMaruyama
             | SchemeName::Milstein
             | SchemeName::StrongTaylor15
+            | SchemeName::DriftImplicitEuler
             | SchemeName::TamedEuler
             | SchemeName::TamedMilstein
             | SchemeName::FullTruncationEuler
@@ -27,13 +29,15 @@ pub(super) fn scheme(model: &Model, state: usize) -> Option<SchemeName> {
 }
 
 /// The approximate scheme asked for, if it can be carried out for this state.
-pub(super) fn honoured(model: &Model, state: usize, choice: &Choice) -> Option<SchemeName> {
+pub(super) fn honoured(context: &Context<'_>, state: usize, choice: &Choice) -> Option<SchemeName> {
+    let model = context.model;
     let asked = scheme(model, state)?;
     let possible = match asked {
         SchemeName::Milstein | SchemeName::TamedMilstein => {
             choice.kink.is_none() && choice.clash.is_none()
         }
         SchemeName::StrongTaylor15 => no_taylor(model, choice).is_none(),
+        SchemeName::DriftImplicitEuler => matches!(&context.implicit[state], Some(Ok(_))),
         SchemeName::RungeKutta4 => choice.is_flow(),
         SchemeName::FullTruncationEuler => truncates(model, state),
         _ => true,
@@ -49,6 +53,18 @@ fn truncates(model: &Model, state: usize) -> bool {
 pub(super) fn excluded(model: &Model) -> BTreeMap<usize, String> {
     let asked = |i: usize| Some((i, format!("{} was asked for", scheme(model, i)?)));
     (0..model.states.len()).filter_map(asked).collect()
+}
+
+/// Per state, where the drift-implicit scheme was asked for, its coordinate or why it does not fit.
+pub(super) fn implicit(
+    model: &Model,
+    dynamics: &Dynamics,
+) -> Vec<Option<Result<implicit::Found, String>>> {
+    let found = |state: usize| {
+        let asked = scheme(model, state) == Some(SchemeName::DriftImplicitEuler);
+        asked.then(|| implicit::coordinate(model, dynamics, state))
+    };
+    (0..model.states.len()).map(found).collect()
 }
 
 /// Reports the overrides that cannot be honoured.
@@ -87,6 +103,10 @@ pub(super) fn check(
                     .to_owned(),
             ),
             SchemeName::QuadraticExponential => no_moments(model, &laws[i]),
+            SchemeName::DriftImplicitEuler => match &context.implicit[i] {
+                Some(Err(reason)) => Some(reason.clone()),
+                _ => None,
+            },
             SchemeName::ConditionalGaussian if !context.carried[i] => Some(format!(
                 "{} is not normal given a square-root process of the model",
                 state.name
@@ -95,7 +115,6 @@ pub(super) fn check(
             | SchemeName::EulerMaruyama
             | SchemeName::TamedEuler
             | SchemeName::FullTruncationEuler => None,
-            _ => Some("it is not available for this model".to_owned()),
         };
         if let Some(reason) = reason {
             let chosen = group.map_or(SchemeName::EulerMaruyama, |g| g.scheme);

@@ -392,6 +392,8 @@ pub struct StateStep {
     /// Milstein's terms: `(j, k, coefficient)` with `j <= k` adds
     /// `coefficient * (dW_j dW_k - rho_jk h)`. Empty for the Euler schemes.
     pub milstein: Vec<(usize, usize, Expr)>,
+    /// How the equation of the step is solved, for the drift-implicit scheme: the drift is taken at its end.
+    pub implicit: Option<Implicit>,
     /// What tames the drift, for the tamed schemes: the drift `a` enters as `a h/(1 + h size)`.
     pub taming: Option<Expr>,
     /// The terms of order 1.5, for the strong Taylor scheme.
@@ -400,6 +402,26 @@ pub struct StateStep {
     pub lower: Option<EdgeRule>,
     /// What is done at a closed upper end.
     pub upper: Option<EdgeRule>,
+}
+
+/// How `z - h a(z) = r` is solved for the coordinate z after a step. The formulas are in the coordinates' symbols, time and
+/// parameters; z and time are taken at the end of the step, other coordinates at its start.
+#[derive(Clone, Debug)]
+pub enum Implicit {
+    /// `a(z) = pole/z + constant + slope z` with z positive: a quadratic equation.
+    Quadratic {
+        /// `pole` there, positive.
+        pole: Expr,
+        /// `constant` there.
+        constant: Expr,
+        /// `slope` there.
+        slope: Expr,
+    },
+    /// By Newton's method.
+    Newton {
+        /// The derivative of `a`.
+        slope: Expr,
+    },
 }
 
 /// The terms that the strong Taylor scheme of order 1.5 adds to Milstein's (Kloeden and Platen 1992,

@@ -80,6 +80,11 @@ fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> St
              those of an explicit scheme diverge (Hutzenthaler, Jentzen and Kloeden 2012; Wang and Gan 2013 with \
              Milstein's term). Large steps slow a steep drift down: halve the step to see by how much."
         }
+        SchemeName::DriftImplicitEuler => {
+            "The drift is taken at the end of the step, in a coordinate whose noise does not depend on the states and whose \
+             drift is one-sided Lipschitz: the equation of a step has one solution, inside the domain, as long as the step is \
+             shorter than one over the largest slope of the drift (Alfonsi 2005; Dereich, Neuenkirch and Szpruch 2012)."
+        }
         SchemeName::StrongTaylor15 if choice.additive => {
             "The noise does not depend on the states: the strong Taylor scheme of order 1.5 needs no more than \
              the increments of the drivers and their integrals over the step (Kloeden and Platen 1992, section \

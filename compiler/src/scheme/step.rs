@@ -3,7 +3,7 @@
 use std::collections::BTreeMap;
 
 use super::edges::{self, Projection};
-use super::{Coordinate, SchemeName, StateStep, Taylor};
+use super::{Coordinate, SchemeName, StateStep, Taylor, implicit};
 use crate::analysis::commute::{along_noise, relevant_drivers};
 use crate::analysis::coordinate::{Candidate, auxiliary, candidates, through};
 use crate::analysis::dependence::mentioned;
@@ -148,6 +148,9 @@ pub(super) fn state_step(
             }
             _ => Vec::new(),
         },
+        implicit: (scheme == SchemeName::DriftImplicitEuler).then(|| {
+            implicit::solution(&model.pool, frame.write(process.drift), coordinate.symbol)
+        }),
         taming: None,
         taylor: match scheme {
             SchemeName::StrongTaylor15 => Some(taylor(model, dynamics, process, frame)),

@@ -5,6 +5,7 @@ mod carried;
 mod catalogue;
 mod ends;
 mod exact_laws;
+mod implicit;
 mod random_drift;
 mod schemes;
 mod square_root;

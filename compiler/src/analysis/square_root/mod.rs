@@ -15,14 +15,14 @@ mod candidates;
 mod carried;
 mod zero;
 
-use super::coordinate::Candidate;
+use super::coordinate::{Candidate, auxiliary};
 use super::free::{Freedom, free_of};
 use super::scalar::{Finding, Scalar};
 use super::{assume, sample};
 use crate::calculus::{Dynamics, Process, bracket, expand};
 use crate::model::Model;
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Expr, Sign, Symbol};
+use crate::symbolic::{Bound, Expr, Interval, Sign, Symbol};
 
 pub use carried::{Carried, carried};
 pub use zero::AtZero;
@@ -213,6 +213,34 @@ impl Scalar<'_> {
             pool.format(proved.dimension)
         ))
     }
+}
+
+/// Coordinates in which a state's noise may be constant: the roots of those in which it may be that of a square-root
+/// process (Lamperti's transform, from the right constant on).
+pub fn lamperti(model: &Model, dynamics: &Dynamics, state: usize) -> Vec<Candidate> {
+    let pool = &model.pool;
+    let Some(scalar) = Scalar::read(model, dynamics, state) else {
+        return Vec::new();
+    };
+    let symbol = auxiliary(pool, &model.states[state].name);
+    let from_zero = Interval {
+        lower: Bound::Closed(pool.zero()),
+        upper: Bound::Infinite,
+    };
+    pool.set_ranges([(symbol, from_zero)]);
+    let root = |c: Candidate| {
+        let square = [(c.symbol, pool.square(pool.var(symbol)))]
+            .into_iter()
+            .collect();
+        Candidate {
+            symbol,
+            forward: pool.simplify(pool.sqrt(c.forward)),
+            inverse: pool.simplify(pool.substitute(c.inverse, &square)),
+            onto_line: false,
+        }
+    };
+    let found = candidates::candidates(&scalar).into_iter();
+    found.map(root).collect()
 }
 
 /// A candidate that has passed Ito's rule.

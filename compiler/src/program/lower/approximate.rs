@@ -18,6 +18,7 @@ impl Lowering<'_> {
         let coordinate = &self.plan.coordinates[step.state];
         let length = self.length();
         let drift = match step.taming {
+            _ if step.implicit.is_some() => pool.zero(),
             None => pool.mul(step.drift, length),
             Some(size) => {
                 let held = pool.add(pool.one(), pool.mul(length, size));
@@ -25,13 +26,23 @@ impl Lowering<'_> {
             }
         };
         let mut value = self.in_step(pool.add(pool.var(coordinate.symbol), drift));
-        let text = format!(
-            "Drift of {}, {}, over a step.",
+        let when = match step.implicit {
+            Some(_) => "at its end",
+            None => "over a step",
+        };
+        let drift = format!(
+            "Drift of {}, {}, {when}.",
             self.coordinate_text(step.state),
             pool.format(step.drift)
         );
-        self.note(step.state, value, text);
+        if step.implicit.is_none() {
+            self.note(step.state, value, drift.clone());
+        }
         value = self.diffusion_terms(step, noise, value);
+        if let Some(implicit) = &step.implicit {
+            value = self.implicit_value(step, implicit, value);
+            self.note(step.state, value, drift);
+        }
         value = self.milstein_terms(step, noise, value);
         if let Some(taylor) = &step.taylor {
             value = self.taylor_terms(step.state, taylor, noise, value);

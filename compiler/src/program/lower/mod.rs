@@ -8,6 +8,7 @@ mod approximate;
 mod carried;
 mod constructor;
 mod exact;
+mod implicit;
 mod noise;
 mod observe;
 mod own_draws;
