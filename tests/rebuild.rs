@@ -102,6 +102,14 @@ impl Crate {
         names
     }
 
+    /// What is said of a crate that does not compile, by build script and compiler.
+    fn refusal(&self) -> String {
+        let refused = self.cargo();
+        assert_eq!(refused.status.code(), Some(101));
+        let said = [refused.stdout, refused.stderr].concat();
+        String::from_utf8(said).expect("cargo writes UTF-8")
+    }
+
     fn printed(&self, binary: &str) -> String {
         let output = Command::new(self.root.join("target/debug").join(binary))
             .output()
@@ -144,4 +152,13 @@ fn a_crate_is_compiled_again_exactly_when_a_model_changed() {
         errors.contains("models/pier.toml:10:14") && errors.contains("drift     = \"nu\""),
         "{errors}"
     );
+
+    // Nesting is a finding on whatever stack Cargo and the compiler give a model, not an overflow of it.
+    let deep = format!("\"{}mu{}\"", "(".repeat(100_000), ")".repeat(100_000));
+    let deep = MODEL.replace("\"mu\"", &deep);
+    user.write("models/pier.toml", &deep);
+    assert!(user.refusal().contains("DW0205"), "{}", user.refusal());
+    user.write("models/pier.toml", MODEL);
+    user.write("models/expanded.toml", &deep);
+    assert!(user.refusal().contains("DW0205"), "{}", user.refusal());
 }

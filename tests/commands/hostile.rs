@@ -58,6 +58,32 @@ fn numbers_out_of_reach_are_findings_and_tiny_ones_are_not() {
 }
 
 #[test]
+fn nesting_is_a_finding_in_every_command() {
+    let folder = Folder::new();
+    let (open, close) = ("(".repeat(100_000), ")".repeat(100_000));
+    let formula = altered(
+        "orchard_spot.toml",
+        "\"mu*S\"",
+        &format!("\"{open}S{close}\""),
+    );
+    let (open, close) = (open.replace('(', "["), close.replace(')', "]"));
+    let arrays = altered("orchard_spot.toml", "\"mu*S\"", &format!("{open}{close}"));
+    for (text, code) in [(formula, "DW0205"), (arrays, "DW0002")] {
+        let path = folder.write("m.toml", &text);
+        for command in [
+            "check", "derive", "generate", "simulate", "verify", "format",
+        ] {
+            let ran = run(&[command, &path]);
+            assert_eq!(ran.status, 2, "{command}");
+            let said = ran.out + &ran.err;
+            assert!(said.contains(code), "{command}: {said}");
+            // The line is far longer than anyone reads.
+            assert!(said.len() < 2000, "{command}: {} bytes", said.len());
+        }
+    }
+}
+
+#[test]
 fn a_folder_is_neither_model_nor_output() {
     let folder = Folder::new();
     let path = folder.path("");
@@ -89,6 +115,43 @@ mod unix {
             let said = String::from_utf8_lossy(&output.stderr).into_owned();
             assert_eq!(output.status.code(), Some(2), "{arguments:?}");
             assert!(said.contains("cannot write to standard output"), "{said}");
+        }
+    }
+
+    #[test]
+    fn a_device_that_is_full_is_said_and_is_status_2() {
+        let folder = Folder::new();
+        let link = folder.path("x.csv");
+        if !std::path::Path::new("/dev/full").exists() {
+            return;
+        }
+        symlink("/dev/full", &link).unwrap();
+        let ran = run(&[
+            "simulate",
+            "models/orchard_spot.toml",
+            "--paths",
+            "5000",
+            "--output",
+            &link,
+        ]);
+        assert_eq!(ran.status, 2);
+        assert!(ran.err.contains("could not be written"), "{}", ran.err);
+        assert_eq!(folder.files(), ["x.csv"]);
+    }
+
+    /// As `driftwright derive model.toml | head` has it.
+    #[test]
+    fn a_reader_that_has_gone_away_is_no_failure() {
+        for arguments in [
+            &["derive", "models/orchard_spot.toml"][..],
+            &["check", "--format", "json", "models/orchard_spot.toml"],
+            &["schema"],
+        ] {
+            let (reader, writer) = std::io::pipe().unwrap();
+            drop(reader);
+            let output = binary().args(arguments).stdout(writer).output().unwrap();
+            assert_eq!(output.status.code(), Some(0), "{arguments:?}");
+            assert!(output.stderr.is_empty(), "{output:?}");
         }
     }
 

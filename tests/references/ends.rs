@@ -91,6 +91,29 @@ fn a_step_across_the_whole_domain() {
     assert_eq!((found, failures), ([0.0; 3], Failures::default()));
 }
 
+/// `X' = 1 - X^2` from 1/2 is `tanh(t + atanh(1/2))`, `X' = -1 - X^2` is `tan(atan(1/2) - t)`. In 1/X the lower end
+/// is the upper one; where `m` may have either sign it is not known what values 1/X takes.
+#[test]
+fn an_end_in_a_coordinate_that_falls() {
+    let text = |drift: &str, range: &str, rule: &str| {
+        format!(
+            "[model]\nname = \"m\"\n[parameters]\nm = {{ value = 0.1{range} }}\n[states.X]\ninitial = \"0.5\"\n\
+             drift = \"{drift}\"\ndomain = \"[m, inf)\"\nthrough = \"1/X\"\nat_edge = \"{rule}\"\n"
+        )
+    };
+    let positive = ", range = \"(0, inf)\"";
+    let rising = |t: f64| (t + 0.5_f64.atanh()).tanh();
+    let (found, failures) = run(&text("1 - X^2", positive, "absorb"));
+    close(found, TIMES.map(rising), 1e-3);
+    assert_eq!(failures, Failures::default());
+    let falling = |t: f64| (0.5_f64.atan() - t).tan();
+    let (found, failures) = run(&text("-1 - X^2", positive, "absorb"));
+    close(found, [falling(0.1), falling(0.2), 0.1], 1e-3);
+    assert_eq!(failures, Failures::default());
+    let (found, failures) = run(&text("-1 - X^2", "", "as_equation"));
+    assert!(found[2] < 0.1 && failures.left_domain == 2, "{found:?}");
+}
+
 /// A mean is proved where the equation holds at all times, and open where an end stops it.
 #[test]
 fn claims_beyond_an_end_stay_open() {

@@ -116,6 +116,11 @@ impl Sketch {
             forward,
             inverse,
             identity: through.is_none(),
+            image: Some(if through.is_none() {
+                domain
+            } else {
+                Interval::REAL
+            }),
             process: Process {
                 drift: self.formula(drift),
                 diffusion: diffusion.clone(),

@@ -3,7 +3,9 @@
 use super::{EdgeRule, SchemeName};
 use crate::analysis::asymptotics::{Leading, Side, at_end};
 use crate::analysis::boundary::{End, classify};
+use crate::analysis::coordinate::through;
 use crate::analysis::limits::{Limit, limit};
+use crate::analysis::sample;
 use crate::calculus::{Dynamics, covariation};
 use crate::model::{AtEdge, Model};
 use crate::symbolic::{Bound, Expr, Function, Interval, Rational, Sign};
@@ -106,28 +108,50 @@ fn vanishes_like_root(
     }
 }
 
-/// The values a coordinate takes on the state's domain; the whole line where that is not known.
-pub(super) fn image(model: &Model, state: usize, forward: Expr) -> Interval {
+/// The values a coordinate takes on the state's domain; none where they are not known.
+pub(super) fn image(model: &Model, state: usize, forward: Expr) -> Option<Interval> {
     let (pool, x) = (&model.pool, model.states[state].symbol);
     let domain = model.states[state].domain;
-    let end = |bound: Bound| {
-        let place = Limit::Value(bound.value()?);
+    if forward == pool.var(x) {
+        return Some(domain);
+    }
+    let end = |bound: Bound, beyond: Limit| {
+        let place = bound.value().map_or(beyond, Limit::Value);
         match limit(pool, forward, x, place) {
             Limit::Value(end) if pool.depends_on(end, model.time) => None,
-            Limit::Value(end) if matches!(bound, Bound::Open(_)) => Some(Bound::Open(end)),
-            Limit::Value(end) => Some(Bound::Closed(end)),
+            Limit::Value(end) if matches!(bound, Bound::Closed(_)) => Some(Bound::Closed(end)),
+            Limit::Value(end) => Some(Bound::Open(end)),
+            end if end.is_infinite() => Some(Bound::Infinite),
+            // Nobody leaves a domain through an end that it does not have.
+            Limit::Unknown if bound == Bound::Infinite => Some(Bound::Infinite),
             _ => None,
         }
     };
-    let lower = end(domain.lower).unwrap_or(Bound::Infinite);
-    let upper = end(domain.upper).unwrap_or(Bound::Infinite);
+    let lower = end(domain.lower, Limit::MinusInfinity)?;
+    let upper = end(domain.upper, Limit::PlusInfinity)?;
     match pool.sign(pool.derivative(forward, x)) {
-        Sign::Positive | Sign::NonNegative => Interval { lower, upper },
-        Sign::Negative | Sign::NonPositive => Interval {
+        Sign::Positive | Sign::NonNegative => Some(Interval { lower, upper }),
+        Sign::Negative | Sign::NonPositive => Some(Interval {
             lower: upper,
             upper: lower,
-        },
-        Sign::Zero | Sign::Unknown => Interval::REAL,
+        }),
+        Sign::Zero | Sign::Unknown => None,
+    }
+}
+
+/// Whether a coordinate rises with the state; none where that was not seen. A coordinate is strictly
+/// monotone, so that one value of its slope tells where a proof does not.
+fn rises(model: &Model, state: usize, forward: Expr) -> Option<bool> {
+    let pool = &model.pool;
+    let slope = pool.derivative(forward, model.states[state].symbol);
+    match pool.sign(slope) {
+        Sign::Positive | Sign::NonNegative => Some(true),
+        Sign::Negative | Sign::NonPositive => Some(false),
+        Sign::Zero | Sign::Unknown => {
+            let slopes = sample::values(pool, slope);
+            let all = |up: bool| slopes.iter().all(|&v| v != 0.0 && (v > 0.0) == up);
+            (!slopes.is_empty()).then(|| [true, false].into_iter().find(|&up| all(up)))?
+        }
     }
 }
 
@@ -137,22 +161,20 @@ pub(super) fn rules(
     state: usize,
     forward: Expr,
 ) -> (Option<EdgeRule>, Option<EdgeRule>) {
-    let pool = &model.pool;
-    let (lower, upper) = (
-        rule(model, state, forward, Side::Lower),
-        rule(model, state, forward, Side::Upper),
-    );
-    match pool.sign(pool.derivative(forward, model.states[state].symbol)) {
-        Sign::Negative | Sign::NonPositive => (upper, lower),
-        _ => (lower, upper),
+    let rule = |side| rule(model, state, forward, side);
+    match rises(model, state, forward) {
+        Some(false) => (rule(Side::Upper), rule(Side::Lower)),
+        _ => (rule(Side::Lower), rule(Side::Upper)),
     }
 }
 
 /// The rule at an end of the state's domain, at the place that the end has in the coordinate; none where
-/// nothing is declared, the equation rules, or the coordinate is infinite there.
+/// nothing is declared, the equation rules, the coordinate is infinite there, or it is not known which end of
+/// the coordinate's range it is.
 pub(super) fn rule(model: &Model, state: usize, forward: Expr, side: Side) -> Option<EdgeRule> {
     let (bound, rule) = bound_and_rule(model, state, side);
     let x = model.states[state].symbol;
+    rises(model, state, forward)?;
     let Limit::Value(end) = limit(&model.pool, forward, x, Limit::Value(bound.value()?)) else {
         return None;
     };
@@ -181,4 +203,17 @@ pub(super) fn unguarded(model: &Model, dynamics: &Dynamics, state: usize) -> Vec
             )
         })
         .collect()
+}
+
+/// Whether the author's coordinate tells what to do at an end of the domain: it has a known value there, or
+/// is infinite, and rises or falls.
+pub(super) fn is_placed(model: &Model, state: usize, side: Side) -> bool {
+    let declared = &model.states[state];
+    let Some(candidate) = through(model, declared) else {
+        return false;
+    };
+    let (bound, _) = bound_and_rule(model, state, side);
+    let place = bound.value().map(Limit::Value);
+    let there = place.map(|place| limit(&model.pool, candidate.forward, declared.symbol, place));
+    there != Some(Limit::Unknown) && rises(model, state, candidate.forward).is_some()
 }

@@ -30,6 +30,7 @@ use crate::analysis::linear;
 use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostics;
 use crate::model::Model;
+use crate::symbolic::Interval;
 
 pub use crate::model::SchemeName;
 pub use plan::{
@@ -74,7 +75,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
                 (.., Some(Passenger { carried, .. })) => (&carried.coordinate, &carried.process),
                 _ => return step.0.clone(),
             };
-            step::coordinate(i, candidate, process.clone())
+            step::coordinate(model, i, candidate, process.clone())
         })
         .collect();
     announce_ranges(model, &coordinates);
@@ -133,7 +134,7 @@ fn announce_ranges(model: &Model, coordinates: &[Coordinate]) {
     let images: Vec<_> = coordinates
         .iter()
         .filter(moved)
-        .map(|c| (c.symbol, edges::image(model, c.state, c.forward)))
+        .map(|c| (c.symbol, c.image.unwrap_or(Interval::REAL)))
         .collect();
     model.pool.set_ranges(images);
 }

@@ -9,7 +9,7 @@ use crate::analysis::random_drift::Shape;
 use crate::analysis::square_root::AtZero;
 use crate::calculus::Process;
 use crate::symbolic::trace::Trace;
-use crate::symbolic::{Expr, Sign, Symbol};
+use crate::symbolic::{Expr, Interval, Sign, Symbol};
 
 /// How a whole model is stepped.
 #[derive(Clone, Debug)]
@@ -54,6 +54,9 @@ pub struct Coordinate {
     pub inverse: Expr,
     /// Whether both maps are the identity.
     pub identity: bool,
+    /// The values of u on the state's domain; none where they are not known. Where u is the state itself,
+    /// the domain, wherever a stored value lies.
+    pub image: Option<Interval>,
     /// Drift and diffusion of u by Ito's rule, in the states.
     pub process: Process,
 }

@@ -14,13 +14,19 @@ use crate::symbolic::trace::Trace;
 use crate::symbolic::{Expr, Function, Symbol};
 
 /// A state's coordinate with its process.
-pub(super) fn coordinate(state: usize, candidate: &Candidate, process: Process) -> Coordinate {
+pub(super) fn coordinate(
+    model: &Model,
+    state: usize,
+    candidate: &Candidate,
+    process: Process,
+) -> Coordinate {
     Coordinate {
         state,
         symbol: candidate.symbol,
         forward: candidate.forward,
         inverse: candidate.inverse,
         identity: candidate.is_identity(),
+        image: edges::image(model, state, candidate.forward),
         process,
     }
 }
@@ -45,7 +51,7 @@ pub(super) fn step_coordinate(
             diffusion: expansion.diffusion,
         };
         return (
-            coordinate(state, &candidate, process),
+            coordinate(model, state, &candidate, process),
             Projection::default(),
             expansion.trace,
         );
@@ -56,7 +62,7 @@ pub(super) fn step_coordinate(
         && !has_law
         && let Some((free, process, trace)) = free_coordinate(model, dynamics, state)
     {
-        return (coordinate(state, &free, process), projection, trace);
+        return (coordinate(model, state, &free, process), projection, trace);
     }
     if !projection.is_none() {
         // The stored value may lie beyond the domain, so that its symbol must not have the state's range.
@@ -64,7 +70,7 @@ pub(super) fn step_coordinate(
         identity.inverse = projection.apply(model, model.pool.var(identity.symbol));
     }
     (
-        coordinate(state, &identity, own),
+        coordinate(model, state, &identity, own),
         projection,
         Trace::default(),
     )

@@ -1,16 +1,19 @@
 //! What the author should know of a model's coordinates and open ends.
 
+use super::edges;
 use super::{Group, Law};
 use crate::analysis::asymptotics::Side;
 use crate::analysis::boundary::{End, classify};
 use crate::analysis::coordinate::through;
+use crate::analysis::end_rules;
 use crate::analysis::sample;
 use crate::calculus::Dynamics;
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Model;
 use crate::symbolic::{Bound, Sign};
 
-/// Reports each `through` that cannot be inverted or is not monotone.
+/// Reports each `through` that cannot be inverted, is not monotone, or has no known value at an end that
+/// absorbs or reflects.
 pub(super) fn coordinates(model: &Model, diagnostics: &mut Diagnostics) {
     for (i, state) in model.states.iter().enumerate() {
         let Some(formula) = &state.through else {
@@ -21,6 +24,19 @@ pub(super) fn coordinates(model: &Model, diagnostics: &mut Diagnostics) {
         } else if through(model, state).is_none() {
             "its inverse could not be found in closed form"
         } else {
+            let lost =
+                end_rules::ruled(model, i).find(|rule| !edges::is_placed(model, i, rule.side));
+            if let Some(rule) = lost {
+                let (end, name) = (model.pool.format(rule.end), &state.name);
+                let message = format!(
+                    "what `{}` is at the end {end} of the domain of {name} was not found: `at_edge` cannot be followed",
+                    formula.text
+                );
+                diagnostics.push(
+                    Diagnostic::error(Code::BadCoordinate, formula.span, message)
+                        .hint("give the parameters of the domain a range, or leave `through` out"),
+                );
+            }
             continue;
         };
         diagnostics.push(

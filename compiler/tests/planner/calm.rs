@@ -109,3 +109,17 @@ fn runge_kutta_steps_where_no_rule_can_act() {
     let refused = asked.found.iter().find(|d| d.code == Code::SchemeRefused);
     assert!(refused.is_some_and(|d| d.message.contains("absorbs or reflects")));
 }
+
+/// Where `m` may be 0, it is not known what 1/X is at the end that absorbs.
+#[test]
+fn a_rule_whose_place_in_the_coordinate_is_not_known_is_an_error() {
+    let text = |end: &str| {
+        let more = format!("domain = \"[{end}, inf)\"\nat_edge = \"absorb\"\nthrough = \"1/X\"");
+        let found = calm("10", "-1 - X^2", &more).found;
+        found
+            .into_iter()
+            .filter(|d| d.code == Code::BadCoordinate)
+            .count()
+    };
+    assert_eq!([text("m"), text("k")], [1, 0]);
+}

@@ -5,6 +5,7 @@ use super::Lowering;
 use super::noise::Noise;
 use crate::program::Slot;
 use crate::program::builder::Phase;
+use crate::program::formula::Formulas;
 use crate::program::functions::UnaryOp;
 use crate::program::op::{Comparison, ValueId};
 use crate::scheme::{Component, EdgeRule, StateStep, Taylor};
@@ -253,18 +254,18 @@ impl Lowering<'_> {
         let mut flag = current;
         for (state, next) in slots.iter().map(|s| s.next).enumerate() {
             let group = &self.plan.groups[self.plan.group_of(state)];
-            if !group.preserves_domain {
-                let coordinate = &self.plan.coordinates[state];
-                let declared = &self.model.states[state];
-                // A projected state's stored number is the state itself, wherever it lies.
-                let range = if coordinate.forward == self.model.pool.var(declared.symbol) {
-                    declared.domain
-                } else {
-                    self.model.pool.range(coordinate.symbol)
-                };
-                flag = self.leaving(next, range.lower, false, flag);
-                flag = self.leaving(next, range.upper, true, flag);
+            if group.preserves_domain {
+                continue;
             }
+            let (value, range) = match self.plan.coordinates[state].image {
+                Some(image) => (next, image),
+                None => (
+                    self.mapped_back(state, next),
+                    self.model.states[state].domain,
+                ),
+            };
+            flag = self.leaving(value, range.lower, false, flag);
+            flag = self.leaving(value, range.upper, true, flag);
         }
         if flag == current {
             return None;
@@ -278,6 +279,20 @@ impl Lowering<'_> {
             next: flag,
         });
         Some(slot)
+    }
+
+    /// The state whose coordinate has a value at the end of a step.
+    fn mapped_back(&mut self, state: usize, next: ValueId) -> ValueId {
+        let coordinate = &self.plan.coordinates[state];
+        let (start, length) = (self.builder.start(), self.builder.length());
+        let end = self.builder.add(start, length);
+        let mut environment = self.step_environment(end, [(coordinate.symbol, next)].into());
+        let mut formulas = Formulas {
+            pool: &self.model.pool,
+            builder: &mut self.builder,
+            environment: &mut environment,
+        };
+        formulas.lower(coordinate.inverse)
     }
 
     fn leaving(&mut self, value: ValueId, bound: Bound, upper: bool, flag: ValueId) -> ValueId {
