@@ -27,8 +27,12 @@ pub(super) struct Found {
 
 impl Found {
     /// The coordinate to step in, projected nowhere.
-    pub(super) fn step_coordinate(&self, state: usize) -> (Coordinate, Projection, Trace) {
-        let coordinate = step::coordinate(state, &self.candidate, self.process.clone());
+    pub(super) fn step_coordinate(
+        &self,
+        model: &Model,
+        state: usize,
+    ) -> (Coordinate, Projection, Trace) {
+        let coordinate = step::coordinate(model, state, &self.candidate, self.process.clone());
         (coordinate, Projection::default(), self.trace.clone())
     }
 }
@@ -93,7 +97,8 @@ fn settle(
     let domain = model.states[state].domain;
     let range = match candidate.is_identity() {
         true => domain,
-        false => edges::image(model, state, candidate.forward),
+        false => edges::image(model, state, candidate.forward)
+            .ok_or_else(|| Some(format!("the range of {shown} is not known")))?,
     };
     pool.set_ranges([(candidate.symbol, range)]);
     let back = [(x, candidate.inverse)].into_iter().collect();

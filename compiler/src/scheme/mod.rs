@@ -56,7 +56,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| {
             if let Some(Ok(found)) = &implicit[i] {
-                return found.step_coordinate(i);
+                return found.step_coordinate(model, i);
             }
             let has_law = rows[i].is_ok() || laws[i].is_ok() || passengers[i].is_some();
             step::step_coordinate(model, dynamics, i, calm[i], has_law)

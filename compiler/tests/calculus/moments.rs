@@ -6,7 +6,7 @@
 use std::collections::{BTreeMap, BTreeSet};
 
 use driftwright::pipeline::Compiled;
-use driftwright::symbolic::{Big, Expr, Symbol};
+use driftwright::symbolic::{Big, Expr, Limit, Symbol};
 use serde::Deserialize;
 
 use crate::common::{Equations, Shape, close, compile_text, compiled};
@@ -313,4 +313,24 @@ fn moments_are_not_guessed() {
             "{text}"
         );
     }
+}
+
+/// A moment whose equations need a chain of more functions than the budget grants stays open, and says so;
+/// a low one of the same process is proved.
+#[test]
+fn a_moment_beyond_the_budget_stays_open_and_says_why() {
+    let model = "[model]\nname = \"reverting\"\ndrivers = [\"W\"]\n[parameters]\nk = 1\nm = 0.5\ns = 0.3\n\
+                 [states.X]\ninitial = \"m\"\ndrift = \"k*(m - X)\"\ndiffusion = \"s*X\"\n[claims]\n\
+                 low = { mean_of = \"X\", is = \"m\" }\nhigh = { mean_of = \"X^60\", is = \"1\" }\n";
+    let compiled = compiled(model);
+    let [low, high] = &compiled.claims[..] else {
+        panic!("two claims")
+    };
+    assert_eq!(
+        (low.verdict.name(), high.verdict.name()),
+        ("proved", "open")
+    );
+    assert!(compiled.model.pool.exceeded().contains(&Limit::Moments));
+    let named = Limit::Moments.to_string();
+    assert!(high.reason.contains(&named), "{}", high.reason);
 }

@@ -1,6 +1,6 @@
 //! Budgets of the algebra, exceeded: what is left undone is said, and no answer becomes wrong.
 
-use crate::symbolic::{Expr, Limit, Pool, SymbolKind};
+use crate::symbolic::{Expr, Function, Limit, Pool, SymbolKind, Truth};
 
 /// Distinct parameters.
 fn parameters(pool: &Pool, prefix: &str, count: usize) -> Vec<Expr> {
@@ -76,4 +76,55 @@ fn shared_parts_are_printed_once() {
     assert!(text.len() < 2_000, "{text}");
     assert!(text.contains(" where "), "{text}");
     assert!(pool.exceeded().is_empty());
+}
+
+#[test]
+fn numbers_without_a_short_common_denominator_stay_in_their_terms() {
+    let pool = super::pool();
+    // Powers of eleven primes, each of about 1,600 bits.
+    let primes = [3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37];
+    parameters(&pool, "a", primes.len());
+    let terms = primes.iter().enumerate().map(|(k, &prime)| {
+        let exponent = (1_600.0 / f64::from(prime).log2()) as u32;
+        format!("a{k}/{prime}^{exponent}")
+    });
+    let sum = super::parse(&pool, &terms.collect::<Vec<_>>().join(" + "));
+    assert_eq!(pool.simplify(sum), sum);
+    assert_exceeded(&pool, Limit::Denominator);
+}
+
+#[test]
+fn common_factors_of_long_polynomials_may_stay() {
+    let pool = super::pool();
+    parameters(&pool, "a", 4);
+    let expanded = |text: &str| pool.expand(super::parse(&pool, text));
+    let shared = "((a0 + a1 + a2 + a3 + 1)^3 + a0*a1)";
+    let (above, below) = (
+        "((a0 - a1 + 2*a2 - a3 + 3)^4 + a2)",
+        "((a0 + 2*a1 - a2 + a3 - 2)^4 + a3)",
+    );
+    let long = pool.div(
+        expanded(&format!("{shared}*{above}")),
+        expanded(&format!("{shared}*{below}")),
+    );
+    let short = pool.div(super::parse(&pool, above), super::parse(&pool, below));
+    assert!(!pool.equal(long, short).is_no());
+    assert_exceeded(&pool, Limit::Division);
+}
+
+#[test]
+fn fewer_points_are_tried_of_long_formulas() {
+    let pool = super::pool();
+    let waves = parameters(&pool, "a", 3_000).into_iter();
+    let long = pool.sum(waves.map(|a| pool.call(Function::Sin, &[a])));
+    let (left, right) = (
+        super::parse(&pool, "log(x^2)"),
+        super::parse(&pool, "2*log(x)"),
+    );
+    // Alone, the answer is the same, within the budget.
+    assert!(matches!(pool.equal(left, right), Truth::CannotTell));
+    assert!(!pool.exceeded().contains(&Limit::Witness));
+    let question = pool.equal(pool.add(long, left), pool.add(long, right));
+    assert!(matches!(question, Truth::CannotTell));
+    assert_exceeded(&pool, Limit::Witness);
 }
