@@ -34,11 +34,13 @@ pub(crate) fn hides(entry: &toml::Table, drift: &str, steps: usize) -> bool {
     checks.iter().all(|c| c.passes(limit))
 }
 
-fn text_of(value: &toml::Value) -> &str {
+/// A value as a text.
+pub(crate) fn text_of(value: &toml::Value) -> &str {
     value.as_str().expect("a text")
 }
 
-fn number(value: &toml::Value) -> f64 {
+/// A value, or the text of one, as a number.
+pub(crate) fn number(value: &toml::Value) -> f64 {
     match value.as_str() {
         Some(text) => text.parse().expect("a number"),
         None => value.as_float().expect("a number"),

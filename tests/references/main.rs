@@ -8,6 +8,7 @@ mod estimate;
 mod extrapolated;
 mod implicit;
 mod laws;
+mod linear_flow;
 mod model;
 mod prices;
 mod random_drift;

@@ -14,6 +14,7 @@ pub mod free;
 pub mod growth;
 pub mod limits;
 pub mod linear;
+pub mod linear_flow;
 pub mod moments;
 mod noise;
 pub mod random_drift;

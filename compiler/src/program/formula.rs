@@ -26,6 +26,11 @@ impl Environment {
             memo: HashMap::new(),
         }
     }
+
+    /// Says what one more symbol stands for, before a formula mentions it.
+    pub(super) fn bind(&mut self, symbol: Symbol, value: ValueId) {
+        self.bindings.insert(symbol, value);
+    }
 }
 
 /// A summand: the value itself or the product of two values, and whether it is subtracted.

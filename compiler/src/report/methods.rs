@@ -3,7 +3,7 @@
 use super::document::{Align, Equation, Inline, Mark, Table, Term, code, prose, words};
 use super::{Derivation, Document, trace};
 use crate::model::Model;
-use crate::scheme::{Coordinate, Group, Plan};
+use crate::scheme::{Becomes, Coordinate, Group, Plan};
 
 fn states(model: &Model, group: &Group) -> String {
     let names: Vec<&str> = group
@@ -37,6 +37,7 @@ fn spoken(name: &str) -> String {
         "square_root" => "a square-root process".to_owned(),
         "brownian_motion_with_random_drift" => "a Brownian motion with a random drift".to_owned(),
         "bessel_with_drift" => "Bessel process with drift".to_owned(),
+        "commuting_linear_flow" => "commuting linear flows".to_owned(),
         "transformed_bessel_with_drift" => "transformed Bessel process with drift".to_owned(),
         "euler_maruyama" => "Euler-Maruyama".to_owned(),
         "milstein" => "Milstein".to_owned(),
@@ -59,8 +60,13 @@ fn orders(group: &Group) -> String {
 /// One line about a group: what it is stepped by and why that is right.
 pub fn method_line(model: &Model, plan: &Plan, group: &Group) -> String {
     let mut line = if group.is_exact() {
-        let law = group.law.map_or("known".to_owned(), |l| spoken(l.name()));
-        format!("exact: {law} law")
+        match (group.law, group.becomes) {
+            (None, Some(Becomes::LinearFlow)) => "exact: the solution".to_owned(),
+            (law, _) => {
+                let law = law.map_or("known".to_owned(), |l| spoken(l.name()));
+                format!("exact: {law} law")
+            }
+        }
     } else {
         format!(
             "approximate: {}, {}",

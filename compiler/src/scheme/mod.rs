@@ -3,7 +3,8 @@
 //! [`plan`] first looks for the largest linear Gaussian system ([`crate::analysis::linear`]) and steps it
 //! by its exact law, then for states that have a law of their own: square-root processes
 //! ([`crate::analysis::square_root`]), whose transition is noncentral chi-square, and Brownian motions with a
-//! random drift ([`crate::analysis::random_drift`]), then for states that are normal given a square-root process. What is left is stepped by the scheme of highest strong order that its noise
+//! random drift ([`crate::analysis::random_drift`]), then for states that are normal given a square-root process
+//! and for pairs moved by commuting linear flows ([`crate::analysis::linear_flow`]). What is left is stepped by the scheme of highest strong order that its noise
 //! allows: Milstein where the noise commutes, Euler-Maruyama where it does not, Euler with full
 //! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
@@ -13,6 +14,7 @@ mod closed_ends;
 mod edges;
 mod exact;
 mod implicit;
+mod linear_flow;
 mod noise;
 mod overrides;
 mod own_law;
@@ -26,7 +28,7 @@ mod warn;
 use self::carried::Passenger;
 use self::own_law::OwnLaws;
 use crate::analysis::dependence::deterministic;
-use crate::analysis::linear;
+use crate::analysis::{self, linear};
 use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostics;
 use crate::model::Model;
@@ -52,14 +54,18 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     let passengers = carried::passengers(model, dynamics, &rows, &findings);
     let laws = own_law::drawn(model, dynamics, findings, &passengers);
     let calm = deterministic(model, dynamics);
+    let has_law = |i: usize| rows[i].is_ok() || laws[i].is_ok() || passengers[i].is_some();
+    let lawless = |&i: &usize| !has_law(i) && !excluded.contains_key(&i);
+    let lawless: Vec<usize> = (0..model.states.len()).filter(lawless).collect();
+    let flows = analysis::linear_flow::find(model, dynamics, &lawless);
     let implicit = overrides::implicit(model, dynamics);
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| {
             if let Some(Ok(found)) = &implicit[i] {
                 return found.step_coordinate(model, i);
             }
-            let has_law = rows[i].is_ok() || laws[i].is_ok() || passengers[i].is_some();
-            step::step_coordinate(model, dynamics, i, calm[i], has_law)
+            let moved = flows.iter().any(|flow| flow.states.contains(&i));
+            step::step_coordinate(model, dynamics, i, calm[i], has_law(i) || moved)
         })
         .collect();
     let coordinates: Vec<Coordinate> = rows
@@ -88,7 +94,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         projections: &projections,
         traces: &traces,
         calm,
-        refusals: refusals(&rows, &laws),
+        refusals: refusals(&rows, &laws, &flows),
         carried: passengers.iter().map(Option::is_some).collect(),
         implicit,
     };
@@ -106,6 +112,11 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         &laws,
         &context.refusals,
     ));
+    groups.extend(
+        flows
+            .into_iter()
+            .map(|flow| linear_flow::group(model, flow)),
+    );
     let choices = context.choices();
     groups.extend(context.groups(&choices));
     groups.sort_by_key(|g| g.states.first().copied());
@@ -120,12 +131,18 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
 }
 
 /// Per state, why it has no exact law; none where it has one.
-fn refusals(rows: &linear::Rows, laws: &OwnLaws) -> Vec<Option<String>> {
-    let refusal = |(row, law): (&Result<linear::Row, String>, _)| match (row, law) {
+fn refusals(
+    rows: &linear::Rows,
+    laws: &OwnLaws,
+    flows: &[analysis::linear_flow::LinearFlow],
+) -> Vec<Option<String>> {
+    let flows = |state: usize| flows.iter().any(|flow| flow.states.contains(&state));
+    let refusal = |(i, (row, law)): (usize, (&Result<linear::Row, String>, _))| match (row, law) {
+        _ if flows(i) => None,
         (Ok(_), _) | (_, &Ok(_)) => None,
         (_, Err(Some(reason))) | (Err(reason), Err(None)) => Some(reason.clone()),
     };
-    rows.iter().zip(laws).map(refusal).collect()
+    rows.iter().zip(laws).enumerate().map(refusal).collect()
 }
 
 /// Tells the algebra which values the coordinates take. A projected state's stored value may take any.

@@ -63,6 +63,7 @@ fn reads_increment(pool: &Pool, group: &Group, driver: usize) -> bool {
             .iter()
             .zip(&system.c)
             .any(|(&noise, c)| noise == RowNoise::Increments && present(c[driver])),
+        Method::LinearFlow(flow) => flow.increments.iter().any(|&(j, _)| j == driver),
         Method::Carried(step) => step.states.iter().any(|s| present(s.rest[driver])),
         Method::SquareRoot(step) => match &step.draw {
             Drawn::Exactly => false,

@@ -5,6 +5,7 @@
 use std::fmt;
 
 use super::SchemeName;
+use crate::analysis::linear_flow::LinearFlow;
 use crate::analysis::random_drift::Shape;
 use crate::analysis::square_root::AtZero;
 use crate::calculus::Process;
@@ -182,6 +183,8 @@ pub enum Becomes {
     RandomDrift,
     /// du = m coth(m u/s^2) dt + s dW with one coordinate: the distance of a drifted Brownian motion in three dimensions.
     BesselWithDrift,
+    /// dX = A X dt + sum B_j X dW_j with matrices that commute.
+    LinearFlow,
     /// A linear differential equation without noise.
     Deterministic,
 }
@@ -196,6 +199,7 @@ impl Becomes {
             Self::SquareRoot => "square_root",
             Self::RandomDrift => "brownian_motion_with_random_drift",
             Self::BesselWithDrift => "bessel_with_drift",
+            Self::LinearFlow => "commuting_linear_flow",
             Self::Deterministic => "deterministic",
         }
     }
@@ -263,6 +267,8 @@ pub enum Method {
     RandomDrift(RandomDriftStep),
     /// The normal law given a square-root process at both ends of the step.
     Carried(CarriedStep),
+    /// The exact map of two states by the drivers' increments.
+    LinearFlow(LinearFlow),
     /// A one-step scheme that reads increments of the drivers: Euler-Maruyama, Milstein, full truncation.
     Step(Vec<StateStep>),
     /// Classical Runge-Kutta over the step, all states of the group together: the drift of each

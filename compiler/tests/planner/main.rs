@@ -6,6 +6,7 @@ mod catalogue;
 mod ends;
 mod exact_laws;
 mod implicit;
+mod linear_flow;
 mod random_drift;
 mod schemes;
 mod square_root;

@@ -181,7 +181,7 @@ impl Lowering<'_> {
     }
 
     /// The increment of a driver over the step, on each path.
-    fn increment(&mut self, driver: usize, noise: &Noise) -> ValueId {
+    pub(super) fn increment(&mut self, driver: usize, noise: &Noise) -> ValueId {
         let component = self.component(driver);
         let mixture = noise.mixture(component).clone();
         let increment = self

@@ -9,6 +9,7 @@ mod carried;
 mod constructor;
 mod exact;
 mod implicit;
+mod linear_flow;
 mod noise;
 mod observe;
 mod own_draws;
@@ -263,6 +264,7 @@ impl<'a> Lowering<'a> {
                 }
                 // After the process that carries them, below.
                 Method::Carried(_) => {}
+                Method::LinearFlow(flow) => self.linear_flow_states(flow, &noise, &mut next),
                 Method::Step(steps) => {
                     for step in steps {
                         let value = self.approximate_state(step, &noise);
