@@ -94,25 +94,6 @@ fn numbers_without_a_short_common_denominator_stay_in_their_terms() {
 }
 
 #[test]
-fn common_factors_of_long_polynomials_may_stay() {
-    let pool = super::pool();
-    parameters(&pool, "a", 4);
-    let expanded = |text: &str| pool.expand(super::parse(&pool, text));
-    let shared = "((a0 + a1 + a2 + a3 + 1)^3 + a0*a1)";
-    let (above, below) = (
-        "((a0 - a1 + 2*a2 - a3 + 3)^4 + a2)",
-        "((a0 + 2*a1 - a2 + a3 - 2)^4 + a3)",
-    );
-    let long = pool.div(
-        expanded(&format!("{shared}*{above}")),
-        expanded(&format!("{shared}*{below}")),
-    );
-    let short = pool.div(super::parse(&pool, above), super::parse(&pool, below));
-    assert!(!pool.equal(long, short).is_no());
-    assert_exceeded(&pool, Limit::Division);
-}
-
-#[test]
 fn fewer_points_are_tried_of_long_formulas() {
     let pool = super::pool();
     let waves = parameters(&pool, "a", 3_000).into_iter();
