@@ -19,9 +19,10 @@
 pub mod honey_market {
     //! Price of heather honey whose variance comes and goes
     //!
-    //! A price with square-root variance (Heston 1993, section 1). There is no joint law to draw from step by step here, so the variance is stepped by
-    //! Euler's scheme under full truncation (Lord, Koekkoek & van Dijk 2010) and the price through its logarithm. The claims are the drift of the
-    //! log price, the mean of the variance (Cox, Ingersoll & Ross 1985, equation 19, from memory) and the martingale property of the discounted price.
+    //! A price with square-root variance (Heston 1993, section 1). The variance is stepped on request by Euler's scheme under full truncation (Lord,
+    //! Koekkoek & van Dijk 2010), the price through its logarithm; \`wool\_sale\` draws the same kind of price by its conditional law. The claims are the
+    //! drift of the log price, the mean of the variance (Cox, Ingersoll & Ross 1985, equation 19, from memory) and the martingale property of the
+    //! discounted price.
 
     use ::driftwright_runtime as runtime;
     const _: () = runtime::require_version::<runtime::Version<0, 1>>();
