@@ -41,6 +41,26 @@ fn json_holds_the_contract() {
     assert!((mean["std_error"].as_f64().unwrap() - error).abs() < 1e-9 * error);
 }
 
+/// A linear drift closes the equation of the mean, m + (x0 - m) exp(-k t) (Karatzas & Shreve 1991, section 5.6), noise of
+/// another power than a half leaves that of the variance open: the mean is checked all the same.
+#[test]
+fn a_mean_is_checked_where_the_variance_is_not_known() {
+    let folder = Folder::new();
+    let text = "[model]\nname = \"m\"\ndrivers = [\"W\"]\n[states.x]\ninitial = \"0.4\"\ndrift = \"1.2*(0.5 - x)\"\n\
+                diffusion = \"0.4*x^(7/10)\"\ndomain = \"(0, inf)\"\n";
+    let model = folder.write("power.toml", text);
+    let found = json(&["verify", &model, "--paths", "20000", "--format", "json"]);
+    let [mean] = &found["checks"].as_array().unwrap()[..] else {
+        panic!("{found}");
+    };
+    assert_eq!(
+        (&mean["statistic"], &mean["passed"]),
+        (&"mean".into(), &true.into())
+    );
+    let expected = 0.5 - 0.1 * (-1.2_f64).exp();
+    assert!((mean["analytic"].as_f64().unwrap() - expected).abs() < 1e-9);
+}
+
 #[test]
 fn an_open_claim_is_put_to_the_test() {
     let folder = Folder::new();

@@ -43,6 +43,11 @@ fn spoken(name: &str) -> String {
         "milstein" => "Milstein".to_owned(),
         "full_truncation_euler" => "Euler with full truncation".to_owned(),
         "runge_kutta_4" => "Runge-Kutta of order 4".to_owned(),
+        "drift_implicit_euler" => "drift-implicit Euler".to_owned(),
+        "tamed_euler" => "tamed Euler".to_owned(),
+        "tamed_milstein" => "tamed Milstein".to_owned(),
+        "quadratic_exponential" => "quadratic-exponential".to_owned(),
+        "conditional_gaussian" => "normal given a square-root process".to_owned(),
         "strong_taylor_1_5" => "strong Taylor of order 1.5".to_owned(),
         other => other.replace('_', " "),
     }

@@ -120,6 +120,7 @@ impl Context<'_> {
     pub(super) fn is_freed(&self, state: usize) -> bool {
         let declared = &self.model.states[state];
         declared.through.is_none()
+            && self.implicit[state].is_none()
             && self.projections[state].is_none()
             && !self.coordinates[state].identity
     }

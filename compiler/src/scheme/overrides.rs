@@ -127,8 +127,9 @@ pub(super) fn check(
 }
 
 fn hint(asked: SchemeName, chosen: SchemeName) -> String {
-    if asked == chosen || asked == SchemeName::Milstein {
-        "leave `scheme` out, or use `euler_maruyama`".to_owned()
+    if asked != SchemeName::Exact {
+        // What was chosen here was chosen among approximate schemes: without the request it may be an exact law.
+        "leave `scheme` out for the compiler's own choice, or use `euler_maruyama`".to_owned()
     } else {
         format!("leave `scheme` out to have `{chosen}`, or use `euler_maruyama`")
     }

@@ -104,6 +104,21 @@ impl Analyst<'_> {
         })
     }
 
+    /// The mean of a formula whose variance is not known: the sample has to say how far it strays.
+    pub(super) fn mean_alone(&self, formula: Expr, time: f64) -> Option<Expected> {
+        let variance = self
+            .moments
+            .numeric_variance(formula, &self.parameters, time);
+        if variance.is_some() {
+            return None;
+        }
+        Some(Expected {
+            value: self.mean(formula, time)?,
+            unit_error: None,
+            paths_needed: 1e4,
+        })
+    }
+
     /// Powers of a variable that is narrow beside its mean cancel digits: then none are given.
     fn standard(&self, formula: Expr, mean: f64, variance: f64, time: f64) -> Option<[f64; 4]> {
         let deviation = variance.sqrt();

@@ -206,7 +206,10 @@ impl Judge<'_> {
             })
         };
         let derived = match &target.statistic {
-            Statistic::Mean(output) => known(output).map(|c| c.expected_mean()),
+            Statistic::Mean(output) => known(output).map(|c| c.expected_mean()).or_else(|| {
+                let formula = self.targets.outputs[*output];
+                self.analyst.mean_alone(formula, time)
+            }),
             Statistic::Variance(output) => known(output).map(|c| c.expected_variance()),
             Statistic::Skewness(output) => known(output).and_then(|c| c.expected_skewness()),
             Statistic::Covariance(pair) => {

@@ -239,8 +239,12 @@ fn conclusion(verification: &Verification, compiled: &Compiled) -> Text {
             .iter()
             .map(|c| c.z().abs())
             .fold(0.0, f64::max);
+        let held = match total {
+            1 => "The one check holds".to_owned(),
+            _ => format!("All {total} checks hold"),
+        };
         return vec![
-            Inline::Marked(Mark::Good, format!("All {total} checks hold")),
+            Inline::Marked(Mark::Good, held),
             Inline::Words(format!(": largest |z| {worst:.2}, {terms}.")),
         ];
     }

@@ -7,9 +7,9 @@ use crate::program::op::{Comparison, ValueId};
 use crate::scheme::{Implicit, StateStep};
 use crate::symbolic::Expr;
 
-/// Newton's iterations. From anywhere within a factor of a thousand of the solution, bisection and then quadratic convergence
-/// take fewer.
-const ITERATIONS: usize = 24;
+/// Newton's iterations. From anywhere within a factor of a thousand of the solution, ten halvings and then quadratic
+/// convergence take no more.
+const ITERATIONS: usize = 16;
 
 /// The last two iterates differ by less than this, relatively, else the value is not a number: squared by one more iteration,
 /// that is rounding.
