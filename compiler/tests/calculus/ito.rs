@@ -283,3 +283,33 @@ fn a_lost_correction_is_seen() {
     }
     assert!(seen > 30, "only {seen} cases have a correction");
 }
+
+/// Where the factors of a sum are over the budget of divisions, the sum is left as it is: the noise is F' times the state's
+/// noise, by the definition of both.
+#[test]
+fn the_noise_of_a_formula_that_is_too_long_to_factor() {
+    let formula = "asinh((1 + atanh(sin(x)/2)^2)^(sigma*x))";
+    let compiled = compiled(&format!(
+        "[model]\nname = \"m\"\ndrivers = [\"W\"]\n[parameters]\nmu = {{ value = 0.4, range = \"[-1, 1]\" }}\n\
+         sigma = {{ value = 0.7, range = \"[0, 1.5]\" }}\n[states.x]\ninitial = \"0.5\"\ndrift = \"mu*sin(t) - x\"\n\
+         diffusion = \"sigma*x\"\ndomain = \"[0, 3]\"\nat_edge = \"reflect\"\n[derived.F]\nformula = \"{formula}\"\n"
+    ));
+    let value = |x: f64| {
+        let a = (x.sin() / 2.0).atanh();
+        (0.7 * x * (1.0 + a * a).ln()).exp().asinh()
+    };
+    let (x, h) = (0.3, 1e-4);
+    // The central difference of order 4.
+    let slope = (8.0 * (value(x + h) - value(x - h)) - (value(x + 2.0 * h) - value(x - 2.0 * h)))
+        / (12.0 * h);
+    let values = [("x", x), ("sigma", 0.7), ("mu", 0.4), ("t", 0.2)];
+    let values = values.map(|(name, value)| (name.to_owned(), value));
+    let point = at(&compiled, &values.into());
+    let noise = compiled.dynamics.derived[0].diffusion[0];
+    let found = compiled
+        .model
+        .pool
+        .eval_f64(noise, &point)
+        .expect("a value");
+    assert!(close(found, slope * 0.7 * x, 1e-9, 0.0), "{found}");
+}

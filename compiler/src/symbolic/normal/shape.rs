@@ -91,7 +91,7 @@ impl Normalizer<'_> {
     /// The polynomial as a product of powers of factors, as far as square-free decomposition and
     /// contents find them.
     fn in_factors(&self, poly: &Poly) -> Option<Expr> {
-        let (negative, powers) = poly.squarefree(self.pool);
+        let (negative, powers) = poly.squarefree(self.pool)?;
         let content = poly.positive_content(self.pool)?;
         let mut number = if negative { -content } else { content };
         let mut factors = vec![self.monomial_formula(&poly.common_monomial())];
@@ -111,8 +111,8 @@ impl Normalizer<'_> {
                     self.pool.int(times.into()),
                 ));
             }
-            // The parts make the factor up to a number.
-            let left = product.as_constant().unwrap_or(Rational::ONE);
+            // The parts make the factor up to a number, unless a division was over budget.
+            let left = product.as_constant()?;
             number *= left.pow(isize::try_from(times).unwrap_or(1));
         }
         if number < Rational::ZERO

@@ -118,7 +118,9 @@ impl Normalizer<'_> {
         if poly.is_one() {
             return Some(());
         }
-        let (turned, factors) = poly.squarefree(self.pool);
+        // Sums are kept without content and common monomial: undivided, one is its own only factor.
+        let whole = || (false, vec![(poly.clone(), 1)]);
+        let (turned, factors) = poly.squarefree(self.pool).unwrap_or_else(whole);
         let mut negative = turned;
         for (factor, m) in factors {
             let (turned, parts) = match self.mode {

@@ -14,14 +14,8 @@ type Factors = Vec<(Poly, u32)>;
 
 impl Poly {
     /// Whether the sign is turned, and factors with their multiplicities; together they make the
-    /// polynomial, up to its positive content and its common monomial. Over budget the polynomial
-    /// itself is the only factor.
-    pub(super) fn squarefree(&self, pool: &Pool) -> (bool, Factors) {
-        self.decompose(pool)
-            .unwrap_or_else(|| (false, vec![(self.clone(), 1)]))
-    }
-
-    fn decompose(&self, pool: &Pool) -> Option<(bool, Factors)> {
+    /// polynomial, up to its positive content and its common monomial. None over budget.
+    pub(super) fn squarefree(&self, pool: &Pool) -> Option<(bool, Factors)> {
         let variables = Variables::of(&[self])?;
         let whole = variables.convert(self, pool)?.whole;
         let negative = whole
