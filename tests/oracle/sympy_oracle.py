@@ -116,7 +116,7 @@ SYMPY_FUNCTIONS = {
 }
 
 
-def syntax(text):
+def tree(text):
     """The tree of a formula; decimals are kept as text, since they are exact."""
     quoted = re.sub(
         r"(?<![\w.])(\d+(?:\.\d+)?(?:[eE][+-]?\d+)?)(?![\w.])", r'"\1"', text
@@ -124,8 +124,23 @@ def syntax(text):
     return ast.parse(quoted.replace("^", "**"), mode="eval").body
 
 
+def syntax(text):
+    """The trees of a formula's named parts, in the order in which they build on each other, and its own.
+    Long formulas are written `p2^2 + p2 where p1 = ...; p2 = ...`."""
+    whole, _, named = text.partition(" where ")
+    parts = [part.split(" = ", 1) for part in named.split("; ") if part]
+    return [(name, tree(part)) for name, part in parts], tree(whole)
+
+
 class Reader:
     """Walks a formula's tree; the subclasses say what the pieces mean."""
+
+    def formula(self, formula):
+        parts, whole = formula
+        self.named = {}
+        for name, part in parts:
+            self.named[name] = self.read(part)
+        return self.read(whole)
 
     def read(self, node):
         match node:
@@ -134,7 +149,7 @@ class Reader:
             case ast.Name(id="pi"):
                 return self.pi()
             case ast.Name(id=name):
-                return self.symbol(name)
+                return self.named[name] if name in self.named else self.symbol(name)
             case ast.UnaryOp(op=ast.USub(), operand=inner):
                 return -self.read(inner)
             case ast.BinOp(left=left, op=operation, right=right):
@@ -225,7 +240,7 @@ class Task:
         self.random = random.Random(task["id"])
 
     def formula(self, text):
-        return Formula(self.symbols).read(syntax(text))
+        return Formula(self.symbols).formula(syntax(text))
 
     def points(self):
         for _ in range(ATTEMPTS):
@@ -245,11 +260,11 @@ class Task:
             return "agree", "reduced to zero"
         names = list(self.symbols)
         evaluate = sympy.lambdify([self.symbols[n] for n in names], reference, "mpmath")
-        trees = [syntax(text) for text in texts]
+        formulas = [syntax(text) for text in texts]
         used = 0
         for point in self.points():
             def both():
-                values = [Value(point).read(tree) for tree in trees]
+                values = [Value(point).formula(f) for f in formulas]
                 return real(evaluate(*[point[n] for n in names])), real(values[0])
 
             try:
@@ -281,10 +296,10 @@ def derivative(task):
 
 def same(task):
     """Two formulas that the compiler says are equal: a shape of one normal form, or a proof."""
-    trees = [syntax(task.task[side]) for side in ("left", "right")]
+    formulas = [syntax(task.task[side]) for side in ("left", "right")]
     used = 0
     for point in task.points():
-        both = lambda: [real(Value(point).read(tree)) for tree in trees]
+        both = lambda: [real(Value(point).formula(f)) for f in formulas]
         try:
             a, b = both()
             if far(a, b):
@@ -310,7 +325,7 @@ def witness(task):
         if not (low < point[name] and (high is None or point[name] < high)):
             return [("differ", f"{name} = {point[name]} is out of range")]
     try:
-        values = [real(Value(point).read(syntax(t[side]))) for side in ("left", "right")]
+        values = [real(Value(point).formula(syntax(t[side]))) for side in ("left", "right")]
     except NO_VALUE:
         # `sqrt(y)^2` is made y, which has a value where the text has none.
         return [("skipped", f"no value at {point}")]
@@ -370,7 +385,7 @@ def main():
         except NoValue:
             results = [("skipped", "a number too large")]
         differing = [note for verdict, note in results if verdict == "differ"]
-        agreeing = any(verdict == "agree" for verdict, _ in results)
+        agreeing = all(verdict == "agree" for verdict, _ in results)
         verdict = "differ" if differing else "agree" if agreeing else "skipped"
         print(json.dumps({"id": task["id"], "verdict": verdict, "notes": differing}))
 
