@@ -334,3 +334,21 @@ fn a_moment_beyond_the_budget_stays_open_and_says_why() {
     let named = Limit::Moments.to_string();
     assert!(high.reason.contains(&named), "{}", high.reason);
 }
+
+/// So does one whose functions are few, but whose formula would have tens of thousands of terms: it is given
+/// up before the zero test is asked about it.
+#[test]
+fn a_moment_of_too_many_terms_stays_open_and_says_why() {
+    let model = "[model]\nname = \"cascade\"\n[parameters]\na = 0.7\nb = 0.3\n\
+                 [states.Y]\ninitial = \"0.2\"\ndrift = \"a*(1/2 - Y)\"\n\
+                 [states.Z]\ninitial = \"0.1\"\ndrift = \"b*Y - 100*Z\"\n[claims]\n\
+                 wide = { variance_of = \"((Z)*(Z))^5\", is = \"1\" }\n";
+    let compiled = compiled(model);
+    let [wide] = &compiled.claims[..] else {
+        panic!("one claim")
+    };
+    assert_eq!(wide.verdict.name(), "open");
+    assert_eq!(compiled.model.pool.exceeded(), [Limit::Moments]);
+    let named = Limit::Moments.to_string();
+    assert!(wide.reason.contains(&named), "{}", wide.reason);
+}

@@ -7,7 +7,7 @@
 //! applications to mathematical finance", Finance and Stochastics 16). The functions here are whatever
 //! products of states come out of Ito's rule, so logarithms and powers close too where they can.
 
-use std::cell::RefCell;
+use std::cell::{Cell, RefCell};
 use std::collections::BTreeMap;
 
 use driftwright_runtime::gauss::{linear_transition, moving_transition};
@@ -21,6 +21,8 @@ use crate::symbolic::{Expr, Limit, Symbol};
 const DEEPEST: usize = 40;
 /// And one whose generator has more terms.
 const MOST_TERMS: usize = 200;
+/// And one whose solution takes more products of terms: a second of work, and a formula that fills books.
+const MOST_PRODUCTS: usize = 3_000;
 /// And one of more functions whose generator depends on time, when numbers are wanted.
 const MOST_MOVING: usize = 20;
 
@@ -30,6 +32,8 @@ pub(super) struct Equations<'a> {
     /// Values of the coordinates at time 0.
     start: BTreeMap<Symbol, Expr>,
     known: RefCell<BTreeMap<Expr, Option<ExpPoly>>>,
+    /// Products of terms that the present question has taken.
+    products: Cell<usize>,
 }
 
 /// A combination of functions of the coordinates; coefficients hold time and parameters.
@@ -41,12 +45,14 @@ impl<'a> Equations<'a> {
             system,
             start,
             known: RefCell::default(),
+            products: Cell::default(),
         }
     }
 
     /// `E[formula]` at time t, in closed form.
     pub(super) fn mean(&self, formula: Expr) -> Option<Expr> {
         let pool = self.system.pool();
+        self.products.set(0);
         let parts = self.split(formula)?;
         let mut terms = Vec::new();
         for (function, coefficient) in parts {
@@ -180,7 +186,9 @@ impl<'a> Equations<'a> {
                 rate = coefficient;
             } else {
                 let coefficient = ExpPoly::read(pool, time, coefficient)?;
-                forcing.add_product(pool, &coefficient, &self.solve(other, depth + 1)?);
+                let mean = self.solve(other, depth + 1)?;
+                self.spend(coefficient.terms() * mean.terms())?;
+                forcing.add_product(pool, &coefficient, &mean);
             }
         }
         if pool.depends_on(rate, time) {
@@ -188,6 +196,16 @@ impl<'a> Equations<'a> {
         }
         let start = pool.simplify(pool.substitute(function, &self.start));
         ExpPoly::solve(pool, rate, &forcing, start)
+    }
+
+    /// Takes so many products of terms from the budget of the present question.
+    fn spend(&self, products: usize) -> Option<()> {
+        self.products.set(self.products.get() + products);
+        if self.products.get() > MOST_PRODUCTS {
+            self.system.pool().exceed(Limit::Moments);
+            return None;
+        }
+        Some(())
     }
 
     /// The generator on a function, taken apart; none where the mean may not be taken.

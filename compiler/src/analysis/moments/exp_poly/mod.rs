@@ -54,6 +54,11 @@ impl ExpPoly {
         result
     }
 
+    /// Of how many terms it is a sum.
+    pub(super) fn terms(&self) -> usize {
+        self.terms.len()
+    }
+
     /// The formula in time and parameters.
     pub(super) fn formula(&self, pool: &Pool, time: Symbol) -> Expr {
         let t = pool.var(time);
