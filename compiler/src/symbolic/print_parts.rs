@@ -16,11 +16,18 @@ pub(super) const LONGEST_UNNAMED: usize = 2_000;
 pub(super) const LIGHTEST_NAMED: u64 = 8;
 
 impl Pool {
-    /// The formula with named parts, cut at the budget.
+    /// The formula with named parts, cut at the budget; one that has more parts than that is only counted.
     pub(super) fn format_in_parts(&self, e: Expr) -> String {
         let parts = self.postorder(e);
-        let readers = self.readers(&parts);
         let budget = Limit::Printing.amount() as usize;
+        if parts.len() > budget {
+            self.exceed(Limit::Printing);
+            return format!(
+                "... (too long to print: the formula has {} distinct parts)",
+                parts.len()
+            );
+        }
+        let readers = self.readers(&parts);
         let mut pieces: Table<Expr, Piece> = Table::default();
         let (mut definitions, mut length) = (Vec::new(), 0);
         let mut count = 0;

@@ -63,6 +63,11 @@ fn long_formulas_are_cut_where_they_are_printed() {
     assert!(text.ends_with("(cut at 6000 characters; the formula has 5001 distinct parts)"));
     assert!(text.len() < 6_100);
     assert_exceeded(&pool, Limit::Printing);
+    let text = pool.format(sum(&pool, "a", 7_000));
+    assert_eq!(
+        text,
+        "... (too long to print: the formula has 7001 distinct parts)"
+    );
 }
 
 #[test]
