@@ -5,6 +5,7 @@ mod counts_and_waiting_times;
 mod fragile;
 mod generators;
 mod grids;
+mod levy_areas;
 mod linear_algebra;
 mod math_accuracy;
 mod models;

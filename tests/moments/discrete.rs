@@ -161,10 +161,10 @@ fn log_price(process: &SquareRoot, p: &Values, at: At) -> (f64, f64, f64, f64) {
     (v, vv, l, ll)
 }
 
-/// Levy's area by Euler's scheme: c^4 T^2/4 (1 - 1/N) (the sum of E\[X_n^2\] h over the steps).
+/// Levy's area, exact in its first two moments at any step: c^4 T^2/4 (Levy 1951).
 pub(crate) fn eddy_area(p: &Values, at: At) -> Expected {
     let c2 = p.get("c").powi(2);
-    let area = (c2 * at.time).powi(2) / 4.0 * (1.0 - 1.0 / at.steps as f64);
+    let area = (c2 * at.time).powi(2) / 4.0;
     let position = normal(0.0, c2 * at.time);
     // X^2 + Y^2 is exponential with mean 2 c^2 t (Johnson, Kotz & Balakrishnan 1994, section 19.1).
     let scale = 2.0 * c2 * at.time;

@@ -24,6 +24,18 @@ pub(crate) fn estimate(
     steps: Option<usize>,
     paths: u64,
 ) -> Estimates {
+    estimate_from(20_260_101, name, model, times, steps, paths)
+}
+
+/// As [`estimate`], with a seed.
+pub(crate) fn estimate_from(
+    seed: u64,
+    name: &str,
+    model: &ModelText,
+    times: &[f64],
+    steps: Option<usize>,
+    paths: u64,
+) -> Estimates {
     let identifier = name.to_lowercase().replace(['-', '.'], "_");
     let simulator = interpreter(name, &model.text(&identifier), &BTreeMap::new());
     let outputs: Vec<String> = simulator
@@ -35,7 +47,7 @@ pub(crate) fn estimate(
     let grid = Grid::new(times, steps).expect("a grid");
     let run = Run {
         paths,
-        seed: 20_260_101,
+        seed,
         ..Run::default()
     };
     let centres = vec![0.0; times.len() * outputs.len()];

@@ -1,6 +1,7 @@
 //! The reference values in scope against the compiler and its simulators: transition laws (B), closed-form
 //! prices (C), exact discrete moments and strong errors of schemes (E). Each case names its source in `tests/reference/`.
 
+mod areas;
 mod catalogue;
 mod closed;
 mod ends;
@@ -10,6 +11,7 @@ mod implicit;
 mod laws;
 mod linear_flow;
 mod model;
+mod orders;
 mod prices;
 mod random_drift;
 mod rates;

@@ -235,8 +235,8 @@ EmptyClaim "DW0503" "claim that says nothing about the model"
 and diffusions are. Name a state, or a quantity that depends on one."
 
 SchemeRefused "DW0601" "scheme cannot be used"
-"The scheme asked for does not fit the state: `exact` needs a known law, `milstein` needs noise that
-commutes. Leave the key out to have one chosen."
+"The scheme asked for does not fit the state: `exact` needs a known law, `milstein` needs
+derivatives and, where the noise does not commute, increments of all its drivers. Leave the key out to have one chosen."
 
 ProgramTooLarge "DW0602" "step program too large"
 "A step of this model takes more operations than could be compiled or run. States that read one another

@@ -286,6 +286,29 @@ impl Builder {
         self.intern(Op::Correlate { factor, sources }, Rate::StepLane)
     }
 
+    /// Levy areas of a step, as [`Op::Areas`] has them.
+    pub(super) fn areas(
+        &mut self,
+        drivers: &[(usize, usize)],
+        pairs: &[(usize, usize, usize)],
+    ) -> ValueId {
+        let length = self.length();
+        let (drivers, pairs) = (drivers.into(), pairs.into());
+        self.intern(
+            Op::Areas {
+                length,
+                drivers,
+                pairs,
+            },
+            Rate::StepLane,
+        )
+    }
+
+    /// What a value is computed by.
+    pub(super) fn op(&self, id: ValueId) -> &Op {
+        &self.values[id.index()].op
+    }
+
     pub(super) fn extract(&mut self, matrix: ValueId, index: usize) -> ValueId {
         self.computed(Op::Extract(matrix, index))
     }

@@ -107,6 +107,11 @@ impl Program {
                 list(q)
             ),
             Op::Correlate { factor, sources } => format!("correlate {factor} {sources:?}"),
+            Op::Areas {
+                length,
+                drivers,
+                pairs,
+            } => format!("areas {length} {drivers:?} {pairs:?}"),
             Op::Extract(of, index) => format!("extract {of} {index}"),
         }
     }

@@ -158,7 +158,18 @@ pub enum Op {
         /// The indices of the sources.
         sources: Box<[usize]>,
     },
-    /// One number out of a matrix operation, or one row of correlated draws.
+    /// Levy areas of independent drivers over the step, divided by its length, given their standardised increments,
+    /// one area a pair on each path.
+    Areas {
+        /// Length of the step.
+        length: ValueId,
+        /// By driver: the index of the normal source of its increment, and that of its Fourier terms among
+        /// [`Program::draws`](super::Program::draws).
+        drivers: Box<[(usize, usize)]>,
+        /// By area: places of two drivers, and the index of the draw of its remainder.
+        pairs: Box<[(usize, usize, usize)]>,
+    },
+    /// One number out of a matrix operation, one row of correlated draws, or one area.
     Extract(ValueId, usize),
 }
 
@@ -177,6 +188,7 @@ impl Op {
             Self::Unary(_, a)
             | Self::Extract(a, _)
             | Self::Draw { parameter: a, .. }
+            | Self::Areas { length: a, .. }
             | Self::Correlate { factor: a, .. } => vec![*a],
             Self::Binary(_, a, b) => vec![*a, *b],
             Self::MulAdd(a, b, c) => vec![*a, *b, *c],
@@ -220,7 +232,17 @@ impl Op {
                 2 * dim * dim + dim
             }
             Self::Correlate { sources, .. } => sources.len(),
+            Self::Areas { pairs, .. } => pairs.len(),
             _ => 1,
+        }
+    }
+
+    /// The lanes that an operation before the loops over lanes fills: its results, then what it works with.
+    pub fn lanes(&self) -> usize {
+        match self {
+            Self::Correlate { .. } => self.width(),
+            Self::Areas { drivers, .. } => self.width() + 2 * drivers.len(),
+            _ => 0,
         }
     }
 
@@ -233,6 +255,7 @@ impl Op {
                 | Self::Transition { .. }
                 | Self::MovingTransition { .. }
                 | Self::Correlate { .. }
+                | Self::Areas { .. }
         )
     }
 

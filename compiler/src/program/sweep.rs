@@ -155,6 +155,15 @@ impl Op {
                 factor: f(factor),
                 sources,
             },
+            Self::Areas {
+                length,
+                drivers,
+                pairs,
+            } => Self::Areas {
+                length: f(length),
+                drivers,
+                pairs,
+            },
             Self::Extract(a, index) => Self::Extract(f(a), index),
             Self::Draw {
                 law,

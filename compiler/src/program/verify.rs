@@ -61,6 +61,7 @@ impl Program {
             }
         }
         self.verify_leaf(&value.op, value.rate)?;
+        self.verify_areas(&value.op)?;
         self.verify_matrix(&value.op, value.rate)
     }
 
@@ -86,13 +87,31 @@ impl Program {
             Op::Time => rate == Rate::Observation,
             Op::Instant => rate == Rate::Instant,
             Op::State(_) => rate.is_lane(),
-            Op::Noise(_) | Op::Draw { .. } | Op::Correlate { .. } => rate == Rate::StepLane,
+            Op::Noise(_) | Op::Draw { .. } | Op::Correlate { .. } | Op::Areas { .. } => {
+                rate == Rate::StepLane
+            }
             _ => true,
         };
         if right {
             Ok(())
         } else {
             Err(format!("a leaf of rate {rate}"))
+        }
+    }
+
+    fn verify_areas(&self, op: &Op) -> Result<(), String> {
+        let Op::Areas { drivers, pairs, .. } = op else {
+            return Ok(());
+        };
+        let (sources, draws) = (self.sources.len(), self.draws.len());
+        let driver = |&(increment, terms): &(usize, usize)| increment < sources && terms < draws;
+        let pair = |&(p, q, rest): &(usize, usize, usize)| {
+            p != q && p.max(q) < drivers.len() && rest < draws
+        };
+        if drivers.iter().all(driver) && pairs.iter().all(pair) {
+            Ok(())
+        } else {
+            Err("an area of drivers or draws that do not exist".to_owned())
         }
     }
 

@@ -1,9 +1,11 @@
 //! How the states are stepped, and why.
 
+use std::collections::BTreeSet;
+
 use super::document::{Align, Equation, Inline, Mark, Table, Term, code, prose, words};
 use super::{Derivation, Document, trace};
 use crate::model::Model;
-use crate::scheme::{Becomes, Coordinate, Group, Plan};
+use crate::scheme::{Becomes, Coordinate, Group, Method, Plan};
 
 fn states(model: &Model, group: &Group) -> String {
     let names: Vec<&str> = group
@@ -136,6 +138,27 @@ pub(super) fn methods(document: &mut Document, derivation: &Derivation<'_>) {
             sources.join(", ")
         )));
     }
+    let areas = areas(model, plan);
+    if !areas.is_empty() {
+        document.paragraph(words(format!(
+            "It also draws, given the increments, the Levy areas of {}.",
+            areas.join(", of ")
+        )));
+    }
+}
+
+/// The pairs of drivers whose Levy areas a step needs.
+fn areas(model: &Model, plan: &Plan) -> Vec<String> {
+    let steps = plan.groups.iter().flat_map(|group| match &group.method {
+        Method::Step(steps) => &steps[..],
+        _ => &[],
+    });
+    let pairs: BTreeSet<(usize, usize)> = steps
+        .flat_map(|step| step.areas.iter().map(|&(j, k, _)| (j, k)))
+        .collect();
+    let name = |driver: usize| &model.drivers[driver].name;
+    let named = |(j, k)| format!("{} and {}", name(j), name(k));
+    pairs.into_iter().map(named).collect()
 }
 
 fn maps(plan: &Plan, model: &Model, group: &Group) -> Vec<Equation> {

@@ -34,6 +34,8 @@ pub(super) struct Context<'a> {
     pub(super) calm: Vec<bool>,
     /// Per state, why it has no exact law; none where it has one.
     pub(super) refusals: Vec<Option<String>>,
+    /// Per state, whether a law of its own is drawn that is not Gaussian: it uses up its drivers.
+    pub(super) own_law: Vec<bool>,
     /// Per state, whether a square-root process carries it.
     pub(super) carried: Vec<bool>,
     /// Per state, where the drift-implicit scheme was asked for, its coordinate or why it does not fit.
@@ -336,6 +338,13 @@ impl Context<'_> {
                     "coefficient of d{first} d{second} less its mean over the step, in the coordinate of {name}"
                 );
                 trace.push("Milstein term", note, None, coefficient);
+            }
+            for &(j, k, coefficient) in &step.areas {
+                let (first, second) = (&drivers[j].name, &drivers[k].name);
+                let note = format!(
+                    "coefficient of the Levy area of {first} and {second}, in the coordinate of {name}"
+                );
+                trace.push("Levy area term", note, None, coefficient);
             }
         }
     }

@@ -5,10 +5,11 @@
 //! ([`crate::analysis::square_root`]), whose transition is noncentral chi-square, and Brownian motions with a
 //! random drift ([`crate::analysis::random_drift`]), then for states that are normal given a square-root process
 //! and for pairs moved by commuting linear flows ([`crate::analysis::linear_flow`]). What is left is stepped by the scheme of highest strong order that its noise
-//! allows: Milstein where the noise commutes, Euler-Maruyama where it does not, Euler with full
+//! allows: Milstein where the noise commutes, Euler-Maruyama where it does not (Milstein with Levy areas on request), Euler with full
 //! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
 mod approximate;
+mod areas;
 mod carried;
 mod closed_ends;
 mod edges;
@@ -95,6 +96,7 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
         traces: &traces,
         calm,
         refusals: refusals(&rows, &laws, &flows),
+        own_law: laws.iter().map(Result::is_ok).collect(),
         carried: passengers.iter().map(Option::is_some).collect(),
         implicit,
     };

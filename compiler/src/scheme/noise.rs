@@ -56,7 +56,10 @@ fn reads_increment(pool: &Pool, group: &Group, driver: usize) -> bool {
     let present = |e: Expr| !pool.is_zero_literal(e);
     match &group.method {
         Method::Step(steps) => steps.iter().any(|s| {
-            present(s.diffusion[driver]) || s.taylor.as_ref().is_some_and(|t| t.reads(driver))
+            let mut terms = s.milstein.iter().chain(&s.areas);
+            present(s.diffusion[driver])
+                || terms.any(|&(j, k, _)| j == driver || k == driver)
+                || s.taylor.as_ref().is_some_and(|t| t.reads(driver))
         }),
         Method::LinearGaussian(system) => system
             .noise

@@ -5,7 +5,7 @@ use std::rc::Rc;
 
 use super::approximate::{Choice, Context};
 use super::own_law::{OwnLaw, OwnLaws};
-use super::{Group, SchemeName, implicit, square_root};
+use super::{Group, SchemeName, areas, implicit, square_root};
 use crate::calculus::Dynamics;
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
 use crate::model::Model;
@@ -33,9 +33,8 @@ pub(super) fn honoured(context: &Context<'_>, state: usize, choice: &Choice) -> 
     let model = context.model;
     let asked = scheme(model, state)?;
     let possible = match asked {
-        SchemeName::Milstein | SchemeName::TamedMilstein => {
-            choice.kink.is_none() && choice.clash.is_none()
-        }
+        SchemeName::Milstein => no_milstein(context, state, choice).is_none(),
+        SchemeName::TamedMilstein => no_products(model, choice).is_none(),
         SchemeName::StrongTaylor15 => no_taylor(model, choice).is_none(),
         SchemeName::DriftImplicitEuler => matches!(&context.implicit[state], Some(Ok(_))),
         SchemeName::RungeKutta4 => choice.is_flow(),
@@ -83,9 +82,8 @@ pub(super) fn check(
         let group = groups.iter().find(|g| g.states.contains(&i));
         let reason = match asked {
             SchemeName::Exact => context.refusals[i].clone(),
-            SchemeName::Milstein | SchemeName::TamedMilstein => {
-                choices.get(&i).and_then(|c| no_milstein(model, c))
-            }
+            SchemeName::Milstein => choices.get(&i).and_then(|c| no_milstein(context, i, c)),
+            SchemeName::TamedMilstein => choices.get(&i).and_then(|c| no_products(model, c)),
             SchemeName::StrongTaylor15 => choices.get(&i).and_then(|c| no_taylor(model, c)),
             SchemeName::RungeKutta4 if !context.calm[i] => Some(format!(
                 "{} is random; this scheme is for states that nothing random reaches",
@@ -145,20 +143,32 @@ fn no_moments(model: &Model, law: &Result<OwnLaw, Option<String>>) -> Option<Str
     }
 }
 
-fn no_milstein(model: &Model, choice: &Choice) -> Option<String> {
-    if let Some(kink) = choice.kink {
-        return Some(format!(
-            "a coefficient has a kink (`{}`), and Milstein's term needs derivatives",
-            kink.name()
-        ));
-    }
+/// Why Milstein's scheme does not fit, with Levy areas where the noise does not commute.
+fn no_milstein(context: &Context<'_>, state: usize, choice: &Choice) -> Option<String> {
+    let clashes = choice.clash.is_some();
+    kinked(choice).or_else(|| clashes.then(|| areas::used_up(context, state)).flatten())
+}
+
+fn kinked(choice: &Choice) -> Option<String> {
+    let name = choice.kink?.name();
+    Some(format!(
+        "a coefficient has a kink (`{name}`), and Milstein's term needs derivatives"
+    ))
+}
+
+/// Why a scheme does not fit that has products of increments and no Levy areas.
+fn no_products(model: &Model, choice: &Choice) -> Option<String> {
+    kinked(choice).or_else(|| clashing(model, choice))
+}
+
+fn clashing(model: &Model, choice: &Choice) -> Option<String> {
     let (state, clash) = choice.clash.as_ref()?;
     Some(super::reasons::clash(model, *state, clash))
 }
 
 /// Why the strong Taylor scheme of order 1.5 does not fit.
 fn no_taylor(model: &Model, choice: &Choice) -> Option<String> {
-    no_milstein(model, choice).or_else(|| {
+    no_products(model, choice).or_else(|| {
         let reason = "its terms of order 1.5 need integrals over products of drivers, or of the noise of an exact \
                       law, which are not drawn: it is for additive noise and for one driver";
         (!choice.taylor).then(|| reason.to_owned())

@@ -401,6 +401,9 @@ pub struct StateStep {
     /// Milstein's terms: `(j, k, coefficient)` with `j <= k` adds
     /// `coefficient * (dW_j dW_k - rho_jk h)`. Empty for the Euler schemes.
     pub milstein: Vec<(usize, usize, Expr)>,
+    /// The terms with Levy areas, where the noise does not commute: `(j, k, coefficient)` with `j < k` adds
+    /// `coefficient * A_jk`, where `A_jk` is half of `int W_j dW_k - W_k dW_j` over the step.
+    pub areas: Vec<(usize, usize, Expr)>,
     /// How the equation of the step is solved, for the drift-implicit scheme: the drift is taken at its end.
     pub implicit: Option<Implicit>,
     /// What tames the drift, for the tamed schemes: the drift `a` enters as `a h/(1 + h size)`.

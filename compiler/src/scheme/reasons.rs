@@ -40,7 +40,7 @@ pub(super) fn why(
             ));
         }
     }
-    reasons.push(main_reason(context, choice, scheme));
+    reasons.push(main_reason(context, choice, scheme, method));
     reasons.extend(states.iter().flat_map(|&i| ends(context, i, method)));
     reasons.extend(regularity(context, choice, method));
     let exceeded = model.pool.exceeded().into_iter();
@@ -58,7 +58,16 @@ fn no_law(model: &Model, state: usize, refusal: &str) -> Option<String> {
     })
 }
 
-fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> String {
+fn has_areas(method: &Method) -> bool {
+    matches!(method, Method::Step(steps) if steps.iter().any(|s| !s.areas.is_empty()))
+}
+
+fn main_reason(
+    context: &Context<'_>,
+    choice: &Choice,
+    scheme: SchemeName,
+    method: &Method,
+) -> String {
     let text = match scheme {
         SchemeName::RungeKutta4 if choice.projected => {
             "Nothing random reaches these states, so that they follow ordinary differential equations: the \
@@ -94,6 +103,11 @@ fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> St
             "One driver: the strong Taylor scheme of order 1.5 needs no more than its increment and its \
              integral over the step (Kloeden and Platen 1992, section 10.4)."
         }
+        SchemeName::Milstein if has_areas(method) => {
+            "The noise does not commute: Milstein's scheme with Levy areas that are simulated given the increments, by as \
+             many terms of their series, proportional to the root of one over the step, as strong order 1 takes (Wiktorsson \
+             2001; Mrongowius and Roessler 2022)."
+        }
         SchemeName::Milstein if choice.additive => {
             "The noise does not depend on the states: Milstein's term is zero, Milstein and Euler-Maruyama \
              coincide and have strong order 1."
@@ -113,7 +127,9 @@ fn main_reason(context: &Context<'_>, choice: &Choice, scheme: SchemeName) -> St
             "A coefficient has a kink, so that Milstein's derivatives do not exist everywhere: Euler-Maruyama."
         }
         _ if choice.clash.is_some() => {
-            "The noise does not commute and no Levy area is drawn: Euler-Maruyama."
+            "The noise does not commute: Euler-Maruyama, whose weak order 1 needs no Levy areas. `milstein` as the scheme \
+             asked for has them simulated, for strong order 1 at a cost of a step that grows like the root of one over \
+             its length."
         }
         _ => "Euler-Maruyama.",
     };

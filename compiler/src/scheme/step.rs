@@ -3,7 +3,7 @@
 use std::collections::BTreeMap;
 
 use super::edges::{self, Projection};
-use super::{Coordinate, SchemeName, StateStep, Taylor, implicit};
+use super::{Coordinate, SchemeName, StateStep, Taylor, areas, implicit};
 use crate::analysis::commute::{along_noise, relevant_drivers};
 use crate::analysis::coordinate::{Candidate, auxiliary, candidates, through};
 use crate::analysis::dependence::mentioned;
@@ -144,16 +144,18 @@ pub(super) fn state_step(
     let state = coordinate.state;
     let (lower, upper) = edges::rules(model, state, coordinate.forward);
     let process = &coordinate.process;
+    let terms = match scheme {
+        SchemeName::Milstein | SchemeName::TamedMilstein | SchemeName::StrongTaylor15 => {
+            areas::terms(model, dynamics, &process.diffusion, frame)
+        }
+        _ => areas::Terms::default(),
+    };
     StateStep {
         state,
         drift: frame.write(process.drift),
         diffusion: process.diffusion.iter().map(|&b| frame.write(b)).collect(),
-        milstein: match scheme {
-            SchemeName::Milstein | SchemeName::TamedMilstein | SchemeName::StrongTaylor15 => {
-                milstein(model, dynamics, &process.diffusion, frame)
-            }
-            _ => Vec::new(),
-        },
+        milstein: terms.products,
+        areas: terms.areas,
         implicit: (scheme == SchemeName::DriftImplicitEuler).then(|| {
             implicit::solution(&model.pool, frame.write(process.drift), coordinate.symbol)
         }),
@@ -219,30 +221,4 @@ fn taylor(model: &Model, dynamics: &Dynamics, process: &Process, frame: &Frame<'
         mixed: mixed.filter(present).collect(),
         cubic,
     }
-}
-
-/// The non-zero coefficients of `dW_j dW_k - rho_jk h` for noise that commutes: `L^j b^j / 2` on the
-/// diagonal and `L^j b^k`, which stands for both orders, beside it (Kloeden and Platen 1992, section
-/// 10.3). Correlated drivers need no other rule: by the product rule `I_(j,k) + I_(k,j) = dW_j dW_k -
-/// rho_jk h`.
-fn milstein(
-    model: &Model,
-    dynamics: &Dynamics,
-    b: &[Expr],
-    frame: &Frame<'_>,
-) -> Vec<(usize, usize, Expr)> {
-    let pool = &model.pool;
-    let drivers = relevant_drivers(model, dynamics, b);
-    let mut terms = Vec::new();
-    for (position, &j) in drivers.iter().enumerate() {
-        for &k in &drivers[position..] {
-            let along = along_noise(model, dynamics, j, b[k]);
-            let weight = if j == k { pool.ratio(1, 2) } else { pool.one() };
-            let coefficient = frame.write(pool.mul(weight, along));
-            if !pool.is_zero_literal(coefficient) {
-                terms.push((j, k, coefficient));
-            }
-        }
-    }
-    terms
 }

@@ -112,10 +112,62 @@ fn noise_that_does_not_commute_falls_back_to_euler() {
     assert_eq!(*scheme, SchemeName::Milstein);
     assert!(reason.contains("differ by 1,"), "{reason}");
 
-    let asked = text.replace("drift = \"0\"", "drift = \"0\"\nscheme = \"milstein\"");
-    let refused = errors(&two(&asked));
+    let asked = |name: &str| {
+        text.replace(
+            "drift = \"0\"",
+            &format!("drift = \"0\"\nscheme = \"{name}\""),
+        )
+    };
+    let refused = errors(&two(&asked("tamed_milstein")));
+    let start = "`tamed_milstein` cannot be used for Y: the noise of Y does not commute";
+    assert!(refused[0].contains(start), "{refused:?}");
+}
+
+/// Noise (dW, x dB) by Milstein's scheme: `I_(W,B)` is half the product of the increments, less its mean, and the area
+/// (Kloeden and Platen 1992, section 10.3).
+#[test]
+fn levy_areas_where_milstein_was_asked_for() {
+    let text = state("X", "sin(X)", "W = \"1\"", "scheme = \"milstein\"")
+        + &state("Y", "0", "B = \"X\"", "scheme = \"milstein\"");
+    let planned = two(&text);
+    assert!(errors(&planned).is_empty());
+    let group = only(&planned);
+    assert_eq!(
+        (group.scheme, group.strong_order, group.weak_order),
+        (SchemeName::Milstein, Some(Order::ONE), Some(Order::ONE))
+    );
+    let pool = &planned.model.pool;
+    let printed = |terms: &[(usize, usize, driftwright::symbolic::Expr)]| -> Vec<_> {
+        let terms = terms.iter();
+        terms.map(|&(j, k, e)| (j, k, pool.format(e))).collect()
+    };
+    let [x, y] = steps(group) else {
+        panic!("{group:?}")
+    };
+    assert!(x.milstein.is_empty() && x.areas.is_empty());
+    assert_eq!(printed(&y.milstein), [(0, 1, "1/2".to_owned())]);
+    assert_eq!(printed(&y.areas), [(0, 1, "1".to_owned())]);
+    // Both drivers are drawn, although the noise of Y has one.
+    let drawn = &planned.plan.noise.components;
     assert!(
-        refused[0].contains("`milstein` cannot be used for Y: the noise of Y does not commute"),
+        drawn
+            .iter()
+            .any(|c| c.component == Component::Increment { driver: 0 })
+    );
+    assert!(group.reasons.iter().any(|r| r.contains("Levy areas")));
+}
+
+/// A driver that the exact law of a square-root process uses up has no increments that an area could be drawn for.
+#[test]
+fn no_areas_with_a_driver_that_is_used_up() {
+    let text = "[model]\nname = \"m\"\ndrivers = [\"W\", \"B\"]\n".to_owned()
+        + "[states.V]\ninitial = \"1\"\ndrift = \"1 - V\"\ndiffusion = { W = \"sqrt(V)\" }\n\
+           domain = \"[0, inf)\"\nat_edge = \"as_equation\"\n"
+        + &state("Y", "sin(Y)", "B = \"V\"", "scheme = \"milstein\"");
+    let refused = errors(&plan(&text));
+    let reason = "need the increments of W, which the exact law of V uses up";
+    assert!(
+        refused.len() == 1 && refused[0].contains(reason),
         "{refused:?}"
     );
 }

@@ -29,11 +29,11 @@ const ATTEMPTS: u64 = 1 << 15;
 /// ```
 #[derive(Clone, Copy, Debug)]
 pub struct Draws {
-    seed: u64,
-    generator: Generator,
-    target: Target,
-    step: u64,
-    first_path: u64,
+    pub(super) seed: u64,
+    pub(super) generator: Generator,
+    pub(super) target: Target,
+    pub(super) step: u64,
+    pub(super) first_path: u64,
 }
 
 impl Draws {

@@ -14,8 +14,10 @@
 //! normals come from the words as [`uniform`] and [`normal_pair`] say.
 //!
 //! A gamma or Poisson number ([`Draws`]) has a step to itself: `block = step`, and its attempt number n
-//! takes the four words at the attempts `2 n` and `2 n + 1`.
+//! takes the four words at the attempts `2 n` and `2 n + 1`. Levy areas ([`Draws::areas`]) too have a step to
+//! themselves: the two normals of term n of a driver stand at attempt n, those of a remainder at attempt 0.
 
+mod areas;
 mod draws;
 mod gamma;
 mod normal;
@@ -28,6 +30,7 @@ mod threefry;
 use std::fmt;
 use std::str::FromStr;
 
+pub use areas::area_terms;
 pub use draws::Draws;
 pub(crate) use normal::fill_normals;
 pub use normal::{normal_pair, uniform};

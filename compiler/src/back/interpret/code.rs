@@ -40,13 +40,22 @@ pub(super) struct Instruction {
     pub(super) target: usize,
 }
 
-/// Draws that are mixed before the first instruction.
+/// What is done before the first instruction. `first` is the register of the first result; the others follow.
 #[derive(Clone, Debug)]
-pub(super) struct Correlated {
-    pub(super) factor: Factor,
-    pub(super) sources: Box<[usize]>,
-    /// The register of the first row; the others follow.
-    pub(super) first: usize,
+pub(super) enum Before {
+    /// Draws are mixed.
+    Correlate {
+        factor: Factor,
+        sources: Box<[usize]>,
+        first: usize,
+    },
+    /// Levy areas are drawn, sources by their numbers.
+    Areas {
+        length: Operand,
+        drivers: Box<[(usize, u64)]>,
+        pairs: Box<[(usize, usize, u64)]>,
+        first: usize,
+    },
 }
 
 /// Where a triangular factor stands.
@@ -61,7 +70,7 @@ pub(super) enum Factor {
 /// A lane section.
 #[derive(Clone, Debug)]
 pub(super) struct Code {
-    pub(super) correlated: Vec<Correlated>,
+    pub(super) before: Vec<Before>,
     pub(super) instructions: Vec<Instruction>,
     pub(super) results: Vec<Operand>,
     /// Scratch lanes needed.
@@ -130,10 +139,10 @@ impl<'a> Assembler<'a> {
 
     fn assemble(mut self, results: &[ValueId]) -> Code {
         let program = self.program;
-        let (mut correlated, mut instructions) = (Vec::new(), Vec::new());
+        let (mut before, mut instructions) = (Vec::new(), Vec::new());
         for id in program.section(self.rate) {
             let op = &program.value(id).op;
-            correlated.extend(self.correlated(op, id));
+            before.extend(self.before(op, id));
             if let Some(action) = self.action(op) {
                 // Taken before the operands are released: a target is never an operand.
                 let target = self.take();
@@ -144,37 +153,53 @@ impl<'a> Assembler<'a> {
         }
         let results = results.iter().map(|&id| self.operand(id)).collect();
         Code {
-            correlated,
+            before,
             instructions,
             results,
             registers: self.count,
         }
     }
 
-    /// Mixed draws get registers that nothing has written before them; a row is freed like any other.
-    fn correlated(&mut self, op: &Op, id: ValueId) -> Option<Correlated> {
-        let (factor, sources) = match op {
-            Op::Correlate { factor, sources } => (*factor, sources.clone()),
-            Op::Extract(of, row) => {
-                let register = self.registers[of] + row;
-                self.registers.insert(id, register);
-                return None;
+    /// Mixed draws and areas get registers that nothing has written before them; a row is freed like any other.
+    fn before(&mut self, op: &Op, id: ValueId) -> Option<Before> {
+        if let Op::Extract(of, row) = op {
+            let register = self.registers[of] + row;
+            self.registers.insert(id, register);
+        }
+        let first = self.count;
+        let before = match op {
+            Op::Correlate { factor, sources } => Before::Correlate {
+                factor: self.factor(*factor),
+                sources: sources.clone(),
+                first,
+            },
+            Op::Areas {
+                length,
+                drivers,
+                pairs,
+            } => {
+                let number = |draw: usize| source_id(&self.program.draws[draw]);
+                let driver = |&(increment, terms)| (increment, number(terms));
+                Before::Areas {
+                    length: self.operand(*length),
+                    drivers: drivers.iter().map(driver).collect(),
+                    pairs: pairs.iter().map(|&(p, q, r)| (p, q, number(r))).collect(),
+                    first,
+                }
             }
             _ => return None,
         };
-        let first = self.count;
-        self.count += sources.len();
+        self.count += op.lanes();
         self.registers.insert(id, first);
-        let entries = self.setup.all(self.program, factor);
-        let factor = match self.values.get(&factor) {
+        Some(before)
+    }
+
+    fn factor(&self, id: ValueId) -> Factor {
+        let entries = self.setup.all(self.program, id);
+        match self.values.get(&id) {
             Some(&place) => Factor::Values(place..place + entries.len()),
             None => Factor::Numbers(entries.to_vec()),
-        };
-        Some(Correlated {
-            factor,
-            sources,
-            first,
-        })
+        }
     }
 
     fn take(&mut self) -> usize {

@@ -3,7 +3,7 @@
 use driftwright_runtime::random::Draws;
 use driftwright_runtime::{Arith, Lane, gauss};
 
-use super::code::{Action, Code, Factor, Instruction, Operand};
+use super::code::{Action, Before, Code, Factor, Instruction, Operand};
 use crate::program::{BinaryOp, Comparison, DrawLaw};
 
 /// An operand in place.
@@ -48,13 +48,8 @@ pub(super) fn run<A: Arith>(
     draws: Option<&Draws>,
     scratch: &mut [Lane],
 ) {
-    for correlated in &code.correlated {
-        let factor = match &correlated.factor {
-            Factor::Numbers(numbers) => numbers,
-            Factor::Values(places) => &values[places.clone()],
-        };
-        let out = &mut scratch[correlated.first..];
-        gauss::correlate::<A>(factor, &correlated.sources, noise, out);
+    for before in &code.before {
+        prepare::<A>(before, values, noise, draws, scratch);
     }
     for instruction in &code.instructions {
         let (below, rest) = scratch.split_at_mut(instruction.target);
@@ -73,6 +68,51 @@ pub(super) fn run<A: Arith>(
             },
             target,
         );
+    }
+}
+
+/// Mixes draws, or draws Levy areas, into their registers.
+#[inline(always)]
+fn prepare<A: Arith>(
+    before: &Before,
+    values: &[f64],
+    noise: &[Lane],
+    draws: Option<&Draws>,
+    scratch: &mut [Lane],
+) {
+    match before {
+        Before::Correlate {
+            factor,
+            sources,
+            first,
+        } => {
+            let factor = match factor {
+                Factor::Numbers(numbers) => numbers,
+                Factor::Values(places) => &values[places.clone()],
+            };
+            gauss::correlate::<A>(factor, sources, noise, &mut scratch[*first..]);
+        }
+        Before::Areas {
+            length,
+            drivers,
+            pairs,
+            first,
+        } => {
+            let length = match *length {
+                Operand::Number(number) => number,
+                Operand::Value(place) => values[place],
+                _ => unreachable!("the length of a step is the same on all lanes"),
+            };
+            let draws = draws.expect("the verifier lets areas into steps only");
+            let lanes = pairs.len() + 2 * drivers.len();
+            draws.areas(
+                length,
+                drivers,
+                pairs,
+                noise,
+                &mut scratch[*first..][..lanes],
+            );
+        }
     }
 }
 

@@ -107,7 +107,8 @@ impl Uniform {
             | Op::Cholesky { .. }
             | Op::Transition { .. }
             | Op::MovingTransition { .. }
-            | Op::Correlate { .. } => {
+            | Op::Correlate { .. }
+            | Op::Areas { .. } => {
                 unreachable!("the verifier lets no lane and no matrix in here")
             }
         }

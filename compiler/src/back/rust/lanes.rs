@@ -31,7 +31,7 @@ impl Generator<'_> {
             };
             quote! { #markers #lane.0[lane] = #value; }
         });
-        let correlated = self.correlated();
+        let before = self.before();
         let loops = self.loops(&quote! { #(#writes)* });
         let draws = if program.draws.is_empty() {
             quote! { _draws }
@@ -40,8 +40,8 @@ impl Generator<'_> {
         };
         let values_name = argument("values", &values);
         let states_name = argument("states", &states);
-        let noise_name = argument("noise", &quote! { #noise #correlated });
-        let scratch_name = argument("scratch", &correlated);
+        let noise_name = argument("noise", &quote! { #noise #before });
+        let scratch_name = argument("scratch", &before);
         quote! {
             #[inline(always)]
             fn step<A: runtime::Arith>(
@@ -56,7 +56,7 @@ impl Generator<'_> {
                 #values
                 #states
                 #noise
-                #correlated
+                #before
                 #loops
             }
         }
@@ -142,35 +142,64 @@ impl Generator<'_> {
         }
     }
 
-    /// Draws that are mixed before the loops over lanes, each kind into lanes of its own.
-    fn correlated(&self) -> TokenStream {
+    /// What is drawn or mixed before the loops over lanes, each into lanes of its own.
+    fn before(&self) -> TokenStream {
         let mut tokens = TokenStream::new();
-        let mut lanes = self.correlated_lanes();
-        for id in self.program.section(Rate::StepLane) {
-            let Op::Correlate { factor, sources } = &self.program.value(id).op else {
-                continue;
-            };
-            lanes -= sources.len();
+        let mut lanes = self.lanes_before();
+        let calls = self.program.section(Rate::StepLane);
+        for id in calls.filter(|&id| self.program.value(id).op.lanes() > 0) {
+            let op = &self.program.value(id).op;
+            lanes -= op.lanes();
             let rest = rest("scratch", lanes == 0);
-            let (name, factor, dim) = (self.names.value(id), self.read(*factor), self.width(id));
-            let sources = sources.iter().map(|&s| Literal::usize_unsuffixed(s));
+            let (name, count) = (self.names.value(id), Literal::usize_unsuffixed(op.lanes()));
+            let call = self.call_before(op, name);
             tokens.extend(quote! {
-                let Some((#name, #rest)) = scratch.split_first_chunk_mut::<#dim>() else {
+                let Some((#name, #rest)) = scratch.split_first_chunk_mut::<#count>() else {
                     unreachable!("the driver passes as many scratch lanes as the shape says")
                 };
-                runtime::gauss::correlate::<A>(#factor, &[#(#sources),*], noise, #name);
+                #call
             });
         }
         tokens
     }
 
-    /// The scratch lanes that mixed draws take.
-    pub(super) fn correlated_lanes(&self) -> usize {
+    fn call_before(&self, op: &Op, name: &Ident) -> TokenStream {
+        let place = Literal::usize_unsuffixed;
+        match op {
+            Op::Correlate { factor, sources } => {
+                let (factor, sources) = (self.read(*factor), sources.iter().map(|&s| place(s)));
+                quote! { runtime::gauss::correlate::<A>(#factor, &[#(#sources),*], noise, #name); }
+            }
+            Op::Areas {
+                length,
+                drivers,
+                pairs,
+            } => {
+                let length = self.read(*length);
+                let number = |draw: usize| {
+                    let name = &self.program.draws[draw];
+                    quote! { const { runtime::source_id(#name) } }
+                };
+                let drivers = drivers.iter().map(|&(increment, terms)| {
+                    let (increment, terms) = (place(increment), number(terms));
+                    quote! { (#increment, #terms) }
+                });
+                let pairs = pairs.iter().map(|&(p, q, remainder)| {
+                    let (p, q, remainder) = (place(p), place(q), number(remainder));
+                    quote! { (#p, #q, #remainder) }
+                });
+                quote! {
+                    draws.areas(#length, &[#(#drivers),*], &[#(#pairs),*], noise, #name);
+                }
+            }
+            _ => unreachable!("no other operation fills lanes before the loops"),
+        }
+    }
+
+    /// The scratch lanes that this takes.
+    pub(super) fn lanes_before(&self) -> usize {
         let values = self.program.values.iter();
-        values
-            .filter(|value| matches!(value.op, Op::Correlate { .. }))
-            .map(|value| value.op.width())
-            .sum()
+        values.map(|value| value.op.lanes()).sum()
     }
 
     fn has_lane_statement(&self, id: ValueId) -> bool {

@@ -39,7 +39,7 @@ impl Generator<'_> {
         let states = count(program.slots.len());
         let step_values = count(program.numbers(&program.step_values));
         let observation_values = count(program.numbers(&program.observation_values));
-        let step_scratch = count(self.correlated_lanes());
+        let step_scratch = count(self.lanes_before());
         let left_domain = match program.left_domain {
             Some(slot) => {
                 let slot = count(slot);

@@ -307,7 +307,7 @@ impl Generator<'_> {
     fn extract(&self, of: ValueId, index: usize) -> TokenStream {
         let name = self.names.value(of);
         let index_of = Literal::usize_unsuffixed;
-        if matches!(self.program.value(of).op, Op::Correlate { .. }) {
+        if self.program.value(of).op.lanes() > 0 {
             let index = index_of(index);
             return quote! { #name[#index].0[lane] };
         }

@@ -57,7 +57,7 @@ impl Stages {
     }
 }
 
-/// A slot, a normal draw or a correlated one: it stands in a lane before the first loop.
+/// A slot, a normal draw, a correlated one or an area: it stands in a lane before the first loop.
 fn is_lane_already(program: &Program, id: ValueId) -> bool {
     matches!(
         program.value(id).op,
@@ -103,7 +103,7 @@ impl Generator<'_> {
         let program = self.program;
         let computed = |id: &ValueId| {
             let op = &program.value(*id).op;
-            let call = matches!(op, Op::Draw { .. } | Op::Correlate { .. });
+            let call = matches!(op, Op::Draw { .. }) || op.lanes() > 0;
             stages.stage[id] == stage && has_statement(op) && !call
         };
         let here: Vec<ValueId> = program.section(Rate::StepLane).filter(computed).collect();

@@ -12,7 +12,7 @@ use crate::scheme::{Component, EdgeRule, StateStep, Taylor};
 use crate::symbolic::{Bound, Expr};
 
 impl Lowering<'_> {
-    /// `u + a h + sum b_j dW_j + sum c_jk (dW_j dW_k - rho_jk h)` and terms of higher order, kept at its
+    /// `u + a h + sum b_j dW_j + sum c_jk (dW_j dW_k - rho_jk h) + sum d_jk A_jk` and terms of higher order, kept at its
     /// closed ends; the drift of a tamed scheme is `a h/(1 + h size)`.
     pub(super) fn approximate_state(&mut self, step: &StateStep, noise: &Noise) -> ValueId {
         let pool = self.model.pool.clone();
@@ -45,6 +45,7 @@ impl Lowering<'_> {
             self.note(step.state, value, drift);
         }
         value = self.milstein_terms(step, noise, value);
+        value = self.area_terms(step, noise, value);
         if let Some(taylor) = &step.taylor {
             value = self.taylor_terms(step.state, taylor, noise, value);
         }
@@ -106,6 +107,22 @@ impl Lowering<'_> {
                 self.model.drivers[j].name,
                 self.model.drivers[k].name,
                 pool.format(coefficient)
+            );
+            self.note(step.state, value, text);
+        }
+        value
+    }
+
+    fn area_terms(&mut self, step: &StateStep, noise: &Noise, mut value: ValueId) -> ValueId {
+        for &(j, k, coefficient) in &step.areas {
+            let factor = self.in_step(coefficient);
+            value = self.builder.mul_add(factor, noise.areas[&(j, k)], value);
+            let text = format!(
+                "Levy area term of {} for {} and {}: {}.",
+                self.coordinate_text(step.state),
+                self.model.drivers[j].name,
+                self.model.drivers[k].name,
+                self.model.pool.format(coefficient)
             );
             self.note(step.state, value, text);
         }

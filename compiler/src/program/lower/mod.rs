@@ -5,6 +5,7 @@
 //! time) and an observation (its time, the stored coordinates).
 
 mod approximate;
+mod areas;
 mod carried;
 mod constructor;
 mod exact;

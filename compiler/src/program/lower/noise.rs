@@ -48,6 +48,8 @@ pub(super) struct Noise {
     mixtures: Vec<Mixture>,
     /// Of the groups whose rows are coupled.
     pub(super) transitions: BTreeMap<usize, Transition>,
+    /// The Levy areas of the pairs of drivers that need them.
+    pub(super) areas: BTreeMap<(usize, usize), ValueId>,
 }
 
 impl Noise {
@@ -60,6 +62,7 @@ impl Noise {
         for block in blocks(lowering, &rows) {
             noise.block(lowering, &rows, &block);
         }
+        noise.areas = lowering.levy_areas(&noise);
         noise
     }
 
