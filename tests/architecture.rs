@@ -53,7 +53,7 @@ const MAY_USE: [(&str, &[&str]); 13] = [
 ];
 
 /// Passes that come after the plan although they live beside earlier ones: they judge what the plan allows.
-const AFTER_THE_PLAN: [&str; 2] = ["analysis/claims", "analysis/moments"];
+const AFTER_THE_PLAN: [&str; 3] = ["analysis/claims", "analysis/facts", "analysis/moments"];
 
 /// Files that hold tests alone may look ahead: a back end is the best way to see what a program means.
 const TESTS_ALONE: [&str; 3] = ["program/sketch.rs", "program/tests", "symbolic/tests"];

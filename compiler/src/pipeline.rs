@@ -5,6 +5,7 @@
 //! run.
 
 use crate::analysis::claims::{ClaimResult, judge};
+use crate::analysis::facts::{self, Fact};
 use crate::analysis::moments::Moments;
 use crate::calculus::{Dynamics, dynamics};
 use crate::diagnostic::{Code, Diagnostic, Diagnostics};
@@ -47,6 +48,8 @@ pub struct Compiled {
     pub moments: Moments,
     /// After the claims: one verdict each, in the file's order; each refuted one is an error too.
     pub claims: Vec<ClaimResult>,
+    /// After the claims: what is known of ends, growth, noise, martingales and moments, with its conditions.
+    pub facts: Vec<Fact>,
     /// After lowering: the step program, verified; both back ends follow it operation by operation.
     pub program: Program,
 }
@@ -90,7 +93,8 @@ fn passes(model: Model, diagnostics: &mut Diagnostics) -> Option<Compiled> {
     let plan = plan(&model, &dynamics, diagnostics);
     let moments = Moments::new(&model, &dynamics);
     let claims = judge(&model, &dynamics, &moments, diagnostics);
-    let program = match lower(&model, &plan) {
+    let facts = facts::find(&model, &dynamics, &moments);
+    let program = match lower(&model, &plan, &facts) {
         Ok(program) => program,
         Err(too_large) => {
             let at = model.states.first().map_or(Span::default(), |s| s.span);
@@ -107,6 +111,7 @@ fn passes(model: Model, diagnostics: &mut Diagnostics) -> Option<Compiled> {
         plan,
         moments,
         claims,
+        facts,
         program,
     })
 }

@@ -17,13 +17,7 @@ fn compiled(text: &str) -> Compiled {
 }
 
 fn json(compiled: &Compiled) -> Value {
-    report::json::derivation(&Derivation {
-        model: &compiled.model,
-        dynamics: &compiled.dynamics,
-        plan: &compiled.plan,
-        claims: &compiled.claims,
-        diagnostics: &[],
-    })
+    report::json::derivation(&Derivation::new(compiled, &[]))
 }
 
 /// Reads formulas of a document back into the pool they came from.

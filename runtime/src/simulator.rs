@@ -4,6 +4,7 @@ use std::borrow::Cow;
 
 use crate::arith::Arith;
 use crate::error::StepError;
+use crate::fact::Fact;
 use crate::lane::Lane;
 use crate::random::Draws;
 use crate::source::Source;
@@ -129,4 +130,9 @@ pub trait Simulator: Sync {
         outputs: &mut [Lane],
         scratch: &mut [Lane],
     );
+
+    /// The facts of the model that hang on parameter values, and whether they hold at these.
+    fn facts(&self) -> Vec<Fact> {
+        Vec::new()
+    }
 }

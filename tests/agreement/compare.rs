@@ -36,6 +36,8 @@ pub(crate) fn model<B: Simulator, E: Simulator>(
         match results {
             (Ok(interpreter), Ok(built), Ok(expanded)) => {
                 accepted += 1;
+                assert_eq!(interpreter.facts(), built.facts(), "{path}, {values:?}");
+                assert_eq!(built.facts(), expanded.facts(), "{path}, {values:?}");
                 same_paths(path, set, &interpreter, &built, &expanded);
             }
             (Err(first), Err(second), Err(third)) => {

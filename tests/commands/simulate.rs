@@ -234,3 +234,45 @@ fn values_that_are_not_finite_are_null_and_counted() {
     assert_eq!(found["failures"]["non_finite"], 300);
     assert!(found["quantities"]["S"]["variance"][0].is_null());
 }
+
+/// A fact that ranges and assumptions leave open is checked at the values of the run: Feller's condition
+/// `2 kappa theta >= xi^2` of the variance (Cox, Ingersoll and Ross 1985).
+#[test]
+fn facts_are_checked_at_the_values_of_a_run() {
+    let wool = "models/wool_sale.toml";
+    for (kappa, holds) in [("3", true), ("0.1", false)] {
+        let set = format!("kappa={kappa}");
+        for command in ["simulate", "verify"] {
+            let arguments = [
+                command,
+                wool,
+                "--paths",
+                "2000",
+                "--set",
+                "theta=0.05",
+                "--set",
+                "xi=0.5",
+                "--set",
+                &set,
+            ];
+            let ran = run(&[&arguments[..], &["--format", "json"]].concat());
+            let found: Value = serde_json::from_str(&ran.out).unwrap();
+            let facts = match command {
+                "simulate" => &found["manifest"]["facts"],
+                _ => &found["facts"],
+            };
+            let end = facts
+                .as_array()
+                .unwrap()
+                .iter()
+                .find(|f| f["statement"] == "v does not attain 0");
+            let end = end.unwrap();
+            assert_eq!(end["condition"], "2*kappa*theta >= xi^2");
+            assert_eq!(end["holds"], holds, "{command} {kappa}");
+            let shown = run(&arguments).out;
+            let word = if holds { "holds" } else { "does not hold" };
+            let line = format!("{word} at these parameters: v does not attain 0");
+            assert!(shown.contains(&line), "{line} is missing in\n{shown}");
+        }
+    }
+}

@@ -78,13 +78,7 @@ impl Loaded {
 
     /// What the reports read.
     pub(super) fn derivation<'a>(&'a self, compiled: &'a Compiled) -> Derivation<'a> {
-        Derivation {
-            model: &compiled.model,
-            dynamics: &compiled.dynamics,
-            plan: &compiled.plan,
-            claims: &compiled.claims,
-            diagnostics: &self.diagnostics,
-        }
+        Derivation::new(compiled, &self.diagnostics)
     }
 }
 

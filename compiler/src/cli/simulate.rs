@@ -4,7 +4,7 @@ use std::io;
 use std::path::Path;
 
 use driftwright_runtime::collect::Summary;
-use driftwright_runtime::{Grid, Run};
+use driftwright_runtime::{Grid, Run, Simulator as _};
 
 use super::args::{Format, SimulateArgs};
 use super::fan_chart::{self, Caption, Fan};
@@ -132,6 +132,7 @@ impl<'a> Session<'a> {
             quantities: quantities(&self.names, &collected),
             failures: collected.failures,
             arithmetic: collected.arithmetic,
+            facts: self.interpreter.facts(),
         })
     }
 

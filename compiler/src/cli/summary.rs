@@ -1,12 +1,12 @@
 //! What `simulate` shows: sample statistics for people and for programs.
 
-use driftwright_runtime::{ArithmeticClass, Failures, STREAM_VERSION};
+use driftwright_runtime::{ArithmeticClass, Fact, Failures, STREAM_VERSION};
 use serde_json::{Map, Value, json};
 
 use super::run::Settings;
 use crate::model::Model;
 use crate::report::Document;
-use crate::report::document::{Align, Inline, Mark, Table, code, words};
+use crate::report::document::{Align, Inline, Mark, Table, Text, code, words};
 use crate::report::number::{grouped, significant, with_error};
 use crate::scheme::Plan;
 
@@ -58,6 +58,8 @@ pub(super) struct Sample {
     pub(super) failures: Failures,
     /// Arithmetic class that was used.
     pub(super) arithmetic: ArithmeticClass,
+    /// Facts that hang on parameter values, and whether they hold at those of the run.
+    pub(super) facts: Vec<Fact>,
 }
 
 /// What makes the run repeatable.
@@ -82,6 +84,7 @@ pub(super) fn manifest(sample: &Sample, settings: &Settings, model: &Model, plan
         "horizon": settings.horizon,
         "steps": settings.steps,
         "parameters": settings.parameters,
+        "facts": checked_facts(&sample.facts),
     })
 }
 
@@ -151,6 +154,7 @@ pub(super) fn document(
             .map(words)
             .collect(),
     );
+    document.list(fact_lines(&sample.facts));
     failures(&mut document, sample);
     document
 }
@@ -212,6 +216,32 @@ fn facts(sample: &Sample, settings: &Settings, model: &Model, plan: &Plan) -> Ve
         env!("CARGO_PKG_VERSION")
     ));
     facts
+}
+
+/// The facts that hang on parameter values, for programs.
+pub(super) fn checked_facts(facts: &[Fact]) -> Vec<Value> {
+    let entry =
+        |f: &Fact| json!({ "statement": f.statement, "condition": f.condition, "holds": f.holds });
+    facts.iter().map(entry).collect()
+}
+
+/// The facts that hang on parameter values, for people: what does not hold is a warning.
+pub(super) fn fact_lines(facts: &[Fact]) -> Vec<Text> {
+    let line = |f: &Fact| {
+        let (mark, word) = if f.holds {
+            (Mark::Good, "holds")
+        } else {
+            (Mark::Bad, "does not hold")
+        };
+        vec![
+            Inline::Marked(mark, word.to_owned()),
+            Inline::Words(" at these parameters: ".into()),
+            Inline::Words(format!("{} (if and only if ", f.statement)),
+            Inline::Code(f.condition.to_string()),
+            Inline::Words(")".into()),
+        ]
+    };
+    facts.iter().map(line).collect()
 }
 
 /// Paths that went wrong are never passed over in silence.

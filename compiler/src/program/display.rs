@@ -4,7 +4,7 @@ use std::fmt;
 
 use super::op::{Comparison, Op, ValueId};
 use super::rate::Rate;
-use super::{Check, Program};
+use super::{Check, Fact, Program};
 
 impl fmt::Display for Program {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
@@ -23,6 +23,9 @@ impl fmt::Display for Program {
         }
         for check in &self.checks {
             writeln!(f, "check {}", describe(check, self))?;
+        }
+        for fact in &self.facts {
+            writeln!(f, "fact {} if {}", fact.statement, alternatives(fact))?;
         }
         for slot in &self.slots {
             writeln!(
@@ -160,6 +163,16 @@ fn describe(check: &Check, program: &Program) -> String {
             format!("initial {state} = {value} in {}", ends(domain))
         }
     }
+}
+
+fn alternatives(fact: &Fact) -> String {
+    let all = fact.alternatives.iter().map(|all| {
+        let parts = all
+            .iter()
+            .map(|(left, relates, right)| format!("{left} {} {right}", relates.sign()));
+        parts.collect::<Vec<_>>().join(" and ")
+    });
+    all.collect::<Vec<_>>().join(" or ")
 }
 
 fn ends(range: &super::Range) -> String {

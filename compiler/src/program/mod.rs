@@ -8,6 +8,7 @@
 mod builder;
 mod checks;
 mod display;
+mod facts;
 mod formula;
 mod functions;
 mod lower;
@@ -23,6 +24,7 @@ mod verify;
 use std::collections::BTreeSet;
 
 pub use checks::{Bound, Check, Range};
+pub use facts::{Compared, Fact, Relates};
 pub use functions::{BinaryOp, UnaryOp};
 pub use lower::{TooLarge, lower};
 pub use op::{Comparison, DrawLaw, Number, Op, ValueId};
@@ -120,6 +122,8 @@ pub struct Program {
     pub parameters: Vec<Parameter>,
     /// What must hold of the parameters, in the order in which it is checked.
     pub checks: Vec<Check>,
+    /// Facts of the model that its ranges and assumptions leave open and that parameter values decide.
+    pub facts: Vec<Fact>,
     /// The factor of the drivers' correlation matrix, which exists only where that is positive
     /// semidefinite; none where it cannot fail.
     pub correlation: Option<ValueId>,
@@ -197,8 +201,25 @@ impl Program {
 
     /// The setup values the checks need; constructors compute them before anything that can fail.
     pub fn check_values(&self) -> Vec<ValueId> {
+        self.setup_values_behind(self.checks.iter().flat_map(Check::operands))
+    }
+
+    /// The setup values the facts need.
+    pub fn fact_values(&self) -> Vec<ValueId> {
+        self.setup_values_behind(self.facts.iter().flat_map(Fact::operands))
+    }
+
+    /// The setup values that something else than the facts needs.
+    pub fn constructor_values(&self) -> Vec<ValueId> {
+        let later = self.ids().filter(|&id| self.value(id).rate > Rate::Setup);
+        let read = later.flat_map(|id| self.value(id).op.operands());
+        self.setup_values_behind(read.chain(self.results()))
+    }
+
+    /// The setup values among some values and those they are computed from.
+    fn setup_values_behind(&self, ids: impl Iterator<Item = ValueId>) -> Vec<ValueId> {
         let mut needed = vec![false; self.values.len()];
-        for id in self.checks.iter().flat_map(Check::operands) {
+        for id in ids {
             needed[id.index()] = true;
         }
         for index in (0..self.values.len())

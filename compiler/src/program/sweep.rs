@@ -5,19 +5,21 @@ use std::collections::BTreeSet;
 
 use super::op::{Op, ValueId};
 use super::rate::Rate;
-use super::{Check, Program};
+use super::{Check, Fact, Program};
 
 impl Program {
     /// Everything a back end must compute.
     pub(super) fn roots(&self) -> Vec<ValueId> {
+        let facts = self.facts.iter().flat_map(Fact::operands);
+        self.results().chain(facts).collect()
+    }
+
+    /// Everything that a simulator needs to be constructed and to run.
+    pub(super) fn results(&self) -> impl Iterator<Item = ValueId> + '_ {
         let slots = self.slots.iter().flat_map(|s| [s.initial, s.next]);
         let outputs = self.outputs.iter().map(|o| o.value);
         let checks = self.checks.iter().flat_map(Check::operands);
-        slots
-            .chain(outputs)
-            .chain(checks)
-            .chain(self.correlation)
-            .collect()
+        slots.chain(outputs).chain(checks).chain(self.correlation)
     }
 
     /// The program without the values nothing reads.
@@ -64,6 +66,11 @@ impl Program {
         self.checks = checks
             .into_iter()
             .map(|c| c.map(|id| renumbered(new_ids, id)))
+            .collect();
+        let facts = std::mem::take(&mut self.facts);
+        self.facts = facts
+            .into_iter()
+            .map(|f| f.map(|id| renumbered(new_ids, id)))
             .collect();
         let slots = &self.slots;
         for note in &mut self.notes {

@@ -36,7 +36,7 @@ fn geometric() -> Sketch {
 }
 
 fn program(sketch: &Sketch) -> Program {
-    lower(&sketch.model, &sketch.plan).expect("a small program")
+    lower(&sketch.model, &sketch.plan, &[]).expect("a small program")
 }
 
 /// One step of a simulator from its start, every lane with the same draws, and what is observed then.

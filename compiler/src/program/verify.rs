@@ -4,7 +4,7 @@ use std::fmt;
 
 use super::op::{Op, ValueId};
 use super::rate::Rate;
-use super::{Check, Program};
+use super::{Check, Fact, Program};
 
 /// A fault in a program; it is the compiler's, never the author's.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -152,10 +152,11 @@ impl Program {
             .checks
             .iter()
             .flat_map(Check::operands)
+            .chain(self.facts.iter().flat_map(Fact::operands))
             .chain(self.correlation)
         {
             if rate(id) > Rate::Setup {
-                return Err(format!("a check reads {id} of rate {}", rate(id)));
+                return Err(format!("a check or fact reads {id} of rate {}", rate(id)));
             }
         }
         for slot in &self.slots {

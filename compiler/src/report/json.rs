@@ -7,6 +7,8 @@ use serde_json::{Map, Value, json};
 
 use super::Derivation;
 use crate::analysis::claims::ClaimResult;
+use crate::analysis::condition::{All, Condition, all_standing};
+use crate::analysis::facts::Fact;
 use crate::calculus::Expansion;
 use crate::diagnostic::diagnostic_json;
 use crate::model::{Calculus, Model};
@@ -54,6 +56,11 @@ fn document<'e>(
         .iter()
         .map(|g| method(model, texts, derivation.plan, g))
         .collect();
+    let facts: Vec<Value> = derivation
+        .facts
+        .iter()
+        .map(|f| fact(model, texts, f))
+        .collect();
     let claims: Map<String, Value> = derivation
         .claims
         .iter()
@@ -73,6 +80,7 @@ fn document<'e>(
         "states": states,
         "derived": derived,
         "methods": methods,
+        "facts": facts,
         "claims": claims,
         "diagnostics": diagnostics,
     });
@@ -156,6 +164,43 @@ fn method(model: &Model, texts: &SharedTexts<'_>, plan: &Plan, group: &Group) ->
         "preserves_domain": group.preserves_domain,
         "reasons": group.reasons,
         "rejected": rejected,
+    })
+}
+
+fn fact(model: &Model, texts: &SharedTexts<'_>, fact: &Fact) -> Value {
+    let names: Vec<&str> = fact
+        .states
+        .iter()
+        .map(|&s| model.states[s].name.as_str())
+        .collect();
+    let sides = |c: &Condition| {
+        format!(
+            "{} {} {}",
+            texts.format(c.left),
+            c.relates.sign(),
+            texts.format(c.right)
+        )
+    };
+    let all = |when: &All| when.iter().map(sides).collect::<Vec<String>>();
+    let classes: Vec<Value> = fact
+        .classes
+        .iter()
+        .map(|(class, when)| {
+            let standing = all_standing(model, when).name();
+            json!({ "class": class, "when": all(when), "standing": standing })
+        })
+        .collect();
+    let alternatives = fact.condition.as_ref();
+    json!({
+        "topic": fact.topic.name(),
+        "states": names,
+        "statement": fact.statement,
+        "condition": fact.condition_text(model),
+        "any_of": alternatives.map(|a| a.iter().map(all).collect::<Vec<_>>()),
+        "standing": fact.standing.name(),
+        "checked_at_run_time": fact.to_check(model).is_some(),
+        "classes": classes,
+        "because": fact.because,
     })
 }
 

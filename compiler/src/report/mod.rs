@@ -8,6 +8,7 @@ mod claims;
 pub mod document;
 mod dossier;
 mod dynamics;
+mod facts;
 pub mod json;
 pub mod markdown;
 mod methods;
@@ -25,9 +26,11 @@ pub use dynamics::{derived_summary, state_equations};
 pub use methods::{method_line, method_table};
 
 use crate::analysis::claims::ClaimResult;
+use crate::analysis::facts::Fact;
 use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostic;
 use crate::model::Model;
+use crate::pipeline::Compiled;
 use crate::scheme::Plan;
 
 /// Everything about one model that a report shows.
@@ -41,6 +44,22 @@ pub struct Derivation<'a> {
     pub plan: &'a Plan,
     /// The claims' verdicts, in file order.
     pub claims: &'a [ClaimResult],
+    /// What is known of ends, growth, noise, martingales and moments.
+    pub facts: &'a [Fact],
     /// What was found on the way.
     pub diagnostics: &'a [Diagnostic],
+}
+
+impl<'a> Derivation<'a> {
+    /// Everything about a compiled model, with what was found on the way.
+    pub fn new(compiled: &'a Compiled, diagnostics: &'a [Diagnostic]) -> Self {
+        Self {
+            model: &compiled.model,
+            dynamics: &compiled.dynamics,
+            plan: &compiled.plan,
+            claims: &compiled.claims,
+            facts: &compiled.facts,
+            diagnostics,
+        }
+    }
 }

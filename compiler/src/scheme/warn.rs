@@ -4,6 +4,7 @@ use super::edges;
 use super::{Group, Law};
 use crate::analysis::asymptotics::Side;
 use crate::analysis::boundary::{End, classify};
+use crate::analysis::condition::{self, Relates};
 use crate::analysis::coordinate::through;
 use crate::analysis::end_rules;
 use crate::analysis::sample;
@@ -119,16 +120,19 @@ fn open_end(
         End::Undecided(_) if bound == Bound::Infinite => None,
         End::Reached => warning(format!("{name} reaches the open end {end} of its domain"))
             .map(|w| w.hint(close)),
-        End::Undecided(Some(margin)) => warning(format!(
-            "{name} reaches the open end {end} of its domain unless {} >= 0",
-            pool.format(margin)
-        ))
-        .map(|w| {
-            w.hint(format!(
-                "add the assumption \"{} >= 0\", or close the end",
-                pool.format(margin)
+        End::Undecided(Some(alternatives)) => {
+            let condition = condition::format(pool, &alternatives);
+            let hint = match alternatives[..] {
+                [ref all] if all.len() == 1 && all[0].relates != Relates::Equal => {
+                    format!("add the assumption \"{condition}\", or close the end")
+                }
+                _ => close.to_owned(),
+            };
+            warning(format!(
+                "{name} reaches the open end {end} of its domain unless {condition}"
             ))
-        }),
+            .map(|w| w.hint(hint))
+        }
         End::Undecided(None) => warning(format!(
             "it could not be decided whether {name} reaches the open end {end} of its domain"
         ))

@@ -2,6 +2,7 @@
 
 mod claims;
 mod common;
+mod facts;
 mod ito;
 mod moments;
 mod working;

@@ -247,7 +247,7 @@ fn an_open_end_of_a_square_root_process_needs_fellers_condition() {
         .find(|d| d.code == Code::OpenEndReached)
         .unwrap();
     assert!(
-        warning.message.contains("2*kappa*theta - sigma^2 >= 0"),
+        warning.message.contains("2*kappa*theta >= sigma^2"),
         "{}",
         warning.message
     );

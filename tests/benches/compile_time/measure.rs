@@ -137,13 +137,7 @@ fn compiled(compilation: &Compilation) -> &Compiled {
 }
 
 fn derivation<'a>(compilation: &'a Compilation, compiled: &'a Compiled) -> Derivation<'a> {
-    Derivation {
-        model: &compiled.model,
-        dynamics: &compiled.dynamics,
-        plan: &compiled.plan,
-        claims: &compiled.claims,
-        diagnostics: &compilation.diagnostics,
-    }
+    Derivation::new(compiled, &compilation.diagnostics)
 }
 
 /// Seconds that some work took, and what came of it.

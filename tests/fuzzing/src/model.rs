@@ -95,13 +95,7 @@ pub fn check_layout(text: &str) {
 
 /// Every report can be written, also for formulas on the spot, and programs can read its formulas.
 fn check_reports(compiled: &Compiled, diagnostics: &[Diagnostic]) {
-    let derivation = Derivation {
-        model: &compiled.model,
-        dynamics: &compiled.dynamics,
-        plan: &compiled.plan,
-        claims: &compiled.claims,
-        diagnostics,
-    };
+    let derivation = Derivation::new(compiled, diagnostics);
     write(&report::dossier(&derivation));
     let document = report::json::derivation(&derivation);
     let pool = &compiled.model.pool;

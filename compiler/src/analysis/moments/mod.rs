@@ -31,7 +31,7 @@ pub use law::{LawName, NormalLaw};
 pub use marginal::{Atom, ImageLaw, MarginalLaw};
 
 use super::square_root::{SquareRoot, find};
-use crate::calculus::{Dynamics, Expansion};
+use crate::calculus::{Dynamics, Expansion, System};
 use crate::model::Model;
 use crate::symbolic::{Expr, Limit, Symbol};
 use coordinates::{Change, Chart};
@@ -55,6 +55,13 @@ pub struct Moment {
     /// Where it comes from: `normal law`, `lognormal law`, `joint normal law`, `transformed normal
     /// law`, `deterministic` or `moment equations`.
     pub source: String,
+}
+
+/// Whether the coefficients of a state, and of all that drive it, grow at most linearly.
+pub fn grows_linearly(system: &System<'_>, state: usize) -> bool {
+    let pool = system.pool();
+    let closure = system.closure([pool.var(system.symbols[state])]);
+    growth::is_linear(system, &closure)
 }
 
 /// The moments of one model, worked out on demand and remembered.
@@ -129,6 +136,11 @@ impl Moments {
     /// Whether a state has a Gaussian coordinate with a proved law.
     pub fn has_exact_law(&self, state: usize) -> bool {
         self.gaussian.rows.iter().any(|row| row.state == state)
+    }
+
+    /// The law of a state as a square-root process by itself, where it is one.
+    pub fn square_root(&self, state: usize) -> Option<&SquareRoot> {
+        self.square_roots[state].as_deref()
     }
 
     /// `E[formula]` at time t.

@@ -12,11 +12,11 @@ use std::borrow::Cow;
 use std::collections::BTreeMap;
 
 use driftwright_runtime::random::Draws;
-use driftwright_runtime::{Arith, Lane, ParameterError, Shape, Simulator, Source, StepError};
+use driftwright_runtime::{Arith, Fact, Lane, ParameterError, Shape, Simulator, Source, StepError};
 
 use self::code::Code;
 use self::uniform::Uniform;
-use crate::program::{Program, Rate};
+use crate::program::{Compared, Program, Rate, Relates};
 
 /// A model with its parameters, run operation by operation.
 #[derive(Clone, Debug)]
@@ -131,5 +131,24 @@ impl Simulator for Interpreter {
     ) {
         lanes::run::<A>(&self.observe, values, states, &[], None, scratch);
         lanes::write(&self.observe, values, Some(states), &[], scratch, outputs);
+    }
+
+    fn facts(&self) -> Vec<Fact> {
+        let compared = |&(left, relates, right): &Compared| {
+            let (left, right) = (self.setup.get(left), self.setup.get(right));
+            match relates {
+                Relates::Greater => left > right,
+                Relates::AtLeast => left >= right,
+                Relates::Equal => left == right,
+            }
+        };
+        let facts = self.program.facts.iter();
+        facts
+            .map(|fact| Fact {
+                statement: Cow::Owned(fact.statement.clone()),
+                condition: Cow::Owned(fact.condition.clone()),
+                holds: fact.alternatives.iter().any(|all| all.iter().all(compared)),
+            })
+            .collect()
     }
 }

@@ -87,7 +87,8 @@ impl Generator<'_> {
         let checked = self.program.check_values();
         let rest = self
             .program
-            .section(Rate::Setup)
+            .constructor_values()
+            .into_iter()
             .filter(|id| !checked.contains(id))
             .collect();
         (checked, rest)
@@ -97,7 +98,8 @@ impl Generator<'_> {
     fn unpacked_parameters(&self) -> TokenStream {
         let program = self.program;
         let setup = program
-            .section(Rate::Setup)
+            .constructor_values()
+            .into_iter()
             .flat_map(|id| program.value(id).op.operands());
         let read: BTreeSet<ValueId> = setup
             .chain(program.checks.iter().flat_map(Check::operands))

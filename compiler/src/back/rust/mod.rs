@@ -5,6 +5,7 @@
 
 mod constructor;
 mod docs;
+mod facts;
 mod frame;
 mod lanes;
 mod names;
@@ -95,6 +96,7 @@ impl<'a> Generator<'a> {
                 clippy::approx_constant,
                 clippy::doc_markdown,
                 clippy::excessive_precision,
+                clippy::float_cmp,
                 clippy::inline_always,
                 clippy::many_single_char_names,
                 clippy::needless_range_loop,

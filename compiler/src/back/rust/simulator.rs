@@ -18,6 +18,7 @@ impl Generator<'_> {
         let observation_values = self.uniform(Rate::Observation);
         let step = self.step();
         let observe = self.observe();
+        let facts = self.facts();
         quote! {
             impl runtime::Simulator for #name {
                 #shape
@@ -26,6 +27,7 @@ impl Generator<'_> {
                 #observation_values
                 #step
                 #observe
+                #facts
             }
         }
     }

@@ -32,7 +32,7 @@ pub(super) fn measure(
     targets: &Targets,
     settings: &Settings,
 ) -> Result<Measured, Failure> {
-    let program = program::lower(&targets.model, &compiled.plan)?;
+    let program = program::lower(&targets.model, &compiled.plan, &[])?;
     let interpreter = Interpreter::new(&program, &settings.parameters)?;
     let bar = progress::bar(
         settings.paths,

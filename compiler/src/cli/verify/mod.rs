@@ -9,6 +9,7 @@ mod targets;
 use std::io;
 use std::path::Path;
 
+use driftwright_runtime::{Fact, Simulator as _};
 use serde_json::Value;
 
 use self::judge::Check;
@@ -18,6 +19,7 @@ use super::load::{Loaded, load_and_show};
 use super::run::Settings;
 use super::{Failure, Outcome, Status, output};
 use crate::analysis::claims::Verdict;
+use crate::back::interpret::Interpreter;
 use crate::pipeline::Compiled;
 use crate::report::text::{self, Style};
 
@@ -30,6 +32,8 @@ struct Verification {
     threshold: f64,
     passed: bool,
     run: measure::Measured,
+    /// Facts that hang on parameter values, and whether they hold at those of the run.
+    facts: Vec<Fact>,
 }
 
 /// Verifies the files, one after the other.
@@ -104,6 +108,7 @@ fn verify(
     skipped.extend(untested_claims(compiled, &checks));
     let threshold = judge::threshold(checks.len());
     let passed = checks.iter().all(|c| c.passed(threshold)) && loaded.status() == Status::Well;
+    let facts = Interpreter::new(&compiled.program, &settings.parameters)?.facts();
     Ok(Verification {
         settings,
         checks,
@@ -111,6 +116,7 @@ fn verify(
         threshold,
         passed,
         run,
+        facts,
     })
 }
 

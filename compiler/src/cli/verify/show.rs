@@ -5,6 +5,7 @@ use serde_json::{Value, json};
 use super::Verification;
 use super::judge::{Check, FAMILY_ERROR};
 use crate::analysis::claims::Verdict;
+use crate::cli::summary;
 use crate::model::Model;
 use crate::pipeline::Compiled;
 use crate::report::document::{Align, Inline, Mark, Table, Text, code, words};
@@ -43,6 +44,7 @@ pub(super) fn json(verification: &Verification, compiled: &Compiled) -> Value {
         "claims": claims,
         "checks": checks,
         "not_tested": verification.skipped,
+        "facts": summary::checked_facts(&verification.facts),
     })
 }
 
@@ -191,6 +193,7 @@ fn remarks(verification: &Verification) -> Vec<Text> {
             .iter()
             .map(|reason| words(format!("not tested: {reason}"))),
     );
+    items.extend(summary::fact_lines(&verification.facts));
     let failures = verification.run.collected.failures;
     for (count, what) in [
         (failures.non_finite, "came to a value that is not finite"),

@@ -9,6 +9,7 @@ mod areas;
 mod carried;
 mod constructor;
 mod exact;
+mod facts;
 mod implicit;
 mod linear_flow;
 mod noise;
@@ -29,6 +30,7 @@ use super::builder::{Builder, MAX_OPERATIONS, Phase};
 use super::formula::{Environment, Formulas};
 use super::op::ValueId;
 use super::{Note, Program, Slot};
+use crate::analysis::facts::Fact;
 use crate::model::Model;
 use crate::scheme::{Method, Plan};
 use crate::symbolic::{Expr, Symbol, SymbolKind};
@@ -45,7 +47,7 @@ impl fmt::Display for TooLarge {
 
 impl std::error::Error for TooLarge {}
 
-/// Lowers a model and its plan. The result has passed [`Program::verify`].
+/// Lowers a model and its plan; the facts that are open are checked where parameter values are known. The result has passed [`Program::verify`].
 ///
 /// # Errors
 /// [`TooLarge`] where states that read one another, or drivers of one state, are so many that their pairs
@@ -54,13 +56,14 @@ impl std::error::Error for TooLarge {}
 /// # Panics
 /// When the program does not pass the verifier, or a formula of the plan reads what its place in a step
 /// does not offer: faults of the compiler, not of the model.
-pub fn lower(model: &Model, plan: &Plan) -> Result<Program, TooLarge> {
+pub fn lower(model: &Model, plan: &Plan, facts: &[Fact]) -> Result<Program, TooLarge> {
     let mut lowering = Lowering::new(model, plan);
     let mut slots = lowering.slots();
     let left_domain = lowering.domain_flag(&mut slots);
     let outputs = lowering.outputs();
     let checks = lowering.checks();
     let correlation = lowering.correlation();
+    let facts = lowering.facts(facts);
     if lowering.builder.is_exhausted() {
         return Err(TooLarge);
     }
@@ -70,6 +73,7 @@ pub fn lower(model: &Model, plan: &Plan) -> Result<Program, TooLarge> {
         about: model.about.clone(),
         parameters: lowering.parameters(),
         checks,
+        facts,
         correlation,
         sources: plan
             .noise
