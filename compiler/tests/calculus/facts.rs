@@ -30,7 +30,7 @@ fn first(compiled: &Compiled, topic: Topic) -> (String, Option<String>, Standing
 
 fn classes(compiled: &Compiled, fact: &Fact) -> Vec<(&'static str, String)> {
     let pool = &compiled.model.pool;
-    let text = |when: &Vec<_>| driftwright::analysis::condition::format(pool, &[when.clone()]);
+    let text = |when| driftwright::analysis::condition::format(pool, std::slice::from_ref(when));
     fact.classes
         .iter()
         .map(|(c, when)| (*c, text(when)))

@@ -9,6 +9,7 @@
     clippy::approx_constant,
     clippy::doc_markdown,
     clippy::excessive_precision,
+    clippy::float_cmp,
     clippy::inline_always,
     clippy::many_single_char_names,
     clippy::needless_range_loop,
