@@ -4,6 +4,11 @@
 //! Nothing flows back, and each pass takes only the earlier passes' types, so nothing unchecked can be
 //! run.
 
+mod edit;
+mod suggest;
+
+pub use suggest::{Suggestion, suggestions};
+
 use crate::analysis::claims::{ClaimResult, judge};
 use crate::analysis::facts::{self, Fact};
 use crate::analysis::moments::Moments;

@@ -9,4 +9,5 @@ mod hostile;
 mod options;
 mod sarif;
 mod simulate;
+mod suggestions;
 mod verify;

@@ -8,7 +8,7 @@ use super::{Outcome, Status, output};
 use crate::calculus;
 use crate::diagnostic::human;
 use crate::front::{self, Place};
-use crate::pipeline::Compiled;
+use crate::pipeline::{self, Compiled};
 use crate::report::text::Style;
 use crate::report::{self, Document};
 use crate::source::SourceFile;
@@ -27,7 +27,8 @@ pub(super) fn run(args: &DeriveArgs) -> Outcome {
             None => return Ok(Status::Wrong),
         },
         None => {
-            let derivation = loaded.derivation(compiled);
+            let suggestions = pipeline::suggestions(compiled);
+            let derivation = loaded.derivation(compiled).with_suggestions(&suggestions);
             match args.format {
                 DeriveFormat::Json => format!("{:#}\n", report::json::derivation(&derivation)),
                 format => write(&report::dossier(&derivation), format, args.output.is_some()),

@@ -1,7 +1,7 @@
 //! The dossier: the derivation a reviewer reads from top to bottom.
 
 use super::document::{Inline, Mark, prose, words};
-use super::{Derivation, Document, claims, dynamics, facts, methods, statement};
+use super::{Derivation, Document, claims, dynamics, facts, methods, statement, suggestions};
 use crate::calculus::Expansion;
 use crate::model::{Calculus, Model};
 
@@ -17,6 +17,7 @@ pub fn dossier(derivation: &Derivation<'_>) -> Document {
     dynamics::derived(&mut document, derivation);
     statement::readouts(&mut document, derivation);
     methods::methods(&mut document, derivation);
+    suggestions::suggestions(&mut document, derivation);
     facts::facts(&mut document, derivation);
     claims::claims(&mut document, derivation);
     findings(&mut document, derivation);

@@ -12,6 +12,7 @@ use crate::analysis::facts::Fact;
 use crate::calculus::Expansion;
 use crate::diagnostic::diagnostic_json;
 use crate::model::{Calculus, Model};
+use crate::pipeline::Suggestion;
 use crate::scheme::{Group, Order, Plan};
 use crate::symbolic::{Expr, Pool, SharedTexts, Witness};
 
@@ -56,6 +57,7 @@ fn document<'e>(
         .iter()
         .map(|g| method(model, texts, derivation.plan, g))
         .collect();
+    let suggestions: Vec<Value> = derivation.suggestions.iter().map(suggestion).collect();
     let facts: Vec<Value> = derivation
         .facts
         .iter()
@@ -80,6 +82,7 @@ fn document<'e>(
         "states": states,
         "derived": derived,
         "methods": methods,
+        "suggestions": suggestions,
         "facts": facts,
         "claims": claims,
         "diagnostics": diagnostics,
@@ -164,6 +167,36 @@ fn method(model: &Model, texts: &SharedTexts<'_>, plan: &Plan, group: &Group) ->
         "preserves_domain": group.preserves_domain,
         "reasons": group.reasons,
         "rejected": rejected,
+    })
+}
+
+/// A suggestion lives in a model of its own.
+fn suggestion(suggestion: &Suggestion) -> Value {
+    let model = &suggestion.model;
+    let pool = &model.pool;
+    let (coordinate, process) = suggestion.coordinate();
+    let write: Map<String, Value> = suggestion
+        .write
+        .iter()
+        .map(|(key, value)| ((*key).to_owned(), value.clone().into()))
+        .collect();
+    let noise = model.drivers.iter().zip(&process.diffusion);
+    let diffusion: Map<String, Value> = noise
+        .filter(|(_, c)| !pool.is_zero_literal(**c))
+        .map(|(d, c)| (d.name.clone(), Value::from(pool.format(*c))))
+        .collect();
+    let group = suggestion.group();
+    json!({
+        "state": model.states[suggestion.state].name,
+        "write": write,
+        "leave_out": suggestion.leave_out,
+        "kind": group.kind.name(),
+        "law": group.law.map(|l| l.name()),
+        "scheme": group.scheme.name(),
+        "preserves_domain": group.preserves_domain,
+        "coordinate": pool.format(coordinate),
+        "drift": pool.format(process.drift),
+        "diffusion": diffusion,
     })
 }
 

@@ -15,6 +15,7 @@ mod methods;
 pub mod number;
 mod spell;
 mod statement;
+mod suggestions;
 pub mod text;
 mod trace;
 mod wrap;
@@ -30,7 +31,7 @@ use crate::analysis::facts::Fact;
 use crate::calculus::Dynamics;
 use crate::diagnostic::Diagnostic;
 use crate::model::Model;
-use crate::pipeline::Compiled;
+use crate::pipeline::{Compiled, Suggestion};
 use crate::scheme::Plan;
 
 /// Everything about one model that a report shows.
@@ -46,6 +47,8 @@ pub struct Derivation<'a> {
     pub claims: &'a [ClaimResult],
     /// What is known of ends, growth, noise, martingales and moments.
     pub facts: &'a [Fact],
+    /// What the author could write instead.
+    pub suggestions: &'a [Suggestion],
     /// What was found on the way.
     pub diagnostics: &'a [Diagnostic],
 }
@@ -59,7 +62,17 @@ impl<'a> Derivation<'a> {
             plan: &compiled.plan,
             claims: &compiled.claims,
             facts: &compiled.facts,
+            suggestions: &[],
             diagnostics,
+        }
+    }
+
+    /// The same with suggestions.
+    #[must_use]
+    pub fn with_suggestions(self, suggestions: &'a [Suggestion]) -> Self {
+        Self {
+            suggestions,
+            ..self
         }
     }
 }
