@@ -161,6 +161,10 @@ pub enum DeriveFormat {
     Text,
     /// Markdown
     Markdown,
+    /// One self-contained page with typeset formulas, for a browser
+    Html,
+    /// An article for LaTeX
+    Latex,
     /// For programs; formulas are strings in the grammar of the model file
     Json,
 }

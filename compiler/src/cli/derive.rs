@@ -42,7 +42,9 @@ pub(super) fn run(args: &DeriveArgs) -> Outcome {
 fn write(document: &Document, format: DeriveFormat, to_file: bool) -> String {
     match format {
         DeriveFormat::Markdown => report::markdown::write(document),
-        _ => {
+        DeriveFormat::Html => report::html::write(document),
+        DeriveFormat::Latex => report::latex::write(document),
+        DeriveFormat::Text | DeriveFormat::Json => {
             let colour = !to_file && output::colour_on(&io::stdout());
             report::text::write(
                 document,

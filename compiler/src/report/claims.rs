@@ -3,7 +3,7 @@
 use super::document::{Align, Equation, Inline, Mark, Table, Term, Text, code, prose, words};
 use super::{Derivation, Document, trace};
 use crate::analysis::claims::{ClaimResult, Verdict};
-use crate::model::{Claim, ClaimKind, Model};
+use crate::model::{Claim, ClaimKind, Formula, Model};
 use crate::symbolic::trace::Trace;
 use crate::symbolic::{Pool, Witness};
 
@@ -18,29 +18,51 @@ pub fn verdict_mark(verdict: Verdict) -> Inline {
 }
 
 /// What a claim says, as the author wrote it.
-pub fn statement(model: &Model, claim: &Claim) -> String {
+pub fn statement(model: &Model, claim: &Claim) -> Text {
+    let is = |what: &str, of: &Formula, is: &Formula| {
+        let (what, of) = (Inline::Words(format!("{what} of ")), written(of));
+        vec![what, of, Inline::Words(" is ".into()), written(is)]
+    };
     match &claim.kind {
-        ClaimKind::DriftOf { of, is } => format!("drift of {} is {}", of.text, is.text),
+        ClaimKind::DriftOf { of, is: claimed } => is("drift", of, claimed),
         ClaimKind::DiffusionOf { of, is } => {
-            let parts: Vec<String> = is
-                .iter()
-                .map(|(j, f)| format!("{} d{}", f.text, model.drivers[*j].name))
-                .collect();
-            let parts = if parts.is_empty() {
-                "0".to_owned()
-            } else {
-                parts.join(" + ")
-            };
-            format!("diffusion of {} is {parts}", of.text)
+            let mut text = vec![Inline::Words("diffusion of ".into()), written(of)];
+            text.push(Inline::Words(" is ".into()));
+            for (i, (j, f)) in is.iter().enumerate() {
+                if i > 0 {
+                    text.push(Inline::Words(" + ".into()));
+                }
+                text.push(written(f));
+                text.push(Inline::Words(format!(" d{}", model.drivers[*j].name)));
+            }
+            if is.is_empty() {
+                text.push(Inline::Written("0".into()));
+            }
+            text
         }
-        ClaimKind::Martingale { of } => format!("{} is a martingale", of.text),
-        ClaimKind::MeanOf { of, is } => format!("mean of {} is {}", of.text, is.text),
-        ClaimKind::VarianceOf { of, is } => format!("variance of {} is {}", of.text, is.text),
-        ClaimKind::CovarianceOf { of: [x, y], is } => {
-            format!("covariance of {} and {} is {}", x.text, y.text, is.text)
+        ClaimKind::Martingale { of } => {
+            vec![written(of), Inline::Words(" is a martingale".into())]
         }
-        ClaimKind::LawOf { of, is } => format!("law of {} is {}", of.text, is.0),
+        ClaimKind::MeanOf { of, is: claimed } => is("mean", of, claimed),
+        ClaimKind::VarianceOf { of, is: claimed } => is("variance", of, claimed),
+        ClaimKind::CovarianceOf { of: [x, y], is } => vec![
+            Inline::Words("covariance of ".into()),
+            written(x),
+            Inline::Words(" and ".into()),
+            written(y),
+            Inline::Words(" is ".into()),
+            written(is),
+        ],
+        ClaimKind::LawOf { of, is } => vec![
+            Inline::Words("law of ".into()),
+            written(of),
+            Inline::Words(format!(" is {}", is.0)),
+        ],
     }
+}
+
+fn written(formula: &Formula) -> Inline {
+    Inline::Written(formula.text.clone())
 }
 
 /// One row a claim: name, statement, verdict.
@@ -53,7 +75,7 @@ pub fn claim_table(model: &Model, results: &[ClaimResult]) -> Table {
     for (claim, result) in model.claims.iter().zip(results) {
         table.row([
             code(&claim.name),
-            words(statement(model, claim)),
+            statement(model, claim),
             vec![verdict_mark(result.verdict)],
         ]);
     }
@@ -68,11 +90,9 @@ pub(super) fn claims(document: &mut Document, derivation: &Derivation<'_>) {
     }
     document.section("Claims");
     for (claim, result) in model.claims.iter().zip(derivation.claims) {
-        document.part(vec![
-            Inline::Code(claim.name.clone()),
-            Inline::Words(": ".into()),
-            Inline::Words(statement(model, claim)),
-        ]);
+        let mut head = vec![Inline::Code(claim.name.clone()), Inline::Words(": ".into())];
+        head.extend(statement(model, claim));
+        document.part(head);
         let mut verdict: Text = vec![verdict_mark(result.verdict)];
         if result.local == Some(Verdict::Proved) && result.verdict == Verdict::Open {
             verdict.push(Inline::Words(" (a local martingale: proved)".into()));

@@ -35,6 +35,8 @@ pub enum Block {
     Equations(Vec<Equation>),
     /// A table.
     Table(Table),
+    /// A diagram.
+    Diagram(Diagram),
 }
 
 /// Running text.
@@ -51,6 +53,8 @@ pub enum Inline {
     Code(String),
     /// A formula.
     Formula(Expr),
+    /// A formula as the author wrote it.
+    Written(String),
     /// A larger piece of mathematics.
     Math(Math),
 }
@@ -126,6 +130,61 @@ pub enum Align {
     Right,
 }
 
+/// Named things, and arrows between them.
+#[derive(Clone, Debug, Default)]
+pub struct Diagram {
+    /// The things.
+    pub nodes: Vec<DiagramNode>,
+    /// Arrows, from one node to another.
+    pub arrows: Vec<(usize, usize)>,
+}
+
+/// A node of a diagram.
+#[derive(Clone, Debug)]
+pub struct DiagramNode {
+    /// Its name.
+    pub name: String,
+    /// What it is.
+    pub kind: NodeKind,
+}
+
+/// What a node of a diagram is; the kinds stand beside each other in this order.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum NodeKind {
+    /// A Brownian motion.
+    Driver,
+    /// A state.
+    State,
+    /// A derived quantity or a readout.
+    Observed,
+}
+
+impl Diagram {
+    /// The diagram in words, a line for each node that an arrow leads to.
+    pub fn lines(&self) -> Vec<String> {
+        let into = |to: usize| self.arrows.iter().filter(move |a| a.1 == to).map(|a| a.0);
+        let of_kind = |to: usize, driver: bool| -> Vec<&str> {
+            into(to)
+                .map(|from| &self.nodes[from])
+                .filter(|node| (node.kind == NodeKind::Driver) == driver)
+                .map(|node| node.name.as_str())
+                .collect()
+        };
+        let line = |(to, node): (usize, &DiagramNode)| {
+            let (drivers, states) = (of_kind(to, true), of_kind(to, false));
+            let driven = format!("driven by {}", drivers.join(", "));
+            let reads = format!("reads {}", states.join(", "));
+            let parts: Vec<String> = [(drivers, driven), (states, reads)]
+                .into_iter()
+                .filter(|(names, _)| !names.is_empty())
+                .map(|(_, text)| text)
+                .collect();
+            (!parts.is_empty()).then(|| format!("{}: {}", node.name, parts.join("; ")))
+        };
+        self.nodes.iter().enumerate().filter_map(line).collect()
+    }
+}
+
 /// Plain words as text.
 pub fn words(text: impl Into<String>) -> Text {
     vec![Inline::Words(text.into())]
@@ -192,6 +251,11 @@ impl Document {
         if !equations.is_empty() {
             self.blocks.push(Block::Equations(equations));
         }
+    }
+
+    /// Adds a diagram.
+    pub fn diagram(&mut self, diagram: Diagram) {
+        self.blocks.push(Block::Diagram(diagram));
     }
 
     /// Adds a table; one without rows adds nothing.

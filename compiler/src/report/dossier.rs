@@ -1,7 +1,9 @@
 //! The dossier: the derivation a reviewer reads from top to bottom.
 
 use super::document::{Inline, Mark, prose, words};
-use super::{Derivation, Document, claims, dynamics, facts, methods, statement, suggestions};
+use super::{
+    Derivation, Document, claims, dynamics, facts, influences, methods, statement, suggestions,
+};
 use crate::calculus::Expansion;
 use crate::model::{Calculus, Model};
 
@@ -10,9 +12,10 @@ pub fn dossier(derivation: &Derivation<'_>) -> Document {
     let model = derivation.model;
     let mut document = Document::new(&model.pool, title(model), subtitle(model));
     if let Some(about) = &model.about {
-        document.paragraph(words(about.trim()));
+        document.paragraph(prose(about.trim()));
     }
     statement::declared(&mut document, model);
+    influences::influences(&mut document, derivation);
     dynamics::states(&mut document, derivation);
     dynamics::derived(&mut document, derivation);
     statement::readouts(&mut document, derivation);

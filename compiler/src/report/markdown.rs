@@ -26,6 +26,11 @@ pub fn write(document: &Document) -> String {
             }
             Block::Equations(list) => out.push_str(&equations(pool, list)),
             Block::Table(rows) => out.push_str(&table(pool, rows)),
+            Block::Diagram(diagram) => {
+                for line in diagram.lines() {
+                    out.push_str(&format!("- {}\n", escape(&line)));
+                }
+            }
         }
     }
     out

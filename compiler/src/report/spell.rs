@@ -45,7 +45,10 @@ pub(super) fn text(pool: &Pool, parts: &[Inline]) -> String {
     parts
         .iter()
         .map(|part| match part {
-            Inline::Words(words) | Inline::Marked(_, words) | Inline::Code(words) => words.clone(),
+            Inline::Words(words)
+            | Inline::Marked(_, words)
+            | Inline::Code(words)
+            | Inline::Written(words) => words.clone(),
             Inline::Formula(expr) => pool.format(*expr),
             Inline::Math(terms) => math(pool, terms),
         })

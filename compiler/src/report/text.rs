@@ -107,6 +107,13 @@ impl Writer<'_> {
             }
             Block::Equations(equations) => self.equations(equations),
             Block::Table(table) => self.table(table),
+            Block::Diagram(diagram) => {
+                for line in diagram.lines() {
+                    for line in wrap::words(&line, self.style.columns - 4) {
+                        self.line(&format!("{INDENT}{line}"));
+                    }
+                }
+            }
         }
     }
 

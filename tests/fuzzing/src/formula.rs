@@ -3,7 +3,7 @@
 use std::collections::BTreeMap;
 
 use driftwright::front::formula::parse_in_pool;
-use driftwright::symbolic::{Big, Bound, Expr, Interval, Pool, Symbol, SymbolKind};
+use driftwright::symbolic::{Big, Bound, Expr, Interval, Pool, SharedTexts, Symbol, SymbolKind};
 
 use crate::model;
 
@@ -73,17 +73,26 @@ pub fn check(text: &str) {
     model::check_layout(&in_a_model(text));
 }
 
-/// What is printed is the same formula when it is read.
+/// What is printed for programs is the same formula when it is read, its named parts put back in. Short
+/// formulas, which have none, are printed alike for people.
 fn reads_back(pool: &Pool, formula: Expr) {
-    let printed = pool.format(formula);
-    match parse_in_pool(pool, &printed) {
-        Ok(again) => assert!(
-            again == formula,
-            "`{printed}` reads back as `{}`",
-            pool.format(again)
-        ),
-        Err(errors) => panic!("`{printed}` does not read back: {errors:?}"),
+    let read = |text: &str| match parse_in_pool(pool, text) {
+        Ok(read) => read,
+        Err(errors) => panic!("`{text}` does not read back: {errors:?}"),
+    };
+    let texts = SharedTexts::new(pool, |_| false);
+    let printed = texts.format(formula);
+    let mut parts = BTreeMap::new();
+    for (name, text) in texts.definitions() {
+        let part = pool.substitute(read(&text), &parts);
+        parts.insert(pool.symbol(&name, SymbolKind::Auxiliary), part);
     }
+    let again = pool.substitute(read(&printed), &parts);
+    assert!(
+        again == formula,
+        "`{printed}` reads back as `{}`",
+        pool.format(again)
+    );
 }
 
 /// Where both have a value that small changes of the point do not upset, it is the same.
