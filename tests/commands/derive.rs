@@ -16,7 +16,14 @@ const PINNED: [&str; 5] = [
 fn dossiers_are_as_pinned() {
     for model in PINNED {
         let path = format!("models/{model}.toml");
-        for (format, ending) in [("text", "txt"), ("markdown", "md"), ("json", "json")] {
+        let forms = [
+            ("text", "txt"),
+            ("markdown", "md"),
+            ("html", "html"),
+            ("latex", "tex"),
+            ("json", "json"),
+        ];
+        for (format, ending) in forms {
             let ran = run(&["derive", &path, "--format", format]);
             assert_eq!(ran.status, 0, "{model}: {}", ran.err);
             golden(&format!("derive/{model}.{ending}"), &ran.out);

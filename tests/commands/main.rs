@@ -2,6 +2,7 @@
 
 mod check;
 mod derive;
+mod documents;
 mod format;
 mod generate;
 mod harness;

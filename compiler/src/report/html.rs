@@ -227,7 +227,7 @@ fn inline(pool: &Pool, parts: &[Inline]) -> String {
         }
         Inline::Code(text) => format!("<code>{}</code>", escape(text)),
         Inline::Formula(e) => math(&Notation::of(pool, *e)),
-        Inline::Written(text) => math(&written(text)),
+        Inline::Written(text) => math(&written(pool, text)),
         Inline::Math(terms) => math(&row(pool, terms)),
     };
     parts.iter().map(one).collect()

@@ -1,17 +1,16 @@
-//! The LaTeX writer: an article that a plain TeX installation compiles (amsmath, geometry, graphicx, longtable).
+//! The LaTeX writer: an article that a plain TeX installation compiles (amsmath, geometry, longtable).
 
 use super::document::{Align, Block, Diagram, Document, Equation, Inline, Mark, Table};
 use super::math::{Notation, Row, escape_latex as escape, latex, row, written};
 use crate::symbolic::Pool;
 
 /// Letters that fit on a line of mathematics beside its left side.
-const LINE: usize = 60;
+const LINE: usize = 46;
 
 const PREAMBLE: &str = r"\documentclass[11pt,a4paper]{article}
 \usepackage[utf8]{inputenc}
 \usepackage[T1]{fontenc}
 \usepackage{amsmath}
-\usepackage{graphicx}
 \usepackage{longtable}
 \usepackage[margin=25mm]{geometry}
 \setlength{\parindent}{0pt}
@@ -80,7 +79,7 @@ fn lines(pool: &Pool, equation: &Equation) -> Vec<String> {
             width = left.width();
         }
         width += piece.width();
-        line.push_str(&fitted(&piece));
+        line.push_str(&latex(&piece));
     }
     lines.push(line);
     let first = format!("{} &{} ", set(&left.pieces), equation.relation);
@@ -98,15 +97,6 @@ fn lines(pool: &Pool, equation: &Equation) -> Vec<String> {
     }
     remark(&mut lines, &equation.remark, width);
     lines
-}
-
-/// A piece that cannot be broken and is wider than a line is made smaller.
-fn fitted(piece: &Notation) -> String {
-    let text = latex(piece);
-    if piece.width() <= LINE {
-        return text;
-    }
-    format!("\\resizebox{{0.8\\linewidth}}{{!}}{{$\\displaystyle {text}$}}")
 }
 
 /// Beside the last line, or below it.
@@ -159,7 +149,7 @@ fn inline(pool: &Pool, parts: &[Inline]) -> String {
         Inline::Marked(_, words) => format!("\\textbf{{{}}}", escape(words)),
         Inline::Code(text) => format!("\\texttt{{{}}}", escape(text)),
         Inline::Formula(e) => math(&Notation::of(pool, *e)),
-        Inline::Written(text) => math(&written(text)),
+        Inline::Written(text) => math(&written(pool, text)),
         Inline::Math(terms) => math(&row(pool, terms)),
     };
     parts.iter().map(one).collect()
@@ -167,8 +157,12 @@ fn inline(pool: &Pool, parts: &[Inline]) -> String {
 
 /// A row of mathematics within running text; its named parts follow it.
 fn math(row: &Row) -> String {
-    let set: String = row.pieces.iter().map(latex).collect();
-    let mut out = format!("${set}$");
+    let pieces = row.broken(LINE).into_iter().map(|piece| match piece {
+        // Signs keep their distance where a line may be broken behind them.
+        Notation::Sign(_) => format!("${{}}{}{{}}$", latex(&piece)),
+        _ => format!("${}$", latex(&piece)),
+    });
+    let mut out = pieces.collect::<Vec<_>>().join("\\allowbreak{}");
     for (i, (name, part)) in row.parts.iter().enumerate() {
         let lead = if i == 0 { " where " } else { "; " };
         let name = latex(&Notation::Name(name.clone()));

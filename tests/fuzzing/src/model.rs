@@ -117,6 +117,8 @@ fn write(document: &report::Document) {
         report::text::write(document, style);
     }
     report::markdown::write(document);
+    report::html::write(document);
+    report::latex::write(document);
 }
 
 /// The formulas of the states and derived quantities in a report can be parsed.

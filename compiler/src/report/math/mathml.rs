@@ -40,7 +40,7 @@ pub(in crate::report) fn mathml(notation: &Notation) -> String {
                 identifier(x),
                 identifier(y)
             )),
-            row(&differential(&Name::new("t")))
+            "<mrow><mi mathvariant=\"normal\">d</mi><mi>t</mi></mrow>"
         ),
     }
 }

@@ -5,6 +5,7 @@
 //! of a quotient over a negative power and the named parts of long formulas are decided there, once, so
 //! that every form of a report shows the same formula.
 
+mod broken;
 mod latex;
 mod mathml;
 mod name;
@@ -67,14 +68,21 @@ pub(super) struct Called {
 }
 
 /// A formula as the author wrote it.
-pub(super) fn written(text: &str) -> Row {
-    read::formula(text)
+pub(super) fn written(pool: &Pool, text: &str) -> Row {
+    read::formula(pool, text)
+}
+
+impl std::fmt::Display for Called {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        let inverse = if self.inverse { "⁻¹" } else { "" };
+        write!(f, "{}{inverse}", self.name)
+    }
 }
 
 impl Notation {
     /// A formula of the pool.
     pub(super) fn of(pool: &Pool, e: Expr) -> Row {
-        read::formula(&pool.format(e))
+        read::formula(pool, &pool.format(e))
     }
 
     /// How wide it is, in characters, roughly.
@@ -86,7 +94,7 @@ impl Notation {
             }
             Self::Name(name) => name.width(),
             Self::Sum(terms) => terms.iter().map(|(_, t)| t.width() + 3).sum(),
-            Self::Product(factors) => all(factors),
+            Self::Product(factors) => all(factors) + factors.len() / 3,
             Self::Fraction(above, below) => above.width().max(below.width()),
             Self::Negative(inner) | Self::Root(_, inner) => 1 + inner.width(),
             Self::Power(base, exponent) => base.width() + exponent.width() * 2 / 3,
@@ -149,40 +157,6 @@ impl Row {
     pub(super) fn width(&self) -> usize {
         self.pieces.iter().map(Notation::width).sum()
     }
-
-    /// The pieces between which a line may be broken: the terms of a sum stand apart, and the factors of
-    /// a term that is wider than a line of `line` characters.
-    pub(super) fn broken(&self, line: usize) -> Vec<Notation> {
-        let mut pieces = Vec::new();
-        for piece in &self.pieces {
-            match piece {
-                Notation::Sum(terms) => {
-                    for (i, (negative, term)) in terms.iter().enumerate() {
-                        if i > 0 || *negative {
-                            let sign = if *negative { "-" } else { "+" };
-                            pieces.push(Notation::Sign(sign.to_owned()));
-                        }
-                        pieces.extend(factors(term, line));
-                    }
-                }
-                other => pieces.extend(factors(other, line)),
-            }
-        }
-        pieces
-    }
-}
-
-/// The factors of a term that is too wide for a line; else the term.
-fn factors(term: &Notation, line: usize) -> Vec<Notation> {
-    match term {
-        Notation::Negative(inner) if term.width() > line => {
-            let mut pieces = vec![Notation::Sign("-".to_owned())];
-            pieces.extend(factors(inner, line));
-            pieces
-        }
-        Notation::Product(factors) if term.width() > line => factors.clone(),
-        other => vec![other.clone()],
-    }
 }
 
 /// A row of the neutral document.
@@ -199,8 +173,8 @@ pub(super) fn row(pool: &Pool, math: &Math) -> Row {
                 }
                 row.append(factor);
             }
-            Term::Differential(name) => row.push(Notation::Differential(Name::new(name))),
-            Term::Name(text) | Term::Symbol(text) => row.push(operator::read(text)),
+            Term::Differential(name) => row.push(Notation::Differential(Name::new(pool, name))),
+            Term::Name(text) | Term::Symbol(text) => row.push(operator::read(pool, text)),
         }
     }
     row

@@ -1,6 +1,8 @@
 //! Names as they are set: Greek letters for their names, subscripts for what stands behind an underscore
 //! and for digits at the end.
 
+use crate::symbolic::Pool;
+
 /// Names of Greek letters, and the letters.
 const GREEK: [(&str, char); 34] = [
     ("alpha", 'α'),
@@ -49,37 +51,36 @@ pub(in crate::report) struct Name {
 }
 
 impl Name {
-    /// Takes a name apart: `sigma_S` has the base sigma and S below, `S0` the base S and 0 below. The
-    /// parts behind an underscore stay apart, so that two names never look the same.
-    pub(in crate::report) fn new(name: &str) -> Self {
+    /// Takes a name of a model apart: `sigma_S` has the base sigma and S below, `S0` and `S_0` the base S
+    /// and 0 below. Where a model has both of these, they stay as they are written, so that two names never
+    /// look the same.
+    pub(in crate::report) fn new(pool: &Pool, name: &str) -> Self {
+        let whole = || Self {
+            base: name.to_owned(),
+            below: Vec::new(),
+        };
         let mut segments = name.split('_');
         let first = segments.next().unwrap_or_default();
         let letters = first.trim_end_matches(|c: char| c.is_ascii_digit());
-        let (base, digits) = first.split_at(letters.len());
-        if base.is_empty() || segments.clone().any(str::is_empty) {
-            return Self {
-                base: name.to_owned(),
-                below: Vec::new(),
-            };
+        let digits = &first[letters.len()..];
+        let below: Vec<&str> = segments.collect();
+        if letters.is_empty() || below.iter().any(|part| part.is_empty()) {
+            return whole();
         }
-        let mut below: Vec<String> = segments.map(letter).collect();
-        if !digits.is_empty() && below.is_empty() {
-            below.push(digits.to_owned());
-            return Self {
-                base: letter(base),
-                below,
-            };
+        let all_digits = |text: &str| text.bytes().all(|b| b.is_ascii_digit());
+        let twin = match below.as_slice() {
+            [] => format!("{letters}_{digits}"),
+            [only] if digits.is_empty() && all_digits(only) => format!("{letters}{only}"),
+            _ => String::new(),
+        };
+        if pool.find_symbol(&twin).is_some() || !below.is_empty() && !digits.is_empty() {
+            return whole();
         }
-        // `S_0` beside `S0`: the underscore is shown, for what is told apart in the file must be here.
-        if below.len() == 1 && below[0].chars().all(|c| c.is_ascii_digit()) {
-            return Self {
-                base: name.to_owned(),
-                below: Vec::new(),
-            };
-        }
+        let digits = Some(digits).filter(|digits| !digits.is_empty());
+        let below = digits.into_iter().chain(below);
         Self {
-            base: format!("{}{digits}", letter(base)),
-            below,
+            base: letter(letters),
+            below: below.map(letter).collect(),
         }
     }
 
@@ -103,39 +104,38 @@ pub(super) fn greek_name(letter: char) -> Option<&'static str> {
 
 #[cfg(test)]
 mod tests {
-    use super::Name;
+    use super::{Name, Pool};
+    use crate::symbolic::SymbolKind;
 
-    fn set(name: &str) -> (String, Option<String>) {
-        let name = Name::new(name);
-        let below = (!name.below.is_empty()).then(|| name.below.join(","));
-        (name.base, below)
+    fn set(pool: &Pool, name: &str) -> (String, String) {
+        let name = Name::new(pool, name);
+        (name.base, name.below.join(","))
     }
 
     #[test]
     fn greek_letters_and_subscripts() {
-        let is = |base: &str, below: &str| {
-            (
-                base.to_owned(),
-                (!below.is_empty()).then(|| below.to_owned()),
-            )
-        };
-        assert_eq!(set("sigma"), is("σ", ""));
-        assert_eq!(set("S0"), is("S", "0"));
-        assert_eq!(set("sigma_S"), is("σ", "S"));
-        assert_eq!(set("u_theta_2"), is("u", "θ,2"));
-        assert_eq!(set("log_S"), is("log", "S"));
-        assert_eq!(set("price"), is("price", ""));
+        let pool = Pool::new();
+        let is = |base: &str, below: &str| (base.to_owned(), below.to_owned());
+        assert_eq!(set(&pool, "sigma"), is("σ", ""));
+        assert_eq!(set(&pool, "S0"), is("S", "0"));
+        assert_eq!(set(&pool, "sigma_12"), is("σ", "12"));
+        assert_eq!(set(&pool, "sigma_S"), is("σ", "S"));
+        assert_eq!(set(&pool, "u_theta_2"), is("u", "θ,2"));
+        assert_eq!(set(&pool, "log_S"), is("log", "S"));
+        assert_eq!(set(&pool, "price"), is("price", ""));
     }
 
     #[test]
     fn names_that_differ_look_different() {
-        let names = ["S0", "S_0", "S0_", "S__0", "_S0", "S_0_1", "S0_1"];
+        let pool = Pool::new();
+        let names = ["S0", "S_0", "S0_", "S__0", "S_0_1", "S0_1", "S01", "S_01"];
+        for name in names {
+            pool.symbol(name, SymbolKind::Parameter);
+        }
         for (i, a) in names.iter().enumerate() {
             for b in &names[i + 1..] {
-                assert_ne!(set(a), set(b), "{a} and {b}");
+                assert_ne!(set(&pool, a), set(&pool, b), "{a} and {b}");
             }
         }
-        // A Greek letter typed as such is that letter.
-        assert_eq!(set("σ"), set("sigma"));
     }
 }

@@ -1,15 +1,16 @@
 //! The left sides and signs that the passes write as text: derivative operators, covariations, starts.
 
 use super::{Name, Notation};
+use crate::symbolic::Pool;
 
 /// What a text of the neutral document is as notation; words where it is nothing else.
-pub(super) fn read(text: &str) -> Notation {
-    derivative(text)
-        .or_else(|| covariation(text))
-        .or_else(|| start(text))
+pub(super) fn read(pool: &Pool, text: &str) -> Notation {
+    derivative(pool, text)
+        .or_else(|| covariation(pool, text))
+        .or_else(|| start(pool, text))
         .unwrap_or_else(|| {
             if text.chars().all(|c| c.is_alphanumeric() || c == '_') && is_name(text) {
-                Notation::Name(Name::new(text))
+                Notation::Name(Name::new(pool, text))
             } else if text.chars().any(char::is_alphabetic) {
                 Notation::Words(text.to_owned())
             } else {
@@ -23,8 +24,8 @@ fn is_name(text: &str) -> bool {
 }
 
 /// `d/dx`, `d^2/dx^2`, `d^2/dx dy`.
-fn derivative(text: &str) -> Option<Notation> {
-    let name = |text: &str| is_name(text).then(|| Name::new(text));
+fn derivative(pool: &Pool, text: &str) -> Option<Notation> {
+    let name = |text: &str| is_name(text).then(|| Name::new(pool, text));
     if let Some(along) = text.strip_prefix("d/d") {
         return Some(Notation::Partial(vec![(name(along)?, 1)]));
     }
@@ -37,17 +38,20 @@ fn derivative(text: &str) -> Option<Notation> {
 }
 
 /// `d<x, y>/dt`.
-fn covariation(text: &str) -> Option<Notation> {
+fn covariation(pool: &Pool, text: &str) -> Option<Notation> {
     let pair = text.strip_prefix("d<")?.strip_suffix(">/dt")?;
     let (x, y) = pair.split_once(", ")?;
-    Some(Notation::Covariation(Name::new(x), Name::new(y)))
+    Some(Notation::Covariation(
+        Name::new(pool, x),
+        Name::new(pool, y),
+    ))
 }
 
 /// `x(0)`.
-fn start(text: &str) -> Option<Notation> {
+fn start(pool: &Pool, text: &str) -> Option<Notation> {
     let name = text.strip_suffix("(0)").filter(|name| is_name(name))?;
     Some(Notation::Product(vec![
-        Notation::Name(Name::new(name)),
+        Notation::Name(Name::new(pool, name)),
         Notation::Fenced(Box::new(Notation::Number("0".to_owned()))),
     ]))
 }

@@ -3,22 +3,23 @@
 use super::{Called, Name, Notation, Row};
 use crate::front::formula::{Ast, AstKind, Factor, parse};
 use crate::front::text::MappedText;
+use crate::symbolic::Pool;
 
 /// Exponents of `e` that are wider than this are set as `exp(...)`.
 const WIDEST_EXPONENT: usize = 24;
 
 /// A formula with its named parts, `F where p1 = ...; p2 = ...`. What cannot be read back, since it was
 /// cut, stays as it is.
-pub(super) fn formula(text: &str) -> Row {
+pub(super) fn formula(pool: &Pool, text: &str) -> Row {
     let (whole, named) = match text.split_once(" where ") {
         Some((whole, named)) => (whole, named.split("; ").collect()),
         None => (text, Vec::new()),
     };
     let parts = named.into_iter().map(|part| {
         let (name, definition) = part.split_once(" = ")?;
-        Some((Name::new(name), notation(definition)?))
+        Some((Name::new(pool, name), notation(pool, definition)?))
     });
-    match (notation(whole), parts.collect::<Option<Vec<_>>>()) {
+    match (notation(pool, whole), parts.collect::<Option<Vec<_>>>()) {
         (Some(whole), Some(parts)) => Row {
             pieces: vec![whole],
             parts,
@@ -30,42 +31,69 @@ pub(super) fn formula(text: &str) -> Row {
     }
 }
 
-fn notation(text: &str) -> Option<Notation> {
+fn notation(pool: &Pool, text: &str) -> Option<Notation> {
     let ast = parse(&MappedText::plain(text, 0)).ok()?;
-    Some(read(text, &ast))
+    Some(Reader { pool, text }.read(&ast))
 }
 
-fn read(text: &str, ast: &Ast) -> Notation {
-    match &ast.kind {
-        AstKind::Number(_) => number(&text[ast.span.start..ast.span.end]),
-        AstKind::Name(name) => Notation::Name(Name::new(name)),
-        AstKind::Call {
-            name, arguments, ..
-        } => call(name, arguments.iter().map(|a| read(text, a)).collect()),
-        AstKind::Sum(terms) => {
-            let term = |t: &crate::front::formula::Term| {
-                let value = read(text, &t.value);
-                // A term that is itself a sum was in brackets.
-                let value = match value {
-                    Notation::Sum(_) => Notation::Fenced(Box::new(value)),
-                    other => other,
+/// Reads trees of one text.
+struct Reader<'a> {
+    pool: &'a Pool,
+    text: &'a str,
+}
+
+impl Reader<'_> {
+    fn read(&self, ast: &Ast) -> Notation {
+        match &ast.kind {
+            AstKind::Number(_) => number(&self.text[ast.span.start..ast.span.end]),
+            AstKind::Name(name) => Notation::Name(Name::new(self.pool, name)),
+            AstKind::Call {
+                name, arguments, ..
+            } => call(name, arguments.iter().map(|a| self.read(a)).collect()),
+            AstKind::Sum(terms) => {
+                let term = |t: &crate::front::formula::Term| {
+                    let value = self.read(&t.value);
+                    // A term that is itself a sum was in brackets.
+                    let value = match value {
+                        Notation::Sum(_) => Notation::Fenced(Box::new(value)),
+                        other => other,
+                    };
+                    (t.negative, value)
                 };
-                (t.negative, value)
-            };
-            Notation::Sum(terms.iter().map(term).collect())
-        }
-        AstKind::Product(factors) => product(text, factors),
-        AstKind::Negate(inner) => {
-            let inner = read(text, inner);
-            match inner {
-                Notation::Sum(_) => Notation::Negative(Box::new(inner.factor())),
-                other => Notation::Negative(Box::new(other)),
+                Notation::Sum(terms.iter().map(term).collect())
             }
+            AstKind::Product(factors) => self.product(factors),
+            AstKind::Negate(inner) => {
+                let inner = self.read(inner);
+                match inner {
+                    Notation::Sum(_) => Notation::Negative(Box::new(inner.factor())),
+                    other => Notation::Negative(Box::new(other)),
+                }
+            }
+            AstKind::Power(base, exponent) => Notation::Power(
+                Box::new(self.read(base).base()),
+                Box::new(self.read(exponent)),
+            ),
         }
-        AstKind::Power(base, exponent) => Notation::Power(
-            Box::new(read(text, base).base()),
-            Box::new(read(text, exponent)),
-        ),
+    }
+
+    /// A product; what it is divided by stands below a line.
+    fn product(&self, factors: &[Factor]) -> Notation {
+        let side = |inverse: bool| -> Vec<Notation> {
+            let of_side = factors.iter().filter(|f| f.inverse == inverse);
+            of_side.map(|f| self.read(&f.value)).collect()
+        };
+        let (above, below) = (beside(side(false)), side(true));
+        if below.is_empty() {
+            return above;
+        }
+        // A minus stands before the fraction.
+        match above {
+            Notation::Negative(inner) => {
+                Notation::Negative(Box::new(Notation::Fraction(inner, Box::new(beside(below)))))
+            }
+            above => Notation::Fraction(Box::new(above), Box::new(beside(below))),
+        }
     }
 }
 
@@ -80,25 +108,6 @@ fn number(digits: &str) -> Notation {
         Box::new(Notation::Number(exponent.replace('-', "−"))),
     );
     Notation::Product(vec![Notation::Number(mantissa.to_owned()), ten])
-}
-
-/// A product; what it is divided by stands below a line.
-fn product(text: &str, factors: &[Factor]) -> Notation {
-    let side = |inverse: bool| -> Vec<Notation> {
-        let of_side = factors.iter().filter(|f| f.inverse == inverse);
-        of_side.map(|f| read(text, &f.value)).collect()
-    };
-    let (above, below) = (beside(side(false)), side(true));
-    if below.is_empty() {
-        return above;
-    }
-    // A minus stands before the fraction.
-    match above {
-        Notation::Negative(inner) => {
-            Notation::Negative(Box::new(Notation::Fraction(inner, Box::new(beside(below)))))
-        }
-        above => Notation::Fraction(Box::new(above), Box::new(beside(below))),
-    }
 }
 
 /// Factors side by side, in brackets where they need them.
