@@ -40,6 +40,8 @@ const MAY_USE: [(&str, &[&str]); 13] = [
         &[
             "source",
             "diagnostic",
+            // A formula is set from its text, read by the parser of the language.
+            "front",
             "symbolic",
             "model",
             "calculus",
