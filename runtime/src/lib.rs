@@ -18,6 +18,7 @@ mod grid;
 mod interval;
 mod lane;
 pub mod math;
+pub mod multilevel;
 pub mod random;
 mod run;
 mod simulator;

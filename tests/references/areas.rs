@@ -7,6 +7,7 @@ use driftwright_runtime::collect::Paths;
 use driftwright_runtime::{Grid, Run, simulate};
 use driftwright_tests::harness::checks::{Check, assert_family, failures};
 use driftwright_tests::harness::interpret::interpreter;
+use driftwright_tests::harness::reference::Reference;
 
 use crate::estimate::{Estimates, estimate_from};
 use crate::model::ModelText;
@@ -77,6 +78,54 @@ fn the_area_of_correlated_drivers() {
     assert!(!failures(&checks(1.0)).is_empty());
     let euler = laws(&run(EULER, MILSTEIN, 16, 1_000_000), false, spread);
     assert!(!failures(&euler).is_empty());
+}
+
+/// Mean square errors of Euler's scheme and of Milstein's without areas on `dJ = X dB` (Clark & Cameron 1980), and the
+/// distribution function of the area (Levy 1951), both in reference E.
+#[test]
+fn areas_left_out_and_the_law_of_those_drawn() {
+    let reference = Reference::load("E");
+    let case = reference.by_id("E-clark-cameron-T1");
+    let sum = |model: ModelText, name: &str, scheme: &str| {
+        let more = format!("scheme = \"{scheme}\"");
+        model.state(name, "0", "0", &[("B", "X")], &more)
+    };
+    let mut model = ModelText::new(&["W", "B"]).state("X", "0", "0", &[("W", "1")], "");
+    model = sum(model, "J", "milstein");
+    model = sum(model, "E", "euler_maruyama");
+    model = sum(model, "M", "antithetic_milstein");
+    model = model
+        .readout("euler", "(J - E)^2")
+        .readout("without", "(J - M)^2");
+    let mut checks = Vec::new();
+    for (quantity, own) in [
+        ("mse_euler", "euler"),
+        ("mse_best_given_increments", "without"),
+    ] {
+        for (steps, value) in case.values_at(quantity).take(4) {
+            let steps = Some(steps as usize);
+            let paths = estimate_from(5, "clark-cameron", &model, &[1.0], steps, 200_000);
+            checks.push(paths.check(0, own, value));
+        }
+    }
+    for id in ["E-levy-area-h1", "E-levy-area-h0.01"] {
+        let case = reference.by_id(id);
+        let mut model = ModelText::new(&["W", "B"])
+            .state("X", "0", "0", &[("W", "1")], "")
+            .state("Y", "0", "0", &[("B", "1")], "")
+            .state("A", "0", "0", &[("W", "-Y/2"), ("B", "X/2")], MILSTEIN);
+        let points: Vec<(f64, f64)> = case.values_at("cdf_A").collect();
+        for (index, (x, _)) in points.iter().enumerate() {
+            let formula = format!("max(sign({x:?} - A), 0)");
+            model = model.readout(&format!("below_{index}"), &formula);
+        }
+        let paths = estimate_from(6, id, &model, &[case.parameter("h")], Some(16), 500_000);
+        for (index, (_, value)) in points.iter().enumerate() {
+            checks.push(paths.check(0, &format!("below_{index}"), *value));
+        }
+    }
+    assert_eq!(checks.len(), 16);
+    assert_family(&checks);
 }
 
 /// `A` is exact at the points of the grid, given increments and areas, so that it is the solution on the same path.

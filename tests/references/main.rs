@@ -4,6 +4,7 @@
 mod areas;
 mod catalogue;
 mod closed;
+mod coupled;
 mod ends;
 mod estimate;
 mod extrapolated;

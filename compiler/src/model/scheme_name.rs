@@ -14,6 +14,8 @@ pub enum SchemeName {
     EulerMaruyama,
     /// Milstein (Milstein 1974), for scalar, diagonal or commutative noise.
     Milstein,
+    /// Milstein without Levy areas, for antithetic multilevel estimators (Giles and Szpruch 2014).
+    AntitheticMilstein,
     /// Strong Taylor scheme of order 1.5 (Platen and Wagner 1982).
     StrongTaylor15,
     /// Drift-implicit (backward) Euler.
@@ -34,10 +36,11 @@ pub enum SchemeName {
 
 impl SchemeName {
     /// Every scheme, in the order of the language page.
-    pub const ALL: [Self; 11] = [
+    pub const ALL: [Self; 12] = [
         Self::Exact,
         Self::EulerMaruyama,
         Self::Milstein,
+        Self::AntitheticMilstein,
         Self::StrongTaylor15,
         Self::DriftImplicitEuler,
         Self::TamedEuler,
@@ -59,6 +62,7 @@ impl SchemeName {
             Self::Exact => "exact",
             Self::EulerMaruyama => "euler_maruyama",
             Self::Milstein => "milstein",
+            Self::AntitheticMilstein => "antithetic_milstein",
             Self::StrongTaylor15 => "strong_taylor_1_5",
             Self::DriftImplicitEuler => "drift_implicit_euler",
             Self::TamedEuler => "tamed_euler",

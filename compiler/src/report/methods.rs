@@ -47,6 +47,7 @@ fn spoken(name: &str) -> String {
         "runge_kutta_4" => "Runge-Kutta of order 4".to_owned(),
         "drift_implicit_euler" => "drift-implicit Euler".to_owned(),
         "tamed_euler" => "tamed Euler".to_owned(),
+        "antithetic_milstein" => "antithetic Milstein".to_owned(),
         "tamed_milstein" => "tamed Milstein".to_owned(),
         "quadratic_exponential" => "quadratic-exponential".to_owned(),
         "conditional_gaussian" => "normal given a square-root process".to_owned(),

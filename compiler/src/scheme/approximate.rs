@@ -63,6 +63,8 @@ pub(super) struct Choice {
     pub(super) tame: bool,
     /// A state is read whose scheme has no known order.
     pub(super) fed: bool,
+    /// The strong order of the drift-implicit steps of the component; one where there are none.
+    pub(super) implicit: Option<Order>,
     /// The noise is additive or has one driver, and nothing is read whose own law is drawn exactly.
     pub(super) taylor: bool,
 }
@@ -83,7 +85,7 @@ impl Context<'_> {
             let choice = &choices[&component[0]];
             let mut by_scheme: BTreeMap<SchemeName, Vec<usize>> = BTreeMap::new();
             for &state in &component {
-                let scheme = overrides::honoured(self, state, choice).unwrap_or(choice.scheme);
+                let scheme = self.scheme(state, choice);
                 by_scheme.entry(scheme).or_default().push(state);
             }
             let company: Vec<SchemeName> = by_scheme.keys().copied().collect();
@@ -92,6 +94,15 @@ impl Context<'_> {
             }
         }
         groups
+    }
+
+    fn scheme(&self, state: usize, choice: &Choice) -> SchemeName {
+        let chosen = matches!(&self.implicit[state], Some(Ok(found)) if found.chosen);
+        let own = chosen && choice.kink.is_none();
+        overrides::honoured(self, state, choice).unwrap_or(match own {
+            true => SchemeName::DriftImplicitEuler,
+            false => choice.scheme,
+        })
     }
 
     /// The choice for the component of each approximate state.
@@ -177,6 +188,7 @@ impl Context<'_> {
             ruled: component.iter().any(|&i| self.is_ruled(i)),
             tame: self.is_tame(component),
             fed: self.read_by(component).iter().any(|&i| self.carried[i]),
+            implicit: self.implicit_order(component),
             taylor: self.has_taylor(component),
         };
         choice.scheme = if choice.is_flow() {
@@ -219,6 +231,15 @@ impl Context<'_> {
         });
         let first = steep.next();
         first == Some(true) && steep.all(|inward| inward) && noises.into_iter().all(lipschitz)
+    }
+
+    fn implicit_order(&self, component: &[usize]) -> Option<Order> {
+        let mut found = component.iter().filter_map(|&i| match &self.implicit[i] {
+            Some(Ok(found)) => Some(found.order),
+            _ => None,
+        });
+        let lesser = |a: Order, b: Order| if a.value() < b.value() { a } else { b };
+        found.try_fold(Order::ONE, |all, one| Some(lesser(all, one?)))
     }
 
     /// Whether the strong Taylor scheme of order 1.5 needs no integrals beyond those of single drivers.
@@ -394,11 +415,19 @@ fn orders(
         SchemeName::Milstein,
         SchemeName::TamedMilstein,
         SchemeName::StrongTaylor15,
+        SchemeName::AntitheticMilstein,
     ];
+    // The last of them leaves the areas out.
+    let milstein = match choice.clash {
+        Some(_) => &milstein[..3],
+        None => &milstein[..],
+    };
+    let implicit = company.contains(&SchemeName::DriftImplicitEuler);
     let strong = match scheme {
+        _ if implicit && choice.implicit != Some(Order::ONE) => return (choice.implicit, weak),
         _ if choice.kink.is_some() => Order::HALF,
         _ if all(&[SchemeName::StrongTaylor15]) => Order::THREE_HALVES,
-        _ if all(&milstein) => Order::ONE,
+        _ if all(milstein) => Order::ONE,
         _ if choice.additive => Order::ONE,
         _ => Order::HALF,
     };

@@ -6,9 +6,10 @@
 //! coordinate keeps the solution inside.
 
 use super::edges::{self, Projection};
-use super::{Coordinate, Implicit, step};
+use super::{Coordinate, Implicit, Order, step};
 use crate::analysis::assume;
 use crate::analysis::asymptotics::{Leading, Side, at_end};
+use crate::analysis::boundary::{End, classify};
 use crate::analysis::coordinate::{Candidate, candidates, through};
 use crate::analysis::free::{Freedom, free_of, kink_in};
 use crate::analysis::limits::{Limit, limit};
@@ -23,6 +24,12 @@ pub(super) struct Found {
     pub(super) candidate: Candidate,
     pub(super) process: Process,
     pub(super) trace: Trace,
+    /// The strong order; none where none is known.
+    pub(super) order: Option<Order>,
+    /// What the order hangs on, in words, where the coordinate ends like that of a square-root process.
+    pub(super) condition: Option<String>,
+    /// Whether the scheme was chosen, not asked for.
+    pub(super) chosen: bool,
 }
 
 impl Found {
@@ -73,6 +80,41 @@ pub(super) fn coordinate(
     Err(reason)
 }
 
+/// The coordinate for a state on an open domain without an exact law, whose ends are not reached, where no explicit scheme keeps
+/// it inside: a logarithm or a logit in which drift and noise are Lipschitz would come first. An order must be known.
+pub(super) fn chosen(model: &Model, dynamics: &Dynamics, state: usize) -> Option<Found> {
+    let (pool, declared) = (&model.pool, &model.states[state]);
+    let settled = declared.scheme.is_some()
+        || declared.through.is_some()
+        || declared.at_lower.or(declared.at_upper).is_some();
+    let sides = [
+        (declared.domain.lower, Side::Lower),
+        (declared.domain.upper, Side::Upper),
+    ];
+    let finite = |(bound, _): &(Bound, Side)| bound.value().is_some();
+    let kept = |(bound, side): (Bound, Side)| {
+        let reached = classify(model, dynamics, state, side);
+        match bound {
+            Bound::Open(_) => reached == End::NotReached,
+            Bound::Infinite => reached != End::Reached,
+            Bound::Closed(_) => false,
+        }
+    };
+    let noise = &dynamics.states[state].diffusion;
+    let calm = noise.iter().all(|&b| pool.is_zero_literal(b));
+    if settled || calm || !sides.iter().any(finite) || !sides.into_iter().all(kept) {
+        return None;
+    }
+    if step::free_coordinate(model, dynamics, state).is_some() {
+        return None;
+    }
+    let found = coordinate(model, dynamics, state).ok()?;
+    found.order.is_some().then_some(Found {
+        chosen: true,
+        ..found
+    })
+}
+
 /// Whether a coordinate serves; why not, where its noise is free of the states.
 fn settle(
     model: &Model,
@@ -108,7 +150,18 @@ fn settle(
         u: candidate.symbol,
         range,
     };
-    if !place.rises_slowly(drift) {
+    let own = Place {
+        model,
+        u: x,
+        range: domain,
+    };
+    // Near a finite end of the domain the slope in the coordinate is often easier to see as a formula in the state.
+    let slope = pool.div(
+        pool.derivative(expansion.drift, x),
+        pool.derivative(candidate.forward, x),
+    );
+    let inner = pool.derivative(drift, candidate.symbol);
+    if !place.is_bounded_above(inner) && !own.is_bounded_above(slope) {
         return Err(Some(format!(
             "the drift of {shown} could not be shown to be one-sided Lipschitz"
         )));
@@ -118,14 +171,27 @@ fn settle(
             "the drift of {shown} does not go to infinity at each end of its range, so that a step might have no solution"
         )));
     }
+    let process = Process {
+        drift: expansion.drift,
+        diffusion: expansion.diffusion,
+    };
+    let (order, condition) = place.order(drift, squared(model, &process.diffusion));
     Ok(Found {
-        process: Process {
-            drift: expansion.drift,
-            diffusion: expansion.diffusion,
-        },
+        process,
         trace: expansion.trace,
         candidate,
+        order,
+        condition,
+        chosen: false,
     })
+}
+
+/// The variance rate of noise with these coefficients.
+fn squared(model: &Model, noise: &[Expr]) -> Expr {
+    let pool = &model.pool;
+    let product = |j: usize, k: usize| pool.product([noise[j], model.correlation[j][k], noise[k]]);
+    let pairs = (0..noise.len()).flat_map(|j| (0..noise.len()).map(move |k| (j, k)));
+    pool.simplify(pool.sum(pairs.map(|(j, k)| product(j, k)).collect::<Vec<_>>()))
 }
 
 /// A coordinate and its range.
@@ -152,10 +218,10 @@ impl Place<'_> {
         ]
     }
 
-    /// Whether the derivative of the drift is bounded from above: formulas here are continuous inside.
-    fn rises_slowly(&self, drift: Expr) -> bool {
+    /// Whether the derivative of a drift is bounded from above: formulas here are continuous inside.
+    fn is_bounded_above(&self, slope: Expr) -> bool {
         let pool = &self.model.pool;
-        let slope = pool.simplify(pool.derivative(drift, self.u));
+        let slope = pool.simplify(slope);
         self.ends()
             .into_iter()
             .all(|(bound, side, end)| match limit(pool, slope, self.u, end) {
@@ -175,6 +241,48 @@ impl Place<'_> {
                     }
                 }
             })
+    }
+
+    /// The strong order, and its condition where the drift goes to infinity like `c/d` with the distance d from a finite
+    /// end, as that of the root of a square-root process does: with squared noise s^2 the order in mean is 1 for `c > s^2`
+    /// (Alfonsi 2013) and 1/2 for `2 c >= s^2`, where the end is not reached (Dereich, Neuenkirch and Szpruch 2012). A
+    /// faster drift leaves all moments of its derivatives finite (Neuenkirch and Szpruch 2014).
+    fn order(&self, drift: Expr, square: Expr) -> (Option<Order>, Option<String>) {
+        let pool = &self.model.pool;
+        let (mut order, mut condition) = (Some(Order::ONE), None);
+        let finite = |(bound, ..): &(Bound, Side, Limit)| bound.value().is_some();
+        for (bound, side, _) in self.ends().into_iter().filter(finite) {
+            let Leading::Term {
+                exponent,
+                coefficient,
+            } = at_end(pool, drift, self.u, bound, side)
+            else {
+                return (None, None);
+            };
+            if exponent != -Rational::ONE {
+                continue;
+            }
+            let rate = match side {
+                Side::Lower => coefficient,
+                Side::Upper => pool.neg(coefficient),
+            };
+            let above = |multiple: i64| {
+                let product = pool.mul(pool.int(multiple), rate);
+                assume::sign(self.model, pool.simplify(pool.sub(product, square)))
+            };
+            if above(1) != Sign::Positive {
+                let half = above(2).is_non_negative().then_some(Order::HALF);
+                order = order.and(half);
+            }
+            condition = Some(format!(
+                "At the finite end its drift grows like c/d with the distance d, c = {}; with the squared noise {} strong \
+                 order 1 in mean takes c greater than it (Alfonsi 2013), 1/2 takes 2 c at least as great (Dereich, \
+                 Neuenkirch and Szpruch 2012).",
+                pool.format(pool.simplify(rate)),
+                pool.format(square)
+            ));
+        }
+        (order, condition)
     }
 
     /// Whether the drift goes to plus infinity at a finite lower end, and to minus infinity at a finite upper one.

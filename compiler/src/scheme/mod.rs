@@ -5,7 +5,7 @@
 //! ([`crate::analysis::square_root`]), whose transition is noncentral chi-square, and Brownian motions with a
 //! random drift ([`crate::analysis::random_drift`]), then for states that are normal given a square-root process
 //! and for pairs moved by commuting linear flows ([`crate::analysis::linear_flow`]). What is left is stepped by the scheme of highest strong order that its noise
-//! allows: Milstein where the noise commutes, Euler-Maruyama where it does not (Milstein with Levy areas on request), Euler with full
+//! allows (drift-implicit Euler where it alone keeps a state on an open domain inside): Milstein where the noise commutes, Euler-Maruyama where it does not (Milstein with Levy areas on request), Euler with full
 //! truncation at square-root-like ends, Runge-Kutta where nothing is random. The author may override.
 
 mod approximate;
@@ -59,7 +59,12 @@ pub fn plan(model: &Model, dynamics: &Dynamics, diagnostics: &mut Diagnostics) -
     let lawless = |&i: &usize| !has_law(i) && !excluded.contains_key(&i);
     let lawless: Vec<usize> = (0..model.states.len()).filter(lawless).collect();
     let flows = analysis::linear_flow::find(model, dynamics, &lawless);
-    let implicit = overrides::implicit(model, dynamics);
+    let mut implicit = overrides::implicit(model, dynamics);
+    for &i in &lawless {
+        if !flows.iter().any(|flow| flow.states.contains(&i)) {
+            implicit[i] = implicit::chosen(model, dynamics, i).map(Ok);
+        }
+    }
     let steps: Vec<_> = (0..model.states.len())
         .map(|i| {
             if let Some(Ok(found)) = &implicit[i] {

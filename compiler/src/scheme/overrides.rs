@@ -18,6 +18,7 @@ pub(super) fn scheme(model: &Model, state: usize) -> Option<SchemeName> {
         asked,
         SchemeName::EulerMaruyama
             | SchemeName::Milstein
+            | SchemeName::AntitheticMilstein
             | SchemeName::StrongTaylor15
             | SchemeName::DriftImplicitEuler
             | SchemeName::TamedEuler
@@ -33,7 +34,9 @@ pub(super) fn honoured(context: &Context<'_>, state: usize, choice: &Choice) -> 
     let model = context.model;
     let asked = scheme(model, state)?;
     let possible = match asked {
-        SchemeName::Milstein => no_milstein(context, state, choice).is_none(),
+        SchemeName::Milstein | SchemeName::AntitheticMilstein => {
+            no_milstein(context, state, choice).is_none()
+        }
         SchemeName::TamedMilstein => no_products(model, choice).is_none(),
         SchemeName::StrongTaylor15 => no_taylor(model, choice).is_none(),
         SchemeName::DriftImplicitEuler => matches!(&context.implicit[state], Some(Ok(_))),
@@ -82,7 +85,9 @@ pub(super) fn check(
         let group = groups.iter().find(|g| g.states.contains(&i));
         let reason = match asked {
             SchemeName::Exact => context.refusals[i].clone(),
-            SchemeName::Milstein => choices.get(&i).and_then(|c| no_milstein(context, i, c)),
+            SchemeName::Milstein | SchemeName::AntitheticMilstein => {
+                choices.get(&i).and_then(|c| no_milstein(context, i, c))
+            }
             SchemeName::TamedMilstein => choices.get(&i).and_then(|c| no_products(model, c)),
             SchemeName::StrongTaylor15 => choices.get(&i).and_then(|c| no_taylor(model, c)),
             SchemeName::RungeKutta4 if !context.calm[i] => Some(format!(

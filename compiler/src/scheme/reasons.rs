@@ -39,6 +39,12 @@ pub(super) fn why(
                 "{name} is stepped in the coordinate {forward}{why}."
             ));
         }
+        if let (Some(Ok(found)), SchemeName::DriftImplicitEuler) = (&context.implicit[i], scheme) {
+            if found.chosen {
+                reasons.push(steep(model, i));
+            }
+            reasons.extend(found.condition.clone());
+        }
     }
     reasons.push(main_reason(context, choice, scheme, method));
     reasons.extend(states.iter().flat_map(|&i| ends(context, i, method)));
@@ -46,6 +52,15 @@ pub(super) fn why(
     let exceeded = model.pool.exceeded().into_iter();
     reasons.extend(exceeded.map(|limit| format!("A budget was exceeded: {limit}.")));
     reasons
+}
+
+/// Why the drift-implicit scheme is chosen for a state.
+fn steep(model: &Model, state: usize) -> String {
+    let name = &model.states[state].name;
+    format!(
+        "{name} does not come to an end of its open domain, but explicit schemes step beyond it in {name} itself, and where a \
+         coordinate takes the domain onto the line or makes the noise constant the drift is too steep for them."
+    )
 }
 
 fn no_law(model: &Model, state: usize, refusal: &str) -> Option<String> {
@@ -103,19 +118,26 @@ fn main_reason(
             "One driver: the strong Taylor scheme of order 1.5 needs no more than its increment and its \
              integral over the step (Kloeden and Platen 1992, section 10.4)."
         }
+        SchemeName::AntitheticMilstein if choice.clash.is_some() => {
+            "The noise does not commute, and the Levy areas of Milstein's scheme are left out: strong order 1/2. On coupled \
+             paths (`multilevel` of the runtime), the mean of the fine path and its antithetic twin less the coarse path has \
+             for smooth payoffs a variance of the order of the step squared (Giles and Szpruch 2014)."
+        }
         SchemeName::Milstein if has_areas(method) => {
             "The noise does not commute: Milstein's scheme with Levy areas that are simulated given the increments, by as \
              many terms of their series, proportional to the root of one over the step, as strong order 1 takes (Wiktorsson \
              2001; Mrongowius and Roessler 2022)."
         }
-        SchemeName::Milstein if choice.additive => {
+        SchemeName::Milstein | SchemeName::AntitheticMilstein if choice.additive => {
             "The noise does not depend on the states: Milstein's term is zero, Milstein and Euler-Maruyama \
              coincide and have strong order 1."
         }
-        SchemeName::Milstein if context.model.drivers.len() == 1 => {
+        SchemeName::Milstein | SchemeName::AntitheticMilstein
+            if context.model.drivers.len() == 1 =>
+        {
             "One driver: Milstein's scheme needs no iterated integrals beyond the increment."
         }
-        SchemeName::Milstein => {
+        SchemeName::Milstein | SchemeName::AntitheticMilstein => {
             "The noise commutes: Milstein's scheme needs only products of increments, less the correlation \
              times the step."
         }
@@ -200,6 +222,12 @@ fn regularity(context: &Context<'_>, choice: &Choice, method: &Method) -> Vec<St
         let name = &context.model.states[step.state].name;
         let noise = step.diffusion.iter().map(|&b| ("noise", b));
         for (what, coefficient) in std::iter::once(("drift", step.drift)).chain(noise) {
+            if what == "drift" && step.implicit.is_some() {
+                found.push(format!(
+                    "The drift of {name} is one-sided Lipschitz in its coordinate and the noise constant there."
+                ));
+                continue;
+            }
             if what == "drift" && choice.tame && step.taming.is_some() {
                 found.push(format!(
                     "The drift of {name} grows faster than linearly and pulls inwards, its noise is globally \
@@ -213,6 +241,9 @@ fn regularity(context: &Context<'_>, choice: &Choice, method: &Method) -> Vec<St
         }
     }
     found.dedup();
+    if steps.iter().all(|step| step.implicit.is_some()) {
+        return found;
+    }
     found.push(if lipschitz {
         "The coefficients are globally Lipschitz, as the theorems on these orders assume.".to_owned()
     } else {
@@ -269,6 +300,10 @@ pub(super) fn rejected(
     if choice.deterministic || matches!(scheme, SchemeName::Milstein | SchemeName::StrongTaylor15) {
         return found;
     }
+    if scheme == SchemeName::DriftImplicitEuler {
+        found.extend(explicit(context, states));
+        return found;
+    }
     if choice.tame && matches!(scheme, SchemeName::TamedEuler | SchemeName::TamedMilstein) {
         let reason = "the moments of explicit schemes may diverge where the drift grows faster than linearly \
                       (Hutzenthaler, Jentzen and Kloeden 2011)";
@@ -289,6 +324,24 @@ pub(super) fn rejected(
     };
     found.push((SchemeName::Milstein, reason));
     found
+}
+
+/// The explicit schemes beside a drift-implicit one that was chosen.
+fn explicit(context: &Context<'_>, states: &[usize]) -> Vec<(SchemeName, String)> {
+    let chosen = |&&i: &&usize| matches!(&context.implicit[i], Some(Ok(found)) if found.chosen);
+    let Some(&state) = states.iter().find(chosen) else {
+        return Vec::new();
+    };
+    let name = &context.model.states[state].name;
+    let beyond = format!("a step in {name} itself may lead beyond an end of its domain");
+    let steep = "in the coordinate the drift grows faster than linearly: its moments may diverge (Hutzenthaler, Jentzen \
+                 and Kloeden 2011)";
+    let held = "it keeps the moments finite by slowing a steep drift down, which is an error that only small steps make small";
+    vec![
+        (SchemeName::EulerMaruyama, beyond.clone()),
+        (SchemeName::Milstein, format!("{beyond}; {steep}")),
+        (SchemeName::TamedMilstein, held.to_owned()),
+    ]
 }
 
 /// Why Milstein's scheme needs more than increments.

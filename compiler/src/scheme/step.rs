@@ -79,7 +79,7 @@ pub(super) fn step_coordinate(
 /// A coordinate that takes an open domain onto the line, such as a logarithm or a logit, and in which drift and noise are
 /// globally Lipschitz as functions of it: no step leaves the domain then, and nothing is paid for that. Where
 /// the author asked for a scheme, the scheme is for the state itself.
-fn free_coordinate(
+pub(super) fn free_coordinate(
     model: &Model,
     dynamics: &Dynamics,
     state: usize,
@@ -148,6 +148,10 @@ pub(super) fn state_step(
         SchemeName::Milstein | SchemeName::TamedMilstein | SchemeName::StrongTaylor15 => {
             areas::terms(model, dynamics, &process.diffusion, frame)
         }
+        SchemeName::AntitheticMilstein => areas::Terms {
+            areas: Vec::new(),
+            ..areas::terms(model, dynamics, &process.diffusion, frame)
+        },
         _ => areas::Terms::default(),
     };
     StateStep {

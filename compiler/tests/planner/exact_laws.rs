@@ -336,6 +336,45 @@ fn a_small_cube_in_the_drift_turns_exactness_off() {
     }
 }
 
+/// Every coefficient of the noise of every entry in turn, times a factor whose exponent is moved from 0 by 1e-9.
+#[test]
+fn a_factor_with_a_small_exponent_turns_exactness_off() {
+    let mut moved = 0;
+    for sde in in_scope() {
+        for state in sde.states() {
+            let row = sde.entry["diffusion"][&state].as_table().unwrap().clone();
+            for (driver, noise) in row {
+                let noise = noise.as_str().unwrap();
+                let outside = format!("({noise})*(1 + {state}^2)^1e-9");
+                let outside = sde.with_diffusion(&state, &driver, &outside);
+                assert!(!is_exact(&plan(&outside.text())), "{} {state}", sde.id);
+                moved += 1;
+            }
+        }
+    }
+    assert!(moved > 44, "{moved}");
+}
+
+/// Time that runs faster by a constant leaves every entry in its class: drifts grow by the factor, noise by its root.
+#[test]
+fn a_small_change_of_the_clock_leaves_everything_exact() {
+    for sde in in_scope() {
+        let mut moved = sde.clone();
+        for state in sde.states() {
+            let drift = sde.entry["drift"][&state].as_str().unwrap();
+            moved = moved.with_drift(&state, &format!("(1 + 1e-9)^2*({drift})"));
+            let row = sde.entry["diffusion"][&state].as_table().unwrap().clone();
+            for (driver, noise) in row {
+                let noise = format!("(1 + 1e-9)*({})", noise.as_str().unwrap());
+                moved = moved.with_diffusion(&state, &driver, &noise);
+            }
+        }
+        let planned = plan(&moved.text());
+        let said: Vec<_> = planned.plan.groups.iter().map(|g| &g.reasons).collect();
+        assert!(is_exact(&planned), "{}: {said:#?}", sde.id);
+    }
+}
+
 #[test]
 fn a_small_change_of_exponent_turns_exactness_off() {
     let sdes: BTreeMap<String, Sde> = in_scope().map(|s| (s.id.clone(), s)).collect();

@@ -6,6 +6,7 @@ use super::{Address, Generator, Philox, Threefry, Words};
 use crate::arith::{Arith, ArithmeticClass};
 use crate::dispatch::{Target, Task};
 use crate::lane::{LANES, Lane};
+use crate::source::{mix, source_id};
 
 /// Attempts of a rejection method, each of which takes two places of the attempt's 2^16. Acceptance is
 /// above 0.7 throughout, so that the last one is out of reach.
@@ -65,6 +66,22 @@ impl Draws {
             target,
             step,
             first_path,
+        }
+    }
+
+    /// The draws of one half of the step, as if the grid had steps of half the length.
+    pub(crate) fn at_half(&self, half: u64) -> Draws {
+        Draws {
+            step: 2 * self.step + half,
+            ..*self
+        }
+    }
+
+    /// Draws of the whole step that are independent of those of its halves.
+    pub(crate) fn apart_from_halves(&self) -> Draws {
+        Draws {
+            seed: mix(self.seed.wrapping_add(source_id("coarse"))),
+            ..*self
         }
     }
 
