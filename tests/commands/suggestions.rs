@@ -84,7 +84,8 @@ fn a_coordinate_beyond_the_tables_is_found_by_its_drift() {
 }
 
 /// Schemes that leave the domain: a logarithm keeps a growing stock positive, the root a square-root process with a
-/// steeper drift under Feller's condition (Alfonsi 2005).
+/// steeper drift under Feller's condition (Alfonsi 2005), where the scheme is chosen without a request; a Bessel process
+/// with a cubic drift is kept inside too, where its dimension is not known to be 2 or more and no order is claimed.
 #[test]
 fn a_change_of_variable_keeps_the_domain() {
     let stock = text(
@@ -104,11 +105,14 @@ fn a_change_of_variable_keeps_the_domain() {
     let root = text(
         "k - x^2",
         "s*sqrt(x)",
-        "domain = \"(0, inf)\"\n[assumptions]\nfeller = \"2*k >= s^2\"",
+        "domain = \"(0, inf)\"\nscheme = \"milstein\"\n[assumptions]\nfeller = \"2*k >= s^2\"",
     );
-    let (suggestion, _) = kept_promise(&root);
-    assert_eq!(suggestion["write"]["scheme"], "drift_implicit_euler");
+    let (suggestion, method) = kept_promise(&root);
+    assert_eq!(suggestion["leave_out"], serde_json::json!(["scheme"]));
+    assert_eq!(method["scheme"], "drift_implicit_euler");
     assert_eq!(suggestion["coordinate"], "sqrt(x)");
+    let (suggestion, _) = kept_promise(&text("1/x - k*x^3", "s", "domain = \"(0, inf)\""));
+    assert_eq!(suggestion["write"]["scheme"], "drift_implicit_euler");
 }
 
 /// What is exact already has nothing to gain.
