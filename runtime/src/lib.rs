@@ -17,6 +17,7 @@ pub mod gauss;
 mod grid;
 mod interval;
 mod lane;
+pub mod law;
 pub mod math;
 pub mod multilevel;
 pub mod random;

@@ -6,6 +6,7 @@ use crate::arith::Arith;
 use crate::error::StepError;
 use crate::fact::Fact;
 use crate::lane::Lane;
+use crate::law::Law;
 use crate::random::Draws;
 use crate::source::Source;
 
@@ -130,6 +131,14 @@ pub trait Simulator: Sync {
         outputs: &mut [Lane],
         scratch: &mut [Lane],
     );
+
+    /// The law of a state, by its place among the outputs, at the end of a step from time `start` on that takes `length > 0`,
+    /// given its value `before`. None where the state has no exact law by itself that has a name. Where the noise vanishes at
+    /// the parameters, nothing is a number that would divide by it.
+    fn law(&self, state: usize, before: f64, start: f64, length: f64) -> Option<Box<dyn Law>> {
+        let _ = (state, before, start, length);
+        None
+    }
 
     /// The facts of the model that hang on parameter values, and whether they hold at these.
     fn facts(&self) -> Vec<Fact> {

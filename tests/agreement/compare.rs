@@ -39,6 +39,11 @@ pub(crate) fn model<B: Simulator, E: Simulator>(
                 assert_eq!(interpreter.facts(), built.facts(), "{path}, {values:?}");
                 assert_eq!(built.facts(), expanded.facts(), "{path}, {values:?}");
                 same_paths(path, set, &interpreter, &built, &expanded);
+                let states = program.slots.len() - usize::from(program.left_domain.is_some());
+                let laws = laws(&interpreter, states);
+                assert_eq!(laws.is_empty(), program.laws.is_empty(), "{path}");
+                assert_eq!(laws, self::laws(&built, states), "{path}, {values:?}");
+                assert_eq!(laws, self::laws(&expanded, states), "{path}, {values:?}");
             }
             (Err(first), Err(second), Err(third)) => {
                 assert_eq!(first.to_string(), second.to_string(), "{path}, {values:?}");
@@ -88,6 +93,28 @@ fn same_paths(
             );
         }
     }
+}
+
+/// Mean, variance, distribution function and density of each state that has a law by itself, as bits: given the value
+/// of one path, at the value of another.
+fn laws(simulator: &impl Simulator, states: usize) -> Vec<[u64; 4]> {
+    let grid = Grid::new(&[0.3], Some(3)).expect("the grid is sound");
+    let run = Run {
+        paths: 2,
+        ..Run::default()
+    };
+    let values = simulate(simulator, &grid, &run, Paths)
+        .expect("the run succeeds")
+        .output
+        .values;
+    let outputs = values.len() / 2;
+    let law = |state: usize| {
+        let law = simulator.law(state, values[state], 0.3, 0.7)?;
+        let at = values[outputs + state];
+        let numbers = [law.mean(), law.variance(), law.cdf(at), law.density(at)];
+        Some(numbers.map(|n| if n.is_nan() { u64::MAX } else { n.to_bits() }))
+    };
+    (0..states).filter_map(law).collect()
 }
 
 /// All observed values of 300 paths (a block and a part of one) as bits, any NaN as one, and the

@@ -19,5 +19,6 @@ mod rates;
 mod schemes;
 mod square_root;
 mod steep;
+mod step_laws;
 mod taylor;
 mod variance;

@@ -4,7 +4,6 @@
 pub mod assume;
 pub mod asymptotics;
 pub mod boundary;
-pub mod chi_square;
 pub mod claims;
 pub mod commute;
 pub mod condition;

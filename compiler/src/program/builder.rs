@@ -7,7 +7,7 @@ use driftwright_runtime::Unfused;
 
 use super::Value;
 use super::functions::{BinaryOp, UnaryOp};
-use super::op::{Comparison, DrawLaw, Number, Op, ValueId};
+use super::op::{Argument, Comparison, DrawLaw, Number, Op, ValueId};
 use super::rate::Rate;
 
 /// What lanes are being built for: the same state slot is another value in a step and at an
@@ -111,6 +111,21 @@ impl Builder {
 
     pub(super) fn length(&mut self) -> ValueId {
         self.intern(Op::Length, Rate::Step)
+    }
+
+    /// Start of the step that a law is of.
+    pub(super) fn law_start(&mut self) -> ValueId {
+        self.intern(Op::Start, Rate::Law)
+    }
+
+    /// Length of the step that a law is of.
+    pub(super) fn law_length(&mut self) -> ValueId {
+        self.intern(Op::Length, Rate::Law)
+    }
+
+    /// What a law is asked with.
+    pub(super) fn argument(&mut self, argument: Argument) -> ValueId {
+        self.intern(Op::Argument(argument), Rate::Law)
     }
 
     pub(super) fn instant(&mut self) -> ValueId {

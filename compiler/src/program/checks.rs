@@ -37,6 +37,21 @@ pub struct Range {
     pub upper: Bound,
 }
 
+impl Range {
+    /// The range with every value replaced.
+    pub(super) fn map(self, f: impl Fn(ValueId) -> ValueId) -> Self {
+        let bound = |b: Bound| match b {
+            Bound::Infinite => Bound::Infinite,
+            Bound::Open(id) => Bound::Open(f(id)),
+            Bound::Closed(id) => Bound::Closed(f(id)),
+        };
+        Self {
+            lower: bound(self.lower),
+            upper: bound(self.upper),
+        }
+    }
+}
+
 /// Something that must hold of the parameters.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub enum Check {
@@ -90,22 +105,13 @@ impl Check {
 
     /// The check with every value replaced.
     pub(super) fn map(self, f: impl Fn(ValueId) -> ValueId) -> Self {
-        let bound = |b: Bound| match b {
-            Bound::Infinite => Bound::Infinite,
-            Bound::Open(id) => Bound::Open(f(id)),
-            Bound::Closed(id) => Bound::Closed(f(id)),
-        };
-        let range = |r: Range| Range {
-            lower: bound(r.lower),
-            upper: bound(r.upper),
-        };
         match self {
             Self::Range {
                 parameter,
                 range: r,
             } => Self::Range {
                 parameter,
-                range: range(r),
+                range: r.map(f),
             },
             Self::Assumption {
                 name,
@@ -127,7 +133,7 @@ impl Check {
             } => Self::Initial {
                 state,
                 value: f(value),
-                domain: range(domain),
+                domain: domain.map(f),
             },
         }
     }

@@ -4,7 +4,7 @@ use std::fmt;
 
 use super::op::{Comparison, Op, ValueId};
 use super::rate::Rate;
-use super::{Check, Fact, Program};
+use super::{Check, Fact, LawImage, Program};
 
 impl fmt::Display for Program {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
@@ -26,6 +26,27 @@ impl fmt::Display for Program {
         }
         for fact in &self.facts {
             writeln!(f, "fact {} if {}", fact.statement, alternatives(fact))?;
+        }
+        for law in &self.laws {
+            let name = &self.slots[law.slot].name;
+            let numbers = list(law.shape.numbers());
+            write!(f, "law of {name}: {} {numbers}", law.shape.name())?;
+            match law.image {
+                None => writeln!(f)?,
+                Some(LawImage::Logarithm) => writeln!(f, " through log")?,
+                Some(LawImage::Map {
+                    forward,
+                    slope,
+                    inverse,
+                    domain,
+                }) => {
+                    let domain = ends(&domain);
+                    writeln!(
+                        f,
+                        " through {forward} slope {slope} back {inverse} on {domain}"
+                    )?;
+                }
+            }
         }
         for slot in &self.slots {
             writeln!(
@@ -61,6 +82,7 @@ impl Program {
             Op::Length => "length".to_owned(),
             Op::Time => "time".to_owned(),
             Op::Instant => "instant".to_owned(),
+            Op::Argument(argument) => argument.name().to_owned(),
             Op::State(slot) => format!("state {}", self.slots[*slot].name),
             Op::Noise(source) => format!("noise {source}"),
             Op::Draw {

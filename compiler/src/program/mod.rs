@@ -11,6 +11,7 @@ mod display;
 mod facts;
 mod formula;
 mod functions;
+mod laws;
 mod lower;
 mod op;
 mod rate;
@@ -26,8 +27,9 @@ use std::collections::BTreeSet;
 pub use checks::{Bound, Check, Range};
 pub use facts::{Compared, Fact, Relates};
 pub use functions::{BinaryOp, UnaryOp};
+pub use laws::{LawImage, LawShape, StateLaw};
 pub use lower::{TooLarge, lower};
-pub use op::{Comparison, DrawLaw, Number, Op, ValueId};
+pub use op::{Argument, Comparison, DrawLaw, Number, Op, ValueId};
 pub use rate::Rate;
 pub use verify::Fault;
 
@@ -124,6 +126,8 @@ pub struct Program {
     pub checks: Vec<Check>,
     /// Facts of the model that its ranges and assumptions leave open and that parameter values decide.
     pub facts: Vec<Fact>,
+    /// Laws of states after a step, given their values before.
+    pub laws: Vec<StateLaw>,
     /// The factor of the drivers' correlation matrix, which exists only where that is positive
     /// semidefinite; none where it cannot fail.
     pub correlation: Option<ValueId>,
@@ -196,7 +200,7 @@ impl Program {
     pub fn time_dependent(&self) -> bool {
         self.values
             .iter()
-            .any(|v| matches!(v.op, Op::Start | Op::Time))
+            .any(|v| v.rate != Rate::Law && matches!(v.op, Op::Start | Op::Time))
     }
 
     /// The setup values the checks need; constructors compute them before anything that can fail.
@@ -209,11 +213,36 @@ impl Program {
         self.setup_values_behind(self.facts.iter().flat_map(Fact::operands))
     }
 
-    /// The setup values that something else than the facts needs.
+    /// The setup and law values behind some values of a law, in order.
+    pub fn law_values(&self, of: impl IntoIterator<Item = ValueId>) -> Vec<ValueId> {
+        let mut needed = BTreeSet::new();
+        let mut pending: Vec<ValueId> = of.into_iter().collect();
+        while let Some(id) = pending.pop() {
+            let value = self.value(id);
+            if matches!(value.rate, Rate::Setup | Rate::Law) && needed.insert(id) {
+                pending.extend(value.op.operands());
+            }
+        }
+        needed.into_iter().collect()
+    }
+
+    /// Whether a value depends on the value at which a law is asked.
+    pub fn is_asked(&self, id: ValueId) -> bool {
+        let at = |&id: &ValueId| self.value(id).op == Op::Argument(Argument::At);
+        self.law_values([id]).iter().any(at)
+    }
+
+    /// The setup values that something else than facts and laws needs.
     pub fn constructor_values(&self) -> Vec<ValueId> {
-        let later = self.ids().filter(|&id| self.value(id).rate > Rate::Setup);
+        let later = self.later_values();
         let read = later.flat_map(|id| self.value(id).op.operands());
         self.setup_values_behind(read.chain(self.results()))
+    }
+
+    /// The values that steps and observations compute.
+    pub fn later_values(&self) -> impl Iterator<Item = ValueId> + '_ {
+        let later = |rate: Rate| rate > Rate::Setup && rate != Rate::Law;
+        self.ids().filter(move |&id| later(self.value(id).rate))
     }
 
     /// The setup values among some values and those they are computed from.

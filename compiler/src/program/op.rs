@@ -65,6 +65,25 @@ impl DrawLaw {
     }
 }
 
+/// What a law is asked with.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum Argument {
+    /// The value of the state before the step.
+    Before,
+    /// The value at which a function of the law is taken.
+    At,
+}
+
+impl Argument {
+    /// The name, in Rust too.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Before => "before",
+            Self::At => "at",
+        }
+    }
+}
+
 /// What computes a value.
 #[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum Op {
@@ -80,6 +99,8 @@ pub enum Op {
     Time,
     /// Time of an instant within a step.
     Instant,
+    /// What a law is asked with.
+    Argument(Argument),
     /// A state slot: at the start of the step, or at the observation.
     State(usize),
     /// A standard normal draw of the step, by the index of its source.
@@ -183,6 +204,7 @@ impl Op {
             | Self::Length
             | Self::Time
             | Self::Instant
+            | Self::Argument(_)
             | Self::State(_)
             | Self::Noise(_) => Vec::new(),
             Self::Unary(_, a)

@@ -17,6 +17,8 @@ pub enum Rate {
     /// At every instant at which the coefficients of a step are asked for while its law is integrated,
     /// the same on every path. Only a law reads such a value.
     Instant,
+    /// Once per law of a state after a step, or per value at which it is asked.
+    Law,
     /// In every step on every path.
     StepLane,
     /// At every observation on every path.
@@ -25,12 +27,13 @@ pub enum Rate {
 
 impl Rate {
     /// Every rate, from the slowest to the fastest.
-    pub const ALL: [Self; 7] = [
+    pub const ALL: [Self; 8] = [
         Self::Constant,
         Self::Setup,
         Self::Step,
         Self::Observation,
         Self::Instant,
+        Self::Law,
         Self::StepLane,
         Self::ObservationLane,
     ];
@@ -44,7 +47,7 @@ impl Rate {
     pub fn may_read(self, operand: Self) -> bool {
         match self {
             Self::Constant | Self::Setup => operand <= self,
-            Self::Step | Self::Observation | Self::Instant => {
+            Self::Step | Self::Observation | Self::Instant | Self::Law => {
                 operand <= Self::Setup || operand == self
             }
             Self::StepLane => operand <= Self::Step || operand == self,
@@ -63,6 +66,7 @@ impl fmt::Display for Rate {
             Self::Step => "step",
             Self::Observation => "observation",
             Self::Instant => "instant",
+            Self::Law => "law",
             Self::StepLane => "step lane",
             Self::ObservationLane => "observation lane",
         })

@@ -5,13 +5,14 @@ use std::collections::BTreeSet;
 
 use super::op::{Op, ValueId};
 use super::rate::Rate;
-use super::{Check, Fact, Program};
+use super::{Check, Fact, Program, StateLaw};
 
 impl Program {
     /// Everything a back end must compute.
     pub(super) fn roots(&self) -> Vec<ValueId> {
         let facts = self.facts.iter().flat_map(Fact::operands);
-        self.results().chain(facts).collect()
+        let laws = self.laws.iter().flat_map(StateLaw::operands);
+        self.results().chain(facts).chain(laws).collect()
     }
 
     /// Everything that a simulator needs to be constructed and to run.
@@ -71,6 +72,11 @@ impl Program {
         self.facts = facts
             .into_iter()
             .map(|f| f.map(|id| renumbered(new_ids, id)))
+            .collect();
+        let laws = std::mem::take(&mut self.laws);
+        self.laws = laws
+            .into_iter()
+            .map(|l| l.map(|id| renumbered(new_ids, id)))
             .collect();
         let slots = &self.slots;
         for note in &mut self.notes {

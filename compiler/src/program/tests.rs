@@ -80,7 +80,14 @@ fn geometric_brownian_motion_is_one_multiply_add_and_one_sum() {
     );
     // The logarithm is the stored coordinate: only the price itself takes an exponential.
     assert_eq!(listing.matches("= exp").count(), 2, "{listing}");
-    assert!(!listing.contains("= ln"), "{listing}");
+    let (before, rest) = listing.split_once("\nlaw:").expect("a section");
+    let (law, after) = rest.split_once("step lane:").expect("a section");
+    assert!(
+        !before.contains("= ln") && !after.contains("= ln"),
+        "{listing}"
+    );
+    // The law of the next price is given a price.
+    assert_eq!(law.matches("= ln").count(), 1, "{listing}");
 }
 
 #[test]

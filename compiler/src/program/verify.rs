@@ -4,7 +4,7 @@ use std::fmt;
 
 use super::op::{Op, ValueId};
 use super::rate::Rate;
-use super::{Check, Fact, Program};
+use super::{Check, Fact, Program, StateLaw};
 
 /// A fault in a program; it is the compiler's, never the author's.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -83,7 +83,8 @@ impl Program {
         let right = match op {
             Op::Const(_) => rate == Rate::Constant,
             Op::Parameter(_) => rate == Rate::Setup,
-            Op::Start | Op::Length => rate == Rate::Step,
+            Op::Start | Op::Length => matches!(rate, Rate::Step | Rate::Law),
+            Op::Argument(_) => rate == Rate::Law,
             Op::Time => rate == Rate::Observation,
             Op::Instant => rate == Rate::Instant,
             Op::State(_) => rate.is_lane(),
@@ -157,6 +158,11 @@ impl Program {
         {
             if rate(id) > Rate::Setup {
                 return Err(format!("a check or fact reads {id} of rate {}", rate(id)));
+            }
+        }
+        for id in self.laws.iter().flat_map(StateLaw::operands) {
+            if !Rate::Law.may_read(rate(id)) {
+                return Err(format!("a law reads {id} of rate {}", rate(id)));
             }
         }
         for slot in &self.slots {

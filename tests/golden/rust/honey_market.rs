@@ -11,6 +11,7 @@
     clippy::excessive_precision,
     clippy::float_cmp,
     clippy::inline_always,
+    clippy::let_and_return,
     clippy::many_single_char_names,
     clippy::needless_range_loop,
     clippy::similar_names,

@@ -11,6 +11,7 @@
     clippy::excessive_precision,
     clippy::float_cmp,
     clippy::inline_always,
+    clippy::let_and_return,
     clippy::many_single_char_names,
     clippy::needless_range_loop,
     clippy::similar_names,
@@ -247,6 +248,32 @@ pub mod orchard_spot {
                 output_log_s.0[lane] = state_s;
                 output_square_root.0[lane] = v21;
                 output_call.0[lane] = v29;
+            }
+        }
+
+        fn law(
+            &self,
+            state: usize,
+            before: f64,
+            _start: f64,
+            length: f64,
+        ) -> Option<Box<dyn runtime::law::Law>> {
+            match state {
+                quantity::S => {
+                    let mu = self.parameters.mu;
+                    let sigma = self.parameters.sigma;
+                    let v11 = sigma * sigma;
+                    let v12 = 0.5 * v11;
+                    // Constant part of the drift of log(S): mu - sigma^2/2.
+                    let drift_s = mu - v12;
+                    let v32 = runtime::math::ln::<runtime::Unfused>(before);
+                    let v33 = drift_s * length;
+                    let v34 = v32 + v33;
+                    let v35 = v11 * length;
+                    let v36 = runtime::math::sqrt::<runtime::Unfused>(v35);
+                    Some(Box::new(runtime::law::Lognormal::new(v34, v36)))
+                }
+                _ => None,
             }
         }
     }

@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 
+use super::square_root::below;
 use super::{LawName, Moments, NormalLaw};
 use crate::symbolic::{Expr, Symbol};
 
@@ -92,8 +93,8 @@ impl Moments {
             MarginalLaw::Normal(_) | MarginalLaw::RandomDrift(_) => (0.0, true),
             MarginalLaw::SquareRoot(law) => {
                 let numbers = self.square_root_numbers(law, values, t)?;
-                let mass = if numbers.absorbing {
-                    numbers.below(0.0)?
+                let mass = if numbers.is_stopped() {
+                    below(&numbers, 0.0)?
                 } else {
                     0.0
                 };

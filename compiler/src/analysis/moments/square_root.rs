@@ -5,10 +5,10 @@ use std::collections::BTreeMap;
 
 use driftwright_runtime::Unfused;
 use driftwright_runtime::gauss::moving_transition;
+use driftwright_runtime::law::{ChiSquare, Law as _};
 use driftwright_runtime::math::{exp, expm1_ratio};
 
 use super::{ImageLaw, LawName, Moments};
-use crate::analysis::chi_square::noncentral_cdf;
 use crate::analysis::square_root::{AtZero, SquareRoot};
 use crate::symbolic::{Expr, Symbol};
 
@@ -53,7 +53,7 @@ impl Moments {
         at.insert(self.model.time, t);
         at.insert(law.variable, x);
         let y = self.model.pool.eval_f64(law.forward, &at)?;
-        let below = self.square_root_numbers(law, values, t)?.below(y)?;
+        let below = below(&self.square_root_numbers(law, values, t)?, y)?;
         Some(if law.increasing { below } else { 1.0 - below })
     }
 
@@ -62,7 +62,7 @@ impl Moments {
         law: &ImageLaw,
         values: &BTreeMap<Symbol, f64>,
         t: f64,
-    ) -> Option<Numbers> {
+    ) -> Option<ChiSquare> {
         let (pool, process) = (&self.model.pool, self.square_root_of(law.state)?);
         let number = |e: Expr| pool.eval_f64(e, values).filter(|v| v.is_finite());
         let declared = &self.model.states[law.state];
@@ -77,15 +77,12 @@ impl Moments {
                 (exp::<Unfused>(-rate * t), scale)
             }
         };
-        Some(Numbers {
-            dimension,
-            scale,
-            noncentrality: start * decay / scale,
-            absorbing: match process.at_zero {
-                AtZero::NotReached => false,
-                AtZero::Reflected => dimension <= 0.0,
-                AtZero::Absorbed => dimension < 2.0,
-            },
+        let noncentrality = start * decay / scale;
+        Some(match process.at_zero {
+            AtZero::NotReached | AtZero::Reflected => {
+                ChiSquare::reflected(scale, dimension, noncentrality)
+            }
+            AtZero::Absorbed => ChiSquare::absorbed(scale, dimension, noncentrality),
         })
     }
 }
@@ -111,26 +108,7 @@ impl Moments {
     }
 }
 
-/// The transition law of a square-root process as numbers.
-pub(super) struct Numbers {
-    dimension: f64,
-    scale: f64,
-    noncentrality: f64,
-    pub(super) absorbing: bool,
-}
-
-impl Numbers {
-    /// `P(y <= level)`. A process that is absorbed is above z times its scale with the probability that a
-    /// chi-square variable of `2 - dimension` degrees and noncentrality z is below the process's own
-    /// noncentrality (Schroder 1989, section 1, for constant elasticity).
-    pub(super) fn below(&self, level: f64) -> Option<f64> {
-        if level < 0.0 {
-            return Some(0.0);
-        }
-        let z = level / self.scale;
-        if self.absorbing {
-            return Some(1.0 - noncentral_cdf(self.noncentrality, 2.0 - self.dimension, z)?);
-        }
-        noncentral_cdf(z, self.dimension, self.noncentrality)
-    }
+/// `P(y <= level)`; none where the law does not exist or is too far out.
+pub(super) fn below(law: &ChiSquare, level: f64) -> Option<f64> {
+    Some(law.cdf(level)).filter(|p| !p.is_nan())
 }

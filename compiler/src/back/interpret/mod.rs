@@ -6,11 +6,13 @@
 
 mod code;
 mod lanes;
+mod laws;
 mod uniform;
 
 use std::borrow::Cow;
 use std::collections::BTreeMap;
 
+use driftwright_runtime::law::Law;
 use driftwright_runtime::random::Draws;
 use driftwright_runtime::{Arith, Fact, Lane, ParameterError, Shape, Simulator, Source, StepError};
 
@@ -131,6 +133,12 @@ impl Simulator for Interpreter {
     ) {
         lanes::run::<A>(&self.observe, values, states, &[], None, scratch);
         lanes::write(&self.observe, values, Some(states), &[], scratch, outputs);
+    }
+
+    fn law(&self, state: usize, before: f64, start: f64, length: f64) -> Option<Box<dyn Law>> {
+        let found = self.program.laws.iter().find(|law| law.slot == state)?;
+        let step = [start, length];
+        Some(laws::law(&self.program, &self.setup, found, before, step))
     }
 
     fn facts(&self) -> Vec<Fact> {

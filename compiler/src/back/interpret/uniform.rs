@@ -4,7 +4,7 @@ use driftwright_runtime::{
     Arith, Interval, ParameterError, StepError, Unfused, check_initial, check_range, gauss,
 };
 
-use crate::program::{Bound, Check, Comparison, Op, Program, Range, Rate, ValueId};
+use crate::program::{Argument, Bound, Check, Comparison, Op, Program, Range, Rate, ValueId};
 
 /// The numbers behind a program's values; a matrix has several.
 #[derive(Clone, Debug)]
@@ -80,6 +80,24 @@ impl Uniform {
         Ok(())
     }
 
+    /// Evaluates numbers that belong to a law; the arguments are the value before the step and the one at which the law
+    /// is asked, `step` its start and length.
+    pub(super) fn run_law(
+        &mut self,
+        program: &Program,
+        ids: impl Iterator<Item = ValueId>,
+        [before, at]: [f64; 2],
+        step: [f64; 2],
+    ) {
+        for id in ids {
+            self.numbers[self.first[id.index()]] = match &program.value(id).op {
+                Op::Argument(Argument::Before) => before,
+                Op::Argument(Argument::At) => at,
+                op => self.scalar(op, step),
+            };
+        }
+    }
+
     fn scalar(&self, op: &Op, [start, length]: [f64; 2]) -> f64 {
         match *op {
             Op::Const(number) => number.value(),
@@ -101,7 +119,8 @@ impl Uniform {
                 otherwise
             }),
             Op::Extract(of, index) => self.numbers[self.first[of.index()] + index],
-            Op::State(_)
+            Op::Argument(_)
+            | Op::State(_)
             | Op::Noise(_)
             | Op::Draw { .. }
             | Op::Cholesky { .. }
@@ -222,7 +241,7 @@ impl Uniform {
         }
     }
 
-    fn interval(&self, range: &Range) -> Interval {
+    pub(super) fn interval(&self, range: &Range) -> Interval {
         let end = |bound: Bound, infinite: f64| bound.value().map_or(infinite, |id| self.get(id));
         Interval::new(
             end(range.lower, f64::NEG_INFINITY),

@@ -66,9 +66,7 @@ impl Generator<'_> {
     /// Setup values that other functions read: all but parameters, which are kept as they are.
     pub(super) fn fields_of_simulator(&self) -> BTreeSet<ValueId> {
         let program = self.program;
-        let later = program
-            .ids()
-            .filter(|&id| program.value(id).rate > Rate::Setup);
+        let later = program.later_values();
         let read = later.flat_map(|id| program.value(id).op.operands());
         let results = program.slots.iter().flat_map(|s| [s.initial, s.next]);
         let outputs = program.outputs.iter().map(|o| o.value);
@@ -164,7 +162,7 @@ impl Generator<'_> {
         }
     }
 
-    fn interval(&self, range: &Range) -> TokenStream {
+    pub(super) fn interval(&self, range: &Range) -> TokenStream {
         let end = |bound: Bound, infinite: f64| match bound.value() {
             Some(id) => self.read(id),
             None => number(infinite),

@@ -8,6 +8,7 @@ mod docs;
 mod facts;
 mod frame;
 mod lanes;
+mod laws;
 mod names;
 mod parameters;
 mod simulator;
@@ -98,6 +99,7 @@ impl<'a> Generator<'a> {
                 clippy::excessive_precision,
                 clippy::float_cmp,
                 clippy::inline_always,
+                clippy::let_and_return,
                 clippy::many_single_char_names,
                 clippy::needless_range_loop,
                 clippy::similar_names,

@@ -8,7 +8,7 @@ use super::stages::Stages;
 use crate::program::{Op, Program, Rate, ValueId};
 
 /// Names of locals that the frame of a function uses itself.
-const RESERVED: [&str; 15] = [
+const RESERVED: [&str; 18] = [
     "parameters",
     "required",
     "states",
@@ -24,6 +24,9 @@ const RESERVED: [&str; 15] = [
     "holds",
     "place",
     "covariance",
+    "before",
+    "at",
+    "state",
 ];
 
 /// Every name of a module.
@@ -127,6 +130,7 @@ fn value_names(program: &Program, shared: &Unique) -> Vec<Ident> {
     for rates in [
         [Rate::Step, Rate::Instant, Rate::StepLane].as_slice(),
         &[Rate::Observation, Rate::ObservationLane],
+        &[Rate::Law],
     ] {
         let mut scope = setup.clone();
         rates.iter().for_each(|&rate| assign(rate, &mut scope));

@@ -19,6 +19,7 @@ impl Generator<'_> {
         let step = self.step();
         let observe = self.observe();
         let facts = self.facts();
+        let laws = self.laws();
         quote! {
             impl runtime::Simulator for #name {
                 #shape
@@ -28,6 +29,7 @@ impl Generator<'_> {
                 #step
                 #observe
                 #facts
+                #laws
             }
         }
     }
@@ -97,7 +99,10 @@ impl Generator<'_> {
             Rate::Step => (&program.step_values, true),
             _ => (&program.observation_values, false),
         };
-        let uses = |op: &Op| program.values.iter().any(|v| v.op == *op);
+        let uses = |op: &Op| {
+            let values = program.values.iter();
+            values.filter(|v| v.rate != Rate::Law).any(|v| v.op == *op)
+        };
         let argument = |name: &str, used: bool| {
             let name = if used {
                 name.to_owned()

@@ -21,7 +21,13 @@ pub(super) enum Place {
 pub(super) fn has_statement(op: &Op) -> bool {
     !matches!(
         op,
-        Op::Const(_) | Op::Parameter(_) | Op::Start | Op::Length | Op::Time | Op::Instant
+        Op::Const(_)
+            | Op::Parameter(_)
+            | Op::Start
+            | Op::Length
+            | Op::Time
+            | Op::Instant
+            | Op::Argument(_)
     )
 }
 
@@ -65,6 +71,10 @@ impl Generator<'_> {
             Op::Length => quote! { length },
             Op::Time => quote! { time },
             Op::Instant => quote! { instant },
+            Op::Argument(argument) => {
+                let name = Ident::new(argument.name(), Span::call_site());
+                quote! { #name }
+            }
             _ => {
                 let name = self.names.value(id);
                 quote! { #name }

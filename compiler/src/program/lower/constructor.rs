@@ -81,7 +81,7 @@ impl Lowering<'_> {
         checks
     }
 
-    fn range(&mut self, interval: &Interval) -> Range {
+    pub(super) fn range(&mut self, interval: &Interval) -> Range {
         Range {
             lower: self.bound(interval.lower),
             upper: self.bound(interval.upper),

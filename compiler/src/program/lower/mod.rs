@@ -11,6 +11,7 @@ mod constructor;
 mod exact;
 mod facts;
 mod implicit;
+mod laws;
 mod linear_flow;
 mod noise;
 mod observe;
@@ -64,6 +65,7 @@ pub fn lower(model: &Model, plan: &Plan, facts: &[Fact]) -> Result<Program, TooL
     let checks = lowering.checks();
     let correlation = lowering.correlation();
     let facts = lowering.facts(facts);
+    let laws = lowering.laws();
     if lowering.builder.is_exhausted() {
         return Err(TooLarge);
     }
@@ -74,6 +76,7 @@ pub fn lower(model: &Model, plan: &Plan, facts: &[Fact]) -> Result<Program, TooL
         parameters: lowering.parameters(),
         checks,
         facts,
+        laws,
         correlation,
         sources: plan
             .noise
