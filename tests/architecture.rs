@@ -6,12 +6,13 @@ use std::path::{Path, PathBuf};
 use driftwright_tests::harness::values::repository;
 
 /// Each module with those it may name.
-const MAY_USE: [(&str, &[&str]); 13] = [
+const MAY_USE: [(&str, &[&str]); 14] = [
     ("source", &[]),
     ("diagnostic", &["source"]),
     ("symbolic", &["source"]),
     ("model", &["source", "symbolic"]),
     ("front", &["source", "diagnostic", "symbolic", "model"]),
+    ("meaning", &["source", "symbolic", "model", "front"]),
     ("calculus", &["source", "diagnostic", "symbolic", "model"]),
     (
         "analysis",
@@ -48,6 +49,7 @@ const MAY_USE: [(&str, &[&str]); 13] = [
             "analysis",
             "scheme",
             "pipeline",
+            "meaning",
         ],
     ),
     ("pipeline", &["*"]),

@@ -4,7 +4,8 @@
 //! A model flows one way, through modules that each do one thing: [`front`] reads and resolves,
 //! [`calculus`] applies Ito's rule, [`analysis`] finds exact laws and facts, [`scheme`] chooses how
 //! each state is stepped, [`program`] lowers the plan to a step program, [`back`] spells it as Rust or
-//! interprets it, [`report`] shows the derivation. [`pipeline`] runs the passes in order.
+//! interprets it, [`report`] shows the derivation. [`pipeline`] runs the passes in order; [`meaning`] compares versions of a
+//! model and keeps sign-offs.
 
 pub mod analysis;
 pub mod back;
@@ -14,6 +15,7 @@ pub mod calculus;
 pub mod cli;
 pub mod diagnostic;
 pub mod front;
+pub mod meaning;
 pub mod model;
 pub mod pipeline;
 pub mod program;

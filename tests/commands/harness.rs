@@ -78,9 +78,14 @@ impl Folder {
     }
 }
 
+/// The text of a shipped model.
+pub(crate) fn shipped(model: &str) -> String {
+    std::fs::read_to_string(root().join("models").join(model)).unwrap()
+}
+
 /// A shipped model with one piece of its text replaced.
 pub(crate) fn altered(model: &str, from: &str, to: &str) -> String {
-    let text = std::fs::read_to_string(root().join("models").join(model)).unwrap();
+    let text = shipped(model);
     assert!(text.contains(from), "{model} does not contain {from}");
     text.replace(from, to)
 }

@@ -1,6 +1,7 @@
 //! The commands, as people and programs call them: the real binary on real files.
 
 mod check;
+mod compare;
 mod derive;
 mod documents;
 mod format;
@@ -9,6 +10,7 @@ mod harness;
 mod hostile;
 mod options;
 mod sarif;
+mod signoff;
 mod simulate;
 mod suggestions;
 mod verify;

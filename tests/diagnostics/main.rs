@@ -70,8 +70,13 @@ fn fixtures_render_as_expected() {
     );
 }
 
-/// Codes whose models are too large to be kept as files, and the tests that make them.
-const GENERATED: [(&str, &str); 1] = [("DW0602", "compiler/tests/scale.rs")];
+/// Codes that no model file alone shows, or only one too large to be kept, and the tests that make them.
+const GENERATED: [(&str, &str); 4] = [
+    ("DW0602", "compiler/tests/scale.rs"),
+    ("DW0801", "tests/commands/signoff.rs"),
+    ("DW0802", "tests/commands/signoff.rs"),
+    ("DW0803", "tests/commands/signoff.rs"),
+];
 
 #[test]
 fn every_code_has_a_fixture() {

@@ -69,6 +69,20 @@ pub enum Command {
     /// from the two runs is shown beside each z-score and allowed for, never hidden.
     #[command(after_long_help = VERIFY_EXAMPLES)]
     Verify(VerifyArgs),
+    /// Show what changed in meaning between two versions of a model
+    ///
+    /// Compares formulas, ranges, assumptions, correlations, domains, schemes and claims by proof: what is
+    /// written otherwise and means the same is no change, and a renaming is shown as one. For what changed
+    /// it shows the difference, and which drifts, corrections, methods, moments and verdicts follow.
+    #[command(after_long_help = COMPARE_EXAMPLES)]
+    Compare(CompareArgs),
+    /// Record that a model has been reviewed as it stands
+    ///
+    /// Writes the sign-off beside the model, in FILE's neighbour *.signoff.toml: who, when, and what was
+    /// reviewed. Layout, titles and default values do not void it; any change of meaning does, and
+    /// `check --require-signoff` then shows what changed.
+    #[command(after_long_help = SIGNOFF_EXAMPLES)]
+    Signoff(SignoffArgs),
     /// Write models in one canonical layout
     ///
     /// Orders tables and keys, aligns equality signs and puts spaces in formulas, in place. Comments
@@ -126,6 +140,16 @@ Examples:
   driftwright format models/*.toml
   driftwright format --check models/*.toml";
 
+const COMPARE_EXAMPLES: &str = "\
+Examples:
+  driftwright compare old.toml new.toml
+  driftwright compare --since main models/orchard_spot.toml --format markdown";
+
+const SIGNOFF_EXAMPLES: &str = "\
+Example:
+  driftwright signoff models/orchard_spot.toml --by \"R. Reviewer\" --note \"checked against the term sheet\"
+  driftwright check --require-signoff models/*.toml";
+
 const SCHEMA_EXAMPLES: &str = "\
 Example:
   driftwright schema > driftwright.schema.json";
@@ -172,6 +196,9 @@ pub enum DeriveFormat {
 /// `check`
 #[derive(Debug, Args)]
 pub struct CheckArgs {
+    /// Refuse models without a valid sign-off, and show what changed since it
+    #[arg(long)]
+    pub require_signoff: bool,
     /// Model files
     #[arg(value_name = "FILE", required_unless_present = "explain")]
     pub files: Vec<PathBuf>,
@@ -200,6 +227,56 @@ pub struct DeriveArgs {
     /// Write to this file instead of standard output
     #[arg(long, short, value_name = "PATH")]
     pub output: Option<PathBuf>,
+}
+
+/// `compare`
+#[derive(Debug, Args)]
+pub struct CompareArgs {
+    /// Earlier version, or with --since the model file
+    #[arg(value_name = "OLD")]
+    pub old: PathBuf,
+    /// Later version
+    #[arg(
+        value_name = "NEW",
+        required_unless_present = "since",
+        conflicts_with = "since"
+    )]
+    pub new: Option<PathBuf>,
+    /// Read the earlier version of the file from this revision of its git repository
+    #[arg(long, value_name = "REV")]
+    pub since: Option<String>,
+    /// Form of the comparison
+    #[arg(long, value_enum, default_value_t = CompareFormat::Text)]
+    pub format: CompareFormat,
+    /// Write to this file instead of standard output
+    #[arg(long, short, value_name = "PATH")]
+    pub output: Option<PathBuf>,
+}
+
+/// Output formats of `compare`.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub enum CompareFormat {
+    /// Plain text for a terminal of 100 columns
+    Text,
+    /// Markdown, for a comment on a proposed change
+    Markdown,
+    /// One self-contained page
+    Html,
+    /// For programs
+    Json,
+}
+
+/// `signoff`
+#[derive(Debug, Args)]
+pub struct SignoffArgs {
+    /// Model file
+    pub file: PathBuf,
+    /// Who reviewed it
+    #[arg(long, value_name = "NAME")]
+    pub by: String,
+    /// What the reviewer wants known
+    #[arg(long, value_name = "TEXT")]
+    pub note: Option<String>,
 }
 
 /// `generate`

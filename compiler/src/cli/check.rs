@@ -4,7 +4,7 @@ use std::io;
 
 use super::args::{CheckArgs, CheckFormat};
 use super::load::{Loaded, load};
-use super::{Failure, Outcome, Status, output};
+use super::{Failure, Outcome, Status, output, signoff};
 use crate::analysis::claims::Verdict;
 use crate::diagnostic::{self, Code, Diagnostic, Severity, explain, human};
 use crate::pipeline::Compiled;
@@ -15,7 +15,13 @@ pub(super) fn run(args: &CheckArgs) -> Outcome {
     if let Some(code) = &args.explain {
         return explanation(code);
     }
-    let files: Vec<Loaded> = args.files.iter().map(|path| load(path)).collect();
+    let mut files: Vec<Loaded> = args.files.iter().map(|path| load(path)).collect();
+    if args.require_signoff {
+        for (path, file) in args.files.iter().zip(&mut files) {
+            let objection = signoff::objection(path, file);
+            file.diagnostics.extend(objection);
+        }
+    }
     match args.format {
         CheckFormat::Human => {
             let colour = output::colour_on(&io::stdout());

@@ -23,15 +23,7 @@ pub(super) struct Loaded {
 /// Reads and compiles a file. What is wrong with it is among its diagnostics.
 pub(super) fn load(path: &Path) -> Loaded {
     match front::load(path) {
-        Ok(source) => {
-            let compilation = pipeline::compile(&source);
-            let (diagnostics, compiled) = (compilation.diagnostics, compilation.compiled);
-            Loaded {
-                source,
-                diagnostics,
-                compiled,
-            }
-        }
+        Ok(source) => compile(source),
         Err(diagnostic) => {
             let source = SourceFile::new(path.display().to_string(), "");
             Loaded {
@@ -43,14 +35,33 @@ pub(super) fn load(path: &Path) -> Loaded {
     }
 }
 
+/// Compiles a file that was read.
+pub(super) fn compile(source: SourceFile) -> Loaded {
+    let compilation = pipeline::compile(&source);
+    let (diagnostics, compiled) = (compilation.diagnostics, compilation.compiled);
+    Loaded {
+        source,
+        diagnostics,
+        compiled,
+    }
+}
+
+/// Errors about what a person vouches for, not about the file: the evidence is still written.
+const NOT_HELD: [Code; 4] = [
+    Code::ClaimRefuted,
+    Code::NotSignedOff,
+    Code::SignoffVoid,
+    Code::SignoffUnreadable,
+];
+
 impl Loaded {
-    /// The status that the diagnostics alone mean: refuted claims leave evidence behind, other errors
+    /// The status that the diagnostics alone mean: refuted claims and missing sign-offs leave evidence behind, other errors
     /// end the command.
     pub(super) fn status(&self) -> Status {
         let errors = self.diagnostics.iter().filter(|d| d.is_error());
         errors
             .map(|d| {
-                if d.code == Code::ClaimRefuted {
+                if NOT_HELD.contains(&d.code) {
                     Status::NotHeld
                 } else {
                     Status::Wrong

@@ -2,6 +2,7 @@
 
 mod args;
 mod check;
+mod compare;
 mod completions;
 mod coupled;
 mod derive;
@@ -17,6 +18,7 @@ mod progress;
 mod run;
 mod sample;
 mod schema;
+mod signoff;
 mod simulate;
 mod summary;
 mod verify;
@@ -62,6 +64,8 @@ pub fn main() -> ExitCode {
         Command::Generate(args) => generate::run(args),
         Command::Simulate(args) => simulate::run(args),
         Command::Verify(args) => verify::run(args),
+        Command::Compare(args) => compare::run(args),
+        Command::Signoff(args) => signoff::run(args),
         Command::Format(args) => format::run(args),
         Command::Schema(args) => schema::run(args),
         Command::Completions(args) => completions::run(args),

@@ -260,4 +260,20 @@ UnreadableUnit "DW0703" "unit that cannot be read"
 "Units are products, quotients and powers of names: EUR/t, 1/year^(1/2), kg*m^2/s^2. Fractions as exponents
 stand in parentheses. Names may hold any characters but * / ^ ( ) and spaces; side by side they are
 a product that binds tighter than `/`. `1` and `rad` are pure numbers. The unit shown is not checked."
+
+    NotSignedOff "DW0801" "not signed off"
+"`check --require-signoff` wants a sign-off beside each model: the file `x.signoff.toml` for `x.toml`, in
+which a reviewer vouches for what the model means. There is none. Read the derivation (`driftwright
+derive`), then record the review with `driftwright signoff FILE --by NAME`."
+
+    SignoffVoid "DW0802" "sign-off void"
+"The model means something else than when it was signed off: a formula, range, assumption, correlation,
+domain, edge, scheme or claim changed, as listed. Layout, titles, default values and another spelling of
+the same formula do not count. Review the change (`driftwright compare --since REV FILE`) and sign off
+anew, or undo it."
+
+    SignoffUnreadable "DW0803" "sign-off does not count"
+"The file beside the model is no sign-off, was changed after it was written (its hash does not match what
+it holds), or was written in a form that this version does not know. Restore it from version control, or
+review the model and sign off anew."
 }

@@ -5,6 +5,7 @@
 //! was logged by the pass that did the work; nothing is derived again here.
 
 mod claims;
+pub mod comparison;
 pub mod document;
 mod dossier;
 mod dynamics;
