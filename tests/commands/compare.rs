@@ -6,8 +6,11 @@ use serde_json::Value;
 
 use crate::harness::{Folder, altered, json, run, shipped};
 
+/// Pieces of a text and what stands in their place.
+type Edits = &'static [(&'static str, &'static str)];
+
 /// Edits of shipped models after which they mean what they did, and whether a name changed.
-const SAME: [(&str, &[(&str, &str)], bool); 11] = [
+const SAME: [(&str, Edits, bool); 11] = [
     // Layout, default values, titles, descriptions.
     (
         "honey_market",
@@ -60,7 +63,7 @@ const SAME: [(&str, &[(&str, &str)], bool); 11] = [
 ];
 
 /// Edits that change what a model means, with the key of the first change that is shown.
-const DIFFERENT: [(&str, &[(&str, &str)], &str); 10] = [
+const DIFFERENT: [(&str, Edits, &str); 10] = [
     (
         "honey_market",
         &[("\"r*S\"", "\"(r + 1e-9)*S\"")],
