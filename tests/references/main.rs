@@ -13,6 +13,7 @@ mod laws;
 mod linear_flow;
 mod model;
 mod orders;
+mod precise;
 mod prices;
 mod random_drift;
 mod rates;

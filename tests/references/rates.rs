@@ -10,6 +10,18 @@ use crate::model::{ModelText, POSITIVE};
 
 const PATHS: u64 = 1_500_000;
 
+/// Every value here that a Gaussian law gives, at a number of paths.
+pub(crate) fn gaussian(paths: u64) -> Vec<Check> {
+    let all = [
+        bonds,
+        coupon_option,
+        swaption_price,
+        convenience_yield,
+        two_factors,
+    ];
+    all.into_iter().flat_map(|checks| checks(paths)).collect()
+}
+
 /// A case's list of times.
 fn times(case: &Case) -> Vec<f64> {
     let list = case.params["T"].as_array().expect("a list of times");
@@ -44,8 +56,7 @@ fn short_rate(case: &Case) -> ModelText {
 }
 
 /// Zero bonds of Vasicek 1977; the integral of the rate is normal.
-#[test]
-fn gaussian_bonds() {
+fn bonds(count: u64) -> Vec<Check> {
     let reference = Reference::load("C");
     let case = reference.by_id("C-vasicek-p30");
     let p = case.values();
@@ -56,15 +67,19 @@ fn gaussian_bonds() {
         let bond = (variance / 2.0 - mean).exp();
         assert!((bond / value - 1.0).abs() < 1e-10, "{t}: {bond} {value}");
     }
-    let paths = estimate(&case.id, &short_rate(case), &times(case), None, PATHS);
+    let paths = estimate(&case.id, &short_rate(case), &times(case), None, count);
     let mut checks = Vec::new();
     at_times(case, &paths, "discount", "zcb", &mut checks);
-    assert_family(&checks);
+    checks
+}
+
+#[test]
+fn gaussian_bonds() {
+    assert_family(&bonds(PATHS));
 }
 
 /// An option on a coupon bond (Jamshidian 1989): the coupons' value at expiry is a function of the rate.
-#[test]
-fn option_on_a_coupon_bond() {
+fn coupon_option(count: u64) -> Vec<Check> {
     let reference = Reference::load("C");
     let case = reference.by_id("C-coupon-option-p32");
     let p = case.values();
@@ -90,13 +105,17 @@ fn option_on_a_coupon_bond() {
         .collect();
     let payoff = format!("exp(-I)*max(K - ({}), 0)", worth.join(" + "));
     let model = short_rate(case).readout("put", &payoff);
-    let paths = estimate(&case.id, &model, &[p.get("T")], None, PATHS);
-    assert_family(&[paths.check(0, "put", case.value("option"))]);
+    let paths = estimate(&case.id, &model, &[p.get("T")], None, count);
+    vec![paths.check(0, "put", case.value("option"))]
+}
+
+#[test]
+fn option_on_a_coupon_bond() {
+    assert_family(&coupon_option(PATHS));
 }
 
 /// A payer swaption as Black's call on the forward swap rate (Black 1976; Hull 2018, section 29.3).
-#[test]
-fn swaption() {
+fn swaption_price(count: u64) -> Vec<Check> {
     let reference = Reference::load("C");
     let case = reference.by_id("C-swaption-flat-p06");
     let p = case.values();
@@ -110,13 +129,17 @@ fn swaption() {
         .parameter("annuity", annuity)
         .state("Z", "forward", "0", &[("W", "sigma*Z")], POSITIVE)
         .readout("payer", "L*annuity*max(Z - K, 0)");
-    let paths = estimate(&case.id, &model, &[p.get("n")], None, PATHS);
-    assert_family(&[paths.check(0, "payer", case.value("payer_swaption"))]);
+    let paths = estimate(&case.id, &model, &[p.get("n")], None, count);
+    vec![paths.check(0, "payer", case.value("payer_swaption"))]
+}
+
+#[test]
+fn swaption() {
+    assert_family(&swaption_price(PATHS));
 }
 
 /// Futures prices under a mean-reverting convenience yield (Schwartz 1997, two-factor model).
-#[test]
-fn futures_with_convenience_yield() {
+fn convenience_yield(count: u64) -> Vec<Check> {
     let reference = Reference::load("C");
     let case = reference.by_id("C-schwartz2-p33");
     let model = ModelText::new(&["V", "W"])
@@ -132,19 +155,23 @@ fn futures_with_convenience_yield() {
         )
         .derived("log_Z", "log(Z)");
     // At ten years the variance of log Z is 0.67: the log-normal means need more paths than the rest.
-    let paths = estimate(&case.id, &model, &times(case), None, PATHS);
+    let paths = estimate(&case.id, &model, &times(case), None, count);
     let mut checks = Vec::new();
     at_times(case, &paths, "Z", "futures", &mut checks);
     for (index, (time, value)) in case.values_at("var(log S)").enumerate() {
         assert_eq!(time, times(case)[index]);
         checks.push(paths.variance_check(index, "log_Z", value));
     }
-    assert_family(&checks);
+    checks
+}
+
+#[test]
+fn futures_with_convenience_yield() {
+    assert_family(&convenience_yield(PATHS));
 }
 
 /// Expected spots and futures of two log factors (Schwartz & Smith 2000, equations 6 and 9).
-#[test]
-fn two_factor_futures() {
+fn two_factors(count: u64) -> Vec<Check> {
     let reference = Reference::load("C");
     let case = reference.by_id("C-schwartz-smith-p34");
     let factors = |passing: &str, lasting: &str| {
@@ -158,10 +185,10 @@ fn two_factor_futures() {
     };
     let mut checks = Vec::new();
     let priced = factors("-kappa*chi - lambda_chi", "mu_xi_star");
-    let paths = estimate(&case.id, &priced, &times(case), None, PATHS);
+    let paths = estimate(&case.id, &priced, &times(case), None, count);
     at_times(case, &paths, "spot", "futures", &mut checks);
     let real = factors("-kappa*chi", "mu_xi");
-    let paths = estimate(&case.id, &real, &times(case), None, PATHS);
+    let paths = estimate(&case.id, &real, &times(case), None, count);
     at_times(case, &paths, "spot", "E[S] real-world", &mut checks);
     for (index, (time, value)) in case.values_at("var(log S)").enumerate() {
         let (kappa, p) = (case.parameter("kappa"), case.values());
@@ -172,13 +199,17 @@ fn two_factor_futures() {
         assert!((formula / value - 1.0).abs() < 1e-10);
         checks.push(paths.variance_check(index, "log_spot", value));
     }
-    assert_family(&checks);
+    checks
+}
+
+#[test]
+fn two_factor_futures() {
+    assert_family(&two_factors(PATHS));
 }
 
 /// Bonds under a square-root rate (Cox, Ingersoll & Ross 1985, equation 23). The scheme has a bias of order h;
 /// two step sizes on independent paths extrapolate it away (Talay & Tubaro 1990).
-#[test]
-fn square_root_bonds() {
+pub(crate) fn square_root(count: u64) -> Vec<Check> {
     let reference = Reference::load("C");
     let case = reference.by_id("C-cir-bond-p31");
     let model = ModelText::new(&["W"])
@@ -193,16 +224,15 @@ fn square_root_bonds() {
         .state("I", "0", "R", &[], "")
         .derived("discount", "exp(-I)");
     let horizon = &times(case)[..3];
-    let coarse = estimate(&case.id, &model, horizon, Some(400), 300_000);
+    let coarse = estimate(&case.id, &model, horizon, Some(400), count);
     let fine = estimate(
         &format!("{}-fine", case.id),
         &model,
         horizon,
         Some(800),
-        300_000,
+        count,
     );
-    let checks: Vec<Check> = case
-        .values_at("zcb")
+    case.values_at("zcb")
         .take(horizon.len())
         .enumerate()
         .map(|(index, (time, value))| {
@@ -215,6 +245,10 @@ fn square_root_bonds() {
                 std_error: (4.0 * sb * sb + sa * sa).sqrt(),
             }
         })
-        .collect();
-    assert_family(&checks);
+        .collect()
+}
+
+#[test]
+fn square_root_bonds() {
+    assert_family(&square_root(300_000));
 }

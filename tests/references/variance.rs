@@ -40,13 +40,17 @@ fn strikes(case: &Case) -> Vec<(String, f64, f64)> {
 }
 
 fn run(case: &Case, rho: f64, more: &str, steps: usize) -> Estimates {
+    run_with(PATHS, case, rho, more, steps)
+}
+
+fn run_with(count: u64, case: &Case, rho: f64, more: &str, steps: usize) -> Estimates {
     let name = format!("{}-{steps}", case.id);
     estimate(
         &name,
         &model(case, rho, more),
         &[case.parameter("T")],
         Some(steps),
-        PATHS,
+        count,
     )
 }
 
@@ -83,20 +87,25 @@ const CASES: [(&str, usize); 3] = [
 const BY_MOMENTS: &str = "scheme = \"quadratic_exponential\"";
 const TRUNCATED: &str = "scheme = \"full_truncation_euler\"";
 
-#[test]
-fn prices_of_the_literature() {
+/// The values of the literature at a number of paths.
+pub(crate) fn published(count: u64) -> Vec<Check> {
     let reference = Reference::load("C");
     let mut checks = Vec::new();
     for (id, steps) in CASES {
         let case = reference.by_id(id);
         let rho = case.parameter("rho");
-        let (coarse, fine) = (run(case, rho, "", steps), run(case, rho, "", 2 * steps));
+        let [coarse, fine] = [steps, 2 * steps].map(|n| run_with(count, case, rho, "", n));
         checks.extend(extrapolated(case, &coarse, &fine));
         // Kept by every single step, so that nothing is extrapolated.
         checks.push(coarse.check(0, "grown", case.parameter("S")));
     }
     assert_eq!(checks.len(), 13);
-    assert_family(&checks);
+    checks
+}
+
+#[test]
+fn prices_of_the_literature() {
+    assert_family(&published(PATHS));
 }
 
 /// The first two moments of the variance and the mean of the price are kept by the quadratic-exponential scheme
