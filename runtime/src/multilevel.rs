@@ -11,6 +11,7 @@ use std::borrow::Cow;
 
 use crate::arith::Arith;
 use crate::error::StepError;
+use crate::fact::Fact;
 use crate::lane::{LANES, Lane};
 use crate::random::Draws;
 use crate::simulator::{Shape, Simulator};
@@ -214,6 +215,10 @@ impl<S: Simulator> Simulator for Coupled<'_, S> {
 
     fn observation_values(&self, time: f64, values: &mut [f64]) -> Result<(), StepError> {
         self.simulator.observation_values(time, values)
+    }
+
+    fn facts(&self) -> Vec<Fact> {
+        self.simulator.facts()
     }
 
     #[inline(always)]
