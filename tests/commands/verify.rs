@@ -170,3 +170,38 @@ fn the_bias_of_a_coarse_step_is_shown_and_allowed_for() {
     assert!(mean["z"].as_f64().unwrap() < -10.0, "{mean}");
     assert_eq!(mean["passed"], true);
 }
+
+/// The evidence as a page: every check in the table and in the drawing, valid HTML; where a check fails
+/// the page is written all the same and shows it.
+#[test]
+fn the_report_holds_every_check() {
+    let folder = Folder::new();
+    let wrong = folder.write("wrong.toml", &with_sine_claim("1"));
+    let page = folder.path("report.html");
+    for (model, status) in [("models/twin_orchards.toml", 0), (wrong.as_str(), 1)] {
+        let ran = run(&[
+            "verify", model, "--report", &page, "--format", "json", "--paths", "20000",
+        ]);
+        assert_eq!(ran.status, status, "{model}: {}", ran.err);
+        let found: Value = serde_json::from_str(&ran.out).expect("JSON");
+        let checks = found["checks"].as_array().expect("a list").len();
+        let text = std::fs::read_to_string(&page).expect("the report");
+        let html = scraper::Html::parse_document(&text);
+        assert!(html.errors.is_empty(), "{model}: {:?}", html.errors);
+        let count = |selector: &str| {
+            let selector = scraper::Selector::parse(selector).expect("a selector");
+            html.select(&selector).count()
+        };
+        assert_eq!(count("circle"), checks, "{model}");
+        assert_eq!(count("circle.bad") > 0, status == 1, "{model}");
+        assert_eq!(count("strong.bad") > 0, status == 1, "{model}");
+    }
+    let two = run(&[
+        "verify",
+        "models/orchard_spot.toml",
+        "models/orchard_spot.toml",
+        "--report",
+        &page,
+    ]);
+    assert_eq!(two.status, 2, "one page is of one model");
+}

@@ -347,6 +347,9 @@ pub struct VerifyArgs {
     /// Model files
     #[arg(value_name = "FILE", required = true)]
     pub files: Vec<PathBuf>,
+    /// Write the evidence to this file too, as one self-contained HTML page with every check
+    #[arg(long, value_name = "PATH")]
+    pub report: Option<PathBuf>,
     /// Paths, times, parameters, threads.
     #[command(flatten)]
     pub run: RunArgs,

@@ -37,6 +37,8 @@ pub enum Block {
     Table(Table),
     /// A diagram.
     Diagram(Diagram),
+    /// Scores of checks.
+    Scores(Scores),
 }
 
 /// Running text.
@@ -185,6 +187,48 @@ impl Diagram {
     }
 }
 
+/// Scores of checks, in standard errors; a check holds below the threshold.
+#[derive(Clone, Debug, Default)]
+pub struct Scores {
+    /// The largest score that still holds.
+    pub threshold: f64,
+    /// The checks.
+    pub points: Vec<Score>,
+}
+
+/// The score of one check.
+#[derive(Clone, Debug)]
+pub struct Score {
+    /// What was checked.
+    pub label: String,
+    /// The score, in standard errors; what a known bias explains is taken off.
+    pub z: f64,
+    /// Whether it holds.
+    pub passed: bool,
+}
+
+impl Scores {
+    /// The scores in one sentence.
+    pub fn in_words(&self) -> String {
+        let failing: Vec<&str> = self
+            .points
+            .iter()
+            .filter(|point| !point.passed)
+            .map(|point| point.label.as_str())
+            .collect();
+        let (all, failed) = (self.points.len(), failing.len());
+        let threshold = format!("within {:.2} standard errors", self.threshold);
+        match failed {
+            0 => format!("{all} of {all} checks are {threshold}"),
+            _ => format!(
+                "{} of {all} checks are {threshold}; not: {}",
+                all - failed,
+                failing.join(", ")
+            ),
+        }
+    }
+}
+
 /// Plain words as text.
 pub fn words(text: impl Into<String>) -> Text {
     vec![Inline::Words(text.into())]
@@ -250,6 +294,13 @@ impl Document {
     pub fn equations(&mut self, equations: Vec<Equation>) {
         if !equations.is_empty() {
             self.blocks.push(Block::Equations(equations));
+        }
+    }
+
+    /// Adds scores; none add nothing.
+    pub fn scores(&mut self, scores: Scores) {
+        if !scores.points.is_empty() {
+            self.blocks.push(Block::Scores(scores));
         }
     }
 

@@ -5,6 +5,7 @@
 
 mod diagram;
 mod equations;
+mod scores;
 
 use minijinja::{Environment, context};
 
@@ -118,6 +119,7 @@ impl Page<'_> {
             Block::Equations(list) => self.body.push_str(&equations::html(self.pool, list)),
             Block::Table(table) => self.table(table),
             Block::Diagram(diagram) => self.body.push_str(&diagram::html(diagram)),
+            Block::Scores(scores) => self.body.push_str(&scores::html(scores)),
         }
     }
 

@@ -42,6 +42,7 @@ pub fn write(document: &Document) -> String {
             }
             Block::Equations(list) => out.push_str(&equations(pool, list)),
             Block::Table(rows) => out.push_str(&table(pool, rows)),
+            Block::Scores(scores) => out.push_str(&format!("\n{}\n", escape(&scores.in_words()))),
             Block::Diagram(diagram) => out.push_str(&influences(diagram)),
         }
     }

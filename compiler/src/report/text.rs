@@ -107,6 +107,11 @@ impl Writer<'_> {
             }
             Block::Equations(equations) => self.equations(equations),
             Block::Table(table) => self.table(table),
+            Block::Scores(scores) => {
+                for line in wrap::words(&scores.in_words(), self.style.columns) {
+                    self.line(&line);
+                }
+            }
             Block::Diagram(diagram) => {
                 for line in diagram.lines() {
                     for line in wrap::words(&line, self.style.columns - 4) {

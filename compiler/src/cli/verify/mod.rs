@@ -21,6 +21,7 @@ use super::{Failure, Outcome, Status, output};
 use crate::analysis::claims::Verdict;
 use crate::back::interpret::Interpreter;
 use crate::pipeline::Compiled;
+use crate::report::html;
 use crate::report::text::{self, Style};
 
 /// What verifying one model gave.
@@ -38,6 +39,11 @@ struct Verification {
 
 /// Verifies the files, one after the other.
 pub(super) fn run(args: &VerifyArgs) -> Outcome {
+    if args.report.is_some() && args.files.len() > 1 {
+        return Err(Failure(
+            "--report takes the evidence of one model: name one file".to_owned(),
+        ));
+    }
     let mut status = Status::Well;
     let mut documents: Vec<Value> = Vec::new();
     for path in &args.files {
@@ -65,6 +71,10 @@ fn verify_file(args: &VerifyArgs, path: &Path) -> Result<(Status, Option<Value>)
         return Ok((Status::Wrong, None));
     };
     let verification = verify(args, &loaded, compiled)?;
+    if let Some(path) = &args.report {
+        let page = html::write(&show::evidence(&verification, compiled));
+        output::deliver(Some(path), &page)?;
+    }
     let document = match args.run.format {
         Format::Json => Some(show::json(&verification, compiled)),
         Format::Human => {

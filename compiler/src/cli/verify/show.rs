@@ -8,7 +8,7 @@ use crate::analysis::claims::Verdict;
 use crate::cli::summary;
 use crate::model::Model;
 use crate::pipeline::Compiled;
-use crate::report::document::{Align, Inline, Mark, Table, Text, code, words};
+use crate::report::document::{Align, Inline, Mark, Score, Scores, Table, Text, code, words};
 use crate::report::number::{grouped, significant, with_error};
 use crate::report::{self, Document};
 
@@ -71,9 +71,42 @@ pub(super) fn document(verification: &Verification, compiled: &Compiled) -> Docu
     let mut document = Document::new(&model.pool, title, verification.settings.describe());
     derivation(&mut document, compiled);
     document.section("Sample against analytic values");
-    document.table(table(verification, model));
+    document.table(table(verification, model, &shown(verification)));
     document.list(remarks(verification));
     document.paragraph(conclusion(verification, compiled));
+    document
+}
+
+/// The evidence for a reviewer, `--report`: the verdict first, then every check.
+pub(super) fn evidence(verification: &Verification, compiled: &Compiled) -> Document {
+    let model = &compiled.model;
+    let name = model.title.clone().unwrap_or_else(|| model.name.clone());
+    let title = format!("Verification: {name}");
+    let mut document = Document::new(&model.pool, title, verification.settings.describe());
+    document.paragraph(conclusion(verification, compiled));
+    document.section("Checks at a glance");
+    let label = |c: &Check| {
+        format!(
+            "{} {} at {}",
+            c.quantity,
+            c.statistic,
+            significant(c.time, 4)
+        )
+    };
+    let points = verification.checks.iter().map(|c| Score {
+        label: label(c),
+        z: c.z(),
+        passed: c.passed(verification.threshold),
+    });
+    document.scores(Scores {
+        threshold: verification.threshold,
+        points: points.collect(),
+    });
+    document.section("Sample against analytic values");
+    let all: Vec<&Check> = verification.checks.iter().collect();
+    document.table(table(verification, model, &all));
+    document.list(remarks(verification));
+    derivation(&mut document, compiled);
     document
 }
 
@@ -91,7 +124,7 @@ fn derivation(document: &mut Document, compiled: &Compiled) {
     }
 }
 
-fn table(verification: &Verification, model: &Model) -> Table {
+fn table(verification: &Verification, model: &Model, checks: &[&Check]) -> Table {
     let unit = model
         .time_unit
         .as_ref()
@@ -116,8 +149,8 @@ fn table(verification: &Verification, model: &Model) -> Table {
             align,
         })
         .collect();
-    table.rows = shown(verification)
-        .into_iter()
+    table.rows = checks
+        .iter()
         .map(|c| row(c, verification.threshold, approximate))
         .collect();
     table
