@@ -3,6 +3,9 @@
 
 use std::collections::BTreeMap;
 
+use driftwright::pipeline::{Compiled, compile};
+use driftwright::source::SourceFile;
+use driftwright::symbolic::Symbol;
 use driftwright_runtime::Simulator as _;
 use driftwright_runtime::law::Law;
 use driftwright_tests::harness::interpret::interpreter;
@@ -72,6 +75,99 @@ fn laws_of_the_next_state_are_those_of_the_literature() {
     families.dedup();
     assert_eq!(families.len(), 11, "{families:?}");
     assert_eq!(seen, 122, "values compared");
+}
+
+/// The formulas that the derivation shows for a normal transition, at the case's values.
+struct Shown {
+    compiled: Compiled,
+    values: BTreeMap<Symbol, f64>,
+}
+
+impl Shown {
+    fn new(case: &Case, more: &str) -> Self {
+        let name = case.id.to_lowercase().replace('-', "_");
+        let text = model(case, more).text(&name);
+        let compiled = compile(&SourceFile::new("case.toml", text)).compiled;
+        let compiled = compiled.expect("a model");
+        let (model, pool) = (&compiled.model, &compiled.model.pool);
+        let mut values = BTreeMap::from([(model.time, number(case.entry("t")))]);
+        for p in &model.parameters {
+            let value = pool.number(p.value.clone().expect("a value"));
+            let value = pool.eval_f64(value, &BTreeMap::new()).expect("a number");
+            values.insert(p.symbol, value);
+        }
+        let before = number(&case.entry("x0").as_array().expect("a list")[0]);
+        values.insert(model.states[0].symbol, before);
+        Self { compiled, values }
+    }
+
+    /// The value of the formula whose note begins so, for the state at `after`.
+    fn value(&self, note: &str, after: f64) -> Option<f64> {
+        let pool = &self.compiled.model.pool;
+        let steps = &self.compiled.plan.groups[0].trace.steps;
+        let step = steps
+            .iter()
+            .find(|s| s.rule == "transition law" && s.note.starts_with(note))?;
+        let mut values = self.values.clone();
+        values.insert(pool.find_symbol("X_after")?, after);
+        pool.eval_f64(step.after, &values)
+    }
+}
+
+/// What the derivation shows of a normal transition and its images is what is published; and its density is what the
+/// simulator tells, which the test below holds against the distribution function.
+#[test]
+fn shown_formulas_are_those_of_the_literature() {
+    let reference = Reference::load("B");
+    let (mut distributions, mut moments, mut densities) = (0, 0, 0);
+    for (case, more) in in_scope(&reference) {
+        let shown = Shown::new(case, more);
+        for check in &case.check {
+            let (kind, state) = of_state(&check.quantity);
+            if state.is_some_and(|s| s != "X") {
+                continue;
+            }
+            let (note, after, expected) = match kind {
+                "mean" => ("mean of X", 1.0, check.value),
+                "var" => ("variance of X", 1.0, check.value),
+                "cdf" => ("distribution function of X", check.level(), check.value),
+                "quantile" => ("distribution function of X", check.value, check.level()),
+                _ => continue,
+            };
+            let Some(found) = shown.value(note, after) else {
+                continue;
+            };
+            let scale = if note.starts_with("dis") {
+                1.0
+            } else {
+                expected
+            };
+            assert!(
+                ((found - expected) / scale).abs() < ALLOWED,
+                "{}: {} is shown as {found}, published {expected}",
+                case.id,
+                check.quantity
+            );
+            if !note.starts_with("dis") {
+                moments += 1;
+                continue;
+            }
+            distributions += 1;
+            let density = shown.value("density of X", after).expect("beside it");
+            let told = law(case, more, 1.0).expect("a law").density(after);
+            assert!(
+                (density / told - 1.0).abs() < 1e-9,
+                "{}: {density} {told}",
+                case.id
+            );
+            densities += usize::from(density > 0.0);
+        }
+    }
+    assert!(
+        distributions >= 20 && moments >= 4,
+        "{distributions} {moments}"
+    );
+    assert_eq!(densities, distributions);
 }
 
 /// Densities are the derivatives of distribution functions.

@@ -1,7 +1,7 @@
 //! Groups stepped by their exact Gaussian transition.
 
-use super::edges;
 use super::{Becomes, Group, Kind, Law, LinearGaussian, Method, RowNoise, SchemeName};
+use super::{edges, normal_law};
 use crate::analysis::free::{Freedom, free_of};
 use crate::analysis::linear::{Row, Rows, components, reached};
 use crate::calculus::{Dynamics, bracket};
@@ -48,6 +48,11 @@ fn group(
             Some(row.process.drift),
             linear_form(model, rows, row),
         );
+    }
+    if let (&[(state, row)], true, false) = (&members[..], random, system.moving) {
+        for (note, formula) in normal_law::transition(model, state, row) {
+            trace.push("transition law", note, None, formula);
+        }
     }
     let mut reasons = reasons(model, rows, &members, law, system.moving);
     let confined = members.iter().filter(|(_, row)| !row.coordinate.onto_line);

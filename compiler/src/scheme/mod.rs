@@ -17,6 +17,7 @@ mod exact;
 mod implicit;
 mod linear_flow;
 mod noise;
+mod normal_law;
 mod overrides;
 mod own_law;
 mod plan;

@@ -49,7 +49,11 @@ impl Lowering<'_> {
     fn normal_law(&mut self, state: usize, system: &LinearGaussian) -> Option<LawShape> {
         let pool = self.model.pool.clone();
         let (rate, alpha) = (system.a[0][0], system.alpha[0]);
-        let noise: Vec<(usize, Expr)> = system.c[0].iter().copied().enumerate().collect();
+        // A model of many drivers has few in each state: pairs of the others are not looked at.
+        let drivers = system.c[0].iter().copied().enumerate();
+        let noise: Vec<(usize, Expr)> = drivers
+            .filter(|&(_, coefficient)| !pool.is_zero_literal(coefficient))
+            .collect();
         let square = pool.simplify(covariance_rate(self, &noise, &noise));
         if pool.is_zero_literal(square) {
             return None;
