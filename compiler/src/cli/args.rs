@@ -28,7 +28,7 @@ A first session:
   driftwright verify models/orchard_spot.toml     simulate it and hold it against analytic values
   driftwright simulate models/orchard_spot.toml --horizon 5 --plot fan.svg
 
-Exit status: 0 all is well; 1 a claim or a verification did not hold; 2 the input or the command
+Exit status: 0 all is well; 1 a claim, verification or sign-off did not hold; 2 the input or the command
 line is wrong, and nothing was written. With several files the worst status counts.";
 
 /// The commands.

@@ -11,7 +11,7 @@ use driftwright_fuzzing::{formula, generate, model};
 use folders::{contents, repository};
 
 /// Formulas that went wrong, and how.
-const FORMULAS: [(&str, &str); 4] = [
+const FORMULAS: [(&str, &str); 5] = [
     (
         "0^x",
         "its derivative held log(0), which does not read back",
@@ -24,6 +24,10 @@ const FORMULAS: [(&str, &str); 4] = [
     (
         "1/5e301 - x/7e305",
         "the inverse of a long number read back as another formula",
+    ),
+    (
+        "(33329e-21 ^3*315+ x^x^3)^21",
+        "the text for people is cut, and was held to read back",
     ),
 ];
 
