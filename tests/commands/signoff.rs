@@ -125,6 +125,25 @@ fn every_model_can_be_signed_off() {
     }
 }
 
+/// `models/*.toml` names the sign-offs too; they are no models.
+#[test]
+fn sign_offs_among_several_files_are_left_out() {
+    let folder = Folder::new();
+    let model = signed(&folder);
+    let beside = folder.path("m.signoff.toml");
+    let text = fs::read_to_string(&beside).expect("the sign-off");
+    for command in ["check", "format", "generate", "verify"] {
+        let mut arguments = vec![command, &model, &beside];
+        if command == "verify" {
+            arguments.extend(["--paths", "1000"]);
+        }
+        let ran = run(&arguments);
+        assert_eq!(ran.status, 0, "{command}: {}", ran.err);
+    }
+    assert_eq!(fs::read_to_string(&beside).expect("as before"), text);
+    assert_eq!(run(&["check", &beside]).status, 2, "alone it is no model");
+}
+
 #[test]
 fn what_cannot_be_signed_off() {
     let folder = Folder::new();

@@ -6,6 +6,7 @@ use clap::{Args, Parser, Subcommand, ValueEnum};
 use driftwright_runtime::ArithmeticClass;
 
 use super::parse;
+use crate::meaning::signoff::ENDING as SIGNOFF_ENDING;
 
 /// From a stochastic differential equation in TOML to the code that simulates it.
 ///
@@ -101,6 +102,27 @@ pub enum Command {
     /// Writes a completion script for the named shell to standard output.
     #[command(after_long_help = COMPLETIONS_EXAMPLES)]
     Completions(CompletionsArgs),
+}
+
+impl Command {
+    /// Sign-offs stand beside the models, and `models/*.toml` names them too: among several files they are
+    /// left out. One that is named alone is read, and refused as no model.
+    pub(super) fn leave_out_signoffs(&mut self) {
+        let files = match self {
+            Self::Check(args) => &mut args.files,
+            Self::Generate(args) => &mut args.files,
+            Self::Verify(args) => &mut args.files,
+            Self::Format(args) => &mut args.files,
+            _ => return,
+        };
+        let is_model = |path: &PathBuf| {
+            let name = path.file_name().unwrap_or_default();
+            !name.to_string_lossy().ends_with(SIGNOFF_ENDING)
+        };
+        if files.iter().any(is_model) {
+            files.retain(is_model);
+        }
+    }
 }
 
 const CHECK_EXAMPLES: &str = "\

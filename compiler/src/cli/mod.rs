@@ -57,7 +57,8 @@ type Outcome = Result<Status, Failure>;
 
 /// Reads the command line, carries it out, and returns the exit status of the contract.
 pub fn main() -> ExitCode {
-    let cli = Cli::parse();
+    let mut cli = Cli::parse();
+    cli.command.leave_out_signoffs();
     let outcome = match &cli.command {
         Command::Check(args) => check::run(args),
         Command::Derive(args) => derive::run(args),

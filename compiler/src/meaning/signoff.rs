@@ -43,9 +43,12 @@ pub enum Standing {
     Unreadable(String),
 }
 
+/// How the names of sign-offs end.
+pub const ENDING: &str = ".signoff.toml";
+
 /// The file beside a model that holds its sign-off: `orchard.signoff.toml` for `orchard.toml`.
 pub fn path_beside(model: &Path) -> PathBuf {
-    model.with_extension("signoff.toml")
+    model.with_extension(&ENDING[1..])
 }
 
 /// Judges a model against the text of its sign-off, if it has one.
