@@ -3,7 +3,7 @@
 use std::cell::RefCell;
 
 use crate::model::{AtEdge, Calculus, Claim, ClaimKind, Formula, Model, Relation};
-use crate::symbolic::{Bound, Expr, Interval, SharedTexts};
+use crate::symbolic::{Expr, Interval, SharedTexts};
 
 /// The number of the form in which meanings are written. A change of what is written, or how, is a new
 /// form; a reader keeps knowing the old ones.
@@ -115,27 +115,8 @@ impl Writer<'_> {
     }
 
     fn interval(&self, key: &[&str], interval: &Interval) {
-        let end = |end: &Bound, infinite: &str| {
-            let place = end.value().map(|place| self.texts.format(place));
-            place.unwrap_or_else(|| infinite.to_owned())
-        };
-        let (open, close) = (
-            if matches!(interval.lower, Bound::Closed(_)) {
-                '['
-            } else {
-                '('
-            },
-            if matches!(interval.upper, Bound::Closed(_)) {
-                ']'
-            } else {
-                ')'
-            },
-        );
-        let (lower, upper) = (end(&interval.lower, "-inf"), end(&interval.upper, "inf"));
-        self.push(
-            key,
-            Value::Interval(format!("{open}{lower}, {upper}{close}")),
-        );
+        let text = interval.notation(|end| self.texts.format(end));
+        self.push(key, Value::Interval(text));
     }
 
     fn declarations(&self) {

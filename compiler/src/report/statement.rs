@@ -6,21 +6,11 @@ use super::document::{Align, Equation, Inline, Table, Term, code, words};
 use super::number::significant;
 use super::{Derivation, Document};
 use crate::model::{AtEdge, Model};
-use crate::symbolic::{Bound, Interval, Pool};
+use crate::symbolic::{Interval, Pool};
 
 /// `(0, inf)`, `[a, b)`.
 pub(super) fn interval(pool: &Pool, interval: &Interval) -> String {
-    let (open, lower) = match &interval.lower {
-        Bound::Infinite => ('(', "-inf".to_owned()),
-        Bound::Open(end) => ('(', pool.format(*end)),
-        Bound::Closed(end) => ('[', pool.format(*end)),
-    };
-    let (close, upper) = match &interval.upper {
-        Bound::Infinite => (')', "inf".to_owned()),
-        Bound::Open(end) => (')', pool.format(*end)),
-        Bound::Closed(end) => (']', pool.format(*end)),
-    };
-    format!("{open}{lower}, {upper}{close}")
+    interval.notation(|end| pool.format(end))
 }
 
 /// Parameters, assumptions and noise.

@@ -38,6 +38,16 @@ impl Interval {
         lower: Bound::Infinite,
         upper: Bound::Infinite,
     };
+
+    /// The interval in its notation, `(0, inf)` or `[a, b)`, its ends as `text` writes them.
+    pub fn notation(&self, text: impl Fn(Expr) -> String) -> String {
+        let end = |end: &Bound, infinite: &str| end.value().map_or(infinite.to_owned(), &text);
+        let is_closed = |end: &Bound| matches!(end, Bound::Closed(_));
+        let open = if is_closed(&self.lower) { '[' } else { '(' };
+        let close = if is_closed(&self.upper) { ']' } else { ')' };
+        let (lower, upper) = (end(&self.lower, "-inf"), end(&self.upper, "inf"));
+        format!("{open}{lower}, {upper}{close}")
+    }
 }
 
 /// What is known of the sign of a formula everywhere in the ranges of its symbols.
